@@ -1,0 +1,114 @@
+package driver
+
+import "math"
+
+// A DataSheet is the moving-coil driver of the small-signal theory: a voice coil in series with the motional
+// branch, in which the moving mass shows as a capacitor, the suspension as a coil and its friction as a
+// resistor, all three in parallel.
+//
+// R. H. Small, "Direct-Radiator Loudspeaker System Analysis", J. Audio Eng. Soc. 20(5), 383–395, 1972.
+type DataSheet struct {
+	Re     float64 // Ω, DC resistance of the voice coil; > 0
+	Le     float64 // H, inductance in series with Re; ≥ 0
+	LossR2 float64 // Ω, in parallel with LossL2 and in series with Re and Le: losses in the pole piece; 0: none
+	LossL2 float64 // H
+	Fs     float64 // Hz, resonance; 0: no motional branch
+	Qms    float64 // mechanical Q at Fs
+	Qes    float64 // electrical Q at Fs, from Re
+}
+
+// InClosedBox returns the same driver on a closed box of net volume vb, vas being the driver's compliance as
+// a volume, in the same unit. The air spring adds to the suspension, so the resonance and both Qs rise by
+// √(1 + vas/vb); losses in the box are left out.
+//
+// R. H. Small, "Closed-Box Loudspeaker Systems", Part I, J. Audio Eng. Soc. 20(10), 798–808, 1972.
+func (d DataSheet) InClosedBox(vas, vb float64) DataSheet {
+	k := math.Sqrt(1 + vas/vb)
+	d.Fs *= k
+	d.Qms *= k
+	d.Qes *= k
+	return d
+}
+
+// Motional returns the motional branch: res in Ω, lces in H and cmes in F, in parallel. All are 0 if the
+// sheet gives no Fs.
+func (d DataSheet) Motional() (res, lces, cmes float64) {
+	if d.Fs == 0 {
+		return 0, 0, 0
+	}
+	w := 2 * math.Pi * d.Fs
+	return d.Re * d.Qms / d.Qes, d.Re / (w * d.Qes), d.Qes / (w * d.Re)
+}
+
+// coil returns the impedance of the blocked voice coil, Re + sLe + R2 ∥ sL2.
+func (d DataSheet) coil(s complex128) complex128 {
+	z := complex(d.Re, 0) + s*complex(d.Le, 0)
+	if d.LossR2 > 0 && d.LossL2 > 0 {
+		r, x := complex(d.LossR2, 0), s*complex(d.LossL2, 0)
+		z += r * x / (r + x)
+	}
+	return z
+}
+
+// motion returns the impedance of the motional branch. It is written as sL/(1 + sL/R + s²LC), not as the
+// inverse of a sum, so that s = 0 needs no special case.
+func (d DataSheet) motion(s complex128) complex128 {
+	if d.Fs == 0 {
+		return 0
+	}
+	res, lces, cmes := d.Motional()
+	x := s * complex(lces, 0)
+	return x / (1 + x*complex(1/res, 0) + x*s*complex(cmes, 0))
+}
+
+// Impedance returns the impedance at s.
+func (d DataSheet) Impedance(s complex128) complex128 { return d.coil(s) + d.motion(s) }
+
+// Elements returns Re, then Le, then the loss pair, then the motional branch, leaving out what is 0.
+func (d DataSheet) Elements() []Element {
+	type group []Element
+	chain := []group{{{Name: "Re", Kind: Resistor, Value: d.Re}}}
+	if d.Le > 0 {
+		chain = append(chain, group{{Name: "Le", Kind: Inductor, Value: d.Le}})
+	}
+	if d.LossR2 > 0 && d.LossL2 > 0 {
+		chain = append(chain, group{
+			{Name: "R2", Kind: Resistor, Value: d.LossR2},
+			{Name: "L2", Kind: Inductor, Value: d.LossL2},
+		})
+	}
+	if d.Fs > 0 {
+		res, lces, cmes := d.Motional()
+		chain = append(chain, group{
+			{Name: "Res", Kind: Resistor, Value: res},
+			{Name: "Lces", Kind: Inductor, Value: lces},
+			{Name: "Cmes", Kind: Capacitor, Value: cmes},
+		})
+	}
+	var es []Element
+	from := Plus
+	for i, g := range chain {
+		to := i + 2
+		if i == len(chain)-1 {
+			to = Minus
+		}
+		for _, e := range g {
+			e.From, e.To = from, to
+			es = append(es, e)
+		}
+		from = to
+	}
+	return es
+}
+
+// Acceleration returns the diaphragm's acceleration for each volt, relative to that of a coil without
+// inductance well above resonance: s·Re·Cmes·Z_m/(Z_e + Z_m), which tends to 1 there. The far-field pressure
+// of a small diaphragm in a large baffle is proportional to it (Small 1972, as above). Without Fs it is 1.
+func (d DataSheet) Acceleration(s complex128) complex128 {
+	if d.Fs == 0 {
+		return 1
+	}
+	_, _, cmes := d.Motional()
+	m := d.motion(s)
+	return s * complex(d.Re*cmes, 0) * m / (d.coil(s) + m)
+}
