@@ -1,0 +1,106 @@
+package ladder
+
+import "math"
+
+// Conjugate returns the network, across the driver, that makes a driver of impedance Re + Z look like the
+// plain resistance Re at every frequency, where Z is the excess (it holds resistors, inductors and
+// capacitors to any depth) and re is Re in Ω. The network is Re in series with the dual of Z about Re:
+//
+//	1/(Re + Z) + 1/(Re + Re²/Z) = 1/(Re + Z) + Z/(Re·(Z + Re)) = 1/Re
+//
+// exactly, for any Z. The identity is that of the constant-resistance networks of O. J. Zobel, "Distortion
+// Correction in Electrical Circuits with Constant Resistance Recurrent Networks", Bell System Technical
+// Journal 7, 1928 (from memory).
+func Conjugate(re float64, excess Expr) (Network, error) {
+	if err := check(quantity{"conjugate: Re", re, "Ω"}); err != nil {
+		return nil, err
+	}
+	if err := excess.check(); err != nil {
+		return nil, err
+	}
+	return Network{Shunt(join(InSeries, R(re), excess.dual(re*re)))}, nil
+}
+
+// VoiceCoil returns the network, across the driver, that takes out the inductance of its voice coil:
+// R = Re in series with C = Le/Re². re is Re in Ω, le is Le in H.
+//
+// It is exact when the driver is Re + s·Le and nothing else. A real driver is that only well above its
+// resonance, and only as far as its coil's inductance is lossless: with eddy currents in the pole piece a
+// single R and C make it resistive at one frequency. Conjugate takes a lossy coil, and Dual the resonance too.
+//
+// A. N. Thiele, "Optimum Passive Loudspeaker Dividing Networks", Proc. IREE Australia 36, 1975; W. M. Leach Jr.,
+// "Impedance Compensation Networks for the Lossy Voice-Coil Inductance of Loudspeaker Drivers", JAES 52(4), 2004.
+func VoiceCoil(re, le float64) (Network, error) {
+	if err := check(quantity{"voice coil: Re", re, "Ω"}, quantity{"voice coil: Le", le, "H"}); err != nil {
+		return nil, err
+	}
+	return Conjugate(re, L(le))
+}
+
+// Resonance returns the network, across the driver, that takes out the peak of its impedance at resonance:
+// in series R = Re + Re²/Res = Re·(1 + Qes/Qms), L = Re²·Cmes = Re·Qes/(2π·fs) and C = Lces/Re² = 1/(2π·fs·Qes·Re).
+// re is Re in Ω, fs is in Hz.
+//
+// It is exact when the voice coil has no inductance. Put beside VoiceCoil it is not, nor is that: each then
+// also compensates for what the other has cancelled already. Dual is both at once.
+//
+// A. N. Thiele, as for VoiceCoil; the equivalent circuit is that of R. H. Small, "Direct-Radiator Loudspeaker
+// System Analysis", JAES 20(5), 1972 (from memory).
+func Resonance(re, fs, qms, qes float64) (Network, error) {
+	if err := checkMotional("resonance", re, fs, qms, qes); err != nil {
+		return nil, err
+	}
+	return Conjugate(re, motional(re, fs, qms, qes))
+}
+
+// Dual returns the network, across the driver, that makes Re + s·Le plus the resonance into the resistance Re
+// exactly: R = Re in series with C = Le/Re² beside the chain Re²/Res, Re²·Cmes, Lces/Re². re is Re in Ω, le is Le in
+// H, fs is in Hz.
+//
+// It is exact for the data-sheet driver whose coil is lossless. The formula is Conjugate's.
+func Dual(re, le, fs, qms, qes float64) (Network, error) {
+	if err := check(quantity{"dual: Le", le, "H"}); err != nil {
+		return nil, err
+	}
+	if err := checkMotional("dual", re, fs, qms, qes); err != nil {
+		return nil, err
+	}
+	return Conjugate(re, Chain(L(le), motional(re, fs, qms, qes)))
+}
+
+// motional is what a driver's moving parts look like from its terminals: Res, Lces and Cmes in parallel.
+func motional(re, fs, qms, qes float64) Expr {
+	w := 2 * math.Pi * fs
+	return Beside(R(re*qms/qes), L(re/(w*qes)), C(qes/(w*re)))
+}
+
+func checkMotional(name string, re, fs, qms, qes float64) error {
+	return check(
+		quantity{name + ": Re", re, "Ω"},
+		quantity{name + ": fs", fs, "Hz"},
+		quantity{name + ": Qms", qms, "(no unit)"},
+		quantity{name + ": Qes", qes, "(no unit)"},
+	)
+}
+
+// dual returns the network whose impedance is square/Z, square in Ω².
+func (e Expr) dual(square float64) Expr {
+	switch {
+	case e.Op != Leaf:
+		op := InSeries
+		if e.Op == InSeries {
+			op = InParallel
+		}
+		args := make([]Expr, len(e.Args))
+		for i, arg := range e.Args {
+			args[i] = arg.dual(square)
+		}
+		return Expr{Op: op, Args: args}
+	case e.Part.Kind == Inductor:
+		return C(e.Part.Value / square)
+	case e.Part.Kind == Capacitor:
+		return L(e.Part.Value * square)
+	default:
+		return R(square / e.Part.Value)
+	}
+}
