@@ -1,0 +1,83 @@
+package measure
+
+import (
+	"fmt"
+	"math"
+	"math/cmplx"
+)
+
+// floorDB is how far below a white signal of the same energy, in dB, the
+// reference may lie at a frequency that is asked for. An exponential sweep over three
+// decades lies 8 dB below at its top, with nothing but leakage outside its range.
+const floorDB = -60
+
+// Transfer stores in dst[k][i] the transfer function outs[k]/ref at hz[i]: the
+// ratio of the two spectra, each taken over the whole record. All records have
+// the same length and len(dst) = len(outs), len(dst[k]) = len(hz), else Transfer panics.
+//
+// For a linear system whose response has died away before the record ends, the
+// ratio is exact, whatever the signal, and at any frequency; so let the record run on
+// for some of the slowest time constants after the sweep. A record cut off earlier
+// is wrong by about what was cut off. Noise counts over the whole record: where that
+// matters, or where distortion does, window the impulse response, [NewImpulse].
+//
+// A frequency where the reference has almost nothing (below −60 dB re white
+// of the same energy) is an error.
+func Transfer(dst [][]complex128, outs [][]float64, ref []float64, rate float64, hz []float64) error {
+	if len(dst) != len(outs) {
+		panic(fmt.Sprintf("measure: %d results for %d channels", len(dst), len(outs)))
+	}
+	for k := range outs {
+		if len(outs[k]) != len(ref) || len(dst[k]) != len(hz) {
+			panic("measure: channels or results of different lengths")
+		}
+	}
+	if err := checkFrequencies(hz, rate); err != nil {
+		return err
+	}
+	energy, err := energyOf(ref)
+	if err != nil {
+		return err
+	}
+	for k := range outs {
+		if _, err := energyOf(outs[k]); err != nil {
+			return fmt.Errorf("%w (channel %d after the reference)", err, k+1)
+		}
+	}
+	x := make([]complex128, len(hz))
+	spectra(append([][]complex128{x}, dst...), append([][]float64{ref}, outs...), rate, hz)
+	floor := math.Sqrt(energy) * math.Pow(10, floorDB/20.0)
+	for i := range hz {
+		if !(cmplx.Abs(x[i]) > floor) {
+			return fmt.Errorf("measure: transfer: the reference has almost nothing at %v Hz; ask inside the range of the sweep", hz[i])
+		}
+		for k := range dst {
+			dst[k][i] /= x[i]
+		}
+	}
+	return nil
+}
+
+func checkFrequencies(hz []float64, rate float64) error {
+	if !(rate > 0) || math.IsInf(rate, 0) {
+		return fmt.Errorf("measure: transfer: the sample rate is %v Hz; give one above 0", rate)
+	}
+	for _, f := range hz {
+		if !(f > 0 && f < rate/2) {
+			return fmt.Errorf("measure: transfer: frequency %v Hz; at a sample rate of %v Hz give one above 0 and below half of it", f, rate)
+		}
+	}
+	return nil
+}
+
+// energyOf returns Σx², or an error where a sample is not finite.
+func energyOf(x []float64) (float64, error) {
+	sum := 0.0
+	for _, v := range x {
+		sum += v * v
+	}
+	if math.IsNaN(sum) || math.IsInf(sum, 0) {
+		return 0, fmt.Errorf("measure: transfer: the record holds samples that are not finite; record it again")
+	}
+	return sum, nil
+}
