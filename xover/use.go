@@ -1,0 +1,132 @@
+package xover
+
+import (
+	"fmt"
+	"math"
+)
+
+// checkUse looks at what the networks use, once all is read: each part and driver once, coils that couple
+// as coils can, nodes that hold together.
+func (p *parser) checkUse() {
+	used := map[string]Position{}
+	drivers := map[string]bool{}
+	networks := make([][]Step, 0, len(p.design.Ways)+1)
+	for _, way := range p.design.Ways {
+		drivers[way.Driver] = true
+		networks = append(networks, way.Network)
+	}
+	if p.design.Tone != nil {
+		networks = append(networks, p.design.Tone.Network)
+	}
+	for _, network := range networks {
+		for _, step := range network {
+			if step.Expr == nil {
+				continue
+			}
+			step.Expr.leaves(func(x *Expr) {
+				if first, again := used[x.Part]; again {
+					p.fail(x.Pos, fmt.Sprintf("%s is used twice, first in line %d", x.Part, first.Line),
+						fmt.Sprintf("give the second a name of its own, perhaps with { same = %q }", x.Part))
+					return
+				}
+				used[x.Part] = x.Pos
+			})
+		}
+	}
+	if p.networkFault {
+		return
+	}
+	for i := range p.design.Parts {
+		part := &p.design.Parts[i]
+		if _, ok := used[part.Name]; !ok {
+			p.warn(part.Pos, part.Name+" is defined and not used", "use it in a network, or take it out")
+		} else if part.Kind == Potentiometer && !p.turned(part.Name) {
+			p.warn(part.Pos, fmt.Sprintf("%s is a potentiometer that no control turns; it stands at %v", part.Name, DefaultTurn),
+				fmt.Sprintf("add a table [control.NAME] with part = %q and at", part.Name))
+		}
+	}
+	for i := range p.design.Drivers {
+		if d := &p.design.Drivers[i]; !drivers[d.Name] {
+			p.warn(d.Pos, fmt.Sprintf("driver %q is defined and not used", d.Name), "give it a [[way]], or take it out")
+		}
+	}
+	p.checkCouplings(networks, used)
+	if !p.full() && (len(p.design.Ways) == 0) != (p.design.Tone == nil) {
+		p.checkWiring()
+	}
+}
+
+func (p *parser) turned(part string) bool {
+	for _, c := range p.design.Controls {
+		if c.Part == part {
+			return true
+		}
+	}
+	return false
+}
+
+// checkCouplings reports coils that are coupled twice, that no network uses, or that cannot be coupled so
+// all at once.
+func (p *parser) checkCouplings(networks [][]Step, used map[string]Position) {
+	index := map[string]int{} // of the coupled coils
+	pairs := map[[2]string]bool{}
+	var last Step
+	var couplings []Step
+	for _, network := range networks {
+		for _, step := range network {
+			if step.Op != Couple {
+				continue
+			}
+			last = step
+			for _, coil := range []string{step.A, step.B} {
+				if _, ok := used[coil]; !ok {
+					p.fail(step.Pos, fmt.Sprintf("%s is coupled and in no network", coil), "use it in a step too, or take the coupling out")
+				}
+				if _, ok := index[coil]; !ok {
+					index[coil] = len(index)
+				}
+			}
+			if pairs[[2]string{step.A, step.B}] || pairs[[2]string{step.B, step.A}] {
+				p.fail(step.Pos, fmt.Sprintf("%s and %s are coupled twice", step.A, step.B), "keep one of them")
+				continue
+			}
+			pairs[[2]string{step.A, step.B}] = true
+			couplings = append(couplings, step)
+		}
+	}
+	if !p.full() && !passive(len(index), index, couplings) {
+		p.fail(last.Pos, "these couplings cannot all be: the coils would give energy", "make the coefficients smaller; coils that couple tightly to one coil couple to one another too")
+	}
+}
+
+// passive tells whether the matrix of coupling coefficients, with ones on its diagonal, is positive
+// definite, which is what makes the stored energy ½ iᵀ L i positive for all currents. It tries the Cholesky
+// factorisation (G. H. Golub and C. F. Van Loan, Matrix Computations, 4th ed., 2013, section 4.2).
+func passive(n int, index map[string]int, couplings []Step) bool {
+	m := make([][]float64, n)
+	for i := range m {
+		m[i] = make([]float64, n)
+		m[i][i] = 1
+	}
+	for _, c := range couplings {
+		a, b := index[c.A], index[c.B]
+		m[a][b], m[b][a] = c.K, c.K
+	}
+	for j := range m {
+		for i := j; i < n; i++ {
+			sum := m[i][j]
+			for k := range j {
+				sum -= m[i][k] * m[j][k]
+			}
+			if i > j {
+				m[i][j] = sum / m[j][j]
+				continue
+			}
+			if !(sum > 0) {
+				return false
+			}
+			m[j][j] = math.Sqrt(sum)
+		}
+	}
+	return true
+}
