@@ -1,0 +1,310 @@
+package circuit
+
+import "math"
+
+// form is how a part's value enters its cell's immittance x: ∂x/∂value is c, jω·c or j·c/ω.
+type form uint8
+
+const (
+	byScale form = iota
+	byOmega
+	byInverse
+)
+
+// A param is a branch whose value the gains are differentiated by.
+type param struct {
+	branch, cell int
+	form         form
+}
+
+// listParams finds the parameters, cell by cell.
+func (p *program) listParams(n *Netlist) {
+	p.cellOf = make([]int, len(n.Branches))
+	for i := range p.cellOf {
+		p.cellOf[i] = -1
+	}
+	for c := range p.cells {
+		for _, m := range p.cells[c].members {
+			p.cellOf[m] = c
+			f := byScale
+			switch k := n.Branches[m].Kind; {
+			case k == Inductor && !p.cells[c].tank, k == Capacitor && p.cells[c].tank:
+				f = byOmega
+			case k != Resistor:
+				f = byInverse
+			}
+			p.params = append(p.params, param{m, c, f})
+		}
+	}
+}
+
+// weight is c of a parameter's form, its sign chosen so that ∂H/∂value is weight × (1, jω or j/ω) ×
+// base·Δψ, with base = ΔV for a tank (∂H = -ΔV·Δψ·∂y) and y²·ΔV for a chain (∂H = +y²·ΔV·Δψ·∂z).
+func (q *param) weight(tank bool, k Kind, v float64) float64 {
+	switch {
+	case tank && k == Resistor: // y = 1/R
+		return 1 / (v * v)
+	case tank && k == Capacitor: // y = jωC
+		return -1
+	case tank: // y = -j/(ωL)
+		return -1 / (v * v)
+	case k == Capacitor: // z = -j/(ωC)
+		return 1 / (v * v)
+	}
+	return 1 // z = R, z = jωL
+}
+
+// gradSlots is how many slots the gradient uses before those of the adjoints: base and base·ΔV of
+// each cell and two to work in.
+func gradSlots(p *program) int { return 2*len(p.cells) + 2 }
+
+// Gradient solves the network and computes the derivative of every output's gain by the value of every
+// resistor, inductor and capacitor: one more back-substitution an output. It allocates only when first called.
+func (s *Sweep) Gradient() error {
+	stride := len(s.w) * lanes
+	if s.grad == nil {
+		s.grad = make([]complex128, len(s.c.outs)*len(s.c.net.Branches)*stride)
+	}
+	for b := range s.w {
+		s.forward(b)
+		if err := s.finish(b); err != nil {
+			return err
+		}
+		s.run(s.c.p.more, b)
+		if len(s.wind) > 0 {
+			s.run(s.c.p.rest, b)
+		}
+		s.bases()
+		for o := range s.c.adj {
+			s.backward(b, o)
+		}
+		for l := range min(lanes, len(s.freqs)-b*lanes) {
+			if s.bad[l] {
+				if err := s.mendGradient(b*lanes + l); err != nil {
+					return err
+				}
+			}
+		}
+	}
+	return nil
+}
+
+func (s *Sweep) gradOf(o, branch int) []complex128 {
+	stride := len(s.w) * lanes
+	first := (o*len(s.c.net.Branches) + branch) * stride
+	return s.grad[first : first+stride]
+}
+
+// bases computes what all outputs share: base of each cell and, where there is a source resistance, base·ΔV.
+func (s *Sweep) bases() {
+	p := s.c.p
+	for i := range p.cells {
+		k := &p.cells[i]
+		dv := &s.v[k.dv]
+		base, q := &s.v[p.slots+2*i], &s.v[p.slots+2*i+1]
+		if k.tank {
+			*base = *dv
+		} else {
+			squareMulTo(base, &s.v[k.y], dv)
+		}
+		if s.c.net.Source > 0 {
+			mulTo(q, base, dv)
+		}
+	}
+}
+
+// squareMulTo stores y²·v.
+func squareMulTo(dst, y, v *cvec) {
+	for i := range lanes {
+		yr, yi, vr, vi := y.re[i], y.im[i], v.re[i], v.im[i]
+		ir, ii := yr*vr-yi*vi, yr*vi+yi*vr
+		dst.re[i] = yr*ir - yi*ii
+		dst.im[i] = yr*ii + yi*ir
+	}
+}
+
+// backward solves the adjoint of output o in block b and stores the derivatives.
+func (s *Sweep) backward(b, o int) {
+	p, a, rs := s.c.p, &s.c.adj[o], s.c.net.Source
+	kappa, g, minus := &s.v[a.kappa], &s.v[a.g], &s.v[a.minus]
+	y := &s.v[p.yin]
+	for l := range lanes {
+		amp := 1 / (1 + complex(rs, 0)*complex(y.re[l], y.im[l]))
+		g.re[l], g.im[l] = real(amp), imag(amp)
+		minus.re[l], minus.im[l] = -real(amp), -imag(amp)
+		k := complex(rs, 0) * amp * amp * s.outVolts(o, l)
+		kappa.re[l], kappa.im[l] = real(k), imag(k)
+	}
+	runAdjoint(a.ops, s.v)
+	product, work := &s.v[p.slots+2*len(p.cells)], &s.v[p.slots+2*len(p.cells)+1]
+	for i, n := 0, len(p.params); i < n; {
+		c := p.params[i].cell
+		k := &p.cells[c]
+		from, to := k.from, k.to
+		if from == Return { // the sign cancels
+			from, to = to, from
+		}
+		base := &s.v[p.slots+2*c]
+		left, right := base, kappa
+		switch {
+		case a.hit[from] || a.hit[to]:
+			right = s.psiBetween(work, a, from, to)
+		case rs > 0: // no current reaches the cell: ψ is κ·V
+			left = &s.v[p.slots+2*c+1]
+		default: // and without a source resistance κ is zero: so are the derivatives, from the start
+			for i < n && p.params[i].cell == c {
+				i++
+			}
+			continue
+		}
+		if i+1 == n || p.params[i+1].cell != c { // the only part of its cell: in one go
+			s.store(b, o, i, left, right)
+			i++
+			continue
+		}
+		mulTo(product, left, right)
+		for ; i < n && p.params[i].cell == c; i++ {
+			s.store(b, o, i, product, nil)
+		}
+	}
+	s.windingGradient(b, o)
+}
+
+// psiBetween is ψ(from) - ψ(to), in work or in a slot that holds it.
+func (s *Sweep) psiBetween(work *cvec, a *adjoint, from, to int) *cvec {
+	f := &s.v[a.psi[from]]
+	if to == Return {
+		return f
+	}
+	subTo(work, f, &s.v[a.psi[to]])
+	return work
+}
+
+// store writes the derivative by parameter i: weight × (1, jω or j/ω) × left·right, right nil for 1.
+func (s *Sweep) store(b, o, i int, left, right *cvec) {
+	p := s.c.p
+	q := &p.params[i]
+	c := q.weight(p.cells[q.cell].tank, s.c.net.Branches[q.branch].Kind, s.vals[q.branch])
+	dst := (*[lanes]complex128)(s.gradOf(o, q.branch)[b*lanes:])
+	switch x := s.factor(q.form, b); {
+	case right == nil && x == nil:
+		for l := range lanes {
+			dst[l] = complex(c*left.re[l], c*left.im[l])
+		}
+	case right == nil:
+		for l := range lanes {
+			t := c * x[l]
+			dst[l] = complex(-t*left.im[l], t*left.re[l])
+		}
+	case x == nil:
+		for l := range lanes {
+			ar, ai, br, bi := left.re[l], left.im[l], right.re[l], right.im[l]
+			dst[l] = complex(c*(ar*br-ai*bi), c*(ar*bi+ai*br))
+		}
+	default:
+		for l := range lanes {
+			ar, ai, br, bi := left.re[l], left.im[l], right.re[l], right.im[l]
+			t := c * x[l]
+			dst[l] = complex(-t*(ar*bi+ai*br), t*(ar*br-ai*bi))
+		}
+	}
+}
+
+// factor is ω or 1/ω of block b, or nil for 1.
+func (s *Sweep) factor(f form, b int) *vec {
+	switch f {
+	case byOmega:
+		return &s.w[b]
+	case byInverse:
+		return &s.u[b]
+	}
+	return nil
+}
+
+// GainGradient copies ∂(V_out/V_open)/∂(value of a branch), in 1/Ω, 1/H or 1/F, as of the last Gradient.
+// A one-port, and a part whose value was zero when the circuit was compiled, has none: zeros.
+func (s *Sweep) GainGradient(dst []complex128, out, branch int) {
+	if s.grad == nil {
+		panic("circuit: GainGradient before Gradient")
+	}
+	s.copyTo(dst, s.gradOf(out, branch)[:len(s.freqs)])
+}
+
+// wiggle is the derivative of a cell's immittance by a parameter at s = jω, with the sign of weight.
+func (s *Sweep) wiggle(i int, w float64) complex128 {
+	p := s.c.p
+	q := &p.params[i]
+	c := q.weight(p.cells[q.cell].tank, s.c.net.Branches[q.branch].Kind, s.vals[q.branch])
+	switch q.form {
+	case byOmega:
+		return complex(0, c*w)
+	case byInverse:
+		return complex(0, c/w)
+	}
+	return complex(c, 0)
+}
+
+// mendGradient is Gradient for frequency i alone, by the slow road.
+func (s *Sweep) mendGradient(i int) error {
+	pt, p, w := s.pt, s.c.p, 2*math.Pi*s.freqs[i]
+	if err := pt.solve(s.c, complex(0, w), s.tri, s.wind, false); err != nil {
+		return err
+	}
+	g := pt.ampGain(s.c.net.Source)
+	for o := range s.c.adj {
+		from, to := s.c.adj[o].from, s.c.adj[o].to
+		pt.adjoint(from, to, g, complex(s.c.net.Source, 0)*g*g*pt.between(from, to))
+		for j := range p.params {
+			k := &p.cells[p.params[j].cell]
+			x := pt.between(k.from, k.to) * (pt.psiAt(k.from) - pt.psiAt(k.to))
+			if !k.tank {
+				y := chainAt(complex(0, w), s.tri[p.params[j].cell])
+				x *= y * y
+			}
+			s.gradOf(o, p.params[j].branch)[i] = s.wiggle(j, w) * x
+		}
+		for n := range p.wind {
+			coils := p.wind[n].coils
+			s.windingAt(o, i, n,
+				func(c int) complex128 { return pt.between(coils[c].from, coils[c].to) },
+				func(c int) complex128 { return pt.psiAt(coils[c].from) - pt.psiAt(coils[c].to) })
+		}
+	}
+	return nil
+}
+
+// windingGradient stores the derivatives by coupled coils. Few designs have any: it goes one frequency
+// at a time.
+func (s *Sweep) windingGradient(b, o int) {
+	a := &s.c.adj[o]
+	for n := range s.c.p.wind {
+		coils := s.c.p.wind[n].coils
+		for l := range min(lanes, len(s.freqs)-b*lanes) {
+			psi := func(k int) complex128 {
+				switch {
+				case k == Amp:
+					return s.lane(across{slot: a.kappa}, l)
+				case a.hit[k]:
+					return s.lane(across{slot: a.psi[k]}, l)
+				}
+				return s.lane(across{slot: a.kappa}, l) * s.lane(s.c.p.volts[k], l)
+			}
+			s.windingAt(o, b*lanes+l, n,
+				func(c int) complex128 { return s.lane(s.c.p.coils[n][c], l) },
+				func(c int) complex128 { return psi(coils[c].from) - psi(coils[c].to) })
+		}
+	}
+}
+
+// windingAt stores the derivatives of output o by the coils of winding n at frequency i, from the voltages
+// across the coils and those of the adjoint network.
+func (s *Sweep) windingAt(o, i, n int, volt, psi func(coil int) complex128) {
+	w := &s.wind[n]
+	jw := complex(0, 2*math.Pi*s.freqs[i])
+	w.invert(jw)
+	w.currents(w.i, volt)
+	w.currents(w.j, psi)
+	for a, c := range s.c.p.wind[n].coils {
+		s.gradOf(o, c.branch)[i] = jw * w.slope(a)
+	}
+}
