@@ -1,0 +1,183 @@
+package sim
+
+import (
+	"errors"
+	"fmt"
+	"io"
+
+	"sixdown/sim/circuit"
+	"sixdown/sim/driver"
+	"sixdown/sim/field"
+	"sixdown/xover"
+)
+
+// A port makes a driver's load a branch of the circuit.
+type port struct{ driver.Load }
+
+// Branches returns the driver's equivalent circuit; nil if it has none.
+func (p port) Branches() []circuit.Branch {
+	var bs []circuit.Branch
+	for _, e := range p.Elements() {
+		b := circuit.Branch{Name: e.Name, From: e.From, To: e.To, Value: e.Value}
+		switch e.Kind {
+		case driver.Resistor:
+			b.Kind = circuit.Resistor
+		case driver.Inductor:
+			b.Kind = circuit.Inductor
+		case driver.Capacitor:
+			b.Kind = circuit.Capacitor
+		}
+		bs = append(bs, b)
+	}
+	return bs
+}
+
+// A speaker is a driver in its place.
+type speaker struct {
+	name     string
+	load     driver.Load
+	radiator driver.Radiator // nil: it has no acoustic output
+	path     field.Path
+	tables   []table
+	notes    []string
+}
+
+// A table is a measurement with two ends.
+type table interface {
+	Name() string
+	Range() (lo, hi float64)
+	Notes() []string
+}
+
+// opener opens a file that a design names.
+type opener func(name string) (io.ReadCloser, error)
+
+// newSpeaker makes a speaker of what the design says about it.
+func newSpeaker(d *xover.Driver, l field.Listener, open opener) (*speaker, error) {
+	sp := &speaker{name: d.Name}
+	sheet, err := dataSheet(d)
+	if err != nil {
+		return nil, err
+	}
+	if err := sp.setLoad(d, sheet, open); err != nil {
+		return nil, err
+	}
+	if err := sp.setRadiator(d, sheet, l, open); err != nil {
+		return nil, err
+	}
+	for _, t := range sp.tables {
+		sp.notes = append(sp.notes, t.Notes()...)
+	}
+	return sp, nil
+}
+
+// dataSheet returns the numbers of the data sheet, the box applied. Re is 0 if the sheet does not give it.
+func dataSheet(d *xover.Driver) (driver.DataSheet, error) {
+	s := driver.DataSheet{Re: d.Re, Le: d.Le, LossR2: d.LossR2, LossL2: d.LossL2, Fs: d.Fs, Qms: d.Qms, Qes: d.Qes}
+	if s.Fs == 0 {
+		return s, nil
+	}
+	if !(s.Qms > 0 && s.Qes > 0) {
+		return s, fmt.Errorf("driver %q: fs is given without qms or qes; give all three", d.Name)
+	}
+	switch d.Box.Kind {
+	case xover.ClosedBox:
+		if !(d.Vas > 0 && d.Box.Volume > 0) {
+			return s, fmt.Errorf("driver %q: a closed box needs vas and the box's volume; give both", d.Name)
+		}
+		s = s.InClosedBox(d.Vas, d.Box.Volume)
+	case xover.VentedBox:
+		// Only a driver whose behaviour is measured, box and all, can do without the model.
+		if d.ImpedanceFile == "" || d.ResponseFile == "" && d.HasSensitivity {
+			return s, fmt.Errorf("driver %q: vented boxes are not in this version; measure the impedance and the response of the driver in its box and give both tables", d.Name)
+		}
+	}
+	return s, nil
+}
+
+// setLoad chooses the electrical side: a plain resistance, else a table, else the data sheet.
+func (sp *speaker) setLoad(d *xover.Driver, sheet driver.DataSheet, open opener) error {
+	switch {
+	case d.Resistance > 0:
+		sp.load = driver.Resistance(d.Resistance)
+	case d.ImpedanceFile != "":
+		t, err := readTable(d, d.ImpedanceFile, open)
+		if err != nil {
+			return err
+		}
+		z, err := driver.NewImpedanceTable(t)
+		if err != nil {
+			return fmt.Errorf("driver %q: %w", d.Name, err)
+		}
+		sp.load = z
+		sp.tables = append(sp.tables, z)
+	case d.Re > 0:
+		sp.load = sheet
+	default:
+		return fmt.Errorf("driver %q: nothing is said of its impedance; give impedance or re", d.Name)
+	}
+	return nil
+}
+
+// setRadiator chooses the acoustical side: a table, else the data sheet, else flat, else nothing.
+func (sp *speaker) setRadiator(d *xover.Driver, sheet driver.DataSheet, l field.Listener, open opener) error {
+	at := field.Point(d.At)
+	if at.Distance(l.Ear()) == 0 {
+		return fmt.Errorf("driver %q: it stands where the ear is; move one of them", d.Name)
+	}
+	sp.path = l.FromOneMetre(at)
+	switch {
+	case d.ResponseFile != "":
+		if d.MinimumPhase {
+			return fmt.Errorf("driver %q: phase = \"minimum\" is not in this version; give a response with its measured phase and phase = \"measured\"", d.Name)
+		}
+		mic := field.Point{0, 0, 1}
+		if d.HasMic {
+			mic = field.Point(d.Mic)
+		}
+		if at.Distance(mic) == 0 {
+			return fmt.Errorf("driver %q: its microphone stands at its acoustic centre; correct mic or at", d.Name)
+		}
+		t, err := readTable(d, d.ResponseFile, open)
+		if err != nil {
+			return err
+		}
+		r, err := driver.NewResponseTable(t)
+		if err != nil {
+			return fmt.Errorf("driver %q: %w", d.Name, err)
+		}
+		sp.radiator = r
+		sp.tables = append(sp.tables, r)
+		sp.path = l.FromMicrophone(at, mic)
+	case !d.HasSensitivity:
+		return nil
+	case sheet.Fs == 0:
+		sp.radiator = driver.Flat(d.Sensitivity)
+	default:
+		if sheet.Re == 0 {
+			if sheet.Le > 0 || sheet.LossR2 > 0 {
+				return fmt.Errorf("driver %q: le without re does not say how the output falls with it; give re", d.Name)
+			}
+			sheet.Re = 1 // without inductance the output does not depend on it
+		}
+		sp.radiator = driver.Sheet{DataSheet: sheet, Sensitivity: d.Sensitivity}
+	}
+	return nil
+}
+
+// readTable opens and reads a table that a driver names.
+func readTable(d *xover.Driver, name string, open opener) (t *driver.Table, err error) {
+	if open == nil {
+		return nil, fmt.Errorf("driver %q: %s: there is no way to open files here; give a way", d.Name, name)
+	}
+	r, err := open(name)
+	if err != nil {
+		return nil, fmt.Errorf("driver %q: %w", d.Name, err)
+	}
+	defer func() { err = errors.Join(err, r.Close()) }()
+	t, err = driver.ReadTable(name, r)
+	if err != nil {
+		return nil, fmt.Errorf("driver %q: %w", d.Name, err)
+	}
+	return t, nil
+}

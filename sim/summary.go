@@ -1,0 +1,288 @@
+package sim
+
+import (
+	"fmt"
+	"math"
+	"math/cmplx"
+)
+
+// A Summary is the few numbers that a builder looks for first.
+type Summary struct {
+	Band [2]float64 // Hz, what was looked at
+
+	MinImpedance   float64 // Ω, the lowest |Zin| in Band
+	MinImpedanceAt float64 // Hz
+	MinEPDR        float64 // Ω, the lowest EPDR in Band
+	MinEPDRAt      float64 // Hz
+
+	Crossings []Crossing   // where the lead passes from one way to another, rising
+	Sum       *SumSummary  // nil unless every way has an acoustic output
+	Tone      *ToneSummary // nil for a loudspeaker
+}
+
+// A Crossing is where two neighbouring ways are equally loud: at the ear if every way has an acoustic output, else
+// at their drivers' terminals.
+type Crossing struct {
+	Low, High string  // the way that leads below, and the one that leads above
+	Frequency float64 // Hz
+	LevelDB   float64 // of each of them, dB re the sum; without a sum the gain, dB re open circuit
+	PhaseDeg  float64 // of High relative to Low, in (-180, 180]
+}
+
+// A SumSummary is about the sum over Band, the design's tune band; means are over log frequency.
+type SumSummary struct {
+	Band     [2]float64 // Hz
+	MeanSPL  float64    // dB, mean of the levels in dB
+	RippleDB float64    // the highest level less the lowest
+	RMSDB    float64    // rms deviation from MeanSPL
+	Low3DB   float64    // Hz: going down from the middle of Band, where the sum first is 3.01 dB below MeanSPL; 0: not in the Summary's Band
+	High3DB  float64    // Hz: the same going up
+}
+
+// A ToneSummary is the tone network's gain in third-octave steps.
+type ToneSummary struct {
+	Freqs           []float64 // Hz, exact mid-band frequencies of IEC 61260-1, 1000·10^(k/10), within the Summary's Band
+	GainDB          []float64 // output over the open-circuit source
+	InsertionLossDB []float64 // how much lower the output is than with the source straight on the load
+}
+
+// gridPerOctave is how finely a band is looked over before what was found is refined.
+const gridPerOctave = 48
+
+// halfPower is 10·lg 2.
+const halfPower = 3.0102999566398120
+
+// Summary looks over band, from and to in Hz; a zero band is 20 Hz to 20 kHz. Frequencies that it gives are refined
+// from a grid of 48 points an octave to the last few digits, so that they do not depend on it.
+func (s *System) Summary(band [2]float64) (*Summary, error) {
+	if band == [2]float64{} {
+		band = [2]float64{20, 20e3}
+	}
+	if !(band[0] > 0 && band[1] > band[0]) || math.IsInf(band[1], 1) {
+		return nil, fmt.Errorf("summary: the band is %g Hz to %g Hz; give two rising positive frequencies", band[0], band[1])
+	}
+	r, err := s.Predict(logGrid(band))
+	if err != nil {
+		return nil, err
+	}
+	sum := &Summary{Band: band}
+	sum.MinImpedance, sum.MinImpedanceAt, err = s.lowest(r, func(z complex128) float64 { return cmplx.Abs(z) })
+	if err != nil {
+		return nil, err
+	}
+	sum.MinEPDR, sum.MinEPDRAt, err = s.lowest(r, EPDR)
+	if err != nil {
+		return nil, err
+	}
+	if s.tone != nil {
+		sum.Tone, err = s.summarizeTone(band)
+		return sum, err
+	}
+	if sum.Crossings, err = s.crossings(r); err != nil {
+		return nil, err
+	}
+	if s.Sums() {
+		if sum.Sum, err = s.summarizeSum(r); err != nil {
+			return nil, err
+		}
+	}
+	return sum, nil
+}
+
+// logGrid returns frequencies from band[0] to band[1], equally spaced in log frequency, gridPerOctave or a little more to the octave.
+func logGrid(band [2]float64) []float64 {
+	n := int(math.Ceil(gridPerOctave*math.Log2(band[1]/band[0]))) + 1
+	n = max(n, 2)
+	freqs := make([]float64, n)
+	for i := range freqs {
+		freqs[i] = band[0] * math.Pow(band[1]/band[0], float64(i)/float64(n-1))
+	}
+	freqs[n-1] = band[1]
+	return freqs
+}
+
+// lowest returns the lowest value of what size makes of the input impedance, and where it is.
+func (s *System) lowest(r *Response, size func(complex128) float64) (value, at float64, err error) {
+	best := 0
+	for i, z := range r.Zin {
+		if size(z) < size(r.Zin[best]) {
+			best = i
+		}
+	}
+	lo, hi := r.Freqs[max(best-1, 0)], r.Freqs[min(best+1, len(r.Freqs)-1)]
+	at, err = minimum(lo, hi, func(f float64) (float64, error) {
+		in, err := s.at(f)
+		if err != nil {
+			return 0, err
+		}
+		return size(in.zin), nil
+	})
+	if err != nil {
+		return 0, 0, err
+	}
+	in, err := s.at(at)
+	if err != nil {
+		return 0, 0, err
+	}
+	// A minimum at the edge of the band is where the grid put it.
+	if value = size(in.zin); size(r.Zin[best]) <= value {
+		return size(r.Zin[best]), r.Freqs[best], nil
+	}
+	return value, at, nil
+}
+
+// lead is how much louder, in dB, another way must be for the lead to have passed to it: two drivers side by side are not a
+// crossing, however rounding orders them.
+const lead = 0.5
+
+// crossings finds where the lead passes from way to way.
+func (s *System) crossings(r *Response) ([]Crossing, error) {
+	levels := make([][]float64, len(r.Ways))
+	for i, w := range r.Ways {
+		levels[i] = DBs(w.H)
+		if s.Sums() {
+			levels[i] = SPLs(w.P)
+		}
+	}
+	loudest := func(k int) int {
+		best := 0
+		for i := range levels {
+			if levels[i][k] > levels[best][k] {
+				best = i
+			}
+		}
+		return best
+	}
+	var found []Crossing
+	leader := loudest(0)
+	for k := range r.Freqs {
+		next := loudest(k)
+		if !(levels[next][k] > levels[leader][k]+lead) {
+			continue
+		}
+		// The two were last equal somewhere before k.
+		j := k - 1
+		for j > 0 && levels[next][j] > levels[leader][j] {
+			j--
+		}
+		if j >= 0 {
+			c, err := s.crossing(leader, next, r.Freqs[j], r.Freqs[j+1])
+			if err != nil {
+				return nil, err
+			}
+			found = append(found, c)
+		}
+		leader = next
+	}
+	return found, nil
+}
+
+// crossing refines the crossing of ways low and high between two frequencies in Hz.
+func (s *System) crossing(low, high int, from, to float64) (Crossing, error) {
+	at, err := root(from, to, func(f float64) (float64, error) {
+		a, b, _, err := s.pair(low, high, f)
+		return DB(b) - DB(a), err
+	})
+	if err != nil {
+		return Crossing{}, err
+	}
+	a, b, whole, err := s.pair(low, high, at)
+	if err != nil {
+		return Crossing{}, err
+	}
+	return Crossing{
+		Low: s.names[low], High: s.names[high],
+		Frequency: at,
+		LevelDB:   DB(b) - DB(whole),
+		PhaseDeg:  PhaseDeg(b * cmplx.Conj(a)),
+	}, nil
+}
+
+// pair returns what two ways give at f in Hz, and what that counts against: pressures and their sum if there is one, else
+// gains and 1.
+func (s *System) pair(i, j int, f float64) (a, b, whole complex128, err error) {
+	in, err := s.at(f)
+	switch {
+	case err != nil:
+		return 0, 0, 0, err
+	case in.p != nil:
+		return in.p[i], in.p[j], in.sum, nil
+	}
+	return in.h[i], in.h[j], 1, nil
+}
+
+// summarizeSum looks at the sum over the design's tune band, and over r for its ends.
+func (s *System) summarizeSum(r *Response) (*SumSummary, error) {
+	t, err := s.Predict(logGrid(s.tuneBand))
+	if err != nil {
+		return nil, err
+	}
+	sum := &SumSummary{Band: s.tuneBand}
+	spl := SPLs(t.Sum)
+	least, most := math.Inf(1), math.Inf(-1)
+	for _, l := range spl {
+		sum.MeanSPL += l / float64(len(spl))
+		least, most = min(least, l), max(most, l)
+	}
+	sum.RippleDB = most - least
+	for _, l := range spl {
+		sum.RMSDB += (l - sum.MeanSPL) * (l - sum.MeanSPL) / float64(len(spl))
+	}
+	sum.RMSDB = math.Sqrt(sum.RMSDB)
+
+	below := func(f float64) (float64, error) {
+		in, err := s.at(f)
+		if err != nil {
+			return 0, err
+		}
+		return SPL(in.sum) - (sum.MeanSPL - halfPower), nil
+	}
+	spl = SPLs(r.Sum)
+	middle := math.Sqrt(s.tuneBand[0] * s.tuneBand[1])
+	start := 0
+	for start < len(r.Freqs)-1 && r.Freqs[start] < middle {
+		start++
+	}
+	low := func(k int) bool { return spl[k] < sum.MeanSPL-halfPower }
+	for k := start; k > 0; k-- {
+		if low(k-1) && !low(k) {
+			if sum.Low3DB, err = root(r.Freqs[k-1], r.Freqs[k], below); err != nil {
+				return nil, err
+			}
+			break
+		}
+	}
+	for k := start; k < len(spl)-1; k++ {
+		if low(k+1) && !low(k) {
+			if sum.High3DB, err = root(r.Freqs[k], r.Freqs[k+1], below); err != nil {
+				return nil, err
+			}
+			break
+		}
+	}
+	return sum, nil
+}
+
+// summarizeTone looks at a tone network in third-octave steps.
+func (s *System) summarizeTone(band [2]float64) (*ToneSummary, error) {
+	t := &ToneSummary{}
+	// 1 % at either end lets a band that is given by nominal frequencies hold its first and last third-octave.
+	first := int(math.Ceil(10 * math.Log10(band[0]/1.01/1000)))
+	last := int(math.Floor(10 * math.Log10(band[1]*1.01/1000)))
+	for k := first; k <= last; k++ {
+		t.Freqs = append(t.Freqs, 1000*math.Pow(10, float64(k)/10))
+	}
+	r, err := s.Predict(t.Freqs)
+	if err != nil {
+		return nil, err
+	}
+	straight := 0.0 // dB, of the source on the load with nothing between them
+	if s.tone.Load > 0 {
+		straight = 20 * math.Log10(s.tone.Load/(s.tone.Load+s.tone.Source))
+	}
+	t.GainDB = DBs(r.Ways[0].H)
+	for _, g := range t.GainDB {
+		t.InsertionLossDB = append(t.InsertionLossDB, straight-g)
+	}
+	return t, nil
+}

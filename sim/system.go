@@ -1,0 +1,217 @@
+package sim
+
+import (
+	"errors"
+	"fmt"
+	"io"
+	"slices"
+
+	"sixdown/sim/circuit"
+	"sixdown/sim/field"
+	"sixdown/xover"
+)
+
+// A System is a design made ready to answer. Its methods may be called from several goroutines at once.
+type System struct {
+	title    string
+	level    float64 // V rms, open circuit
+	tuneBand [2]float64
+	tone     *xover.Tone // nil for a loudspeaker
+
+	net      circuit.Netlist
+	circuit  *circuit.Circuit
+	outs     []circuit.Output
+	names    []string
+	ways     []way // empty for a tone network
+	branches map[string][]int
+	warnings []string
+}
+
+// A way is where one output goes.
+type way struct {
+	speaker *speaker
+	branch  int // of the driver
+}
+
+// Defaults for a Design that was put together in code and leaves these at 0; Parse gives the same.
+const (
+	defaultLevel    = 2.83 // V
+	defaultDistance = 1    // m
+	defaultSound    = 343  // m/s
+	tuneBandFrom    = 200  // Hz
+	tuneBandTo      = 20e3 // Hz
+)
+
+// New makes a System of a design. open opens the driver tables that the design names, by the name it gives them; it may be nil
+// if there are none. New keeps neither. The error names what in the design cannot be simulated and what to do instead.
+func New(d *xover.Design, open func(name string) (io.ReadCloser, error)) (*System, error) {
+	s := &System{
+		title:    d.Title,
+		level:    orDefault(d.Drive.Level, defaultLevel),
+		tuneBand: d.Tune.Band,
+	}
+	if s.tuneBand == [2]float64{} {
+		s.tuneBand = [2]float64{tuneBandFrom, tuneBandTo}
+	}
+	f := newFlattener(d)
+	var err error
+	switch {
+	case d.Tone != nil && len(d.Ways) > 0:
+		err = errors.New("design: it has both ways and a tone network; make two designs of it")
+	case d.Tone != nil:
+		err = s.addTone(d, f)
+	case len(d.Ways) > 0:
+		err = s.addWays(d, f, open)
+	default:
+		err = errors.New("design: it has neither ways nor a tone network; give one")
+	}
+	if err != nil {
+		return nil, err
+	}
+	if err := f.join(); err != nil {
+		return nil, err
+	}
+	s.net, s.branches = f.net, f.branches
+	if s.circuit, err = circuit.Compile(&s.net, s.outs); err != nil {
+		return nil, err
+	}
+	return s, nil
+}
+
+func orDefault(v, def float64) float64 {
+	if v == 0 {
+		return def
+	}
+	return v
+}
+
+// addTone lays out a tone network: its source behind amp, its load across out.
+func (s *System) addTone(d *xover.Design, f *flattener) error {
+	tone := *d.Tone
+	s.tone = &tone
+	f.net.Source = tone.Source
+	l, err := f.walk("", tone.Network)
+	if err != nil {
+		return err
+	}
+	if _, _, err := f.place(l); err != nil {
+		return err
+	}
+	out, ok := f.nodes["out"]
+	if !ok {
+		// A plain ladder's output is its end.
+		out = l.hot[len(tone.Network)]
+		if out == circuit.Amp {
+			return errors.New("tone network: no node is called out; name the one that the load sees")
+		}
+	}
+	if tone.Load > 0 {
+		f.add("", circuit.Branch{Name: "load", Kind: circuit.Resistor, From: out, To: circuit.Return, Value: tone.Load})
+	}
+	s.outs = []circuit.Output{{From: out, To: circuit.Return}}
+	s.names = []string{"out"}
+	return nil
+}
+
+// addWays lays out the ways of a loudspeaker, a driver at the end of each.
+func (s *System) addWays(d *xover.Design, f *flattener, open opener) error {
+	f.net.Source = d.Drive.Source
+	ear := field.Listener{
+		Distance:   orDefault(d.Listen.Distance, defaultDistance),
+		Height:     d.Listen.Height,
+		SoundSpeed: orDefault(d.Air.SoundSpeed, defaultSound),
+	}
+	if d.Baffle != nil {
+		s.warnings = append(s.warnings, "baffle: the diffraction of cabinet edges is not in this version; the answers leave it out")
+	}
+	speakers := map[string]*speaker{}
+	for i := range d.Drivers {
+		name := d.Drivers[i].Name
+		if !slices.ContainsFunc(d.Ways, func(w xover.Way) bool { return w.Driver == name }) {
+			continue // Parse warns of it
+		}
+		sp, err := newSpeaker(&d.Drivers[i], ear, open)
+		if err != nil {
+			return err
+		}
+		speakers[name] = sp
+		s.warnings = append(s.warnings, sp.notes...)
+	}
+	ladders := make([]*ladder, len(d.Ways))
+	for i, w := range d.Ways {
+		var err error
+		if ladders[i], err = f.walk(w.Name, w.Network); err != nil {
+			return err
+		}
+	}
+	for i, w := range d.Ways {
+		sp := speakers[w.Driver]
+		if sp == nil {
+			return fmt.Errorf("way %q: driver %q is not defined; define it under [driver.%s]", w.Name, w.Driver, w.Driver)
+		}
+		from, to, err := f.place(ladders[i])
+		if err != nil {
+			return err
+		}
+		b := f.add("", circuit.Branch{Name: sp.name, Kind: circuit.Port, From: from, To: to, Port: port{sp.load}})
+		s.ways = append(s.ways, way{speaker: sp, branch: b})
+		s.names = append(s.names, w.Name)
+		if w.Reversed {
+			from, to = to, from
+		}
+		s.outs = append(s.outs, circuit.Output{From: from, To: to})
+	}
+	s.warnSilent()
+	return nil
+}
+
+// warnSilent says why there is no sum, if some drivers have an acoustic output and others have none.
+func (s *System) warnSilent() {
+	var silent, sounding []string
+	for _, w := range s.ways {
+		if w.speaker.radiator == nil {
+			silent = append(silent, w.speaker.name)
+		} else {
+			sounding = append(sounding, w.speaker.name)
+		}
+	}
+	if len(silent) > 0 && len(sounding) > 0 {
+		s.warnings = append(s.warnings, fmt.Sprintf("driver %q: it has neither response nor sensitivity, so no sum is given; give one of them", silent[0]))
+	}
+}
+
+// Title returns the design's title.
+func (s *System) Title() string { return s.title }
+
+// Level returns the amplifier's open-circuit voltage in V rms that sound pressures are for.
+func (s *System) Level() float64 { return s.level }
+
+// Warnings returns what the builder should know about the answers, a sentence each: rows of tables that were
+// passed over, what the design asks that is left out. What Predict had to invent outside a table is in its Response.
+func (s *System) Warnings() []string { return slices.Clone(s.warnings) }
+
+// Netlist returns a copy of the circuit, its one-ports shared.
+func (s *System) Netlist() *circuit.Netlist {
+	n := s.net
+	n.NodeNames = slices.Clone(n.NodeNames)
+	n.Branches = slices.Clone(n.Branches)
+	n.Couplings = slices.Clone(n.Couplings)
+	return &n
+}
+
+// Circuit returns the compiled circuit, whose outputs are Outputs.
+func (s *System) Circuit() *circuit.Circuit { return s.circuit }
+
+// Outputs returns the voltages that Names names: one per way across its driver's terminals, from minus to plus where the way
+// is wired in reverse, so that a gain has the wiring polarity in it; for a tone network its one output.
+func (s *System) Outputs() []circuit.Output { return slices.Clone(s.outs) }
+
+// Names returns the names of the ways in the order of the design; "out" for a tone network.
+func (s *System) Names() []string { return slices.Clone(s.names) }
+
+// PartBranches returns the indices of a part's branches in the netlist: none if it is not used, two for a
+// potentiometer with a wiper, the one up to the wiper first.
+func (s *System) PartBranches(part string) []int { return slices.Clone(s.branches[part]) }
+
+// DriverBranch returns the index of the branch of way's driver; way indexes Names, and a tone network has none.
+func (s *System) DriverBranch(way int) int { return s.ways[way].branch }
