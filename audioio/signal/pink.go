@@ -147,6 +147,10 @@ func (p *Pink) filter(out []float64) {
 		p.state[k], p.state[k+1], p.state[k+2], p.state[k+3] = s0, s1, s2, s3
 	}
 	for i, y := range out {
-		out[i] = max(min(y, p.peak), -p.peak)
+		if y > p.peak {
+			out[i] = p.peak
+		} else if y < -p.peak {
+			out[i] = -p.peak
+		}
 	}
 }

@@ -66,7 +66,7 @@ const maxTones = 100_000
 
 // NewSchedule plans a tone near each of the frequencies, in their order.
 //
-// Each frequency is moved by less than a part in MeasureSamples, so that a
+// Each frequency is lowered by one or a few parts in MeasureSamples, so that a
 // whole number of cycles fits a whole number of samples (coherent sampling): the
 // measurement then needs no window and a sine fit's three terms are orthogonal.
 // The two numbers are chosen with no common divisor, so that no two samples of the
