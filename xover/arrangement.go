@@ -87,7 +87,7 @@ func (c *cursor) placed(s *Step) (ok bool) {
 	}
 	part := c.design.Part(s.Expr.Part)
 	if part != nil && part.Kind != Potentiometer && !c.faulty[part.Name] {
-		c.failAt(first, fmt.Sprintf("%s is a %s, which has no wiper", part.Name, part.Kind), "give it a taper, or leave the wiper out")
+		c.failAt(first, fmt.Sprintf("%s is %s, which has no wiper", part.Name, part.Kind.withArticle()), "give it a taper, or leave the wiper out")
 		return false
 	}
 	return true
@@ -182,7 +182,7 @@ func (c *cursor) couple(s *Step) bool {
 			return false
 		}
 		if part := c.design.Part(t.text); part.Kind != Inductor && !c.faulty[t.text] {
-			c.failAt(t, fmt.Sprintf("%s is a %s, and only coils couple", t.text, part.Kind), `write "couple L1 L2 0.02"`)
+			c.failAt(t, fmt.Sprintf("%s is %s, and only coils couple", t.text, part.Kind.withArticle()), `write "couple L1 L2 0.02"`)
 			return false
 		}
 		*dst = t.text

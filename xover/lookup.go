@@ -114,6 +114,14 @@ func (k Kind) String() string {
 	return "unknown kind"
 }
 
+// withArticle returns the kind for a sentence, "an inductor".
+func (k Kind) withArticle() string {
+	if k == Inductor {
+		return "an " + k.String()
+	}
+	return "a " + k.String()
+}
+
 func (d *Design) partNames() []string {
 	names := make([]string, len(d.Parts))
 	for i := range d.Parts {

@@ -15,7 +15,7 @@ func nearest(name string, known []string) string {
 		}
 	}
 	a := []rune(name)
-	if len(a) > MaxNameRunes {
+	if len(a) < 2 || len(a) > MaxNameRunes { // any letter is one slip from any other
 		return ""
 	}
 	best, least := "", max(1, len(a)/3)+1

@@ -46,6 +46,7 @@ type parser struct {
 
 	partAt map[string]int  // index in design.Parts
 	faulty map[string]bool // parts whose definition has an error: what they are is not known
+	lost   map[string]bool // tables of which not all could be read: that a name is not there means nothing
 
 	networkFault bool // a step could not be read: the nodes are not checked
 }
@@ -60,6 +61,7 @@ func parseFile(name string, src []byte) (*file, error) {
 		file:        &file{parts: map[string]span{}, controls: map[string]span{}},
 		partAt:      map[string]int{},
 		faulty:      map[string]bool{},
+		lost:        map[string]bool{},
 	}
 	text := bytes.TrimPrefix(src, byteOrderMark)
 	p.offset = len(src) - len(text)
@@ -127,36 +129,39 @@ func firstInvalid(src []byte) int {
 func (p *parser) top(root *table) {
 	r := p.read(root, "the file")
 	r.text("title", &p.design.Title)
-	r.inTable("drive", p.drive)
-	r.inTable("listen", p.listen)
-	r.inTable("air", p.air)
-	r.inTable("baffle", p.baffle)
-	r.inTable("parts", p.parts)
+	r.inTable("drive", "", p.drive)
+	r.inTable("listen", "", p.listen)
+	r.inTable("air", "", p.air)
+	r.inTable("baffle", "", p.baffle)
+	r.inTable("parts", "", p.parts)
 	r.eachNamed("driver", MaxDrivers, p.driver)
 	r.eachOf("way", MaxWays, p.way)
-	r.inTable("tune", p.tune)
-	r.inTable("spread", p.spread)
-	r.inTable("tone", p.tone)
+	r.inTable("tune", "", p.tune)
+	r.inTable("spread", "", p.spread)
+	r.inTable("tone", "", p.tone)
 	r.eachNamed("control", MaxControls, p.control)
 	r.done()
 
 	switch {
 	case len(p.design.Ways) > 0 && p.design.Tone != nil:
 		p.fail(p.design.Tone.Pos, "the file has both [[way]] and [tone]", "keep one: a design is either a loudspeaker or a tone network")
-	case root.index["way"] == nil && root.index["tone"] == nil:
+	case root.index["way"] == nil && root.index["tone"] == nil && len(p.errors) == 0:
 		p.fail(Position{}, "the file has neither a [[way]] nor a [tone]", "add a [[way]] for each driver, or a [tone] network")
 	}
 }
 
-// inTable reads a table by its reader, if it is there.
-func (r *tableReader) inTable(key string, read func(*tableReader)) {
+// inTable reads a table by its reader, if it is there. For a table that is written in braces example is one;
+// for one with a header it is "".
+func (r *tableReader) inTable(key, example string, read func(*tableReader)) {
 	e := r.take(key)
 	if e == nil {
 		return
 	}
 	if e.value.kind != tableNode {
 		mend := fmt.Sprintf("write [%s] on a line of its own and the keys below it", key)
-		if e.value.kind == listNode {
+		if example != "" {
+			mend = "write it like " + example
+		} else if e.value.kind == listNode {
 			mend = fmt.Sprintf("write [%s] once, with single brackets", key)
 		}
 		r.fail(r.pos(e.at), fmt.Sprintf("%s is %s", key, e.value.kind), mend)
@@ -175,6 +180,7 @@ func (r *tableReader) eachNamed(key string, most int, read func(name string, t *
 	}
 	mend := fmt.Sprintf("write a table for each, [%s.NAME]", key)
 	if e.value.kind != tableNode {
+		r.lost[key] = true
 		r.fail(r.pos(e.at), fmt.Sprintf("%s is %s", key, e.value.kind), mend)
 		return
 	}
@@ -186,6 +192,7 @@ func (r *tableReader) eachNamed(key string, most int, read func(name string, t *
 			r.fail(r.pos(named.at), fmt.Sprintf("there are more than %d of [%s.NAME]", most, key), "leave some out")
 			return
 		case named.value.kind != tableNode:
+			r.lost[key] = true
 			r.fail(r.pos(named.at), fmt.Sprintf("%s.%s is %s", key, shortened(named.name), named.value.kind), mend)
 			continue
 		}
@@ -278,7 +285,7 @@ func (p *parser) tune(r *tableReader) {
 
 func (p *parser) spread(r *tableReader) {
 	s := &p.design.Spread
-	r.inTable("tol", func(r *tableReader) {
+	r.inTable("tol", `tol = { R = "5 %", L = "5 %", C = "5 %" }`, func(r *tableReader) {
 		r.label = "[spread] tol"
 		r.quantity("R", quantity.Percent, notNegative, &s.TolR)
 		r.quantity("L", quantity.Percent, notNegative, &s.TolL)

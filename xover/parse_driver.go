@@ -35,10 +35,10 @@ func (p *parser) driver(name string, r *tableReader) {
 	switch {
 	case !hasImpedance && !hasRe:
 		r.missing("impedance and no re", `give impedance = "FILE.zma" or impedance = "8 ohm", or the data sheet's re`)
-	case d.Resistance > 0 && (hasRe || hasLe || hasLoss || hasFs || hasBox):
-		p.fail(d.Pos, r.label+" is a plain resistance and has data-sheet keys too", "take impedance out, or re, le, le_loss, fs and box")
-	case !hasRe && (hasLe || hasLoss || hasFs):
-		r.missing("re", "le, le_loss and fs belong to the data-sheet model; give re too")
+	case d.Resistance > 0 && (hasRe || hasLe || hasLoss):
+		p.fail(d.Pos, r.label+" is a plain resistance and has a voice coil too", "take impedance out, or re, le and le_loss")
+	case !hasRe && (hasLe || hasLoss):
+		r.missing("re", "le and le_loss lie in series with it; give it too")
 	}
 	switch {
 	case hasFs && !(hasQms && hasQes):
@@ -68,6 +68,10 @@ func (p *parser) driver(name string, r *tableReader) {
 
 // driverImpedance reads `impedance`, which is a resistance or the name of a table.
 func (p *parser) driverImpedance(d *Driver, r *tableReader) (has bool) {
+	if e := r.take("impedance"); e != nil && e.value.kind == numberNode {
+		r.wrongType("impedance", e.value, fmt.Sprintf("write \"%s ohm\", or the name of a file in quotes", shortened(e.value.text)))
+		return true
+	}
 	var text string
 	if has = r.text("impedance", &text); text == "" {
 		return has
@@ -95,7 +99,7 @@ func isFileName(text string) bool {
 
 // driverLoss reads `le_loss = { r2, l2 }`.
 func (p *parser) driverLoss(d *Driver, r *tableReader) bool {
-	r.inTable("le_loss", func(loss *tableReader) {
+	r.inTable("le_loss", `le_loss = { r2 = "3 ohm", l2 = "0.5 mH" }`, func(loss *tableReader) {
 		loss.label = r.label + " le_loss"
 		hasR2 := loss.quantity("r2", quantity.Ohm, positive, &d.LossR2)
 		hasL2 := loss.quantity("l2", quantity.Henry, positive, &d.LossL2)
@@ -108,7 +112,7 @@ func (p *parser) driverLoss(d *Driver, r *tableReader) bool {
 
 // driverBox reads `box = { kind, volume, tuning, ql }`.
 func (p *parser) driverBox(d *Driver, r *tableReader) bool {
-	r.inTable("box", func(box *tableReader) {
+	r.inTable("box", `box = { kind = "closed", volume = "12 l" }`, func(box *tableReader) {
 		box.label = r.label + " box"
 		kind, ok := box.word("kind", "open", "closed", "vented")
 		if box.table.index["kind"] == nil {

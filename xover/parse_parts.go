@@ -92,7 +92,7 @@ func (p *parser) partValue(part *Part, n *node) {
 		return
 	}
 	if looksLike := kindByName(part.Name); shortName(part.Name) && looksLike.Unit() != unit {
-		p.warn(p.pos(n.at), fmt.Sprintf("%s is a %s by its unit, though it is called like a %s", part.Name, part.Kind, looksLike),
+		p.warn(p.pos(n.at), fmt.Sprintf("%s is %s by its unit, though it is called like %s", part.Name, part.Kind.withArticle(), looksLike.withArticle()),
 			"check the unit, or give it another name")
 	}
 	part.Value = v
@@ -141,7 +141,7 @@ func (p *parser) partTable(part *Part, r *tableReader) {
 			return false
 		}
 		if part.Same == "" && part.Value > 0 && !slices.Contains(kinds, part.Kind) {
-			p.fail(p.pos(e.at), fmt.Sprintf("%s is a %s, which has no %s", part.Name, part.Kind, key), "take it out")
+			p.fail(p.pos(e.at), fmt.Sprintf("%s is %s, which has no %s", part.Name, part.Kind.withArticle(), key), "take it out")
 			return false
 		}
 		return true
@@ -214,11 +214,11 @@ func (p *parser) follow() {
 		case leader.Same != "":
 			p.fail(part.Pos, fmt.Sprintf("%s follows %s, which follows %s", part.Name, leader.Name, shortened(leader.Same)), fmt.Sprintf("write same = %q", shortened(leader.Same)))
 		case part.DCR != 0 && leader.Kind != Inductor:
-			p.fail(part.Pos, fmt.Sprintf("%s follows %s, a %s, which has no dcr", part.Name, leader.Name, leader.Kind), "take it out")
+			p.fail(part.Pos, fmt.Sprintf("%s follows %s, %s, which has no dcr", part.Name, leader.Name, leader.Kind.withArticle()), "take it out")
 		case part.ESR != 0 && leader.Kind != Capacitor:
-			p.fail(part.Pos, fmt.Sprintf("%s follows %s, a %s, which has no esr", part.Name, leader.Name, leader.Kind), "take it out")
+			p.fail(part.Pos, fmt.Sprintf("%s follows %s, %s, which has no esr", part.Name, leader.Name, leader.Kind.withArticle()), "take it out")
 		case (part.Mid != 0 && part.Kind != Potentiometer || part.Taper != Linear) && leader.Kind != Potentiometer:
-			p.fail(part.Pos, fmt.Sprintf("%s follows %s, a %s, which has no taper", part.Name, leader.Name, leader.Kind), "take it out")
+			p.fail(part.Pos, fmt.Sprintf("%s follows %s, %s, which has no taper", part.Name, leader.Name, leader.Kind.withArticle()), "take it out")
 		default:
 			p.faulty[part.Name] = p.faulty[leader.Name]
 			part.Kind, part.Value = leader.Kind, leader.Value

@@ -90,8 +90,8 @@ func (c *cursor) targetOptions(t *Target) bool {
 			if !c.targetQuantity(quantity.Decibel, &t.RippleDB, "ripple") {
 				return false
 			}
-			if t.RippleDB > 12 {
-				c.failAt(option, fmt.Sprintf("the ripple is %s", quantity.Format(t.RippleDB, quantity.Decibel)), "write a ripple above 0 and up to 12 dB")
+			if !(t.RippleDB >= 0.001 && t.RippleDB <= 10) { // what alignments are made for
+				c.failAt(option, fmt.Sprintf("the ripple is %s", quantity.Format(t.RippleDB, quantity.Decibel)), "write a ripple from 0.001 to 10 dB")
 				return false
 			}
 		case "reference":
@@ -129,6 +129,10 @@ func (c *cursor) targetOptions(t *Target) bool {
 // targetQuantity reads a positive quantity, which ends before the next word of a target.
 func (c *cursor) targetQuantity(unit quantity.Unit, dst *float64, what string) bool {
 	first := c.peek()
+	if first.text == "" {
+		c.failAt(first, fmt.Sprintf("the %s is missing before the end", what), fmt.Sprintf("write %s such as %q", unit.Noun(), unit.Example()))
+		return false
+	}
 	end := first.at
 	for t := c.peek(); t.text != "" && !slices.Contains([]string{"ripple", "reference", "at"}, t.text); t = c.peek() {
 		c.take()

@@ -45,7 +45,7 @@ func (p *parser) wayName(w *Way, r *tableReader) {
 
 func (p *parser) wayDriver(w *Way, r *tableReader) {
 	at := p.pos(r.table.index["driver"].value.at)
-	if p.design.Driver(w.Driver) == nil {
+	if p.design.Driver(w.Driver) == nil && !p.lost["driver"] {
 		var names []string
 		for _, d := range p.design.Drivers {
 			names = append(names, d.Name)
@@ -98,7 +98,7 @@ func (p *parser) controlPart(c *Control, r *tableReader) {
 		p.fail(at, fmt.Sprintf("%s turns %q, which [parts] does not define", r.label, shortened(c.Part)),
 			didYouMean(c.Part, p.design.partNames(), p.design.partList()))
 	case part.Kind != Potentiometer && !p.faulty[c.Part]:
-		p.fail(at, fmt.Sprintf("%s turns %s, which is a %s", r.label, c.Part, part.Kind),
+		p.fail(at, fmt.Sprintf("%s turns %s, which is %s", r.label, c.Part, part.Kind.withArticle()),
 			`name a potentiometer: a part that has a taper, or a name with P and a value in ohm`)
 	}
 	for _, other := range p.design.Controls {

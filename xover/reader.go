@@ -3,6 +3,7 @@ package xover
 import (
 	"fmt"
 	"math"
+	"slices"
 	"unicode"
 	"unicode/utf8"
 
@@ -23,7 +24,9 @@ func (p *parser) read(t *table, label string) *tableReader {
 
 // take returns the entry of a key, nil if the table has none, and counts the key as known.
 func (r *tableReader) take(key string) *entry {
-	r.known = append(r.known, key)
+	if !slices.Contains(r.known, key) {
+		r.known = append(r.known, key)
+	}
 	return r.table.index[key]
 }
 
@@ -33,20 +36,11 @@ func (r *tableReader) done() {
 		if r.full() {
 			return
 		}
-		if !contains(r.known, e.name) {
+		if !slices.Contains(r.known, e.name) {
 			r.fail(r.pos(e.at), fmt.Sprintf("%s has no key %q", r.label, shortened(e.name)),
 				didYouMean(e.name, r.known, "its keys are "+listed(r.known)))
 		}
 	}
-}
-
-func contains(names []string, name string) bool {
-	for _, n := range names {
-		if n == name {
-			return true
-		}
-	}
-	return false
 }
 
 // missing reports a key that must be there.
@@ -79,7 +73,7 @@ func (r *tableReader) text(key string, dst *string) bool {
 func (p *parser) checkText(key string, n *node) bool {
 	switch {
 	case n.text == "":
-		p.fail(p.pos(n.at), key+" is empty", "write it, or leave the key out")
+		p.fail(p.pos(n.at), key+" is empty", "write it, or leave it out")
 	case len(n.text) > MaxTextBytes:
 		p.fail(p.pos(n.at), fmt.Sprintf("%s is longer than %d bytes", key, MaxTextBytes), "shorten it")
 	default:
@@ -100,7 +94,7 @@ func (r *tableReader) word(key string, choices ...string) (word string, ok bool)
 	if e == nil {
 		return "", false
 	}
-	if e.value.kind == textNode && contains(choices, e.value.text) {
+	if e.value.kind == textNode && slices.Contains(choices, e.value.text) {
 		return e.value.text, true
 	}
 	either := "write one of " + listed(quoted(choices))
@@ -227,7 +221,7 @@ func valueFault(v float64, unit quantity.Unit, rule sign) (what, mend string) {
 		return "", ""
 	}
 	if least, most := plausible(unit); math.Abs(v) < least || math.Abs(v) > most {
-		return text + " is beyond what can be", fmt.Sprintf("give %s between %s and %s; check the prefix",
+		return text + " is beyond what can be", fmt.Sprintf("check the prefix; %s is between %s and %s",
 			unit.Noun(), quantity.Format(least, unit), quantity.Format(most, unit))
 	}
 	return "", ""
@@ -258,7 +252,7 @@ func plausible(unit quantity.Unit) (least, most float64) {
 	case quantity.Decibel:
 		return 0, 300
 	case quantity.Percent:
-		return 1e-9, 1
+		return 0, 1
 	case quantity.MetrePerSecond:
 		return 1, 1e4
 	case quantity.KilogramPerCubicMetre:

@@ -140,7 +140,7 @@ func checkDocument(d *diagnostics, where *locator, src []byte) {
 			pos = where.position(where.lines[line-1] + column - 1)
 		}
 	}
-	d.fail(pos, "this is not TOML: "+message, syntaxMend)
+	d.fail(pos, "this is not TOML: "+message, "write each table and each key in one place only")
 }
 
 const syntaxMend = "check the line: a string, and every value with a unit, stands in double quotes"

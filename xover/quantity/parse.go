@@ -14,18 +14,24 @@ import (
 // The number has a decimal point, may have a sign and a power of ten ("1e-6 F"), and must be finite.
 // The error, always an *Error, says what to write instead.
 func Parse(text string) (float64, Unit, error) {
+	return parse(text, `write a number with its unit, such as "4.7 uF"`, `use ohm, H, F, Hz, m, m2, m3, l, s, V, W, dB, %, m/s or kg/m3, with a prefix where it fits, such as "4.7 uF"`)
+}
+
+// parse does the work of Parse; its errors say form to mend a text that is no number, and units to mend one
+// whose unit is not known.
+func parse(text, form, units string) (float64, Unit, error) {
 	trimmed := strings.TrimSpace(text)
 	switch {
 	case trimmed == "":
-		return 0, None, &Error{"the text is empty", `write a number with its unit, such as "4.7 uF"`}
+		return 0, None, &Error{"the text is empty", form}
 	case len(text) > maxText:
-		return 0, None, &Error{fmt.Sprintf("the text is %d bytes long", len(text)), `write a number with its unit, such as "4.7 uF"`}
+		return 0, None, &Error{fmt.Sprintf("the text is %d bytes long", len(text)), form}
 	case !utf8.ValidString(text):
-		return 0, None, &Error{"the text is not UTF-8", `write a number with its unit, such as "4.7 uF"`}
+		return 0, None, &Error{"the text is not UTF-8", form}
 	}
 	number, rest := cutNumber(trimmed)
 	if number == "" {
-		return 0, None, &Error{quote(text) + " does not begin with a number", `write a number with its unit, such as "4.7 uF"`}
+		return 0, None, &Error{quote(text) + " does not begin with a number", form}
 	}
 	if strings.HasPrefix(rest, ",") {
 		return 0, None, &Error{quote(text) + " has a comma in the number",
@@ -41,7 +47,7 @@ func Parse(text string) (float64, Unit, error) {
 			return 0, None, &Error{fmt.Sprintf("%s has the prefix %s and no unit", quote(text), spelling),
 				fmt.Sprintf("write the unit too, such as %q", example)}
 		}
-		mend := `use ohm, H, F, Hz, m, m2, m3, l, s, V, W, dB, %, m/s or kg/m3, with a prefix where it fits, such as "4.7 uF"`
+		mend := units
 		if near := nearestSpelling(spelling); near != "" {
 			mend = fmt.Sprintf("write %q", number+" "+near)
 		}
@@ -57,15 +63,17 @@ func Parse(text string) (float64, Unit, error) {
 // ParseAs reads a text as Parse does and insists on a unit: "8 ohm" for Ohm. For None it takes a bare number.
 // The error says what was found, and gives an example of what would be right.
 func ParseAs(text string, want Unit) (float64, error) {
-	v, unit, err := Parse(text)
+	mend := fmt.Sprintf("write %s such as %q", want.Noun(), want.Example())
+	v, unit, err := parse(text, mend, mend)
 	if err != nil {
 		return 0, err
 	}
 	if unit == want {
 		return v, nil
 	}
-	mend := fmt.Sprintf("write %s such as %q", want.Noun(), want.Example())
 	switch {
+	case unit == None && (want == Decibel || want == Percent): // which have no prefix to choose
+		return 0, &Error{quote(text) + " has no unit", fmt.Sprintf("write %q", strings.TrimSpace(text)+" "+want.Example()[strings.Index(want.Example(), " ")+1:])}
 	case unit == None:
 		return 0, &Error{quote(text) + " has no unit", mend}
 	case want == None:
