@@ -153,13 +153,9 @@ func (sp *speaker) setRadiator(d *xover.Driver, sheet driver.DataSheet, l field.
 		return nil
 	case sheet.Fs == 0:
 		sp.radiator = driver.Flat(d.Sensitivity)
+	case sheet.Re == 0:
+		return fmt.Errorf("driver %q: fs is given without re; give re too", d.Name)
 	default:
-		if sheet.Re == 0 {
-			if sheet.Le > 0 || sheet.LossR2 > 0 {
-				return fmt.Errorf("driver %q: le without re does not say how the output falls with it; give re", d.Name)
-			}
-			sheet.Re = 1 // without inductance the output does not depend on it
-		}
 		sp.radiator = driver.Sheet{DataSheet: sheet, Sensitivity: d.Sensitivity}
 	}
 	return nil

@@ -179,27 +179,19 @@ func lastPart(e *xover.Expr) string {
 
 // part returns the part called name, its value that of the part it follows.
 func (f *flattener) part(where, name string) (xover.Part, error) {
-	p, ok := findPart(f.design, name)
-	if !ok {
-		return p, fmt.Errorf("%s: part %q is not defined; define it under [parts]", where, name)
+	p := f.design.Part(name)
+	if p == nil {
+		return xover.Part{}, fmt.Errorf("%s: part %q is not defined; define it under [parts]", where, name)
 	}
-	for hops, same := 0, p.Same; same != ""; hops++ {
-		q, ok := findPart(f.design, same)
-		if !ok || hops > len(f.design.Parts) {
-			return p, fmt.Errorf("part %q: it follows %q, which leads nowhere; name a part that has a value", name, p.Same)
+	part := *p
+	for hops := 0; p.Same != ""; hops++ {
+		p = f.design.Part(p.Same)
+		if p == nil || hops > len(f.design.Parts) {
+			return part, fmt.Errorf("part %q: it follows %q, which leads nowhere; name a part that has a value", name, part.Same)
 		}
-		p.Value, same = q.Value, q.Same
+		part.Value = p.Value
 	}
-	return p, nil
-}
-
-func findPart(d *xover.Design, name string) (xover.Part, bool) {
-	for i := range d.Parts {
-		if d.Parts[i].Name == name {
-			return d.Parts[i], true
-		}
-	}
-	return xover.Part{}, false
+	return part, nil
 }
 
 // leaf lays one part from a to b. A potentiometer with two terminals is a variable resistance.
@@ -218,7 +210,7 @@ func (f *flattener) leaf(l *ladder, name string, a, b int) error {
 		br.Kind, br.Loss = circuit.Capacitor, p.ESR
 	case xover.Potentiometer:
 		br.Kind = circuit.Resistor
-		br.Value *= p.Fraction(f.turned(name))
+		br.Value *= p.Fraction(f.design.Turn(name))
 	default:
 		return fmt.Errorf("part %q: unknown kind %d; use those of package xover", name, p.Kind)
 	}
@@ -239,20 +231,10 @@ func (f *flattener) wiper(l *ladder, e *xover.Expr, a, b, w int) error {
 	if p.Kind != xover.Potentiometer {
 		return fmt.Errorf("%s: %s has a wiper but is no potentiometer; give it a taper", l.where(), e.Part)
 	}
-	x := p.Fraction(f.turned(p.Name))
+	x := p.Fraction(f.design.Turn(p.Name))
 	f.add(p.Name, circuit.Branch{Name: p.Name + " up to its wiper", Kind: circuit.Resistor, From: a, To: w, Value: p.Value * x})
 	f.add(p.Name, circuit.Branch{Name: p.Name + " beyond its wiper", Kind: circuit.Resistor, From: w, To: b, Value: p.Value * (1 - x)})
 	return nil
-}
-
-// turned returns the setting of a potentiometer, half way if no control names it.
-func (f *flattener) turned(part string) float64 {
-	for _, c := range f.design.Controls {
-		if c.Part == part {
-			return c.At
-		}
-	}
-	return 0.5
 }
 
 // add appends a branch and returns its index. part is "" for what is no part of the design.

@@ -99,11 +99,7 @@ func (s *System) addTone(d *xover.Design, f *flattener) error {
 	}
 	out, ok := f.nodes["out"]
 	if !ok {
-		// A plain ladder's output is its end.
-		out = l.hot[len(tone.Network)]
-		if out == circuit.Amp {
-			return errors.New("tone network: no node is called out; name the one that the load sees")
-		}
+		return errors.New(`tone network: no node is called out; add "mark out" where the load is connected`)
 	}
 	if tone.Load > 0 {
 		f.add("", circuit.Branch{Name: "load", Kind: circuit.Resistor, From: out, To: circuit.Return, Value: tone.Load})
