@@ -15,6 +15,7 @@ type Summary struct {
 	MinEPDR        float64 // Ω, the lowest EPDR in Band
 	MinEPDRAt      float64 // Hz
 
+	Warnings  []string     // what these answers invent, a sentence each
 	Crossings []Crossing   // where the lead passes from one way to another, rising
 	Sum       *SumSummary  // nil unless every way has an acoustic output
 	Tone      *ToneSummary // nil for a loudspeaker
@@ -65,7 +66,7 @@ func (s *System) Summary(band [2]float64) (*Summary, error) {
 	if err != nil {
 		return nil, err
 	}
-	sum := &Summary{Band: band}
+	sum := &Summary{Band: band, Warnings: r.Warnings}
 	sum.MinImpedance, sum.MinImpedanceAt, err = s.lowest(r, func(z complex128) float64 { return cmplx.Abs(z) })
 	if err != nil {
 		return nil, err
@@ -165,7 +166,8 @@ func (s *System) crossings(r *Response) ([]Crossing, error) {
 		for j > 0 && levels[next][j] > levels[leader][j] {
 			j--
 		}
-		if j >= 0 {
+		// If they were not, the lead was next's from the start, by less than counts.
+		if j >= 0 && !(levels[next][j] > levels[leader][j]) {
 			c, err := s.crossing(leader, next, r.Freqs[j], r.Freqs[j+1])
 			if err != nil {
 				return nil, err

@@ -144,8 +144,7 @@ func TestSumSummary(t *testing.T) {
 	}
 }
 
-// A band-pass of one way between 100 Hz and 10 kHz, second-order Butterworth at either end, is 3.01 dB down there. Both ladders are sized for
-// 8 Ω; the two meet through a loaded network, so each is a factor of a hundred off and shifts the other by some 1e-4.
+// The ends of a second-order Butterworth high-pass and of a first-order low-pass are their corners, 3.01 dB down.
 func TestEndsOfTheSum(t *testing.T) {
 	drv := xover.Driver{Name: "woofer", Re: 8, Fs: 100, Qms: 2 * math.Sqrt2 / 2, Qes: 2 * math.Sqrt2 / 2, Sensitivity: 90, HasSensitivity: true}
 	d := oneWay(drv) // Qts = √2/2: the driver itself is the high-pass, exactly
@@ -163,6 +162,28 @@ func TestEndsOfTheSum(t *testing.T) {
 	d.Tune.Band = [2]float64{20, 21}
 	s = mustSummary(t, d, [2]float64{})
 	near(t, "high end", s.Sum.High3DB, 5000, 1) // the mean lies (21/5000)² below the asymptote: 4e-5
+}
+
+// Two drivers as loud as each other, but for less than the lead that counts, do not cross, whichever is ahead at the start.
+func TestNearlyEqualWaysDoNotCross(t *testing.T) {
+	d := &xover.Design{
+		Parts:   []xover.Part{capacitor("C1", 1e-6, 0)},
+		Drivers: []xover.Driver{plainDriver("a", 8, 90), plainDriver("b", 8, 89.9)},
+		Ways: []xover.Way{
+			{Name: "a", Driver: "a", Network: []xover.Step{between(leaf("C1"), "amp", "0")}},
+			{Name: "b", Driver: "b"},
+		},
+	}
+	if s := mustSummary(t, d, [2]float64{}); len(s.Crossings) != 0 {
+		t.Errorf("got crossings %+v, want none", s.Crossings)
+	}
+	// a falls by a little all along (R and L far below its corner), so that b leads by 0.5 dB only after it has led by less from the start.
+	d.Parts = []xover.Part{coil("C1", 8/(2*math.Pi*20e3), 0)}
+	d.Drivers[1].Sensitivity = 90.1
+	d.Ways[0].Network = []xover.Step{series(leaf("C1"))}
+	if s := mustSummary(t, d, [2]float64{}); len(s.Crossings) != 0 {
+		t.Errorf("got crossings %+v, want none", s.Crossings)
+	}
 }
 
 func TestSummaryChecksItsBand(t *testing.T) {
