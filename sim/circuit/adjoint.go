@@ -17,6 +17,23 @@ type adjoint struct {
 	minus    int
 }
 
+// pivots sees to it that 1/Σ is at hand wherever a current put in between two nodes passes.
+func (p *assembler) pivots(from, to int) {
+	passes := map[int]bool{from: true, to: true}
+	for i := range p.steps {
+		e := &p.steps[i]
+		if !passes[e.node] {
+			continue
+		}
+		if e.inv == noSlot {
+			e.inv = p.invert(e.all)
+		}
+		for _, m := range e.near {
+			passes[m] = true
+		}
+	}
+}
+
 // adjoint compiles the adjoint of the voltage from – to. ideal tells that the source has no resistance, so
 // that κ is zero.
 func (p *program) adjoint(from, to int, ideal bool) adjoint {

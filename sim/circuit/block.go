@@ -10,8 +10,10 @@ type vec [lanes]float64
 type cvec struct{ re, im vec }
 
 // The kernels below are the whole inner loop of a sweep. They take pointers to arrays of fixed length, so
-// that no index is checked. A reciprocal is the conjugate over the squared modulus: the values here,
-// 1e-15 S to 1e15 S, stay far from overflow when squared.
+// that no index is checked. A reciprocal is the conjugate over the squared modulus, and two of them share
+// one division, 1/a = b·(1/ab) and 1/b = a·(1/ab), because a division costs as much as all the rest: the
+// admittances here, 1e-15 S to 1e15 S, stay far from overflow in a product of two squares. Where one of a
+// pair has no reciprocal both turn to NaN; finish sees it and mends both.
 
 // tankTo stores g + j(ωc - Γ/ω); w is ω and u is 1/ω.
 func tankTo(y *cvec, w, u *vec, g, c, gamma float64) {
@@ -32,11 +34,14 @@ func tankAddTo(y, a *cvec, w, u *vec, g, c, gamma float64) {
 // chainTo stores 1/(r + j(ωl - s/ω)).
 func chainTo(y *cvec, w, u *vec, r, l, s float64) {
 	rr := r * r
-	for i := range lanes {
-		x := w[i]*l - u[i]*s
-		d := 1 / (rr + x*x)
-		y.re[i] = r * d
-		y.im[i] = -x * d
+	for i := 0; i < lanes-1; i += 2 {
+		x0 := w[i]*l - u[i]*s
+		x1 := w[i+1]*l - u[i+1]*s
+		m0, m1 := rr+x0*x0, rr+x1*x1
+		d := 1 / (m0 * m1)
+		d0, d1 := d*m1, d*m0
+		y.re[i], y.re[i+1] = r*d0, r*d1
+		y.im[i], y.im[i+1] = -x0*d0, -x1*d1
 	}
 }
 
@@ -91,24 +96,24 @@ func mulAddTo(y, s, a, b *cvec) {
 
 // invTo stores 1/a in y; y may be a.
 func invTo(y, a *cvec) {
-	for i := range lanes {
-		ar, ai := a.re[i], a.im[i]
-		d := 1 / (ar*ar + ai*ai)
-		y.re[i] = ar * d
-		y.im[i] = -ai * d
+	for i := 0; i < lanes-1; i += 2 {
+		r0, i0, r1, i1 := a.re[i], a.im[i], a.re[i+1], a.im[i+1]
+		m0, m1 := r0*r0+i0*i0, r1*r1+i1*i1
+		d := 1 / (m0 * m1)
+		d0, d1 := d*m1, d*m0
+		y.re[i], y.re[i+1] = r0*d0, r1*d1
+		y.im[i], y.im[i+1] = -i0*d0, -i1*d1
 	}
 }
 
-// elimTo eliminates a node whose branches are ya and yb: inv = 1/(ya+yb), fac = ya·inv, and what
-// joins the two far ends is sum = fac·yb.
-func elimTo(fac, inv, sum, ya, yb *cvec) {
+// elimTo eliminates a node whose branches are ya and yb: fac = ya/(ya+yb), and what joins the two far ends
+// is sum = fac·yb.
+func elimTo(fac, sum, ya, yb *cvec) {
 	for i := range lanes {
 		ar, ai, br, bi := ya.re[i], ya.im[i], yb.re[i], yb.im[i]
 		sr, si := ar+br, ai+bi
 		d := 1 / (sr*sr + si*si)
-		ir, ii := sr*d, -si*d
-		fr, fi := ar*ir-ai*ii, ar*ii+ai*ir
-		inv.re[i], inv.im[i] = ir, ii
+		fr, fi := (ar*sr+ai*si)*d, (ai*sr-ar*si)*d
 		fac.re[i], fac.im[i] = fr, fi
 		sum.re[i] = fr*br - fi*bi
 		sum.im[i] = fr*bi + fi*br
@@ -116,18 +121,35 @@ func elimTo(fac, inv, sum, ya, yb *cvec) {
 }
 
 // elimAddTo is elimTo where the far ends are joined already, by src.
-func elimAddTo(fac, inv, sum, src, ya, yb *cvec) {
+func elimAddTo(fac, sum, src, ya, yb *cvec) {
 	for i := range lanes {
 		ar, ai, br, bi := ya.re[i], ya.im[i], yb.re[i], yb.im[i]
 		sr, si := ar+br, ai+bi
 		d := 1 / (sr*sr + si*si)
-		ir, ii := sr*d, -si*d
-		fr, fi := ar*ir-ai*ii, ar*ii+ai*ir
-		inv.re[i], inv.im[i] = ir, ii
+		fr, fi := (ar*sr+ai*si)*d, (ai*sr-ar*si)*d
 		fac.re[i], fac.im[i] = fr, fi
 		sum.re[i] = src.re[i] + (fr*br - fi*bi)
 		sum.im[i] = src.im[i] + (fr*bi + fi*br)
 	}
+}
+
+// shareTo stores a/(a+b).
+func shareTo(y, a, b *cvec) {
+	for i := range lanes {
+		ar, ai := a.re[i], a.im[i]
+		sr, si := ar+b.re[i], ai+b.im[i]
+		d := 1 / (sr*sr + si*si)
+		y.re[i], y.im[i] = (ar*sr+ai*si)*d, (ai*sr-ar*si)*d
+	}
+}
+
+// gainTo stores g = 1/(1 + rs·y).
+func gainTo(g, y *cvec, rs float64) {
+	for i := range lanes {
+		g.re[i] = 1 + rs*y.re[i]
+		g.im[i] = rs * y.im[i]
+	}
+	invTo(g, g)
 }
 
 // run evaluates operations for block b. The slots of one-ports and the slot `one` must be filled.
@@ -153,18 +175,17 @@ func (s *Sweep) run(ops []op, b int) {
 			s.wind[o.cell].admittance(v[o.dst:], w)
 		case opElimG, opElim2:
 			if o.src < 0 {
-				elimTo(&v[o.dst], &v[o.inv], &v[o.sum], &v[o.a], &v[o.b])
+				elimTo(&v[o.dst], &v[o.sum], &v[o.a], &v[o.b])
 			} else {
-				elimAddTo(&v[o.dst], &v[o.inv], &v[o.sum], &v[o.src], &v[o.a], &v[o.b])
+				elimAddTo(&v[o.dst], &v[o.sum], &v[o.src], &v[o.a], &v[o.b])
 			}
 			if o.code == opElim2 {
-				mulTo(&v[o.dst+1], &v[o.b], &v[o.inv])
+				shareTo(&v[o.dst+1], &v[o.b], &v[o.a])
 			}
-		case opElim1:
-			invTo(&v[o.inv], &v[o.a])
-			mulTo(&v[o.dst], &v[o.a], &v[o.inv])
+		case opShare:
+			shareTo(&v[o.dst], &v[o.a], &v[o.b])
 		case opPivot:
-			sum := &v[o.inv]
+			sum := &v[o.dst]
 			*sum = v[o.aux[0]]
 			for _, y := range o.aux[1:] {
 				addTo(sum, sum, &v[y])

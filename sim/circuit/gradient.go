@@ -75,7 +75,7 @@ func (s *Sweep) Gradient() error {
 			s.run(s.c.p.rest, b)
 		}
 		s.bases()
-		for o := range s.c.adj {
+		for o := range s.c.p.adj {
 			s.backward(b, o)
 		}
 		for l := range min(lanes, len(s.freqs)-b*lanes) {
@@ -125,7 +125,7 @@ func squareMulTo(dst, y, v *cvec) {
 
 // backward solves the adjoint of output o in block b and stores the derivatives.
 func (s *Sweep) backward(b, o int) {
-	p, a, rs := s.c.p, &s.c.adj[o], s.c.net.Source
+	p, a, rs := s.c.p, &s.c.p.adj[o], s.c.net.Source
 	kappa, g, minus := &s.v[a.kappa], &s.v[a.g], &s.v[a.minus]
 	y := &s.v[p.yin]
 	for l := range lanes {
@@ -140,10 +140,7 @@ func (s *Sweep) backward(b, o int) {
 	for i, n := 0, len(p.params); i < n; {
 		c := p.params[i].cell
 		k := &p.cells[c]
-		from, to := k.from, k.to
-		if from == Return { // the sign cancels
-			from, to = to, from
-		}
+		from, to := k.from, k.to // to is eliminated later, or is Amp or the return
 		base := &s.v[p.slots+2*c]
 		left, right := base, kappa
 		switch {
@@ -251,8 +248,8 @@ func (s *Sweep) mendGradient(i int) error {
 		return err
 	}
 	g := pt.ampGain(s.c.net.Source)
-	for o := range s.c.adj {
-		from, to := s.c.adj[o].from, s.c.adj[o].to
+	for o := range s.c.p.adj {
+		from, to := s.c.p.adj[o].from, s.c.p.adj[o].to
 		pt.adjoint(from, to, g, complex(s.c.net.Source, 0)*g*g*pt.between(from, to))
 		for j := range p.params {
 			k := &p.cells[p.params[j].cell]
@@ -276,7 +273,7 @@ func (s *Sweep) mendGradient(i int) error {
 // windingGradient stores the derivatives by coupled coils. Few designs have any: it goes one frequency
 // at a time.
 func (s *Sweep) windingGradient(b, o int) {
-	a := &s.c.adj[o]
+	a := &s.c.p.adj[o]
 	for n := range s.c.p.wind {
 		coils := s.c.p.wind[n].coils
 		for l := range min(lanes, len(s.freqs)-b*lanes) {

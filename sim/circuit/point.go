@@ -299,7 +299,7 @@ func (c *Circuit) point(s complex128, limit bool) (*Point, error) {
 	if pt.yin != 0 {
 		a.Zin = 1 / pt.yin
 	}
-	for _, o := range c.adj {
+	for _, o := range c.p.adj {
 		a.Gain = append(a.Gain, a.Amp*pt.between(o.from, o.to))
 	}
 	return a, nil

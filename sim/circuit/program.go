@@ -10,7 +10,7 @@ type cell struct {
 	from, to int
 	members  []int // netlist branches
 	y        int   // slot of its admittance; tanks have none of their own
-	dv       int   // slot of the voltage across it, up to its sign; noSlot: 0 V
+	dv       int   // slot of the voltage from from to to
 }
 
 // portCell is a one-port of the folded network.
@@ -30,10 +30,10 @@ const (
 	opAdd                   // dst = a + b
 	opSub                   // dst = a - b
 	opWinding               // the admittance matrix of winding `cell` into the slots from dst on
-	opElim1                 // node with near a: factor dst, pivot inv
 	opElimG                 // node with near a and the return b: factor dst, fill sum = src + …
 	opElim2                 // node with near a and b: factors dst and dst+1, fill sum = src + …
-	opPivot                 // inv = 1/Σ of aux slots
+	opShare                 // dst = a/(a+b)
+	opPivot                 // dst = 1/Σ of aux slots
 	opFill                  // sum = src + a·b; src -1: none
 	opWatch                 // mark where the pivot of aux slots nearly vanishes
 	opMul                   // dst = a·b
@@ -48,7 +48,6 @@ type op struct {
 	dst      int32
 	a, b     int32
 	src, sum int32
-	inv      int32
 	cell     int32
 	aux      []int32
 }
@@ -74,15 +73,17 @@ type program struct {
 	one    int   // slot that holds 1
 	cellOf []int // netlist branch → cell; -1: none
 	params []param
+	adj    []adjoint // one per output
 }
 
 // elim is a step with its slots.
 type elim struct {
 	node   int
-	near   []int // nodes other than the return
-	factor []int // slots: y_kj/Σ_k
-	inv    int   // slot: 1/Σ_k
-	ground int   // slot: admittance to the return, or noSlot
+	near   []int   // nodes other than the return
+	factor []int   // slots: y_kj/Σ_k
+	inv    int     // slot: 1/Σ_k; noSlot until something needs it
+	ground int     // slot: admittance to the return, or noSlot
+	all    []int32 // slots of the admittances that add up to Σ_k
 }
 
 // across is a voltage per volt at Amp: the slot that holds it, or its negative; noSlot: 0 V.
@@ -151,6 +152,13 @@ func assemble(n *Netlist, f *folded, driven []bool, steps []step, outs []Output)
 	}
 	p.back(n.Nodes, outs)
 	p.listParams(n)
+	p.dest = &p.more
+	for _, o := range outs {
+		p.pivots(f.alive(f.node[o.From], driven), f.alive(f.node[o.To], driven))
+	}
+	for _, o := range outs {
+		p.adj = append(p.adj, p.adjoint(f.alive(f.node[o.From], driven), f.alive(f.node[o.To], driven), n.Source == 0))
+	}
 	return &p.program
 }
 
@@ -259,7 +267,7 @@ func (p *assembler) windings() {
 // eliminate writes the star-mesh step of one node: with Σ the sum of its admittances and a_j = y_j/Σ,
 // every pair of its neighbours gains a_i·y_j.
 func (p *assembler) eliminate(s step) {
-	e := elim{node: s.node, inv: p.slot(), ground: p.edge(s.node, Return)}
+	e := elim{node: s.node, inv: noSlot, ground: p.edge(s.node, Return)}
 	ys := make([]int, 0, len(s.near))
 	near := make([]int, 0, len(s.near))
 	for _, j := range s.near {
@@ -267,35 +275,29 @@ func (p *assembler) eliminate(s step) {
 			ys, near = append(ys, y), append(near, j)
 		}
 	}
+	for _, y := range ys {
+		e.all = append(e.all, int32(y))
+	}
 	if s.reactive {
-		o := op{code: opWatch}
-		for _, y := range ys {
-			o.aux = append(o.aux, int32(y))
-		}
-		p.emit(o)
+		p.emit(op{code: opWatch, aux: e.all})
 	}
 	for _, j := range near {
 		if j != Return {
 			e.near, e.factor = append(e.near, j), append(e.factor, p.slot())
 		}
 	}
-	p.steps = append(p.steps, e)
-	grounded := len(near) > len(e.near)
 	switch {
-	case len(e.near) == 1 && !grounded:
-		p.emit(op{code: opElim1, dst: int32(e.factor[0]), a: int32(ys[0]), inv: int32(e.inv)})
-	case len(e.near) == 1:
-		p.emit(op{code: opElimG, dst: int32(e.factor[0]), a: int32(ys[0]), b: int32(ys[1]),
-			inv: int32(e.inv), src: int32(p.edge(near[0], Return)), sum: int32(p.renew(near[0], Return))})
-	case len(e.near) == 2 && !grounded:
-		p.emit(op{code: opElim2, dst: int32(e.factor[0]), a: int32(ys[0]), b: int32(ys[1]),
-			inv: int32(e.inv), src: int32(p.edge(near[0], near[1])), sum: int32(p.renew(near[0], near[1]))})
-	default:
-		o := op{code: opPivot, inv: int32(e.inv)}
-		for _, y := range ys {
-			o.aux = append(o.aux, int32(y))
+	case len(near) == 1: // it hangs on one node, whose voltage it has
+		e.factor[0] = p.one
+	case len(near) == 2:
+		o := op{code: opElimG, dst: int32(e.factor[0]), a: int32(ys[0]), b: int32(ys[1]),
+			src: int32(p.edge(near[0], near[1])), sum: int32(p.renew(near[0], near[1]))}
+		if near[1] != Return {
+			o.code = opElim2
 		}
 		p.emit(o)
+	default:
+		e.inv = p.invert(e.all)
 		for i, fac := range e.factor {
 			p.emit(op{code: opMul, dst: int32(fac), a: int32(ys[i]), b: int32(e.inv)})
 			for j := i + 1; j < len(near); j++ {
@@ -304,6 +306,14 @@ func (p *assembler) eliminate(s step) {
 			}
 		}
 	}
+	p.steps = append(p.steps, e)
+}
+
+// invert writes the reciprocal of a sum.
+func (p *assembler) invert(ys []int32) int {
+	s := p.slot()
+	p.emit(op{code: opPivot, dst: int32(s), aux: ys})
+	return s
 }
 
 // renew gives the edge a fresh slot; the old value stays where it was.
@@ -319,7 +329,6 @@ type Circuit struct {
 	outs []Output
 	f    *folded
 	p    *program
-	adj  []adjoint // one per output
 }
 
 // Compile checks n, folds it, and compiles its elimination. outs are the voltages that the caller will ask
@@ -344,9 +353,6 @@ func Compile(n *Netlist, outs []Output) (*Circuit, error) {
 	}
 	c.f = f
 	c.p = assemble(&c.net, f, driven, f.order(&c.net, driven), outs)
-	for _, o := range outs {
-		c.adj = append(c.adj, c.p.adjoint(f.alive(f.node[o.From], driven), f.alive(f.node[o.To], driven), n.Source == 0))
-	}
 	return c, nil
 }
 

@@ -18,17 +18,18 @@ type Sweep struct {
 	wind       []windValues
 	watch      vec
 
-	v      []cvec       // the slots of one block, and after them those of the adjoint
-	gain   []complex128 // output by output
-	amp    []complex128
-	zin    []complex128
-	grad   []complex128     // output by output, branch by branch; nil until wanted
-	nodes  [][]complex128   // folded node → voltage per volt of the open-circuit source; nil until wanted
-	across [][]complex128   // group → the same across it
-	coils  [][][]complex128 // winding, coil → the same across it
-	fresh  bool             // the three above belong to the present values
-	bad    []bool           // lanes of the present block that were mended
-	pt     *pointScratch
+	v       []cvec       // the slots of one block, and after them those of the adjoint
+	gain    []complex128 // output by output
+	amp     []complex128
+	zin     []complex128
+	grad    []complex128     // output by output, branch by branch; nil until wanted
+	nodes   [][]complex128   // folded node → voltage per volt of the open-circuit source; nil until wanted
+	across  [][]complex128   // group → the same across it
+	coils   [][][]complex128 // winding, coil → the same across it
+	fresh   bool             // the three above belong to the present values
+	g, zinv cvec             // V_amp/V_open and the input impedance of the present block
+	bad     [lanes]bool      // lanes of the present block that were mended
+	pt      *pointScratch
 }
 
 // NewSweep prepares a sweep over freqs, in Hz, positive and finite, in any order. The one-ports'
@@ -50,7 +51,7 @@ func (c *Circuit) NewSweep(freqs []float64) (*Sweep, error) {
 		vals: make([]float64, len(c.net.Branches)), loss: make([]float64, len(c.net.Branches)),
 		tri:  make([][3]float64, len(c.p.cells)),
 		gain: make([]complex128, n*len(c.outs)), amp: make([]complex128, n), zin: make([]complex128, n),
-		bad: make([]bool, lanes), pt: newPointScratch(c),
+		pt: newPointScratch(c),
 	}
 	for i := range s.w {
 		for l := range lanes {
@@ -69,7 +70,7 @@ func (c *Circuit) NewSweep(freqs []float64) (*Sweep, error) {
 	}
 	slots := c.p.slots + gradSlots(c.p)
 	own := 0
-	for _, a := range c.adj {
+	for _, a := range c.p.adj {
 		own = max(own, a.slots)
 	}
 	s.v = make([]cvec, slots+own)
@@ -205,22 +206,42 @@ const huge = 1e8
 
 // finish turns block b's slots into gains, and mends the frequencies at which the compiled order failed.
 func (s *Sweep) finish(b int) error {
-	p, n := s.c.p, len(s.freqs)
-	rs := s.c.net.Source
-	y := &s.v[p.yin]
-	first := b * lanes
-	for l := range min(lanes, n-first) {
-		yin := complex(y.re[l], y.im[l])
-		g := 1 / (1 + complex(rs, 0)*yin)
-		ok := s.watch[l] > lost
-		for o := range s.c.adj {
-			h := g * s.outVolts(o, l)
-			s.gain[o*n+first+l] = h
-			ok = ok && modulus(h) < huge
+	n, first := len(s.freqs), b*lanes
+	count := min(lanes, n-first)
+	y := &s.v[s.c.p.yin]
+	invTo(&s.zinv, y)
+	gainTo(&s.g, y, s.c.net.Source)
+	zin, amp := s.zin[first:first+count], s.amp[first:first+count]
+	bad := false
+	for l := range zin {
+		zin[l] = complex(s.zinv.re[l], s.zinv.im[l])
+		amp[l] = complex(s.g.re[l], s.g.im[l])
+		s.bad[l] = !(s.watch[l] > lost) || !(y.re[l]*y.re[l]+y.im[l]*y.im[l] <= math.MaxFloat64)
+		bad = bad || s.bad[l]
+	}
+	for o, v := range s.c.p.outs {
+		gain := s.gain[o*n+first : o*n+first+count]
+		if v.slot == noSlot {
+			clear(gain)
+			continue
 		}
-		s.amp[first+l] = g
-		s.zin[first+l] = 1 / yin
-		s.bad[l] = !ok || !(modulus(yin) < math.MaxFloat64)
+		out, sign := &s.v[v.slot], 1.0
+		if v.neg {
+			sign = -1
+		}
+		for l := range gain {
+			vr, vi, gr, gi := sign*out.re[l], sign*out.im[l], s.g.re[l], s.g.im[l]
+			hr, hi := vr*gr-vi*gi, vr*gi+vi*gr
+			gain[l] = complex(hr, hi)
+			if !(hr*hr+hi*hi < huge*huge) {
+				s.bad[l], bad = true, true
+			}
+		}
+	}
+	if !bad {
+		return nil
+	}
+	for l := range count {
 		if s.bad[l] {
 			if err := s.mend(first + l); err != nil {
 				return err
@@ -251,8 +272,8 @@ func (s *Sweep) mend(i int) error {
 		return err
 	}
 	g := pt.ampGain(s.c.net.Source)
-	for o := range s.c.adj {
-		s.gain[o*len(s.freqs)+i] = g * pt.between(s.c.adj[o].from, s.c.adj[o].to)
+	for o := range s.c.p.adj {
+		s.gain[o*len(s.freqs)+i] = g * pt.between(s.c.p.adj[o].from, s.c.p.adj[o].to)
 	}
 	s.amp[i] = g
 	s.zin[i] = 1 / pt.yin

@@ -26,7 +26,12 @@ func (p *assembler) back(nodes int, outs []Output) {
 	}
 	p.dest = &p.more
 	for i := range p.cells {
-		p.cells[i].dv = p.between(p.cells[i].from, p.cells[i].to).slot // the sign cancels in products
+		c := &p.cells[i]
+		v := p.between(c.from, c.to)
+		if v.neg { // turn the cell, not the voltage
+			c.from, c.to = c.to, c.from
+		}
+		c.dv = v.slot
 	}
 	p.dest = &p.rest
 	for _, g := range p.f.groups {
@@ -103,7 +108,13 @@ func (p *assembler) leakage(e *elim) int {
 	s, ok := p.leak[e.node]
 	if !ok {
 		s = p.slot()
-		p.emit(op{code: opMul, dst: int32(s), a: int32(e.ground), b: int32(e.inv)})
+		o := op{code: opShare, dst: int32(s), a: int32(e.ground)}
+		if e.inv != noSlot {
+			o.code, o.b = opMul, int32(e.inv)
+		} else {
+			o.b = e.all[0] // the other one of two
+		}
+		p.emit(o)
 		p.leak[e.node] = s
 	}
 	return s
