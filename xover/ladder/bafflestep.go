@@ -9,9 +9,9 @@ import "math"
 // With g = 10^(db/20), R = load·(g - 1). The transfer is (1 + s/ωz)/(1 + s/ωp) with ωz = R/L and ωp = ωz/g; its magnitude
 // is 1/√g at √(ωz·ωp) = ωz/√g, so L = R/(2π·f·√g). (Derived.)
 //
-// db is above 0, to 60. The load must be a resistance about f: take out the resonance if it lies near.
+// db is from MinAttenuationDB to MaxAttenuationDB. The load must be a resistance about f: take out the resonance if it lies near.
 func BaffleStep(load, f, db float64) (Network, error) {
-	if err := check(quantity{"baffle step: load", load, "Ω"}, quantity{"baffle step: frequency", f, "Hz"}); err != nil {
+	if err := check(quantity{"baffle step: load", load, " Ω"}, quantity{"baffle step: frequency", f, " Hz"}); err != nil {
 		return nil, err
 	}
 	if err := checkDB("baffle step: height", db); err != nil {

@@ -1,6 +1,10 @@
 package ladder
 
-import "math"
+import (
+	"errors"
+	"fmt"
+	"math"
+)
 
 // Conjugate returns the network, across the driver, that makes a driver of impedance Re + Z look like the
 // plain resistance Re at every frequency, where Z is the excess (it holds resistors, inductors and
@@ -12,13 +16,30 @@ import "math"
 // Correction in Electrical Circuits with Constant Resistance Recurrent Networks", Bell System Technical
 // Journal 7, 1928 (from memory).
 func Conjugate(re float64, excess Expr) (Network, error) {
-	if err := check(quantity{"conjugate: Re", re, "Ω"}); err != nil {
+	if err := check(quantity{"conjugate: Re", re, " Ω"}); err != nil {
 		return nil, err
 	}
-	if err := excess.check(); err != nil {
+	if err := excess.check(0); err != nil {
 		return nil, err
 	}
-	return Network{Shunt(join(InSeries, R(re), excess.dual(re*re)))}, nil
+	// Re and what resistance the dual has in series with it are one resistor to buy.
+	dual := excess.dual(re * re)
+	chain := []Expr{dual}
+	if dual.Op == InSeries {
+		chain = dual.Args
+	}
+	network := []Expr{R(re)}
+	for _, e := range chain {
+		if e.Op == Leaf && e.Part.Kind == Resistor {
+			network[0].Part.Value += e.Part.Value
+		} else {
+			network = append(network, e)
+		}
+	}
+	if len(network) == 1 {
+		return Network{Shunt(network[0])}, nil
+	}
+	return Network{Shunt(Chain(network...))}, nil
 }
 
 // VoiceCoil returns the network, across the driver, that takes out the inductance of its voice coil:
@@ -31,7 +52,7 @@ func Conjugate(re float64, excess Expr) (Network, error) {
 // A. N. Thiele, "Optimum Passive Loudspeaker Dividing Networks", Proc. IREE Australia 36, 1975; W. M. Leach Jr.,
 // "Impedance Compensation Networks for the Lossy Voice-Coil Inductance of Loudspeaker Drivers", JAES 52(4), 2004.
 func VoiceCoil(re, le float64) (Network, error) {
-	if err := check(quantity{"voice coil: Re", re, "Ω"}, quantity{"voice coil: Le", le, "H"}); err != nil {
+	if err := check(quantity{"voice coil: Re", re, " Ω"}, quantity{"voice coil: Le", le, " H"}); err != nil {
 		return nil, err
 	}
 	return Conjugate(re, L(le))
@@ -59,7 +80,7 @@ func Resonance(re, fs, qms, qes float64) (Network, error) {
 //
 // It is exact for the data-sheet driver whose coil is lossless. The formula is Conjugate's.
 func Dual(re, le, fs, qms, qes float64) (Network, error) {
-	if err := check(quantity{"dual: Le", le, "H"}); err != nil {
+	if err := check(quantity{"dual: Le", le, " H"}); err != nil {
 		return nil, err
 	}
 	if err := checkMotional("dual", re, fs, qms, qes); err != nil {
@@ -68,18 +89,18 @@ func Dual(re, le, fs, qms, qes float64) (Network, error) {
 	return Conjugate(re, Chain(L(le), motional(re, fs, qms, qes)))
 }
 
-// motional is what a driver's moving parts look like from its terminals: Res, Lces and Cmes in parallel.
+// motional is what a driver's moving parts look like from its terminals: Res, Cmes and Lces in parallel.
 func motional(re, fs, qms, qes float64) Expr {
 	w := 2 * math.Pi * fs
-	return Beside(R(re*qms/qes), L(re/(w*qes)), C(qes/(w*re)))
+	return Beside(R(re*qms/qes), C(qes/(w*re)), L(re/(w*qes)))
 }
 
 func checkMotional(name string, re, fs, qms, qes float64) error {
 	return check(
-		quantity{name + ": Re", re, "Ω"},
-		quantity{name + ": fs", fs, "Hz"},
-		quantity{name + ": Qms", qms, "(no unit)"},
-		quantity{name + ": Qes", qes, "(no unit)"},
+		quantity{name + ": Re", re, " Ω"},
+		quantity{name + ": fs", fs, " Hz"},
+		quantity{name + ": Qms", qms, ""},
+		quantity{name + ": Qes", qes, ""},
 	)
 }
 
@@ -103,4 +124,31 @@ func (e Expr) dual(square float64) Expr {
 	default:
 		return R(square / e.Part.Value)
 	}
+}
+
+// maxDepth bounds how deep an excess may nest, so that a faulty one cannot exhaust the stack.
+const maxDepth = 64
+
+// check returns an error unless every part of the expression, which lies depth joints deep, has a positive value and
+// every joint has something to join.
+func (e Expr) check(depth int) error {
+	switch {
+	case depth > maxDepth:
+		return fmt.Errorf("conjugate: the excess is nested over %d deep; write it flatter", maxDepth)
+	case e.Op > InParallel:
+		return errors.New("conjugate: a joint is neither series nor parallel; make it one")
+	case e.Op == Leaf && e.Part.Kind > Capacitor:
+		return errors.New("conjugate: a part is neither resistor, inductor nor capacitor; make it one")
+	case e.Op == Leaf:
+		unit := [...]string{" Ω", " H", " F"}[e.Part.Kind]
+		return check(quantity{fmt.Sprintf("conjugate: a %c", letters[e.Part.Kind]), e.Part.Value, unit})
+	case len(e.Args) == 0:
+		return errors.New("conjugate: a joint holds nothing; put parts into it")
+	}
+	for _, arg := range e.Args {
+		if err := arg.check(depth + 1); err != nil {
+			return err
+		}
+	}
+	return nil
 }

@@ -13,7 +13,7 @@ import (
 //
 // The values come from the continued fraction of the alignment's denominator; with L = g·R/ω and C = g/(R·ω).
 func LowPass(a *align.Alignment, fc, load float64) (Network, error) {
-	if err := check(quantity{"low-pass: frequency", fc, "Hz"}, quantity{"low-pass: load", load, "Ω"}); err != nil {
+	if err := check(quantity{"low-pass: frequency", fc, " Hz"}, quantity{"low-pass: load", load, " Ω"}); err != nil {
 		return nil, err
 	}
 	return lowPass(a.Denominator(), fc, load), nil
@@ -23,7 +23,7 @@ func LowPass(a *align.Alignment, fc, load float64) (Network, error) {
 // first, then shunt inductor, and so on. It is the mirror image of LowPass about fc: each inductor becomes a
 // capacitor that has the opposite reactance at fc.
 func HighPass(a *align.Alignment, fc, load float64) (Network, error) {
-	if err := check(quantity{"high-pass: frequency", fc, "Hz"}, quantity{"high-pass: load", load, "Ω"}); err != nil {
+	if err := check(quantity{"high-pass: frequency", fc, " Hz"}, quantity{"high-pass: load", load, " Ω"}); err != nil {
 		return nil, err
 	}
 	return highPass(a.Denominator(), fc, load), nil
@@ -77,14 +77,23 @@ func highPass(d []float64, fc, load float64) Network {
 type quantity struct {
 	name  string
 	value float64
-	unit  string
+	unit  string // " Hz", or empty
 }
 
-// check returns an error for the first quantity that is not a positive finite number.
+// The arguments taken. No part is near these limits; inside them no formula here overflows.
+const (
+	least    = 1e-30
+	greatest = 1e30
+)
+
+// check returns an error for the first quantity that is not a positive number of sane size.
 func check(all ...quantity) error {
 	for _, q := range all {
 		if !(q.value > 0) || math.IsInf(q.value, 1) { // so that NaN fails
-			return fmt.Errorf("%s is %g %s; give a positive number", q.name, q.value, q.unit)
+			return fmt.Errorf("%s is %g%s; give a positive number", q.name, q.value, q.unit)
+		}
+		if q.value < least || q.value > greatest {
+			return fmt.Errorf("%s is %g%s; give a number from %g to %g", q.name, q.value, q.unit, least, greatest)
 		}
 	}
 	return nil
@@ -92,9 +101,9 @@ func check(all ...quantity) error {
 
 func checkThreeWay(fLow, fHigh, load float64) error {
 	err := check(
-		quantity{"three-way: lower frequency", fLow, "Hz"},
-		quantity{"three-way: upper frequency", fHigh, "Hz"},
-		quantity{"three-way: load", load, "Ω"},
+		quantity{"three-way: lower frequency", fLow, " Hz"},
+		quantity{"three-way: upper frequency", fHigh, " Hz"},
+		quantity{"three-way: load", load, " Ω"},
 	)
 	if err == nil && !(fHigh > fLow) {
 		err = fmt.Errorf("three-way: the upper frequency, %g Hz, is not above the lower, %g Hz; swap them or move them apart", fHigh, fLow)

@@ -62,16 +62,3 @@ func Shunt(e Expr) Element { return Element{Shunt: true, Expr: e} }
 
 // A Network is a ladder, its elements in order from the amplifier to the load. Networks join by append.
 type Network []Element
-
-// join is Chain or Beside with arguments of the same joint taken apart, so that what is end to end reads so.
-func join(op Op, args ...Expr) Expr {
-	var flat []Expr
-	for _, arg := range args {
-		if arg.Op == op {
-			flat = append(flat, arg.Args...)
-		} else {
-			flat = append(flat, arg)
-		}
-	}
-	return Expr{Op: op, Args: flat}
-}

@@ -5,9 +5,12 @@ import (
 	"math"
 )
 
-// maxAttenuationDB bounds what a pad, a trap and a baffle step are asked for: past it the shunt resistor of a pad
-// is a short for every practical purpose, and the figure is a slip.
-const maxAttenuationDB = 60
+// What a pad, a trap and a baffle step may be asked to take off, in dB. Outside, the resistors are shorts or open
+// for every practical purpose, and the figure is a slip.
+const (
+	MinAttenuationDB = 0.001
+	MaxAttenuationDB = 60
+)
 
 // A Pad is an L-pad: a series resistor, then a shunt resistor across the load.
 type Pad struct {
@@ -19,11 +22,11 @@ type Pad struct {
 
 // LPad returns the pad that takes db decibels off a resistive load (Ω) and still shows that resistance to
 // what feeds it. With k = 10^(-db/20): series R·(1 - k), shunt R·k/(1 - k); of the power taken the series resistor
-// gets 1 - k, the shunt k·(1 - k), the load k². db is above 0, to 60.
+// gets 1 - k, the shunt k·(1 - k), the load k². db is from MinAttenuationDB to MaxAttenuationDB.
 //
 // The formulas follow from the two conditions; every textbook has them.
 func LPad(load, db float64) (Pad, error) {
-	if err := check(quantity{"L-pad: load", load, "Ω"}); err != nil {
+	if err := check(quantity{"L-pad: load", load, " Ω"}); err != nil {
 		return Pad{}, err
 	}
 	if err := checkDB("L-pad: attenuation", db); err != nil {
@@ -44,8 +47,8 @@ func LPad(load, db float64) (Pad, error) {
 func (p Pad) Network() Network { return Network{Series(R(p.SeriesR)), Shunt(R(p.ShuntR))} }
 
 func checkDB(name string, db float64) error {
-	if !(db > 0 && db <= maxAttenuationDB) { // so that NaN fails
-		return fmt.Errorf("%s is %g dB; give a number above 0, to %d", name, db, maxAttenuationDB)
+	if !(db >= MinAttenuationDB && db <= MaxAttenuationDB) { // so that NaN fails
+		return fmt.Errorf("%s is %g dB; give %g to %d dB", name, db, MinAttenuationDB, MaxAttenuationDB)
 	}
 	return nil
 }

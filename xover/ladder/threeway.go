@@ -3,6 +3,7 @@ package ladder
 import (
 	"fmt"
 	"math"
+	"slices"
 
 	"sixdown/xover/align"
 )
@@ -97,7 +98,7 @@ func checkExists(order int, reversed bool, ratio float64) error {
 //	sum = 1/p(λs) + 1/p(λ/s) + g·rⁿ/(p(λs)·p(λ/s)), |sum| = 1 on the imaginary axis.
 //
 // It follows the solution from r = ∞, where the crossovers do not see each other and p is that of a two-way
-// whose sum is flat, in even steps of 1/r, by Newton's method.
+// whose sum is flat, by Newton's method in steps of 1/r, small enough not to land on another solution.
 func solveThreeWay(order int, reversed bool, ratio float64) (p []float64, gain float64, ok bool) {
 	start := align.Spec{Shape: align.LinkwitzRiley, Order: order}
 	if order%2 != 0 {
@@ -108,19 +109,33 @@ func solveThreeWay(order int, reversed bool, ratio float64) (p []float64, gain f
 		return nil, 0, false
 	}
 	p = a.Denominator()
+	p[order] = 1 // which it is but for rounding
 	gain = 1
 	if reversed {
 		gain = -1
 	}
-	const steps = 128
 	x := append(p[1:order:order], gain)
-	for i := 1; i <= steps; i++ {
-		if !newton(x, float64(i)/steps/ratio) {
+	end := 1 / ratio
+	for t, step := 0.0, end/8; t < end; {
+		next := slices.Clone(x)
+		if to := min(t+step, end); newton(next, to) && near(next, x) {
+			x, t, step = next, to, 2*step
+		} else if step /= 2; step < end/1e6 {
 			return nil, 0, false
 		}
 	}
 	copy(p[1:order], x)
 	return p, x[order-1], true
+}
+
+// near says that no value of x moved by more than a fifth.
+func near(x, from []float64) bool {
+	for i := range x {
+		if !(math.Abs(x[i]-from[i]) <= 0.2*math.Abs(from[i])) {
+			return false
+		}
+	}
+	return true
 }
 
 // newton improves x, the unknowns of flatness, for 1/r = t. It says whether it converged.

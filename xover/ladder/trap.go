@@ -10,9 +10,9 @@ import "math"
 // it the transfer is (1 + jy)/(g + jy), y = Qp·(f/fc - fc/f), Qp = 2π·fc·R·C; its magnitude is 1/√g, half the depth in
 // dB, at y = ±√g, and f/fc - fc/f = ±1/q there: so Qp = q·√g. (Derived.)
 //
-// depthDB is above 0, to 60. The load must be a resistance about fc: compensate the voice coil first.
+// depthDB is from MinAttenuationDB to MaxAttenuationDB. The load must be a resistance about fc: compensate the voice coil first.
 func Trap(load, fc, q, depthDB float64) (Network, error) {
-	err := check(quantity{"trap: load", load, "Ω"}, quantity{"trap: frequency", fc, "Hz"}, quantity{"trap: Q", q, "(no unit)"})
+	err := check(quantity{"trap: load", load, " Ω"}, quantity{"trap: frequency", fc, " Hz"}, quantity{"trap: Q", q, ""})
 	if err != nil {
 		return nil, err
 	}
