@@ -13,7 +13,7 @@ const (
 	Butterworth   Shape = iota // maximally flat magnitude
 	LinkwitzRiley              // a Butterworth of half the order, squared: both ways in phase, flat sum
 	Bessel                     // maximally flat delay
-	Chebyshev                  // equal ripple in the pass band (type I)
+	Chebyshev                  // equal ripple in the pass band (type I); its frequency is the ripple's edge
 )
 
 var shapeNames = [...]string{"butterworth", "linkwitz-riley", "bessel", "chebyshev"}

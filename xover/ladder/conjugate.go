@@ -22,6 +22,11 @@ func Conjugate(re float64, excess Expr) (Network, error) {
 	if err := excess.check(0); err != nil {
 		return nil, err
 	}
+	return conjugate(re, excess), nil
+}
+
+// conjugate is Conjugate for arguments that have been checked.
+func conjugate(re float64, excess Expr) Network {
 	// Re and what resistance the dual has in series with it are one resistor to buy.
 	dual := excess.dual(re * re)
 	chain := []Expr{dual}
@@ -37,9 +42,9 @@ func Conjugate(re float64, excess Expr) (Network, error) {
 		}
 	}
 	if len(network) == 1 {
-		return Network{Shunt(network[0])}, nil
+		return Network{Shunt(network[0])}
 	}
-	return Network{Shunt(Chain(network...))}, nil
+	return Network{Shunt(Chain(network...))}
 }
 
 // VoiceCoil returns the network, across the driver, that takes out the inductance of its voice coil:
@@ -55,15 +60,15 @@ func VoiceCoil(re, le float64) (Network, error) {
 	if err := check(quantity{"voice coil: Re", re, " Ω"}, quantity{"voice coil: Le", le, " H"}); err != nil {
 		return nil, err
 	}
-	return Conjugate(re, L(le))
+	return conjugate(re, L(le)), nil
 }
 
 // Resonance returns the network, across the driver, that takes out the peak of its impedance at resonance:
 // in series R = Re + Re²/Res = Re·(1 + Qes/Qms), L = Re²·Cmes = Re·Qes/(2π·fs) and C = Lces/Re² = 1/(2π·fs·Qes·Re).
 // re is Re in Ω, fs is in Hz.
 //
-// It is exact when the voice coil has no inductance. Put beside VoiceCoil it is not, nor is that: each then
-// also compensates for what the other has cancelled already. Dual is both at once.
+// It is exact when the voice coil has no inductance. Beside VoiceCoil, neither is: each is made for a driver
+// without what the other takes out. Dual takes out both.
 //
 // A. N. Thiele, as for VoiceCoil; the equivalent circuit is that of R. H. Small, "Direct-Radiator Loudspeaker
 // System Analysis", JAES 20(5), 1972 (from memory).
@@ -71,7 +76,7 @@ func Resonance(re, fs, qms, qes float64) (Network, error) {
 	if err := checkMotional("resonance", re, fs, qms, qes); err != nil {
 		return nil, err
 	}
-	return Conjugate(re, motional(re, fs, qms, qes))
+	return conjugate(re, motional(re, fs, qms, qes)), nil
 }
 
 // Dual returns the network, across the driver, that makes Re + s·Le plus the resonance into the resistance Re
@@ -86,7 +91,7 @@ func Dual(re, le, fs, qms, qes float64) (Network, error) {
 	if err := checkMotional("dual", re, fs, qms, qes); err != nil {
 		return nil, err
 	}
-	return Conjugate(re, Chain(L(le), motional(re, fs, qms, qes)))
+	return conjugate(re, Chain(L(le), motional(re, fs, qms, qes))), nil
 }
 
 // motional is what a driver's moving parts look like from its terminals: Res, Cmes and Lces in parallel.

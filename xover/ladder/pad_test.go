@@ -154,3 +154,21 @@ func ExampleLPad() {
 	fmt.Printf("series %.2f Ω, shunt %.3f Ω\n", p.SeriesR, p.ShuntR)
 	// Output: series 7.20 Ω, shunt 0.889 Ω
 }
+
+// 6.0206 dB is a half: R equals the load, 8 Ω, and L = R/(2π·f·√2) = 1.80 mH.
+func ExampleBaffleStep() {
+	n, err := BaffleStep(8, 500, 6.0206)
+	if err != nil {
+		fmt.Println(err)
+		return
+	}
+	steps, parts := n.Steps(new(Namer))
+	fmt.Println(steps[0])
+	for _, p := range parts {
+		fmt.Printf("%s = %.3g\n", p.Name, p.Value)
+	}
+	// Output:
+	// series L1 | R1
+	// L1 = 0.0018
+	// R1 = 8
+}

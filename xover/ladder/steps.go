@@ -31,10 +31,10 @@ func (n *Namer) Next(k Kind) string {
 func (n Network) Steps(names *Namer) (steps []string, parts []NamedPart) {
 	for _, e := range n {
 		var text strings.Builder
-		text.WriteString("series ")
 		if e.Shunt {
-			text.Reset()
 			text.WriteString("shunt ")
+		} else {
+			text.WriteString("series ")
 		}
 		parts = e.Expr.write(&text, names, parts)
 		steps = append(steps, text.String())

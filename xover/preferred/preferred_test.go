@@ -7,7 +7,8 @@ import (
 	"testing"
 )
 
-// IEC 60063:2015, the columns as printed, from memory of reference lists that reprint the standard.
+// IEC 60063:2015. E24 and below as reference works reprint them; E48 and E96 follow from 100·10^(i/n) rounded, which in
+// these two has no exception, and agree with the reprints read.
 var published = map[Series][]int{
 	E3:  {10, 22, 47},
 	E6:  {10, 15, 22, 33, 47, 68},
