@@ -13,14 +13,13 @@ type Impulse struct {
 	rate     float64   // Hz
 	response []float64 // circular: sample i is at i/rate s, the last ones before 0
 	pulse    []float64 // the reference deconvolved by itself in the same way
+	power    []float64 // |X|² of the reference, at multiples of rate/len(response)
+	energy   float64   // Σx² of the reference
 }
 
-// regularisation is added to the reference's power spectrum, relative to its
-// highest value, so that the deconvolution does not blow up noise where the sweep has nothing.
-const regularisation = 1e-8
-
 // NewImpulse deconvolves out by ref, records of the same length at rate Hz:
-// Y·X*/(|X|² + ε) by fast transforms, padded with zeros to twice their length so
+// Y·X*/(|X|² + ε) by fast transforms, ε the power below which no transfer is
+// answered for, so that noise and distortion are not blown up where the sweep has nothing; padded with zeros to twice their length so
 // that times before and after 0 stay apart (A. Farina, 108th Conv. Audio Eng. Soc.,
 // preprint 5093, 2000; the regularisation is that of O. Kirkeby, P. A. Nelson,
 // H. Hamada, F. Orduna-Bustamante, "Fast Deconvolution of Multichannel Systems Using
@@ -49,18 +48,20 @@ func NewImpulse(out, ref []float64, rate float64) (*Impulse, error) {
 	x := fft.Coefficients(nil, padded)
 	copy(padded, out)
 	y := fft.Coefficients(nil, padded)
-	top := 0.0
-	for _, v := range x {
-		top = max(top, real(v)*real(v)+imag(v)*imag(v))
+	power := make([]float64, len(x))
+	for i, v := range x {
+		power[i] = real(v)*real(v) + imag(v)*imag(v)
 	}
+	floor := energy * floorPower
 	for i := range x {
-		power := real(x[i])*real(x[i]) + imag(x[i])*imag(x[i])
 		// The inverse transform is not normalised: 1/n here.
-		weight := 1 / ((power + regularisation*top) * float64(n))
+		weight := 1 / ((power[i] + floor) * float64(n))
 		y[i] *= cmplx.Conj(x[i]) * complex(weight, 0)
-		x[i] = complex(power*weight, 0)
+		x[i] = complex(power[i]*weight, 0)
 	}
-	return &Impulse{rate: rate, response: fft.Sequence(padded, y), pulse: fft.Sequence(nil, x)}, nil
+	return &Impulse{
+		rate: rate, response: fft.Sequence(padded, y), pulse: fft.Sequence(nil, x), power: power, energy: energy,
+	}, nil
 }
 
 // Window is the stretch of an impulse response that counts, in s.
@@ -98,13 +99,15 @@ func (m *Impulse) Transfer(dst []complex128, hz []float64, w Window) error {
 	if err != nil {
 		return err
 	}
+	for _, f := range hz {
+		bin := int(math.Round(f / m.rate * float64(len(m.response))))
+		if !(m.power[bin] > m.energy*floorPower) {
+			return errNothingAt(f)
+		}
+	}
 	x := make([]complex128, len(hz))
 	spectra([][]complex128{dst, x}, [][]float64{n.cut(m.response), n.cut(m.pulse)}, m.rate, hz)
 	for i := range hz {
-		// The pulse is 1 wherever the reference has power, far below 1 elsewhere.
-		if !(cmplx.Abs(x[i]) > 0.1) {
-			return fmt.Errorf("measure: transfer: the reference has almost nothing at %v Hz; ask inside the range of the sweep", hz[i])
-		}
 		dst[i] /= x[i]
 	}
 	return nil

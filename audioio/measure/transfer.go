@@ -6,10 +6,15 @@ import (
 	"math/cmplx"
 )
 
-// floorDB is how far below a white signal of the same energy, in dB, the
-// reference may lie at a frequency that is asked for. An exponential sweep over three
-// decades lies 8 dB below at its top, with nothing but leakage outside its range.
-const floorDB = -60
+// floorPower is the least that the reference's power |X|² must be at a frequency that is
+// asked for, over that of a white signal of the same energy: −40 dB. An exponential
+// sweep over three decades lies 8 dB below at its top; 40 dB below, the rounding of
+// a 16-bit file (−92 dB) already counts 0.02 dB.
+const floorPower = 1e-4
+
+func errNothingAt(hz float64) error {
+	return fmt.Errorf("measure: transfer: the reference has almost nothing at %v Hz; ask inside the range of the sweep", hz)
+}
 
 // Transfer stores in dst[k][i] the transfer function outs[k]/ref at hz[i]: the
 // ratio of the two spectra, each taken over the whole record. All records have
@@ -21,7 +26,7 @@ const floorDB = -60
 // is wrong by about what was cut off. Noise counts over the whole record: where that
 // matters, or where distortion does, window the impulse response, [NewImpulse].
 //
-// A frequency where the reference has almost nothing (below −60 dB re white
+// A frequency where the reference has almost nothing (below −40 dB re white
 // of the same energy) is an error.
 func Transfer(dst [][]complex128, outs [][]float64, ref []float64, rate float64, hz []float64) error {
 	if len(dst) != len(outs) {
@@ -46,10 +51,10 @@ func Transfer(dst [][]complex128, outs [][]float64, ref []float64, rate float64,
 	}
 	x := make([]complex128, len(hz))
 	spectra(append([][]complex128{x}, dst...), append([][]float64{ref}, outs...), rate, hz)
-	floor := math.Sqrt(energy) * math.Pow(10, floorDB/20.0)
+	floor := math.Sqrt(energy * floorPower)
 	for i := range hz {
 		if !(cmplx.Abs(x[i]) > floor) {
-			return fmt.Errorf("measure: transfer: the reference has almost nothing at %v Hz; ask inside the range of the sweep", hz[i])
+			return errNothingAt(hz[i])
 		}
 		for k := range dst {
 			dst[k][i] /= x[i]

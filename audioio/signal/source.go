@@ -52,16 +52,18 @@ func peakOr(where string, peak, fallback float64) (float64, error) {
 	return peak, nil
 }
 
-// edge is the gain of a signal of length n whose first and last e samples rise
-// and fall as a raised cosine, 2e ≤ n. Its sample i lies at the middle of the
-// i-th of e steps, so that rise and fall mirror each other.
-func edge(i, n, e int) float64 {
-	i = min(i, n-1-i)
+// rise is the gain of sample i, from 0, of a raised cosine that takes e samples.
+// A sample lies at the middle of its step, so that rise and fall mirror each other.
+func rise(i, e int) float64 {
 	if i >= e {
 		return 1
 	}
 	return 0.5 - 0.5*math.Cos(math.Pi*(float64(i)+0.5)/float64(e))
 }
+
+// edge is the gain of sample i of a signal of n samples that rises over its first
+// e and falls over its last, 2e ≤ n.
+func edge(i, n, e int) float64 { return rise(min(i, n-1-i), e) }
 
 var errNoRandom = errors.New("signal: noise: there is no source of randomness; give a rand.Source")
 

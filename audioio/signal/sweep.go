@@ -8,7 +8,8 @@ import (
 // SweepSettings shape a sweep. The zero value works.
 type SweepSettings struct {
 	Peak        float64 // amplitude, full scale 1; 0 is 0.5
-	EdgeSeconds float64 // length of rise and of fall in s; 0 is 20 ms or a tenth of the sweep, whichever is shorter
+	RiseSeconds float64 // length of the rise at f1 in s; 0 is 20 ms or a tenth of the sweep, whichever is shorter
+	FallSeconds float64 // length of the fall at f2 in s; 0 is 2 ms or a tenth of the sweep, whichever is shorter
 	TailSeconds float64 // silence after the sweep in s, for the circuit's decay; 0 is none
 }
 
@@ -23,11 +24,14 @@ type Sweep struct {
 	f1, l      float64 // Hz, s
 	peak       float64
 	length     int // of the sweep, samples
-	edge, tail int // samples
+	rise, fall int // samples
+	tail       int // samples
 	pos        int
 }
 
-// NewSweep returns a sweep from f1 to f2 (Hz, 0 < f1 < f2 ≤ rate/2) that takes so many seconds.
+// NewSweep returns a sweep from f1 to f2 (Hz, 0 < f1 < f2 ≤ rate/2) that takes so
+// many seconds. Rise and fall take power from the ends of the range: let it reach a
+// third of an octave below and some percent above what is to be measured.
 func NewSweep(rate int, f1, f2, seconds float64, s SweepSettings) (*Sweep, error) {
 	const where = "signal: sweep"
 	if err := checkRate(where, rate); err != nil {
@@ -36,31 +40,37 @@ func NewSweep(rate int, f1, f2, seconds float64, s SweepSettings) (*Sweep, error
 	if !(f1 > 0 && f1 < f2 && f2 <= float64(rate)/2) {
 		return nil, fmt.Errorf("%s: from %v to %v Hz at a sample rate of %d Hz; give two rising frequencies above 0 and up to half the rate", where, f1, f2, rate)
 	}
-	if err := checkSeconds(where, "the length", seconds); err != nil {
-		return nil, err
-	}
-	if err := checkSeconds(where, "the edge", s.EdgeSeconds); err != nil {
-		return nil, err
-	}
-	if err := checkSeconds(where, "the tail", s.TailSeconds); err != nil {
-		return nil, err
+	for _, t := range []struct {
+		what    string
+		seconds float64
+	}{
+		{"the length", seconds}, {"the rise", s.RiseSeconds}, {"the fall", s.FallSeconds}, {"the tail", s.TailSeconds},
+	} {
+		if err := checkSeconds(where, t.what, t.seconds); err != nil {
+			return nil, err
+		}
 	}
 	peak, err := peakOr(where, s.Peak, 0.5)
 	if err != nil {
 		return nil, err
 	}
-	rise := s.EdgeSeconds
-	if rise == 0 {
-		rise = min(0.02, seconds/10)
+	if s.RiseSeconds == 0 {
+		s.RiseSeconds = min(0.02, seconds/10)
 	}
+	if s.FallSeconds == 0 {
+		s.FallSeconds = min(0.002, seconds/10)
+	}
+	samples := func(seconds float64) int { return int(math.Round(seconds * float64(rate))) }
 	w := &Sweep{
 		rate: float64(rate), f1: f1, l: seconds / math.Log(f2/f1), peak: peak,
-		length: int(math.Round(seconds * float64(rate))),
-		edge:   int(math.Round(rise * float64(rate))),
-		tail:   int(math.Round(s.TailSeconds * float64(rate))),
+		length: samples(seconds),
+		rise:   samples(s.RiseSeconds),
+		fall:   samples(s.FallSeconds),
+		tail:   samples(s.TailSeconds),
 	}
-	if w.length < 2 || 2*w.edge > w.length {
-		return nil, fmt.Errorf("%s: %v s with edges of %v s; make the sweep longer or the edges shorter", where, seconds, rise)
+	if w.length < 2 || w.rise+w.fall > w.length {
+		return nil, fmt.Errorf("%s: %v s with a rise of %v s and a fall of %v s; make the sweep longer or those shorter",
+			where, seconds, s.RiseSeconds, s.FallSeconds)
 	}
 	return w, nil
 }
@@ -96,5 +106,5 @@ func (w *Sweep) at(i int) float64 {
 	}
 	turns := w.cycles(float64(i) / w.rate)
 	turns -= math.Floor(turns)
-	return w.peak * edge(i, w.length, w.edge) * math.Sin(2*math.Pi*turns)
+	return w.peak * rise(i, w.rise) * rise(w.length-1-i, w.fall) * math.Sin(2*math.Pi*turns)
 }

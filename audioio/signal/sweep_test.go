@@ -33,8 +33,8 @@ func TestSweepFigures(t *testing.T) {
 			t.Errorf("%s: %v, want %v", tt.what, tt.got, tt.want)
 		}
 	}
-	// 28924.0125 cycles in all (derived): so many rising zeros, of which the edges hide none
-	// at the top, where 20 ms hold 400 cycles of any level, and the first half cycle at the bottom.
+	// 28924.0125 cycles in all (derived): so many rising zeros, the one
+	// at the very beginning perhaps left out.
 	x := make([]float64, w.Len())
 	if _, err := w.ReadSamples(x); err != nil {
 		t.Fatal(err)
@@ -92,7 +92,7 @@ func TestNewSweepRefuses(t *testing.T) {
 		"NaN":             {48000, math.NaN(), 20000, 1, signal.SweepSettings{}},
 		"no time":         {48000, 20, 20000, 0, signal.SweepSettings{}},
 		"endless":         {48000, 20, 20000, math.Inf(1), signal.SweepSettings{}},
-		"edges too long":  {48000, 20, 20000, 1, signal.SweepSettings{EdgeSeconds: 0.6}},
+		"edges too long":  {48000, 20, 20000, 1, signal.SweepSettings{RiseSeconds: 0.6, FallSeconds: 0.6}},
 		"tail negative":   {48000, 20, 20000, 1, signal.SweepSettings{TailSeconds: -1}},
 		"too loud":        {48000, 20, 20000, 1, signal.SweepSettings{Peak: 1.5}},
 		"rate":            {10, 1, 2, 1, signal.SweepSettings{}},
