@@ -1,0 +1,34 @@
+package xover
+
+import "testing"
+
+// The distances are counted by hand; "ca" to "abc" is Damerau's case of a swap that is touched once more,
+// which costs three here, since no place may be touched twice.
+func TestEditDistance(t *testing.T) {
+	for _, test := range []struct {
+		a, b string
+		want int
+	}{
+		{"", "", 0}, {"", "abc", 3}, {"level", "level", 0}, {"levle", "level", 1}, {"lvel", "level", 1},
+		{"leevel", "level", 1}, {"label", "level", 2}, {"ca", "abc", 3}, {"höhe", "hohe", 1},
+	} {
+		if got := editDistance([]rune(test.a), []rune(test.b)); got != test.want {
+			t.Errorf("%q to %q is %d, want %d", test.a, test.b, got, test.want)
+		}
+		if got := editDistance([]rune(test.b), []rune(test.a)); got != test.want {
+			t.Errorf("%q to %q is %d, want %d", test.b, test.a, got, test.want)
+		}
+	}
+}
+
+func TestNearest(t *testing.T) {
+	known := []string{"L1", "C1", "C2", "level", "source", "rated_power"}
+	for name, want := range map[string]string{
+		"c1": "C1", "C9": "C1", "L9": "L1", "LEVEL": "level", "levl": "level", "ratedpower": "rated_power",
+		"x": "", "volume": "", "": "", "level": "",
+	} {
+		if got := nearest(name, known); got != want {
+			t.Errorf("nearest to %q is %q, want %q", name, got, want)
+		}
+	}
+}
