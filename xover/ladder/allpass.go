@@ -133,9 +133,9 @@ func flatness(x []complex128, t float64) []complex128 {
 		}
 		if 2*j <= n {
 			// κ(A + A* + B + B*), at s⁰ twice over
-			v += complex(2, 0) * g * a[2*j] * power(n-2*j)
+			v += 2 * g * a[2*j] * power(n-2*j)
 			if j == 0 {
-				v += complex(2, 0) * g * power(n)
+				v += 2 * g * power(n)
 			}
 		}
 		for i := 0; i+2*j <= n; i++ { // AB* + A*B

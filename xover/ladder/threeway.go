@@ -1,6 +1,7 @@
 package ladder
 
 import (
+	"errors"
 	"fmt"
 	"math"
 )
@@ -29,8 +30,10 @@ type ThreeWay struct {
 //	order 3, mid reversed:         fHigh > 2.77·fLow
 //	order 4, mid not reversed:     fHigh > 1.42·fLow
 //
-// and it is an error to ask for others. Near the limits they are of little use: the branches peak, or the
-// mid needs a large pad. fLow and fHigh are where the asymptotes of woofer and tweeter meet their pass bands.
+// and it is an error to ask for others. (Order 2 with the mid not reversed would need poles on the imaginary
+// axis; order 4 with the mid reversed has solutions, but their branches peak, by 13 dB at fHigh = 10·fLow, and more
+// the farther apart.) Near the limits the networks are of little use: the branches peak, or the mid needs a
+// large pad. fLow and fHigh are where the asymptotes of woofer and tweeter meet their pass bands.
 //
 // The outer branches have a polynomial and its mirror image for denominators, the mid has the product of the
 // two; the coefficients are those that make the magnitude of the sum 1. Where there are several such, they are the
@@ -70,10 +73,10 @@ func checkExists(order int, reversed bool, ratio float64) error {
 	switch {
 	case order < 1 || order > 4:
 		return fmt.Errorf("three-way: order is %d; give 1 to 4", order)
-	case order == 2 && !reversed, order == 4 && reversed:
-		// Order 2 would need lossless branches, order 4 branches that peak by 13 dB at a ratio of 10.
-		other := map[int]string{2: "reversed", 4: "not reversed"}[order]
-		return fmt.Errorf("three-way: order %d has no flat network with the mid %s; take the mid %s", order, polarity, other)
+	case order == 2 && !reversed:
+		return errors.New("three-way: order 2 has no flat network with the mid not reversed; reverse it")
+	case order == 4 && reversed:
+		return errors.New("three-way: order 4 has no flat network of use with the mid reversed, its ways would peak; do not reverse it")
 	case order == 2:
 		least = 2 // a² = 4(r-1)²/(r(r-2)) ends there
 	case order == 3 && reversed:

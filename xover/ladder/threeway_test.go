@@ -247,8 +247,8 @@ func TestThreeWayRefuses(t *testing.T) {
 	}{
 		{0, false, 300, 3000, "three-way: order is 0; give 1 to 4"},
 		{5, false, 300, 3000, "three-way: order is 5; give 1 to 4"},
-		{2, false, 300, 3000, "three-way: order 2 has no flat network with the mid not reversed; take the mid reversed"},
-		{4, true, 300, 3000, "three-way: order 4 has no flat network with the mid reversed; take the mid not reversed"},
+		{2, false, 300, 3000, "three-way: order 2 has no flat network with the mid not reversed; reverse it"},
+		{4, true, 300, 3000, "three-way: order 4 has no flat network of use with the mid reversed, its ways would peak; do not reverse it"},
 		{2, true, 300, 600, "three-way: order 2 with the mid reversed needs an upper frequency over 2 times the lower, not 2 times; move them apart"},
 		{3, true, 300, 810, "three-way: order 3 with the mid reversed needs an upper frequency over 2.77 times the lower, not 2.7 times; move them apart"},
 		{4, false, 300, 420, "three-way: order 4 with the mid not reversed needs an upper frequency over 1.42 times the lower, not 1.4 times; move them apart"},
