@@ -123,11 +123,16 @@ func newHeader(format audio.Format, s Settings) []byte {
 	case isFloat:
 		b = le.AppendUint16(b, 0)
 	}
-	if isFloat {
-		// Every format other than PCM carries the number of frames in a fact chunk.
+	if hasFact(b) {
 		b = append(b, "fact\x04\x00\x00\x00\xff\xff\xff\xff"...)
 	}
 	return append(b, "data\xff\xff\xff\xff"...)
+}
+
+// hasFact tells whether a header has a fact chunk with the number of frames: every
+// format tag other than plain PCM asks for one (IBM and Microsoft 1991).
+func hasFact(header []byte) bool {
+	return binary.LittleEndian.Uint16(header[20:]) != tagPCM
 }
 
 func channelMask(channels int, asked uint32) uint32 {
@@ -225,7 +230,7 @@ func (w *Writer) Close() error {
 	le, h := binary.LittleEndian, w.header
 	le.PutUint32(h[4:], uint32(int64(len(h)-8)+size+pad))
 	le.PutUint32(h[len(h)-4:], uint32(size))
-	if w.encoding.IsFloat() {
+	if hasFact(h) {
 		le.PutUint32(h[len(h)-12:], uint32(w.frames))
 	}
 	if _, err := w.w.Seek(w.base, io.SeekStart); err != nil {
