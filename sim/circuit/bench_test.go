@@ -88,6 +88,12 @@ func BenchmarkGradient(b *testing.B) {
 	for _, c := range sourceCases {
 		b.Run(c.name, func(b *testing.B) {
 			s := threeWaySweep(b, c.ohm)
+			if err := s.Solve(); err != nil {
+				b.Fatal(err)
+			}
+			if err := s.Gradient(); err != nil { // the first makes room
+				b.Fatal(err)
+			}
 			b.ReportAllocs()
 			for b.Loop() {
 				if err := s.Solve(); err != nil {

@@ -111,7 +111,11 @@ func (y *yardsticks) each(do func(*yardstick)) {
 // Networks with coupled coils have yardsticks of their own: the star-mesh form writes a mutual inductance as admittances
 // that all but cancel, and at 1 Hz, where they are largest, that costs digits. reference.py says how many.
 func TestAgainstReference(t *testing.T) {
-	networks := randomNetworks(1976, 180)
+	count := 180
+	if testing.Short() {
+		count = 36
+	}
+	networks := randomNetworks(1976, count)
 	three, err := loadThreeWay()
 	if err != nil {
 		t.Fatal(err)
