@@ -11,9 +11,10 @@ import (
 
 // Singly terminated low-pass prototypes, 1 rad/s, 1 Ω, from the source on. Their duals make the high-passes.
 var (
-	// Butterworth: zero-source ladders, as printed by L. Weinberg, "Additional Tables for Design of Optimum Ladder Networks", Part I,
-	// J. Franklin Inst. 264, 1957 (from memory); these are exact, from a_k = sin((2k-1)π/2n), c_k = cos²(kπ/2n), g_1 = a_1, g_k = a_k·a_(k-1)/(c_(k-1)·g_(k-1)), counted
-	// from the load.
+	// Butterworth: zero-source ladders, as printed by L. Weinberg, "Additional Tables for Design of Optimum
+	// Ladder Networks", Part I, J. Franklin Inst. 264, 1957 (from memory); these are exact, from a_k =
+	// sin((2k-1)π/2n), c_k = cos²(kπ/2n), g_1 = a_1, g_k = a_k·a_(k-1)/(c_(k-1)·g_(k-1)), counted from the
+	// load.
 	butterworth1 = butterworthLadder(1)
 	butterworth2 = butterworthLadder(2)
 	butterworth3 = butterworthLadder(3)
@@ -60,8 +61,9 @@ func twoWay(g []float64, fc, load float64, reversed bool) *xover.Design {
 	return d
 }
 
-// What the ways of the classic alignments do at the crossover: S. Linkwitz, "Active Crossover Networks for Noncoincident Drivers",
-// J. Audio Eng. Soc. 24(1), 2–8, 1976, for the pairs in phase and the odd orders in quadrature; the numbers are derived.
+// What the ways of the classic alignments do at the crossover: S. Linkwitz, "Active Crossover Networks for
+// Noncoincident Drivers", J. Audio Eng. Soc. 24(1), 2–8, 1976, for the pairs in phase and the odd orders in
+// quadrature; the numbers are derived.
 func TestAlignmentsAtTheCrossover(t *testing.T) {
 	const fc, load = 2000, 8
 	null := math.Inf(-1)
@@ -138,8 +140,8 @@ type allPass struct {
 	delay    func(w float64) float64
 }
 
-// first and second are the delays of all-passes of first order and of second order with a given Q, from the derivative of
-// their phases -2·atan(w) and -2·atan((w/Q)/(1 - w²)), by hand.
+// first and second are the delays of all-passes of first order and of second order with a given Q, from the
+// derivative of their phases -2·atan(w) and -2·atan((w/Q)/(1 - w²)), by hand.
 func first(w float64) float64 { return 2 / (1 + w*w) }
 
 func second(q float64) func(w float64) float64 {
@@ -208,7 +210,8 @@ func TestGroupDelayOfSums(t *testing.T) {
 	}
 }
 
-// What the pair looks like to the amplifier, since Re(1/Zin) is the power sum over R (lossless ladders, derived).
+// What the pair looks like to the amplifier, since Re(1/Zin) is the power sum over R (lossless ladders,
+// derived).
 func TestInputImpedanceOfPairs(t *testing.T) {
 	const fc, load = 1500, 8
 	freqs := logGrid([2]float64{fc / 30, fc * 30})

@@ -7,8 +7,9 @@ import (
 	"testing"
 )
 
-// EPDR over |Z| by angle in degrees, derived from the definition in E. Benjamin, "Audio Power Amplifiers for Loudspeaker
-// Loads", J. Audio Eng. Soc. 42(9), 670–683, 1994, as the numerical maximum of (V - V·sinθ)·(V/|z|)·sin(θ - φ).
+// EPDR over |Z| by angle in degrees, derived from the definition in E. Benjamin, "Audio Power Amplifiers for
+// Loudspeaker Loads", J. Audio Eng. Soc. 42(9), 670–683, 1994, as the numerical maximum of (V -
+// V·sinθ)·(V/|z|)·sin(θ - φ).
 func TestEPDR(t *testing.T) {
 	for _, tt := range []struct{ deg, ratio, of8, of4 float64 }{
 		{0, 1, 8, 4},

@@ -9,9 +9,10 @@ import (
 	"sixdown/xover"
 )
 
-// A first-order series crossover: woofer with a capacitor across it, in series with a tweeter with a coil across it. With L/C = R² each
-// way has the gain of the parallel first-order crossover and the amplifier sees R at every frequency: by hand, woofer and
-// tweeter sections are R/(1 + x) and Rx/(1 + x), x = s/ω0, which add up to R.
+// A first-order series crossover: woofer with a capacitor across it, in series with a tweeter with a coil
+// across it. With L/C = R² each way has the gain of the parallel first-order crossover and the amplifier sees R
+// at every frequency: by hand, woofer and tweeter sections are R/(1 + x) and Rx/(1 + x), x = s/ω0, which add up
+// to R.
 func TestSeriesCrossover(t *testing.T) {
 	const load, fc = 8.0, 1800.0
 	w := 2 * math.Pi * fc
@@ -33,8 +34,8 @@ func TestSeriesCrossover(t *testing.T) {
 	}
 }
 
-// Two coils in series that aid each other make L1 + L2 + 2·k·√(L1·L2); that they do so when the currents flow the way the
-// steps are written is what the sign of k means.
+// Two coils in series that aid each other make L1 + L2 + 2·k·√(L1·L2); that they do so when the currents flow
+// the way the steps are written is what the sign of k means.
 func TestCoupledCoils(t *testing.T) {
 	const l1, l2, k = 1e-3, 4e-3, 0.25
 	for _, tt := range []struct {
@@ -57,8 +58,8 @@ func TestCoupledCoils(t *testing.T) {
 	}
 }
 
-// The other road to the same numbers: the state equations, in which each driver is its equivalent circuit, know nothing of
-// the elimination or of Impedance.
+// The other road to the same numbers: the state equations, in which each driver is its equivalent circuit, know
+// nothing of the elimination or of Impedance.
 func TestStateSpaceAgrees(t *testing.T) {
 	d := benchDesign()
 	d.Drivers[0].LossR2, d.Drivers[0].LossL2 = 25, 1.5e-3

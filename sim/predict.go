@@ -8,13 +8,15 @@ import (
 	"sync"
 
 	"sixdown/sim/circuit"
+	"sixdown/xover/quantity"
 )
 
 // chunk is how many frequencies are worth a goroutine of their own; a chunk is some milliseconds of work.
 const chunk = 2048
 
-// nudge is the relative step up and down of a frequency between which a group delay is taken. The central difference is off by
-// nudge²·(ωτ)‴/6 or so, some 1e-9 at crossover-like slopes, and rounding adds about 1e-15/(nudge·ωτ).
+// nudge is the relative step up and down of a frequency between which a group delay is taken. The central
+// difference is off by nudge²·(ωτ)‴/6 or so, some 1e-9 at crossover-like slopes, and rounding adds about
+// 1e-15/(nudge·ωτ).
 const nudge = 1e-5
 
 // Predict answers at freqs, in Hz, each > 0 and finite, in any order; it keeps a copy. Long grids are shared
@@ -138,9 +140,9 @@ func (s *System) Sums() bool {
 	return s.tone == nil
 }
 
-// Pressures stores in dst[k] the pressure in Pa rms at the ear that way i gives at freqs[k], in Hz, for a gain of 1
-// at the drive's level; so what it gives is this times its gain. len(dst) must be len(freqs), and the way must sound,
-// else Pressures panics. It allocates nothing.
+// Pressures stores in dst[k] the pressure in Pa rms at the ear that way i gives at freqs[k], in Hz, for a gain
+// of 1 at the drive's level; so what it gives is this times its gain. len(dst) must be len(freqs), and the way
+// must sound, else Pressures panics. It allocates nothing.
 func (s *System) Pressures(dst []complex128, i int, freqs []float64) {
 	if len(dst) != len(freqs) {
 		panic("sim: Pressures: dst and freqs differ in length")
@@ -167,20 +169,23 @@ func (s *System) rangeWarnings(freqs []float64) []string {
 			}
 			seen[t.Name()] = true
 			from, to := t.Range()
-			const tell = "%s: the table %s at %.4g Hz; from there to %.4g Hz the slope of its last third of an octave is carried on, which is invented"
+			const tell = "%s: the table %s at %s; from there to %s the slope of its nearest third of an octave is carried on, which is invented"
 			if lo < from {
-				ws = append(ws, fmt.Sprintf(tell, t.Name(), "begins", from, lo))
+				ws = append(ws, fmt.Sprintf(tell, t.Name(), "begins", hertz(from), hertz(lo)))
 			}
 			if hi > to {
-				ws = append(ws, fmt.Sprintf(tell, t.Name(), "ends", to, hi))
+				ws = append(ws, fmt.Sprintf(tell, t.Name(), "ends", hertz(to), hertz(hi)))
 			}
 		}
 	}
 	return ws
 }
 
-// at answers at the one frequency f in Hz: the ways' gains and pressures, the sum and the input impedance. The slices are
-// new; p and sum are nil and 0 where there is no sound.
+// hertz writes a frequency in Hz for a message.
+func hertz(f float64) string { return quantity.Round(f, quantity.Hertz, 3) }
+
+// at answers at the one frequency f in Hz: the ways' gains and pressures, the sum and the input impedance. The
+// slices are new; p and sum are nil and 0 where there is no sound.
 func (s *System) at(f float64) (*instant, error) {
 	pt, err := s.circuit.At(complex(0, 2*math.Pi*f))
 	if err != nil {

@@ -3,8 +3,8 @@ package sim
 import "math"
 
 // root returns where g, a function of frequency in Hz, changes sign between lo and hi, by bisection in log
-// frequency down to neighbouring floating-point numbers or nearly so. It is slower than the methods that guess the shape of g, and cannot be
-// misled by it: a gain that falls to 0, whose level is -Inf, does it no harm.
+// frequency down to neighbouring floating-point numbers or nearly so. It is slower than the methods that guess
+// the shape of g, and cannot be misled by it: a gain that falls to 0, whose level is -Inf, does it no harm.
 func root(lo, hi float64, g func(f float64) (float64, error)) (float64, error) {
 	gLo, err := g(lo)
 	if err != nil {
@@ -32,8 +32,9 @@ func root(lo, hi float64, g func(f float64) (float64, error)) (float64, error) {
 }
 
 // minimum returns where g, a function of frequency in Hz that has one minimum between lo and hi, has it, by
-// golden section: J. Kiefer, "Sequential Minimax Search for a Maximum", Proc. Amer. Math. Soc. 4, 502–506, 1953. Values near a minimum differ too
-// little to tell its place to more than half the digits, so that is where it stops.
+// golden section: J. Kiefer, "Sequential Minimax Search for a Maximum", Proc. Amer. Math. Soc. 4, 502–506,
+// 1953. Values near a minimum differ too little to tell its place to more than half the digits, so that is
+// where it stops.
 func minimum(lo, hi float64, g func(f float64) (float64, error)) (float64, error) {
 	const golden = 0.6180339887498949 // (√5 - 1)/2
 	x1, x2 := hi-golden*(hi-lo), lo+golden*(hi-lo)

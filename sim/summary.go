@@ -21,8 +21,8 @@ type Summary struct {
 	Tone      *ToneSummary // nil for a loudspeaker
 }
 
-// A Crossing is where two neighbouring ways are equally loud: at the ear if every way has an acoustic output, else
-// at their drivers' terminals.
+// A Crossing is where two neighbouring ways are equally loud: at the ear if every way has an acoustic output,
+// else at their drivers' terminals.
 type Crossing struct {
 	Low, High string  // the way that leads below, and the one that leads above
 	Frequency float64 // Hz
@@ -53,8 +53,8 @@ const gridPerOctave = 48
 // halfPower is 10·lg 2.
 const halfPower = 3.0102999566398120
 
-// Summary looks over band, from and to in Hz; a zero band is 20 Hz to 20 kHz. Frequencies that it gives are refined
-// from a grid of 48 points an octave to the last few digits, so that they do not depend on it.
+// Summary looks over band, from and to in Hz; a zero band is 20 Hz to 20 kHz. Frequencies that it gives are
+// refined from a grid of 48 points an octave to the last few digits, so that they do not depend on it.
 func (s *System) Summary(band [2]float64) (*Summary, error) {
 	if band == [2]float64{} {
 		band = [2]float64{20, 20e3}
@@ -90,7 +90,8 @@ func (s *System) Summary(band [2]float64) (*Summary, error) {
 	return sum, nil
 }
 
-// logGrid returns frequencies from band[0] to band[1], equally spaced in log frequency, gridPerOctave or a little more to the octave.
+// logGrid returns frequencies from band[0] to band[1], equally spaced in log frequency, gridPerOctave or a
+// little more to the octave.
 func logGrid(band [2]float64) []float64 {
 	n := int(math.Ceil(gridPerOctave*math.Log2(band[1]/band[0]))) + 1
 	n = max(n, 2)
@@ -132,8 +133,8 @@ func (s *System) lowest(r *Response, size func(complex128) float64) (value, at f
 	return value, at, nil
 }
 
-// lead is how much louder, in dB, another way must be for the lead to have passed to it: two drivers side by side are not a
-// crossing, however rounding orders them.
+// lead is how much louder, in dB, another way must be for the lead to have passed to it: two drivers side by
+// side are not a crossing, however rounding orders them.
 const lead = 0.5
 
 // crossings finds where the lead passes from way to way.
@@ -161,19 +162,17 @@ func (s *System) crossings(r *Response) ([]Crossing, error) {
 		if !(levels[next][k] > levels[leader][k]+lead) {
 			continue
 		}
-		// The two were last equal somewhere before k.
+		// The leader was the loudest when it became the leader, so going back from k there is a place where it
+		// still leads.
 		j := k - 1
-		for j > 0 && levels[next][j] > levels[leader][j] {
+		for levels[next][j] > levels[leader][j] {
 			j--
 		}
-		// If they were not, the lead was next's from the start, by less than counts.
-		if j >= 0 && !(levels[next][j] > levels[leader][j]) {
-			c, err := s.crossing(leader, next, r.Freqs[j], r.Freqs[j+1])
-			if err != nil {
-				return nil, err
-			}
-			found = append(found, c)
+		c, err := s.crossing(leader, next, r.Freqs[j], r.Freqs[j+1])
+		if err != nil {
+			return nil, err
 		}
+		found = append(found, c)
 		leader = next
 	}
 	return found, nil
@@ -200,8 +199,8 @@ func (s *System) crossing(low, high int, from, to float64) (Crossing, error) {
 	}, nil
 }
 
-// pair returns what two ways give at f in Hz, and what that counts against: pressures and their sum if there is one, else
-// gains and 1.
+// pair returns what two ways give at f in Hz, and what that counts against: pressures and their sum if there is
+// one, else gains and 1.
 func (s *System) pair(i, j int, f float64) (a, b, whole complex128, err error) {
 	in, err := s.at(f)
 	switch {

@@ -42,8 +42,9 @@ const (
 	tuneBandTo      = 20e3 // Hz
 )
 
-// New makes a System of a design. open opens the driver tables that the design names, by the name it gives them; it may be nil
-// if there are none. New keeps neither. The error names what in the design cannot be simulated and what to do instead.
+// New makes a System of a design. open opens the driver tables that the design names, by the name it gives
+// them; it may be nil if there are none. New keeps neither. The error names what in the design cannot be
+// simulated and what to do instead.
 func New(d *xover.Design, open func(name string) (io.ReadCloser, error)) (*System, error) {
 	s := &System{
 		title:    d.Title,
@@ -183,7 +184,8 @@ func (s *System) Title() string { return s.title }
 func (s *System) Level() float64 { return s.level }
 
 // Warnings returns what the builder should know about the answers, a sentence each: rows of tables that were
-// passed over, what the design asks that is left out. What Predict had to invent outside a table is in its Response.
+// passed over, what the design asks that is left out. What Predict had to invent outside a table is in its
+// Response.
 func (s *System) Warnings() []string { return slices.Clone(s.warnings) }
 
 // Netlist returns a copy of the circuit, its one-ports shared.

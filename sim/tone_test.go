@@ -35,8 +35,8 @@ const (
 	stackC1, stackC2, stackC3          = 330e-12, 47e-9, 22e-9
 )
 
-// stackGain is the same network in closed form: D. T. Yeh and J. O. Smith, Proc. DAFx-06, Montreal, 2006 (from memory; derived again from
-// the arrangement by symbolic nodal analysis, the seven coefficients agree).
+// stackGain is the same network in closed form: D. T. Yeh and J. O. Smith, Proc. DAFx-06, Montreal, 2006 (from
+// memory; derived again from the arrangement by symbolic nodal analysis, the seven coefficients agree).
 func stackGain(s complex128, t, m, l float64) complex128 {
 	const (
 		R1, R2, R3, R4 = stackR1, stackR2, stackR3, stackR4
@@ -84,8 +84,9 @@ func bass(p xover.Part, at float64) *xover.Design {
 	}
 }
 
-// The arrangement is E. J. James's, "Simple Tone Control Circuit", Wireless World, Feb. 1949 (from memory); the levels are derived from
-// the divider for R1 100k, track 1M, R2 10k, C1 2.2 nF, C2 22 nF, unloaded, and printed to 0.001 dB.
+// The arrangement is E. J. James's, "Simple Tone Control Circuit", Wireless World, Feb. 1949 (from memory); the
+// levels are derived from the divider for R1 100k, track 1M, R2 10k, C1 2.2 nF, C2 22 nF, unloaded, and printed
+// to 0.001 dB.
 func TestBassControl(t *testing.T) {
 	logPot := pot("P1", 1e6)
 	logPot.Taper = xover.Log
@@ -108,7 +109,8 @@ func TestBassControl(t *testing.T) {
 	}
 }
 
-// A potentiometer with two ends in use is a variable resistance, its value times the fraction; it stands half way if no control names it.
+// A potentiometer with two ends in use is a variable resistance, its value times the fraction; it stands half
+// way if no control names it.
 func TestVariableResistance(t *testing.T) {
 	d := &xover.Design{
 		Parts: []xover.Part{pot("P1", 30e3), resistor("R1", 10e3)},

@@ -85,7 +85,8 @@ func (l *line) at(x float64) float64 {
 }
 
 // unwrap returns phases in rad of the given angles in degrees, each within half a turn of the one before it,
-// and the indices of rows where the turn from the row before is more than three eighths: there the way round is a guess.
+// and the indices of rows where the turn from the row before is more than three eighths: there the way round is
+// a guess.
 func unwrap(deg []float64) (rad []float64, doubtful []int) {
 	const tooFar = 0.75 * math.Pi
 	rad = make([]float64, len(deg))

@@ -36,8 +36,9 @@ func TestMotionalBranch(t *testing.T) {
 	}
 }
 
-// Qs read back from the impedance curve as one reads them from a measured one: f1 and f2 are where |Z| = √r0·Re either side of
-// fs, r0 = Zmax/Re; f1·f2 = fs², Qms = fs·√r0/(f2 - f1), Qes = Qms/(r0 - 1). Small (1972), from memory.
+// Qs read back from the impedance curve as one reads them from a measured one: f1 and f2 are where |Z| = √r0·Re
+// either side of fs, r0 = Zmax/Re; f1·f2 = fs², Qms = fs·√r0/(f2 - f1), Qes = Qms/(r0 - 1). Small (1972), from
+// memory.
 func TestQsFromTheCurve(t *testing.T) {
 	sheet := wooferA
 	sheet.Le = 0
@@ -60,8 +61,8 @@ func TestQsFromTheCurve(t *testing.T) {
 	near(t, "Qms", sheet.Fs*math.Sqrt(r0)/(f2-f1), sheet.Qms, 1e-10)
 }
 
-// The equivalent circuit and the formula are two writings of one thing: here the circuit is worked out branch by
-// branch from its elements.
+// The equivalent circuit and the formula are two writings of one thing: here the circuit is worked out branch
+// by branch from its elements.
 func TestElementsGiveTheImpedance(t *testing.T) {
 	lossy := DataSheet{Re: 6.1, Le: 0.2e-3, LossR2: 20, LossL2: 1.6e-3, Fs: 48, Qms: 5, Qes: 0.6}
 	for name, load := range map[string]Load{
@@ -106,21 +107,23 @@ func TestElementsGiveTheImpedance(t *testing.T) {
 }
 
 func TestImpedanceLimits(t *testing.T) {
-	// At DC the suspension shorts the motional branch and Re is left; far above all resonances, so does the mass,
-	// and sLe is left to Re. By hand.
+	// At DC the suspension shorts the motional branch and Re is left; far above all resonances, so does the
+	// mass, and sLe is left to Re. By hand.
 	nearC(t, "toward DC", wooferA.Impedance(complex(1e-9, 0)), 5.6, 1e-9)
 	nearC(t, "at s = 0", wooferA.Impedance(0), 5.6, 0)
 	nearC(t, "toward infinity", wooferA.Impedance(complex(1e12, 0)), complex(5.6+0.7e9, 0), 1e-9)
 }
 
-// Semi-inductor K·(jω)^n with K = 0.02, n = 0.7 (illustrative, derived): at 1 kHz 4.13812 + j8.12151 Ω, which is 20.0775 Ω
-// in parallel with 1.62815 mH. The form is W. M. Leach Jr., J. Audio Eng. Soc. 50(6), 442–450, 2002.
+// Semi-inductor K·(jω)^n with K = 0.02, n = 0.7 (illustrative, derived): at 1 kHz 4.13812 + j8.12151 Ω, which
+// is 20.0775 Ω in parallel with 1.62815 mH. The form is W. M. Leach Jr., J. Audio Eng. Soc. 50(6), 442–450,
+// 2002.
 func TestLossyCoil(t *testing.T) {
 	d := DataSheet{Re: 1, LossR2: 20.0775, LossL2: 1.62815e-3}
 	nearC(t, "Z(1 kHz) - Re", d.Impedance(jw(1000))-1, complex(4.13812, 8.12151), 1e-5) // six printed figures
 }
 
-// Closed boxes, derived from Small, "Closed-Box Loudspeaker Systems" (1972): fc = fs·√(1 + Vas/Vb), Qtc = Qts·√(1 + Vas/Vb).
+// Closed boxes, derived from Small, "Closed-Box Loudspeaker Systems" (1972): fc = fs·√(1 + Vas/Vb), Qtc =
+// Qts·√(1 + Vas/Vb).
 func TestClosedBox(t *testing.T) {
 	qts := func(d DataSheet) float64 { return d.Qms * d.Qes / (d.Qms + d.Qes) }
 	sheet := func(fs, q float64) DataSheet { // any split of Qts does

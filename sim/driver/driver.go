@@ -14,8 +14,8 @@ type Load interface {
 // A Radiator is what a driver gives to the air.
 type Radiator interface {
 	// Pressure returns the sound pressure in Pa for each volt across the terminals at the frequency f in Hz
-	// (both rms, so the ratio is that of peaks too), with its phase. It refers to 1 m from the acoustic centre, flight
-	// time taken out, or for a ResponseTable to where the microphone stood and to the table's own time
+	// (both rms, so the ratio is that of peaks too), with its phase. It refers to 1 m from the acoustic centre,
+	// flight time taken out, or for a ResponseTable to where the microphone stood and to the table's own time
 	// base. It allocates nothing.
 	Pressure(f float64) complex128
 }

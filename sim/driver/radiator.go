@@ -5,8 +5,8 @@ import "math"
 // ReferencePressure is the rms sound pressure in Pa at 0 dB SPL (ISO 1683).
 const ReferencePressure = 20e-6
 
-// ReferenceVoltage is the rms voltage across the terminals to which sensitivities and measured responses refer: 1 W
-// into 8 Ω, rounded as the trade does.
+// ReferenceVoltage is the rms voltage across the terminals to which sensitivities and measured responses refer:
+// 1 W into 8 Ω, rounded as the trade does.
 const ReferenceVoltage = 2.83
 
 // pascal returns the pressure in Pa for each volt of a driver that makes spl dB at ReferenceVoltage.

@@ -52,10 +52,10 @@ func (e *TableError) Error() string {
 // ReadTable reads a table of two or three columns: frequency in Hz, a value, and the phase in degrees.
 //
 // Columns are parted by spaces, tabs, commas or semicolons; what follows the third is not looked at. Lines that
-// begin with a letter or with one of * # ; " ' ! % / [ are comments, as is any line without numbers before the first row.
-// Line ends may be LF, CR LF or CR; a byte-order mark is passed over. Numbers have a decimal
-// point: a decimal comma is refused, since 20,5 might as well be two columns. Rows are put in rising order; a row that repeats
-// a frequency, and one at 0 Hz, is passed over with a note.
+// begin with a letter or with one of * # ; " ' ! % / [ are comments, as is any line without numbers before the
+// first row. Line ends may be LF, CR LF or CR; a byte-order mark is passed over. Numbers have a decimal point:
+// a decimal comma is refused, since 20,5 might as well be two columns. Rows are put in rising order; a row that
+// repeats a frequency, and one at 0 Hz, is passed over with a note.
 //
 // The error is a *TableError, or wraps what r returned. name is used in messages only.
 func ReadTable(name string, r io.Reader) (*Table, error) {
@@ -183,7 +183,8 @@ func (p *tableParser) row(line string) error {
 	return nil
 }
 
-// split parts a line into fields, and refuses those in which a comma may be a decimal comma or may part thousands.
+// split parts a line into fields, and refuses those in which a comma may be a decimal comma or may part
+// thousands.
 func (p *tableParser) split(line string) ([]string, error) {
 	fields := strings.FieldsFunc(line, func(r rune) bool {
 		return r == ',' || r == ';' || unicode.IsSpace(r)
@@ -286,5 +287,13 @@ func (t *Table) doubts(rows []int) []string {
 		return nil
 	}
 	r := t.Rows[rows[0]]
-	return []string{fmt.Sprintf("%s:%d: the phase turns by more than 135 degrees from one row to the next near %.4g Hz, so which way it went is a guess; take the flight time out, or measure in finer steps", t.Name, r.Line, r.Frequency)}
+	return []string{fmt.Sprintf("%s:%d: the phase turns by more than 135 degrees from one row to the next near %s Hz, so which way it went is a guess; take the flight time out, or measure in finer steps", t.Name, r.Line, hertz(r.Frequency))}
+}
+
+// hertz writes a frequency in Hz for a message, to about four figures and without an exponent.
+func hertz(f float64) string {
+	if f >= 1000 {
+		return strconv.FormatFloat(f, 'f', 0, 64)
+	}
+	return strconv.FormatFloat(f, 'g', 4, 64)
 }

@@ -6,7 +6,7 @@ import (
 	"math/cmplx"
 )
 
-// An ImpedanceTable is a measured impedance: |Z| in Ω and its angle, interpolated as package curve says. It
+// An ImpedanceTable is a measured impedance: |Z| in Ω and its angle, interpolated as said of type curve. It
 // has no equivalent circuit.
 type ImpedanceTable struct {
 	name   string
@@ -47,9 +47,9 @@ func NewImpedanceTable(t *Table) (*ImpedanceTable, error) {
 	return z, nil
 }
 
-// Impedance returns the interpolated impedance at s = ±j2πf. At a real s it is a resistance, the magnitude in the row at the
-// nearer end of the table; elsewhere off the jω axis, where a table says nothing, the value at |s| stands in.
-// Outside the table the angle stays within ±90°, as a passive load's must.
+// Impedance returns the interpolated impedance at s = ±j2πf. At a real s it is a resistance, the magnitude in
+// the row at the nearer end of the table; elsewhere off the jω axis, where a table says nothing, the value at
+// |s| stands in. Outside the table the angle stays within ±90°, as a passive load's must.
 func (z *ImpedanceTable) Impedance(s complex128) complex128 {
 	f := cmplx.Abs(s) / (2 * math.Pi)
 	if imag(s) == 0 {

@@ -45,9 +45,10 @@ func mustResponse(t testing.TB, src string) *ResponseTable {
 	return r
 }
 
-// A table of a woofer whose impedance is known in closed form (Small 1972): in its rows it must say what the table says,
-// and between them what the woofer does. The bound between rows is what a table with 24 rows an octave is worth: 0.1 % and
-// 0.1°, a tenth of what an ordinary measuring rig reads. Straight lines would miss the peak by 0.5 %.
+// A table of a woofer whose impedance is known in closed form (Small 1972): in its rows it must say what the
+// table says, and between them what the woofer does. The bound between rows is what a table with 24 rows an
+// octave is worth: 0.1 % and 0.1°, a tenth of what an ordinary measuring rig reads. Straight lines would miss
+// the peak by 0.5 %.
 func TestImpedanceTable(t *testing.T) {
 	woofer := func(f float64) complex128 { return wooferA.Impedance(jw(f)) }
 	rows := grid(10, 20e3, 264)
@@ -70,14 +71,16 @@ func TestImpedanceTable(t *testing.T) {
 	nearC(t, "at -jω", z.Impedance(-jw(100)), cmplx.Conj(z.Impedance(jw(100))), 0)
 }
 
-// A coil's impedance is a straight line in log frequency, so it must be met between the rows and beyond both ends.
+// A coil's impedance is a straight line in log frequency, so it must be met between the rows and beyond both
+// ends.
 func TestPowerLawIsExact(t *testing.T) {
 	coil := func(f float64) complex128 { return jw(f) * 1e-3 }
 	z := mustImpedance(t, impedanceFile(grid(100, 10e3, 30), coil))
 	for _, f := range []float64{1, 50, 123, 4567, 20e3, 1e6} {
 		nearC(t, fmt.Sprintf("%g Hz", f), z.Impedance(jw(f)), coil(f), 1e-9) // 12 figures were written
 	}
-	// 12 dB an octave up to a level of 90 dB at 1 kHz, then level: beyond the ends the third of an octave nearest carries on.
+	// 12 dB an octave up to a level of 90 dB at 1 kHz, then level: beyond the ends the third of an octave
+	// nearest carries on.
 	r := mustResponse(t, "125 54 180\n250 66 180\n500 78 180\n1000 90 180\n2000 90 0\n4000 90 0\n8000 90 0\n")
 	for f, want := range map[float64]float64{62.5: 42, 31.25: 30, 16e3: 90, 64e3: 90} {
 		p := r.Pressure(f) * 2.83 / 20e-6
@@ -181,7 +184,8 @@ func TestTablesAllocateNothing(t *testing.T) {
 	}
 }
 
-// FuzzTable: whatever the file holds, it is refused with an error, or the load and radiator made of it are finite everywhere.
+// FuzzTable: whatever the file holds, it is refused with an error, or the load and radiator made of it are
+// finite everywhere.
 func FuzzTable(f *testing.F) {
 	for _, seed := range []string{
 		"20 8 0\n30 9 10\n", "* c\r\n20,8,0\r\n", "20;8;0\n", "\uFEFF20\t8\t0", "20,5 8,1 0\n", "1e9 1e-300 1e7\n",

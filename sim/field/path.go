@@ -29,18 +29,19 @@ type Path struct {
 	Delay float64 // s, later than the common flight time; may be negative
 }
 
-// FromOneMetre returns the path of a driver at the acoustic centre at, whose pressure is known 1 m from that centre
-// without flight time: the pressure falls as 1/r, and the delay is that of r less the listening distance.
-// The driver must not be at the ear.
+// FromOneMetre returns the path of a driver at the acoustic centre at, whose pressure is known 1 m from that
+// centre without flight time: the pressure falls as 1/r, and the delay is that of r less the listening
+// distance. The driver must not be at the ear.
 func (l Listener) FromOneMetre(at Point) Path {
 	r := at.Distance(l.Ear())
 	return Path{Gain: 1 / r, Delay: (r - l.Distance) / l.SoundSpeed}
 }
 
-// FromMicrophone returns the path of a driver at the acoustic centre at, whose pressure was measured at mic. The file's phase
-// holds the flight to the microphone already, on a time base common to all drivers measured from there, so
-// what counts is how much farther the ear is, less what is common: the listening distance less the microphone's distance from the origin. For an ear
-// at the microphone's place on the z axis the path is 1 exactly. The driver must be neither at the ear nor at the microphone.
+// FromMicrophone returns the path of a driver at the acoustic centre at, whose pressure was measured at mic.
+// The file's phase holds the flight to the microphone already, on a time base common to all drivers measured
+// from there, so what counts is how much farther the ear is, less what is common: the listening distance less
+// the microphone's distance from the origin. For an ear at the microphone's place on the z axis the path is 1
+// exactly. The driver must be neither at the ear nor at the microphone.
 func (l Listener) FromMicrophone(at, mic Point) Path {
 	r, m := at.Distance(l.Ear()), at.Distance(mic)
 	return Path{

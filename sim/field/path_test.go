@@ -14,7 +14,8 @@ func near(t *testing.T, what string, got, want, abs float64) {
 	}
 }
 
-// By hand, from the 3-4-5 triangle: the driver is 1.5 m below the ear's height and the ear 2 m away, so r = 2.5 m.
+// By hand, from the 3-4-5 triangle: the driver is 1.5 m below the ear's height and the ear 2 m away, so r = 2.5
+// m.
 func TestFromOneMetre(t *testing.T) {
 	l := Listener{Distance: 2, Height: 0.5, SoundSpeed: 343}
 	p := l.FromOneMetre(Point{0, -1, 0})
@@ -37,7 +38,8 @@ func TestFromMicrophone(t *testing.T) {
 		near(t, "gain", p.Gain, 1, 0)
 		near(t, "delay", p.Delay, 0, 0)
 	}
-	// Twice as far along the axis from a driver at the origin: half the pressure, and the added flight is common to all drivers.
+	// Twice as far along the axis from a driver at the origin: half the pressure, and the added flight is
+	// common to all drivers.
 	far := Listener{Distance: 2, SoundSpeed: 343}
 	p := far.FromMicrophone(Point{}, Point{0, 0, 1})
 	near(t, "gain at twice the distance", p.Gain, 0.5, 1e-15)
@@ -49,8 +51,9 @@ func TestFromMicrophone(t *testing.T) {
 }
 
 // Two point drivers a wavelength apart, in phase, seen from afar: S. Linkwitz, "Active Crossover Networks for
-// Noncoincident Drivers", J. Audio Eng. Soc. 24(1), 2–8, 1976. The main lobe is on the axis, the first nulls at sinθ = λ/2d, so at 30° (derived).
-// In quadrature the lobe tilts toward the lagging driver by sinθ = λ/4d, 14.48°, where it is 3.01 dB up on the axis, and there is a null on the other side.
+// Noncoincident Drivers", J. Audio Eng. Soc. 24(1), 2–8, 1976. The main lobe is on the axis, the first nulls at
+// sinθ = λ/2d, so at 30° (derived). In quadrature the lobe tilts toward the lagging driver by sinθ = λ/4d,
+// 14.48°, where it is 3.01 dB up on the axis, and there is a null on the other side.
 func TestLobes(t *testing.T) {
 	const d, c, far = 0.343, 343.0, 1e4 // λ = d at 1 kHz; the far field to within d²/far
 	sum := func(theta float64, upper complex128) float64 {
