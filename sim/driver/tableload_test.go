@@ -91,6 +91,33 @@ func TestPowerLawIsExact(t *testing.T) {
 	}
 }
 
+// With equally spaced rows Akima's slopes are exact for a parabola, at the ends too (by hand: both weights are
+// equal and each slope is the mean of its neighbours'), so a rounded peak between two rows must be met, not cut
+// off.
+func TestPeakBetweenRows(t *testing.T) {
+	var b strings.Builder
+	for k := -3.5; k <= 3.5; k++ {
+		fmt.Fprintf(&b, "%.15g %.15g 0\n", 1000*math.Exp2(k/3), 90-0.25*k*k)
+	}
+	r := mustResponse(t, b.String())
+	for _, k := range []float64{-3.2, -1, 0, 0.3, 2} {
+		p := r.Pressure(1000*math.Exp2(k/3)) * 2.83 / 20e-6
+		near(t, fmt.Sprintf("row %g", k), 20*math.Log10(cmplx.Abs(p)), 90-0.25*k*k, 1e-12)
+	}
+}
+
+// Beyond a row at the end the slope of the third of an octave next to it carries on, not that of a wider
+// stretch: 10 dB down in the first third of an octave is 30 dB an octave, 3 dB up in the last one is 9 dB an
+// octave.
+func TestSlopeOfTheNearestThirdOctave(t *testing.T) {
+	third := math.Cbrt(2)
+	r := mustResponse(t, fmt.Sprintf("1000 90 0\n%.15g 80 0\n%.15g 82 0\n%.15g 85 0\n", 1000*third, 1000*third*third, 2000.0))
+	for f, want := range map[float64]float64{500: 120, 250: 150, 4000: 94, 8000: 103} {
+		p := r.Pressure(f) * 2.83 / 20e-6
+		near(t, fmt.Sprintf("%g Hz", f), 20*math.Log10(cmplx.Abs(p)), want, 1e-12)
+	}
+}
+
 // The phase of 1 ms of delay, wrapped as files have it, is followed through its jumps.
 func TestPhaseIsUnwrapped(t *testing.T) {
 	delay := func(f float64) complex128 { return cmplx.Rect(1, -2*math.Pi*f*1e-3) }
