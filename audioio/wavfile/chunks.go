@@ -15,7 +15,7 @@ const (
 
 	// maxChunks bounds the walk to the data chunk, so that a file made of
 	// empty chunks cannot keep the reader busy. Real files have below a dozen.
-	maxChunks = 10_000
+	maxChunks = 1000
 )
 
 // bytesIn is a source of bytes that knows where it stands and, if it can seek,
