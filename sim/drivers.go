@@ -152,11 +152,11 @@ func (sp *speaker) setRadiator(d *xover.Driver, sheet driver.DataSheet, l field.
 	case !d.HasSensitivity:
 		return nil
 	case sheet.Fs == 0:
-		sp.radiator = driver.Flat(d.Sensitivity)
+		sp.radiator = driver.NewFlat(d.Sensitivity)
 	case sheet.Re == 0:
 		return fmt.Errorf("driver %q: fs is given without re; give re too", d.Name)
 	default:
-		sp.radiator = driver.Sheet{DataSheet: sheet, Sensitivity: d.Sensitivity}
+		sp.radiator = driver.NewSheet(sheet, d.Sensitivity)
 	}
 	return nil
 }

@@ -171,11 +171,11 @@ func TestAccelerationIsAHighPass(t *testing.T) {
 func TestSensitivity(t *testing.T) {
 	// By definition: 91 dB re 20 µPa for 2.83 V.
 	want := complex(20e-6*math.Pow(10, 91.0/20), 0)
-	nearC(t, "flat", Flat(91).Pressure(1234)*2.83, want, 1e-14)
-	tweeter := Sheet{DataSheet: DataSheet{Re: 5.4, Fs: 850, Qms: 3.1, Qes: 1.2}, Sensitivity: 91}
+	nearC(t, "flat", NewFlat(91).Pressure(1234)*2.83, want, 1e-14)
+	tweeter := NewSheet(DataSheet{Re: 5.4, Fs: 850, Qms: 3.1, Qes: 1.2}, 91)
 	// A thousand times above resonance the high-pass is within (fs/f)/Qts of 1, in quadrature.
 	nearC(t, "sheet, far above resonance", tweeter.Pressure(850e3)*2.83, want, 2e-3)
-	nearC(t, "no resonance given", Sheet{DataSheet: DataSheet{Re: 6}, Sensitivity: 91}.Pressure(50)*2.83, want, 1e-14)
+	nearC(t, "no resonance given", NewSheet(DataSheet{Re: 6}, 91).Pressure(50)*2.83, want, 1e-14)
 }
 
 func ExampleDataSheet() {
