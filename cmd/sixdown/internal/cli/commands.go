@@ -1,0 +1,19 @@
+package cli
+
+import "github.com/spf13/cobra"
+
+// A commandGroup is a part of the builder's work and its commands.
+type commandGroup struct {
+	title    string
+	commands []*cobra.Command
+}
+
+// commandGroups makes every command. The help lists the groups in this order, and in each the commands by name.
+func commandGroups(s *streams) []commandGroup {
+	return []commandGroup{
+		{"Begin and predict:", []*cobra.Command{
+			newPredictCmd(s),
+		}},
+		{"Hear and check:", []*cobra.Command{}},
+	}
+}
