@@ -209,22 +209,21 @@ const (
 // valueFault says what is wrong with a value in SI units, and how to mend it; "" if nothing is. Beside the
 // sign it checks that the value is one that exists: a resistance of 1e12 Ω is a slip of the prefix.
 func valueFault(v float64, unit quantity.Unit, rule sign) (what, mend string) {
-	text := quantity.Format(v, unit)
+	least, most := plausible(unit)
 	switch {
 	case math.IsNaN(v) || math.IsInf(v, 0):
-		return text + " is not finite", "give a finite value"
+		what, mend = "is not finite", "give a finite value"
 	case rule == positive && !(v > 0):
-		return text + " is not above zero", "give a positive value"
+		what, mend = "is not above zero", "give a positive value"
 	case rule == notNegative && v < 0:
-		return text + " is negative", "give zero or a positive value"
-	case v == 0:
+		what, mend = "is negative", "give zero or a positive value"
+	case v != 0 && (math.Abs(v) < least || math.Abs(v) > most):
+		what, mend = "is beyond what can be", fmt.Sprintf("check the prefix; %s is between %s and %s",
+			unit.Noun(), quantity.Format(least, unit), quantity.Format(most, unit))
+	default:
 		return "", ""
 	}
-	if least, most := plausible(unit); math.Abs(v) < least || math.Abs(v) > most {
-		return text + " is beyond what can be", fmt.Sprintf("check the prefix; %s is between %s and %s",
-			unit.Noun(), quantity.Format(least, unit), quantity.Format(most, unit))
-	}
-	return "", ""
+	return quantity.Format(v, unit) + " " + what, mend
 }
 
 // plausible returns the bounds of what a magnitude other than zero may be. They are generous; within them no
