@@ -4,6 +4,8 @@ import (
 	"fmt"
 	"slices"
 	"strings"
+	"unicode"
+	"unicode/utf8"
 )
 
 // An Error is one fault of a design file.
@@ -73,15 +75,26 @@ type diagnostics struct {
 // fail records an error. Those past MaxErrors are dropped.
 func (d *diagnostics) fail(pos Position, what, mend string) {
 	if !d.full() {
-		d.errors = append(d.errors, &Error{d.file, pos, what, mend})
+		d.errors = append(d.errors, &Error{d.file, pos, oneLine(what), oneLine(mend)})
 	}
 }
 
 // warn records a warning. Those past MaxErrors are dropped.
 func (d *diagnostics) warn(pos Position, what, mend string) {
 	if len(d.warnings) < MaxErrors {
-		d.warnings = append(d.warnings, Warning{d.file, pos, what, mend})
+		d.warnings = append(d.warnings, Warning{d.file, pos, oneLine(what), oneLine(mend)})
 	}
+}
+
+// oneLine replaces control characters, which a quoted key may bring into a message: they would break its line
+// or reach the terminal.
+func oneLine(text string) string {
+	return strings.Map(func(c rune) rune {
+		if unicode.IsControl(c) {
+			return utf8.RuneError
+		}
+		return c
+	}, text)
 }
 
 // full tells that no more errors are taken, so that looking for more is in vain.

@@ -13,11 +13,11 @@ var keywords = []string{"series", "shunt", "mark", "couple", "driver", "from", "
 
 // parts reads [parts].
 func (p *parser) parts(r *tableReader) {
+	r.open = true
 	for i, e := range r.table.keys {
 		if p.full() {
 			return
 		}
-		r.take(e.name)
 		if i >= MaxParts {
 			p.fail(p.pos(e.at), fmt.Sprintf("[parts] has more than %d parts", MaxParts), "leave some out")
 			return

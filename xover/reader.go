@@ -16,6 +16,7 @@ type tableReader struct {
 	table *table
 	label string // for messages: `[drive]`, `way "low"`
 	known []string
+	open  bool // its keys are names of the builder's own: none is unknown
 }
 
 func (p *parser) read(t *table, label string) *tableReader {
@@ -32,6 +33,9 @@ func (r *tableReader) take(key string) *entry {
 
 // done reports every key that no one took.
 func (r *tableReader) done() {
+	if r.open {
+		return
+	}
 	for _, e := range r.table.keys {
 		if r.full() {
 			return

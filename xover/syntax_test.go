@@ -27,6 +27,8 @@ func TestSyntaxCorners(t *testing.T) {
 		{"an array of tables over a table", "[air]\n[[air]]", `2:3: "air" is defined twice, first in line 1; keep one of them, or give one another name`},
 		{"a key twice in an inline table", "air = { density = \"1 kg/m3\", density = \"1 kg/m3\" }", `1:30: "density" is defined twice, first in line 1; keep one of them, or give one another name`},
 		{"a long name", "air." + strings.Repeat("x", 50) + " = 1", `1:5: [air] has no key "` + strings.Repeat("x", 40) + `…"; its keys are sound_speed, density`},
+		{"a line end in a name", "[driver.\"a\\nb\"]\nre = 5", "1:9: [driver.a\ufffdb]: the name has '\\n' in it; " + nameMend},
+		{"a line end in the name of a part", "[parts]\n\"a\\u001bb\" = \"1\"", `2:14: a` + "\ufffd" + `b: "1" has no unit; write a value with its unit, such as "4.7 uF"`},
 		{"a table in a table that comes later", "[driver.d.box]\nkind = \"open\"\n[driver.d]\nre = \"8 ohm\"\n[[way]]\nname = \"w\"\ndriver = \"d\"\nnetwork = []", ""},
 		{"a long string with quotes and brackets in it", "title = \"\"\"" + strings.Repeat("[\\\"\"", 99) + "\\\"\"\"\"" + way, ""},
 		{"a string that escapes its quote", "title = \"" + strings.Repeat("\\\"[", 99) + "\"" + way, ""},
