@@ -48,19 +48,19 @@ func NewImpulse(out, ref []float64, rate float64) (*Impulse, error) {
 	x := fft.Coefficients(nil, padded)
 	copy(padded, out)
 	y := fft.Coefficients(nil, padded)
-	power := make([]float64, len(x))
+	spectrum := make([]float64, len(x))
 	for i, v := range x {
-		power[i] = real(v)*real(v) + imag(v)*imag(v)
+		spectrum[i] = power(v)
 	}
 	floor := energy * floorPower
 	for i := range x {
 		// The inverse transform is not normalised: 1/n here.
-		weight := 1 / ((power[i] + floor) * float64(n))
+		weight := 1 / ((spectrum[i] + floor) * float64(n))
 		y[i] *= cmplx.Conj(x[i]) * complex(weight, 0)
-		x[i] = complex(power[i]*weight, 0)
+		x[i] = complex(spectrum[i]*weight, 0)
 	}
 	return &Impulse{
-		rate: rate, response: fft.Sequence(padded, y), pulse: fft.Sequence(nil, x), power: power, energy: energy,
+		rate: rate, response: fft.Sequence(padded, y), pulse: fft.Sequence(nil, x), power: spectrum, energy: energy,
 	}, nil
 }
 
@@ -101,7 +101,12 @@ func (m *Impulse) Transfer(dst []complex128, hz []float64, w Window) error {
 	}
 	for _, f := range hz {
 		bin := int(math.Round(f / m.rate * float64(len(m.response))))
-		if !(m.power[bin] > m.energy*floorPower) {
+		// Five bins, since noise has dips: see atDip.
+		sum := 0.0
+		for _, v := range m.power[max(bin-2, 0):min(bin+3, len(m.power))] {
+			sum += v
+		}
+		if !(sum > 5*m.energy*floorPower) {
 			return errNothingAt(f)
 		}
 	}

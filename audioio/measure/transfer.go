@@ -26,8 +26,9 @@ func errNothingAt(hz float64) error {
 // is wrong by about what was cut off. Noise counts over the whole record: where that
 // matters, or where distortion does, window the impulse response, [NewImpulse].
 //
-// A frequency where the reference has almost nothing (below −40 dB re white
-// of the same energy) is an error.
+// A frequency around which the reference has almost nothing (below −40 dB re white
+// of the same energy) is an error. Noise has chance dips a fraction of a hertz wide; there the
+// neighbours help out, see atDip.
 func Transfer(dst [][]complex128, outs [][]float64, ref []float64, rate float64, hz []float64) error {
 	if len(dst) != len(outs) {
 		panic(fmt.Sprintf("measure: %d results for %d channels", len(dst), len(outs)))
@@ -51,13 +52,50 @@ func Transfer(dst [][]complex128, outs [][]float64, ref []float64, rate float64,
 	}
 	x := make([]complex128, len(hz))
 	spectra(append([][]complex128{x}, dst...), append([][]float64{ref}, outs...), rate, hz)
-	floor := math.Sqrt(energy * floorPower)
+	floor := energy * floorPower
 	for i := range hz {
-		if !(cmplx.Abs(x[i]) > floor) {
-			return errNothingAt(hz[i])
+		if !(power(x[i]) > floor) {
+			if err := atDip(dst, i, outs, ref, rate, hz[i], floor); err != nil {
+				return err
+			}
+			continue
 		}
 		for k := range dst {
 			dst[k][i] /= x[i]
+		}
+	}
+	return nil
+}
+
+func power(x complex128) float64 { return real(x)*real(x) + imag(x)*imag(x) }
+
+// atDip stores in dst[k][i] the transfer function at hz where the reference happens to
+// have next to nothing: Σ Y·X*/Σ|X|² over hz and two frequencies to either
+// side, one over the record's length apart, at which a record's spectrum is
+// independent (the H1 estimate: J. S. Bendat, A. G. Piersol, "Random Data", Wiley,
+// 4th ed. 2010). Between them a response that has died away within the record hardly
+// changes. Where all of them have nothing the frequency lies outside the signal.
+func atDip(dst [][]complex128, i int, outs [][]float64, ref []float64, rate, hz, floor float64) error {
+	const around = 5
+	near := make([]float64, around)
+	for j := range near {
+		near[j] = hz + float64(j-around/2)*rate/float64(len(ref))
+	}
+	x := make([]complex128, around)
+	spectra([][]complex128{x}, [][]float64{ref}, rate, near)
+	sum := 0.0
+	for _, v := range x {
+		sum += power(v)
+	}
+	if !(sum > around*floor) {
+		return errNothingAt(hz)
+	}
+	y := make([]complex128, around)
+	for k := range outs {
+		spectra([][]complex128{y}, [][]float64{outs[k]}, rate, near)
+		dst[k][i] = 0
+		for j := range y {
+			dst[k][i] += y[j] * cmplx.Conj(x[j]) / complex(sum, 0)
 		}
 	}
 	return nil

@@ -4,6 +4,7 @@ import (
 	"fmt"
 	"math"
 	"math/cmplx"
+	"math/rand/v2"
 	"testing"
 
 	"sixdown/audioio/measure"
@@ -228,6 +229,51 @@ func TestWindowLeavesDistortionOut(t *testing.T) {
 	// The pulse holds up to 8 kHz, so its top is within half a period, 6e-5 s.
 	if got := lead + 0.05 - float64(at)/rate; math.Abs(got-lead) > 6e-5 {
 		t.Errorf("the third harmonic comes %.5f s early, want %.5f", got, lead)
+	}
+}
+
+// Noise serves as well as a sweep. What is left is 24-bit rounding, where the noise's
+// spectrum dips at random by up to 40 dB, and the filter is 40 dB down besides.
+func TestTransferByNoise(t *testing.T) {
+	const rate = 48000
+	src, err := signal.NewPink(rate, 2, rand.NewPCG(1, 2), signal.NoiseSettings{})
+	if err != nil {
+		t.Fatal(err)
+	}
+	x := make([]float64, src.Len()+rate/2)
+	if _, err := src.ReadSamples(x); err != nil {
+		t.Fatal(err)
+	}
+	ref := quantise(x, 24)
+	hz := logGrid(20, 20000, 3000)
+	s := systems()[0]
+	h := [][]complex128{make([]complex128, len(hz))}
+	if err := measure.Transfer(h, [][]float64{quantise(s.run(ref), 24)}, ref, rate, hz); err != nil {
+		t.Fatal(err)
+	}
+	db, deg := compare(s, h[0], hz, rate, -40)
+	t.Logf("%.2g dB, %.2g°", db, deg)
+	if db > 0.05 || deg > 0.3 {
+		t.Errorf("%.2g dB, %.2g°", db, deg)
+	}
+}
+
+// Two opposite impulses half a record of N samples apart have no spectrum at all at even
+// multiples of rate/N and most at odd ones: there the neighbours give the answer. They lie 2 Hz
+// to either side, over which a 1 kHz low-pass's curvature (its second difference, some
+// (2/1000)² of its value) is below 1e-4 dB and 1e-3°; the next ones are twice as far.
+func TestTransferAtDip(t *testing.T) {
+	const rate, n = 48000, 24000
+	ref := make([]float64, n)
+	ref[0], ref[n/2] = 1, -1
+	s := systems()[0]
+	hz := []float64{400, 1000, 1204, 4000}
+	h := [][]complex128{make([]complex128, len(hz))}
+	if err := measure.Transfer(h, [][]float64{s.run(ref)}, ref, rate, hz); err != nil {
+		t.Fatal(err)
+	}
+	if db, deg := compare(s, h[0], hz, rate, -60); db > 1e-4 || deg > 1e-3 {
+		t.Errorf("%.2g dB, %.2g°", db, deg)
 	}
 }
 

@@ -50,12 +50,12 @@ func TestSweepFigures(t *testing.T) {
 	}
 }
 
-// From 20 Hz to 20·2^10 Hz in 600 s, L = 60/ln 2 s and at t = 60·m s the phase is
-// (1200/ln 2)·(2^m − 1) turns, computed here in 200 bits. A float64 holds so many turns
-// (1.77 million) to 2^-33; the product of f1·L and the time's own rounding make it a few times that.
+// From 20 Hz to 20·2^10 Hz in 300 s, L = 30/ln 2 s and at t = 30·m s the phase is
+// (600/ln 2)·(2^m − 1) turns, computed here in 200 bits. A float64 holds so many turns
+// (885 thousand) to 2^-34; the product of f1·L and the time's own rounding make it a few times that.
 func TestSweepPhaseIsExact(t *testing.T) {
 	const rate = 48000
-	w, err := signal.NewSweep(rate, 20, 20480, 600, signal.SweepSettings{Peak: 1})
+	w, err := signal.NewSweep(rate, 20, 20480, 300, signal.SweepSettings{Peak: 1})
 	if err != nil {
 		t.Fatal(err)
 	}
@@ -69,12 +69,12 @@ func TestSweepPhaseIsExact(t *testing.T) {
 		t.Fatal(err)
 	}
 	for m := 1; m < 10; m++ {
-		turns := new(big.Float).SetPrec(200).SetInt64(1200 * (1<<m - 1))
+		turns := new(big.Float).SetPrec(200).SetInt64(600 * (1<<m - 1))
 		turns.Quo(turns, ln2)
 		whole, _ := turns.Int(nil)
 		part, _ := turns.Sub(turns, new(big.Float).SetInt(whole)).Float64()
-		if got, want := x[60*m*rate], math.Sin(2*math.Pi*part); math.Abs(got-want) > 1e-8 {
-			t.Errorf("after %d s: %v, want %v", 60*m, got, want)
+		if got, want := x[30*m*rate], math.Sin(2*math.Pi*part); math.Abs(got-want) > 5e-9 {
+			t.Errorf("after %d s: %v, want %v", 30*m, got, want)
 		}
 	}
 }
