@@ -8,15 +8,15 @@ import (
 )
 
 const (
-	latency = 12 // samples between the input and the answer to it; what the taps before it are for is the band's edge
-	taps    = 16 // on the input, at most
+	latency = 16 // samples between the input and the answer to it; what the taps before it are for is the band's edge
+	taps    = 20 // on the input, at most
 
 	// floor is the gain, -60 dB, below which errors count in absolute terms.
 	floor = 1e-3
 	// counted is the gain, -50 dB, from which on errors are reported.
 	counted = 0.0031622776601683794
 	// beyond is the weight of the range from the band's edge to half the rate: enough that the gain there stays in bounds.
-	beyond = 1e-4
+	beyond = 3e-4
 	// ridge bounds the factors where terms can stand in for each other.
 	ridge = 1e-9
 )

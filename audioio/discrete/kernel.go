@@ -48,35 +48,42 @@ func recur(w, x []float64, a1, a2 float64) {
 	w2, w1 := w[0], w[1]
 	w = w[2:][:len(x)]
 	for i, v := range x {
-		v = (v + a2*w2) + a1*w1
+		v = (a2*w2 + v) + a1*w1
 		w[i] = v
 		w2, w1 = w1, v
 	}
 }
 
-// recur4 runs four sections on the same input. Each waits for its own last value at every
-// step; side by side the waits overlap.
-func recur4(w [4][]float64, x []float64, s [4]section) {
+// recur4 runs four sections on the same input. Each waits for its own last value at every step; side by side
+// the waits overlap. Two steps a turn, so that the older value can be overwritten in place.
+func recur4(w [4][]float64, x []float64, s *[4]section) {
 	n := len(x)
 	wa, wb, wc, wd := w[0][2:][:n], w[1][2:][:n], w[2][2:][:n], w[3][2:][:n]
 	a2, a1 := w[0][0], w[0][1]
 	b2, b1 := w[1][0], w[1][1]
 	c2, c1 := w[2][0], w[2][1]
 	d2, d1 := w[3][0], w[3][1]
-	fa1, fa2 := s[0].a1, s[0].a2
-	fb1, fb2 := s[1].a1, s[1].a2
-	fc1, fc2 := s[2].a1, s[2].a2
-	fd1, fd2 := s[3].a1, s[3].a2
-	for i, v := range x {
-		a := (v + fa2*a2) + fa1*a1
-		b := (v + fb2*b2) + fb1*b1
-		c := (v + fc2*c2) + fc1*c1
-		d := (v + fd2*d2) + fd1*d1
-		wa[i], wb[i], wc[i], wd[i] = a, b, c, d
-		a2, a1 = a1, a
-		b2, b1 = b1, b
-		c2, c1 = c1, c
-		d2, d1 = d1, d
+	i := 0
+	for ; i+1 < n; i += 2 {
+		v := x[i]
+		a2 = (s[0].a2*a2 + v) + s[0].a1*a1
+		b2 = (s[1].a2*b2 + v) + s[1].a1*b1
+		c2 = (s[2].a2*c2 + v) + s[2].a1*c1
+		d2 = (s[3].a2*d2 + v) + s[3].a1*d1
+		wa[i], wb[i], wc[i], wd[i] = a2, b2, c2, d2
+		v = x[i+1]
+		a1 = (s[0].a2*a1 + v) + s[0].a1*a2
+		b1 = (s[1].a2*b1 + v) + s[1].a1*b2
+		c1 = (s[2].a2*c1 + v) + s[2].a1*c2
+		d1 = (s[3].a2*d1 + v) + s[3].a1*d2
+		wa[i+1], wb[i+1], wc[i+1], wd[i+1] = a1, b1, c1, d1
+	}
+	if i < n {
+		v := x[i]
+		wa[i] = (s[0].a2*a2 + v) + s[0].a1*a1
+		wb[i] = (s[1].a2*b2 + v) + s[1].a1*b1
+		wc[i] = (s[2].a2*c2 + v) + s[2].a1*c1
+		wd[i] = (s[3].a2*d2 + v) + s[3].a1*d1
 	}
 }
 

@@ -130,7 +130,7 @@ func (m *Matched) recur(n int) {
 	for ; len(plain) >= 4; plain = plain[4:] {
 		a, b, c, d := plain[0], plain[1], plain[2], plain[3]
 		recur4([4][]float64{s.at(1+a, 2, n+2), s.at(1+b, 2, n+2), s.at(1+c, 2, n+2), s.at(1+d, 2, n+2)}, x,
-			[4]section{m.sections[a], m.sections[b], m.sections[c], m.sections[d]})
+			&[4]section{m.sections[a], m.sections[b], m.sections[c], m.sections[d]})
 	}
 	for _, i := range plain {
 		recur(s.at(1+i, 2, n+2), x, m.sections[i].a1, m.sections[i].a2)
