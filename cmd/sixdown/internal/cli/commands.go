@@ -13,6 +13,8 @@ func commandGroups(s *streams) []commandGroup {
 	return []commandGroup{
 		{"Begin and predict:", []*cobra.Command{
 			newPredictCmd(s),
+			newRenderCmd(s),
+			newVerifyCmd(s),
 		}},
 		{"Hear and check:", []*cobra.Command{}},
 	}

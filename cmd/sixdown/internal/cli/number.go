@@ -39,3 +39,16 @@ func numbers(values []float64) []number {
 	}
 	return ns
 }
+
+// csvRecords sets columns of the same length under their names.
+func csvRecords(names []string, columns [][]number) [][]string {
+	records := [][]string{names}
+	for k := range columns[0] {
+		record := make([]string, len(columns))
+		for i := range columns {
+			record[i] = columns[i][k].csv()
+		}
+		records = append(records, record)
+	}
+	return records
+}

@@ -1,42 +1,92 @@
 package cli
 
 import (
-	"context"
+	"slices"
 
 	"github.com/spf13/cobra"
+
+	"sixdown/sim"
 )
 
 // predictOptions are what predict is asked.
 type predictOptions struct {
 	design designOptions
+	grid   gridOptions
 	form   answerForm
 }
 
 func newPredictCmd(s *streams) *cobra.Command {
 	var o predictOptions
 	cmd := &cobra.Command{
-		Use:     "predict DESIGN",
-		Short:   "Predict what each driver gets, what adds up at the ear, and the load",
-		Example: "  sixdown predict harbour.toml",
-		Args:    oneDesign,
+		Use:   "predict DESIGN",
+		Short: "Predict what each driver gets, what adds up at the ear, and the load",
+		Long: `Predict computes, for a design file:
+
+- each way's gain and phase: the voltage across its driver over the open-circuit
+  voltage of the amplifier, wiring polarity included;
+- its level at the ear, in dB SPL for the drive's level, if the design says how the
+  drivers sound; the sum of all ways; and the sum's group delay, without the
+  flight time over the listening distance;
+- the load: what the amplifier sees after its own source resistance, and the
+  resistor that would heat the amplifier's output stage as much (EPDR);
+- in short, where the ways cross, how even the sum is, and where the load is lowest.
+
+Without --at or a grid, the table is in third-octaves with the design's targets
+among them; JSON and CSV are in 24 points an octave from 20 Hz to 20 kHz.`,
+		Example: `  sixdown predict harbour.toml
+  sixdown predict harbour.toml --at "1 kHz,2.2 kHz" --set C3=5.6uF
+  sixdown predict harbour.toml --from 100Hz --to 10kHz --per-octave 48 --csv`,
+		Args: oneDesign,
 		RunE: func(cmd *cobra.Command, args []string) error {
 			o.design.path = args[0]
-			return runPredict(cmd.Context(), s, &o)
+			if err := o.grid.read(cmd); err != nil {
+				return err
+			}
+			return runPredict(s, &o)
 		},
 	}
+	o.grid.addTo(cmd)
 	o.design.addTo(cmd)
 	o.form.addTo(cmd)
 	return cmd
 }
 
-func runPredict(_ context.Context, s *streams, o *predictOptions) error {
+// A prediction is the answer of predict.
+type prediction struct {
+	*sim.Response
+	summary  *sim.Summary
+	level    float64 // V rms, what SPL is for
+	distance float64 // m
+	warnings []string
+}
+
+func runPredict(s *streams, o *predictOptions) error {
 	if err := o.form.check(); err != nil {
 		return err
 	}
-	_, sys, err := o.design.loadSystem(s)
+	d, sys, err := o.design.loadSystem(s)
 	if err != nil {
 		return err
 	}
-	_, err = sys.Summary([2]float64{})
-	return err
+	p := prediction{level: sys.Level(), distance: d.Listen.Distance}
+	if p.Response, err = sys.Predict(o.grid.frequencies(d, !o.form.json && !o.form.csv)); err != nil {
+		return err
+	}
+	if p.summary, err = sys.Summary([2]float64{}); err != nil {
+		return err
+	}
+	p.warnings = sys.Warnings()
+	for _, w := range slices.Concat(p.Response.Warnings, p.summary.Warnings) {
+		if !slices.Contains(p.warnings, w) {
+			p.warnings = append(p.warnings, w)
+			s.warn(w)
+		}
+	}
+	switch {
+	case o.form.json:
+		return s.answerJSON(p.document())
+	case o.form.csv:
+		return s.answerCSV(p.records())
+	}
+	return s.answer(p.text())
 }

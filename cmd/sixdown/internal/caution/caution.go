@@ -1,0 +1,19 @@
+// Package caution holds the short warnings that go with whatever can hurt ears, drivers or hands.
+package caution
+
+import "strings"
+
+// Sound are the cautions that go with every file to be played. The exposure figures are those of NIOSH,
+// "Criteria for a Recommended Standard: Occupational Noise Exposure", publication 98-126, 1998.
+func Sound() []string {
+	return []string{
+		"Hearing: start with the volume at nothing and bring it up slowly. NIOSH allows 85 dBA for 8 hours, and half the time for every 3 dB more.",
+		"Tones and sweeps put all their power into one driver: keep the level low, and put a capacitor in series with a tweeter while you test.",
+		"Channel 1 is the amplifier's output and the others are what the network makes of it: play channel 1 into a network, or the others into drivers without one.",
+	}
+}
+
+// Text sets cautions for people, a line each.
+func Text(cautions []string) string {
+	return "Caution\n  " + strings.Join(cautions, "\n  ") + "\n"
+}

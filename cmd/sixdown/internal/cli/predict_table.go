@@ -1,0 +1,150 @@
+package cli
+
+import (
+	"fmt"
+	"strings"
+
+	"sixdown/cmd/sixdown/internal/table"
+	"sixdown/sim"
+)
+
+// pageWidth is how wide in characters tables may grow before they are folded.
+const pageWidth = 100
+
+// text returns the answer for people: a table and what a builder looks for first.
+func (p *prediction) text() string {
+	var b strings.Builder
+	if p.Title != "" {
+		fmt.Fprintf(&b, "%s\n", p.Title)
+	}
+	if p.Sum != nil {
+		fmt.Fprintf(&b, "SPL at %[1]s m for %[2]s V; delay without the flight over %[1]s m\n", figures(p.distance, 4), figures(p.level, 4))
+	}
+	if b.Len() > 0 {
+		b.WriteByte('\n')
+	}
+	b.WriteString(p.table().Text(pageWidth))
+	b.WriteByte('\n')
+	b.WriteString(p.summaryText())
+	return b.String()
+}
+
+func (p *prediction) table() *table.Table {
+	columns := []table.Column{{Name: "f", Unit: "Hz"}}
+	for _, w := range p.Ways {
+		group := w.Name
+		if w.Driver != "" && w.Driver != w.Name {
+			group += ": " + w.Driver
+		}
+		columns = append(columns, table.Column{Group: group, Name: "gain", Unit: "dB"}, table.Column{Group: group, Name: "phase", Unit: "deg"})
+		if w.P != nil {
+			columns = append(columns, table.Column{Group: group, Name: "SPL", Unit: "dB"})
+		}
+	}
+	if p.Sum != nil {
+		columns = append(columns, table.Column{Group: "sum", Name: "SPL", Unit: "dB"}, table.Column{Group: "sum", Name: "delay", Unit: "ms"})
+	}
+	columns = append(columns, table.Column{Group: "load", Name: "|Z|", Unit: "Ω"}, table.Column{Group: "load", Name: "angle", Unit: "deg"}, table.Column{Group: "load", Name: "EPDR", Unit: "Ω"})
+	t := table.New(columns...)
+	for k, f := range p.Freqs {
+		row := []string{figures(f, 5)}
+		for _, w := range p.Ways {
+			row = append(row, fixed(sim.DB(w.H[k]), 2), angle(w.H[k]))
+			if w.P != nil {
+				row = append(row, fixed(sim.SPL(w.P[k]), 2))
+			}
+		}
+		if p.Sum != nil {
+			row = append(row, fixed(sim.SPL(p.Sum[k]), 2), fixed(1000*p.SumDelay[k], 3))
+		}
+		z := p.Zin[k]
+		t.Row(append(row, ohms(sim.Magnitudes(p.Zin[k : k+1])[0]), angle(z), ohms(sim.EPDR(z)))...)
+	}
+	return t
+}
+
+// angle writes the phase of z in degrees for a table.
+func angle(z complex128) string {
+	if !hasPhase(z) {
+		return none
+	}
+	// -179.96 would be written as -180.0, and that is 180.
+	if text := fixed(sim.PhaseDeg(z), 1); text != "-180.0" {
+		return text
+	}
+	return "180.0"
+}
+
+// summaryText says what a builder looks for first, a line each.
+func (p *prediction) summaryText() string {
+	s := p.summary
+	var b strings.Builder
+	for _, c := range s.Crossings {
+		level := decibels(c.LevelDB) + " each"
+		if s.Sum != nil {
+			level = decibels(c.LevelDB) + " each, relative to the sum"
+		}
+		fmt.Fprintf(&b, "crossing  %s to %s at %s: %s; %s\n", c.Low, c.High, hertz(c.Frequency), level, relativePhase(c))
+	}
+	if q := s.Sum; q != nil {
+		fmt.Fprintf(&b, "sum       %s to %s: mean %s SPL, %s from lowest to highest, %s rms about the mean\n", hertz(q.Band[0]), hertz(q.Band[1]), decibels(q.MeanSPL), decibels(q.RippleDB), decibels(q.RMSDB))
+		fmt.Fprintf(&b, "          3 dB below the mean: %s and %s\n", orBeyond(q.Low3DB, "not above "+hertz(s.Band[0])), orBeyond(q.High3DB, "not below "+hertz(s.Band[1])))
+	}
+	if t := s.Tone; t != nil && len(t.Freqs) > 0 {
+		low, high := 0, 0
+		for k, g := range t.GainDB {
+			if g < t.GainDB[low] {
+				low = k
+			}
+			if g > t.GainDB[high] {
+				high = k
+			}
+		}
+		fmt.Fprintf(&b, "output    in third-octaves from %s at %s to %s at %s\n", decibels(t.GainDB[low]), hertz(t.Freqs[low]), decibels(t.GainDB[high]), hertz(t.Freqs[high]))
+	}
+	fmt.Fprintf(&b, "load      lowest |Z| %s Ω at %s; lowest EPDR %s Ω at %s\n", ohms(s.MinImpedance), hertz(s.MinImpedanceAt), ohms(s.MinEPDR), hertz(s.MinEPDRAt))
+	return b.String()
+}
+
+// relativePhase says which of two ways is ahead at their crossing.
+func relativePhase(c sim.Crossing) string {
+	switch text := fixed(c.PhaseDeg, 1); {
+	case text == "0.0":
+		return "in phase"
+	case c.PhaseDeg < 0:
+		return fmt.Sprintf("%s lags by %s", c.High, degrees(-c.PhaseDeg))
+	}
+	return fmt.Sprintf("%s leads by %s", c.High, degrees(c.PhaseDeg))
+}
+
+func orBeyond(f float64, otherwise string) string {
+	if f == 0 {
+		return otherwise
+	}
+	return hertz(f)
+}
+
+// records returns the answer as CSV has it: a record of names, then one for each frequency.
+func (p *prediction) records() [][]string {
+	doc := p.document()
+	names := []string{"frequency_hz"}
+	columns := [][]number{doc.FrequencyHz}
+	add := func(name string, column []number) {
+		if column != nil {
+			names, columns = append(names, name), append(columns, column)
+		}
+	}
+	for _, w := range doc.Ways {
+		add(w.Name+"_gain_db", w.GainDB)
+		add(w.Name+"_phase_deg", w.PhaseDeg)
+		add(w.Name+"_spl_db", w.SPLDB)
+		add(w.Name+"_spl_phase_deg", w.SPLPhaseDeg)
+	}
+	add("sum_spl_db", doc.Sum.SPLDB)
+	add("sum_spl_phase_deg", doc.Sum.SPLPhaseDeg)
+	add("sum_group_delay_ms", doc.Sum.GroupDelayMS)
+	add("input_impedance_ohm", doc.Input.ImpedanceOhm)
+	add("input_phase_deg", doc.Input.PhaseDeg)
+	add("input_epdr_ohm", doc.Input.EPDROhm)
+	return csvRecords(names, columns)
+}

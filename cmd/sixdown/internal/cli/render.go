@@ -1,0 +1,226 @@
+package cli
+
+import (
+	"context"
+	"fmt"
+	"math/rand/v2"
+	"os"
+	"path/filepath"
+	"slices"
+	"strings"
+
+	"github.com/spf13/cobra"
+
+	"sixdown/audioio"
+	"sixdown/audioio/signal"
+	"sixdown/audioio/wavfile"
+	"sixdown/cmd/sixdown/internal/caution"
+	"sixdown/sim"
+	"sixdown/xover"
+	"sixdown/xover/quantity"
+)
+
+// The files of a rendering.
+const (
+	soundFile    = "network.wav"
+	scheduleFile = "network.json"
+)
+
+// A signalOptions says what goes into the network.
+type signalOptions struct {
+	signal  string
+	seconds float64
+	rate    int
+	bits    string
+	colour  string
+	seed    uint64
+	channel int
+	at      string
+}
+
+func (o *signalOptions) addTo(cmd *cobra.Command) {
+	f := cmd.Flags()
+	f.StringVar(&o.signal, "signal", "tones", "tones, sweep, noise, or a WAV file of your own")
+	f.Float64Var(&o.seconds, "seconds", 10, "length of a sweep or of noise")
+	f.IntVar(&o.rate, "rate", 48000, "samples a second, in Hz; a WAV file keeps its own")
+	f.StringVar(&o.bits, "bits", "24", "16, 24 or 32, or float for 32-bit floating point")
+	f.StringVar(&o.colour, "colour", "pink", "of noise: pink or white")
+	f.Uint64Var(&o.seed, "seed", 1, "of noise and dither: the same seed gives the same file")
+	f.IntVar(&o.channel, "channel", 0, "of a WAV file: 1, 2, …; 0 mixes all of them")
+	f.StringVar(&o.at, "at", "", `of tones: their frequencies, as in "1 kHz,2 kHz"; without it third-octaves and the crossover points`)
+}
+
+// wav is how the file is to be stored.
+func (o *signalOptions) wav() (wavfile.Settings, error) {
+	set := wavfile.Settings{Dither: rand.NewPCG(o.seed, 1)}
+	switch o.bits {
+	case "16":
+		set.Encoding = wavfile.PCM16
+	case "24":
+		set.Encoding = wavfile.PCM24
+	case "32":
+		set.Encoding = wavfile.PCM32
+	case "float":
+		set.Encoding = wavfile.Float32
+	default:
+		return set, usageFault("--bits", fmt.Sprintf("%q is not offered", o.bits), "give 16, 24, 32 or float")
+	}
+	return set, nil
+}
+
+// tones are the frequencies of the tones.
+func (o *signalOptions) tones(d *xover.Design) ([]float64, error) {
+	if o.at == "" {
+		return toneFrequencies(d), nil
+	}
+	var hz []float64
+	for _, text := range strings.Split(o.at, ",") {
+		f, err := quantity.ParseAs(text, quantity.Hertz)
+		if err != nil {
+			return nil, fmt.Errorf("--at: %w", err)
+		}
+		hz = append(hz, f)
+	}
+	slices.Sort(hz)
+	return slices.Compact(hz), nil
+}
+
+// toneFrequencies are the third-octaves of ISO 266 from 20 Hz to 20 kHz and the crossover points.
+func toneFrequencies(d *xover.Design) []float64 {
+	var hz []float64
+	for _, b := range signal.ThirdOctaves(20, 20000) {
+		hz = append(hz, b.Hz)
+	}
+	for _, w := range d.Ways {
+		for _, t := range w.Targets {
+			hz = append(hz, t.Frequency)
+		}
+	}
+	slices.Sort(hz)
+	return slices.Compact(hz)
+}
+
+type renderOptions struct {
+	designOptions
+	signalOptions
+	answerForm
+	out string
+}
+
+func newRenderCmd(s *streams) *cobra.Command {
+	var o renderOptions
+	cmd := &cobra.Command{
+		Use:   "render DESIGN --out DIR",
+		Short: "Send a signal through the network into a WAV file",
+		Long: `Render writes DIR/` + soundFile + `: channel 1 is the voltage at the amplifier's terminals, and
+each way has a channel with the voltage across its driver, in the order of the
+design. DIR/` + scheduleFile + ` says what is where and how many volts full scale stands for.
+
+Tones pass through the network's own differential equations and are exact;
+sweeps, noise and music pass through a model with the network's own poles, whose
+error is told. Full scale is chosen so that no channel clips.`,
+		Example: `  sixdown render harbour.toml --out sound
+  sixdown render harbour.toml --out music --signal record.wav`,
+		Args: oneDesign,
+		RunE: func(cmd *cobra.Command, args []string) error {
+			o.path = args[0]
+			return runRender(cmd.Context(), s, &o)
+		},
+	}
+	cmd.Flags().StringVar(&o.out, "out", "", "folder for the files; it is made if it is not there")
+	o.signalOptions.addTo(cmd)
+	o.designOptions.addTo(cmd)
+	o.answerForm.addJSON(cmd)
+	return cmd
+}
+
+func runRender(ctx context.Context, s *streams, o *renderOptions) error {
+	if o.out == "" {
+		return usageFault("render", "no folder is given", "give one, as in: --out sound")
+	}
+	d, sys, err := o.loadSystem(s)
+	if err != nil {
+		return err
+	}
+	rec, err := renderTo(ctx, s, d, sys, &o.signalOptions, o.out)
+	if err != nil {
+		return err
+	}
+	if o.json {
+		return s.answerJSON(struct {
+			Sound    string   `json:"sound"`
+			Schedule string   `json:"schedule"`
+			Cautions []string `json:"cautions"`
+			*audioio.Recording
+		}{filepath.Join(o.out, soundFile), filepath.Join(o.out, scheduleFile), caution.Sound(), rec})
+	}
+	return s.answer(renderText(rec, o.out) + "\n" + caution.Text(caution.Sound()))
+}
+
+// renderText says what was written.
+func renderText(rec *audioio.Recording, dir string) string {
+	var b strings.Builder
+	fmt.Fprintf(&b, "%s: %s, %.1f s, %d Hz, %d bits\n", filepath.Join(dir, soundFile),
+		rec.Signal, float64(rec.LengthSamples)/float64(rec.Rate), rec.Rate, rec.Bits)
+	fmt.Fprintf(&b, "  channel 1  the amplifier's terminals\n")
+	for i, w := range rec.Ways {
+		fmt.Fprintf(&b, "  channel %d  %s\n", i+2, w)
+	}
+	fmt.Fprintf(&b, "  full scale is %s peak\n", quantity.Round(rec.VoltsPerFullScale, quantity.Volt, 4))
+	switch {
+	case rec.Signal == audioio.Tones:
+		fmt.Fprintf(&b, "  %d tones from %s to %s, each settled before it is measured\n", len(rec.Tones),
+			quantity.Round(rec.Tones[0].FrequencyHz, quantity.Hertz, 3),
+			quantity.Round(rec.Tones[len(rec.Tones)-1].FrequencyHz, quantity.Hertz, 3))
+	default:
+		fmt.Fprintf(&b, "  the model is within %.4f dB and %.4f° of the network where a gain is above -50 dB\n", rec.FitDB, rec.FitDeg)
+	}
+	fmt.Fprintf(&b, "%s: the schedule\n", filepath.Join(dir, scheduleFile))
+	return b.String()
+}
+
+// renderTo renders into a folder. Both files are written beside and renamed, the sound first.
+func renderTo(ctx context.Context, s *streams, d *xover.Design, sys *sim.System, o *signalOptions, dir string) (*audioio.Recording, error) {
+	wav, err := o.wav()
+	if err != nil {
+		return nil, err
+	}
+	bar := newProgress(s, "rendering")
+	defer bar.done()
+	set := audioio.Settings{Rate: o.rate, Wav: wav, Progress: func(done, total int) {
+		bar.at(float64(done) / float64(total))
+	}}
+	play, err := o.player(d, sys)
+	if err != nil {
+		return nil, err
+	}
+	defer play.close()
+	if err := os.MkdirAll(dir, 0o777); err != nil {
+		return nil, machineFault(dir, err, "name a folder that can be made")
+	}
+	soundPath, planPath := filepath.Join(dir, soundFile), filepath.Join(dir, scheduleFile)
+	sound, err := createOutput(soundPath, play.path)
+	if err != nil {
+		return nil, err
+	}
+	defer sound.Abort()
+	rec, err := play.render(ctx, sound, set)
+	if err != nil {
+		return nil, outputFault(soundPath, err)
+	}
+	plan, err := createOutput(planPath)
+	if err != nil {
+		return nil, err
+	}
+	defer plan.Abort()
+	if err := rec.Write(plan); err != nil {
+		return nil, outputFault(planPath, err)
+	}
+	if err := sound.Commit(); err != nil {
+		return nil, outputFault(soundPath, err)
+	}
+	if err := plan.Commit(); err != nil {
+		return nil, outputFault(planPath, err)
+	}
+	return rec, nil
+}

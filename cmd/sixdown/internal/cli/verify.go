@@ -1,0 +1,256 @@
+package cli
+
+import (
+	"context"
+	"fmt"
+	"os"
+	"path/filepath"
+	"strings"
+
+	"github.com/spf13/cobra"
+
+	"sixdown/audioio"
+	"sixdown/sim"
+	"sixdown/xover/quantity"
+)
+
+type verifyOptions struct {
+	designOptions
+	signalOptions
+	answerForm
+	from     string
+	limitDB  float64
+	limitDeg float64
+}
+
+func newVerifyCmd(s *streams) *cobra.Command {
+	var o verifyOptions
+	cmd := &cobra.Command{
+		Use:   "verify DESIGN [--from DIR]",
+		Short: "Measure a rendering and hold it against the prediction",
+		Long: `Verify reads the WAV file that render wrote, measures every way against channel 1,
+and compares level and phase with the prediction for the design as it stands now.
+Without --from it renders tones first, into a folder that it removes again.
+
+Points count where the way is predicted above -60 dB (tones) or -50 dB (sweep,
+noise). It passes if the worst of them is within the limits; else it says where
+it is worst and which single part, at another value, would explain it.`,
+		Example: `  sixdown render harbour.toml --out sound
+  sixdown verify harbour.toml --from sound`,
+		Args: oneDesign,
+		RunE: func(cmd *cobra.Command, args []string) error {
+			o.path = args[0]
+			return runVerify(cmd.Context(), s, &o)
+		},
+	}
+	f := cmd.Flags()
+	f.StringVar(&o.from, "from", "", "folder that render wrote")
+	f.Float64Var(&o.limitDB, "limit-gain", 0, "largest error in dB that passes; 0: what the file's resolution allows")
+	f.Float64Var(&o.limitDeg, "limit-phase", 0, "largest error in degrees that passes; 0: what the file's resolution allows")
+	f.IntVar(&o.rate, "rate", 48000, "without --from: samples a second, in Hz")
+	f.StringVar(&o.bits, "bits", "24", "without --from: 16, 24, 32 or float")
+	o.designOptions.addTo(cmd)
+	o.answerForm.addTo(cmd)
+	o.signal, o.seed = "tones", 1
+	return cmd
+}
+
+func runVerify(ctx context.Context, s *streams, o *verifyOptions) error {
+	if err := o.answerForm.check(); err != nil {
+		return err
+	}
+	d, sys, err := o.loadSystem(s)
+	if err != nil {
+		return err
+	}
+	dir := o.from
+	if dir == "" {
+		if dir, err = os.MkdirTemp("", "sixdown-"); err != nil {
+			return machineFault("temporary folder", err, "make room on the disk")
+		}
+		defer os.RemoveAll(dir)
+		if _, err := renderTo(ctx, s, d, sys, &o.signalOptions, dir); err != nil {
+			return err
+		}
+	}
+	v, err := verifyFrom(ctx, s, sys, dir, audioio.Limits{GainDB: o.limitDB, PhaseDeg: o.limitDeg})
+	if err != nil {
+		return err
+	}
+	switch {
+	case o.json:
+		err = s.answerJSON(verifyAnswer(v))
+	case o.csv:
+		err = s.answerCSV(verifyRecords(v))
+	default:
+		err = s.answer(verifyText(v))
+	}
+	if err == nil && !v.Pass {
+		err = errCheckFailed
+	}
+	return err
+}
+
+// verifyFrom verifies what lies in a folder.
+func verifyFrom(ctx context.Context, s *streams, sys *sim.System, dir string, lim audioio.Limits) (*audioio.Verification, error) {
+	planPath, soundPath := filepath.Join(dir, scheduleFile), filepath.Join(dir, soundFile)
+	plan, err := os.Open(planPath)
+	if err != nil {
+		return nil, inputFault(planPath, err)
+	}
+	defer plan.Close()
+	rec, err := audioio.ReadRecording(plan)
+	if err != nil {
+		return nil, fmt.Errorf("%s: %w", planPath, err)
+	}
+	sound, err := os.Open(soundPath)
+	if err != nil {
+		return nil, inputFault(soundPath, err)
+	}
+	defer sound.Close()
+	v, err := audioio.Verify(ctx, sys, rec, sound, lim)
+	if err != nil {
+		return nil, fmt.Errorf("%s: %w", soundPath, err)
+	}
+	for _, w := range v.Warnings {
+		s.warn(soundPath + ": " + w)
+	}
+	return v, nil
+}
+
+// pointAnswer and the types below are the machine-readable answer.
+type pointAnswer struct {
+	Way               string `json:"way"`
+	FrequencyHz       number `json:"frequency_hz"`
+	PredictedGainDB   number `json:"predicted_gain_db"`
+	MeasuredGainDB    number `json:"measured_gain_db"`
+	PredictedPhaseDeg number `json:"predicted_phase_deg"`
+	MeasuredPhaseDeg  number `json:"measured_phase_deg"`
+	Counted           bool   `json:"counted"`
+}
+
+type worstAnswer struct {
+	Way         string `json:"way"`
+	FrequencyHz number `json:"frequency_hz"`
+}
+
+type suspectAnswer struct {
+	Part      string `json:"part"`
+	Fault     string `json:"fault"`
+	Nominal   number `json:"nominal"`
+	Estimate  number `json:"estimate"`
+	Sigma     number `json:"sigma"`
+	Explained number `json:"explained"`
+}
+
+type verificationAnswer struct {
+	Points        []pointAnswer   `json:"points"`
+	WorstGainDB   *number         `json:"worst_gain_error_db"`
+	WorstGainAt   *worstAnswer    `json:"worst_gain_at"`
+	WorstPhaseDeg *number         `json:"worst_phase_error_deg"`
+	WorstPhaseAt  *worstAnswer    `json:"worst_phase_at"`
+	LimitGainDB   number          `json:"limit_gain_db"`
+	LimitPhaseDeg number          `json:"limit_phase_deg"`
+	FloorDB       number          `json:"floor_db"`
+	Pass          bool            `json:"pass"`
+	Suspects      []suspectAnswer `json:"suspects"`
+}
+
+func pointOf(p *audioio.Point) pointAnswer {
+	return pointAnswer{p.Way, number(p.Hz), number(sim.DB(p.Predicted)), number(sim.DB(p.Measured)),
+		number(sim.PhaseDeg(p.Predicted)), number(sim.PhaseDeg(p.Measured)), p.Counted}
+}
+
+func verifyAnswer(v *audioio.Verification) verificationAnswer {
+	a := verificationAnswer{
+		Points: []pointAnswer{}, Suspects: []suspectAnswer{},
+		LimitGainDB: number(v.LimitGainDB), LimitPhaseDeg: number(v.LimitPhaseDeg), FloorDB: number(v.FloorDB), Pass: v.Pass,
+	}
+	for i := range v.Points {
+		a.Points = append(a.Points, pointOf(&v.Points[i]))
+	}
+	if p := v.WorstGain; p != nil {
+		e := number(p.GainErrorDB())
+		a.WorstGainDB, a.WorstGainAt = &e, &worstAnswer{p.Way, number(p.Hz)}
+	}
+	if p := v.WorstPhase; p != nil {
+		e := number(p.PhaseErrorDeg())
+		a.WorstPhaseDeg, a.WorstPhaseAt = &e, &worstAnswer{p.Way, number(p.Hz)}
+	}
+	for _, x := range v.Suspects {
+		a.Suspects = append(a.Suspects, suspectAnswer{x.Part, "value", number(x.Nominal), number(x.Estimate), number(x.Sigma), number(x.Explained)})
+	}
+	return a
+}
+
+func verifyRecords(v *audioio.Verification) [][]string {
+	rows := [][]string{{"way", "frequency_hz", "predicted_gain_db", "measured_gain_db", "predicted_phase_deg", "measured_phase_deg", "counted"}}
+	for i := range v.Points {
+		p := pointOf(&v.Points[i])
+		rows = append(rows, []string{p.Way, p.FrequencyHz.csv(), p.PredictedGainDB.csv(), p.MeasuredGainDB.csv(),
+			p.PredictedPhaseDeg.csv(), p.MeasuredPhaseDeg.csv(), fmt.Sprint(p.Counted)})
+	}
+	return rows
+}
+
+// longTable is how many points a way are printed at most; what is left out is between those that are printed.
+const longTable = 40
+
+// verifyText is the answer for people.
+func verifyText(v *audioio.Verification) string {
+	var b strings.Builder
+	way := ""
+	for first := 0; first < len(v.Points); {
+		last := first
+		for last < len(v.Points) && v.Points[last].Way == v.Points[first].Way {
+			last++
+		}
+		step := (last - first + longTable - 1) / longTable
+		for i := first; i < last; i += step {
+			p := &v.Points[i]
+			if p.Way != way {
+				way = p.Way
+				fmt.Fprintf(&b, "%s\n%10s  %21s  %19s  %20s\n%10s  %10s %10s  %9s %9s  %9s %10s\n", way,
+					"", "gain, dB", "phase, deg", "measured - predicted",
+					"Hz", "predicted", "measured", "predicted", "measured", "dB", "deg")
+			}
+			if !p.Counted {
+				fmt.Fprintf(&b, "%10.5g  %10.3f %10s  %9.2f %9s  below the floor\n", p.Hz, sim.DB(p.Predicted), "", sim.PhaseDeg(p.Predicted), "")
+				continue
+			}
+			fmt.Fprintf(&b, "%10.5g  %10.4f %10.4f  %9.3f %9.3f  %9.5f %10.5f\n", p.Hz, sim.DB(p.Predicted), sim.DB(p.Measured),
+				sim.PhaseDeg(p.Predicted), sim.PhaseDeg(p.Measured), p.GainErrorDB(), p.PhaseErrorDeg())
+		}
+		first = last
+		b.WriteByte('\n')
+	}
+	b.WriteString(verdict(v))
+	return b.String()
+}
+
+// verdict is the summary of a verification.
+func verdict(v *audioio.Verification) string {
+	var b strings.Builder
+	counted := 0
+	for i := range v.Points {
+		if v.Points[i].Counted {
+			counted++
+		}
+	}
+	fmt.Fprintf(&b, "%d of %d points count: those predicted above %.0f dB\n", counted, len(v.Points), v.FloorDB)
+	if v.WorstGain == nil {
+		b.WriteString("FAILS: no point is loud enough to be judged\n")
+		return b.String()
+	}
+	fmt.Fprintf(&b, "worst level  %9.5f dB   %s at %s   limit %.4g dB\n", v.WorstGain.GainErrorDB(), v.WorstGain.Way, quantity.Round(v.WorstGain.Hz, quantity.Hertz, 4), v.LimitGainDB)
+	fmt.Fprintf(&b, "worst phase  %9.5f °    %s at %s   limit %.4g°\n", v.WorstPhase.PhaseErrorDeg(), v.WorstPhase.Way, quantity.Round(v.WorstPhase.Hz, quantity.Hertz, 4), v.LimitPhaseDeg)
+	if v.Pass {
+		b.WriteString("PASSES: the recording says what the prediction says\n")
+		return b.String()
+	}
+	b.WriteString("FAILS: the recording is not of this design\n")
+	for _, x := range v.Suspects {
+		fmt.Fprintf(&b, "  %s at %.4g times its value would explain %.0f %% of it\n", x.Part, x.Estimate/x.Nominal, 100*x.Explained)
+	}
+	return b.String()
+}
