@@ -8,10 +8,6 @@ import (
 const (
 	pinkSections = 8
 	pinkLowest   = 4.0 // Hz: below it the spectrum goes flat
-
-	// pinkBlock is the length of the scratch block: short enough to stay in
-	// the processor's first cache.
-	pinkBlock = 256
 )
 
 // Pink is noise whose power falls by half for every octave, −3.01 dB,
@@ -42,7 +38,6 @@ type Pink struct {
 	direct float64
 	state  [pinkSections]float64
 	x1, x2 float64 // the white samples before
-	in     [pinkBlock]float64
 }
 
 // Zeros 1 + a·z⁻¹ + b·z⁻², over their sum: a least-squares fit, in dB, of
@@ -107,50 +102,50 @@ const triangularVariance = 1.0 / 6
 // ReadSamples implements [Source].
 func (p *Pink) ReadSamples(dst []float64) (int, error) {
 	n, err := samplesLeft(dst, p.pos, p.length)
-	for done := 0; done < n; {
-		block := dst[done:min(n, done+pinkBlock)]
-		p.filter(block)
-		p.finish(block)
-		done += len(block)
-	}
+	block := dst[:n]
+	p.white(block)
+	p.filter(block)
+	p.finish(block)
 	return n, err
 }
 
-// filter stores the next samples in out, at most pinkBlock of them. The white noise
-// is triangular, which takes one draw a sample; the sum over many samples
-// that the filter makes of it is normal for any purpose here.
-func (p *Pink) filter(out []float64) {
-	in := p.in[:len(out)]
+// white stores noise that has passed the two zeros. It is triangular, which takes one draw
+// a sample; the sum over many samples that the filter makes of it is normal for any purpose here.
+func (p *Pink) white(dst []float64) {
 	x1, x2 := p.x1, p.x2
-	for i := range in {
+	for i := range dst {
 		u := p.random.Uint64()
-		x := (float64(u>>32) - float64(u&math.MaxUint32)) * (1.0 / (1 << 32)) * p.gain
-		y := x + pinkZeroA*x1 + pinkZeroB*x2
+		// Through int64, since a conversion from uint64 must look at the highest bit.
+		x := float64(int64(u>>32)-int64(u&math.MaxUint32)) * (1.0 / (1 << 32)) * p.gain
+		dst[i] = x + pinkZeroA*x1 + pinkZeroB*x2
 		x1, x2 = x, x1
-		in[i] = y
-		out[i] = p.direct * y
 	}
 	p.x1, p.x2 = x1, x2
-	// Four sections at a time keep their states in registers and give the
-	// processor four recursions to overlap.
-	for k := 0; k < pinkSections; k += 4 {
-		p0, p1, p2, p3 := p.pole[k], p.pole[k+1], p.pole[k+2], p.pole[k+3]
-		w0, w1, w2, w3 := p.weight[k], p.weight[k+1], p.weight[k+2], p.weight[k+3]
-		s0, s1, s2, s3 := p.state[k], p.state[k+1], p.state[k+2], p.state[k+3]
-		for i, x := range in {
-			s0 = p0*s0 + x
-			s1 = p1*s1 + x
-			s2 = p2*s2 + x
-			s3 = p3*s3 + x
-			out[i] += (w0*s0 + w1*s1) + (w2*s2 + w3*s3)
-		}
-		p.state[k], p.state[k+1], p.state[k+2], p.state[k+3] = s0, s1, s2, s3
-	}
-	for i, y := range out {
+}
+
+// filter sends a block through the sections and clips it. All sections run side by side: their
+// states stay in registers, and the processor has eight recursions to overlap.
+func (p *Pink) filter(block []float64) {
+	s0, s1, s2, s3 := p.state[0], p.state[1], p.state[2], p.state[3]
+	s4, s5, s6, s7 := p.state[4], p.state[5], p.state[6], p.state[7]
+	for i, x := range block {
+		s0 = p.pole[0]*s0 + x
+		s1 = p.pole[1]*s1 + x
+		s2 = p.pole[2]*s2 + x
+		s3 = p.pole[3]*s3 + x
+		s4 = p.pole[4]*s4 + x
+		s5 = p.pole[5]*s5 + x
+		s6 = p.pole[6]*s6 + x
+		s7 = p.pole[7]*s7 + x
+		low := (p.weight[0]*s0 + p.weight[1]*s1) + (p.weight[2]*s2 + p.weight[3]*s3)
+		high := (p.weight[4]*s4 + p.weight[5]*s5) + (p.weight[6]*s6 + p.weight[7]*s7)
+		y := low + high + p.direct*x
 		if y > p.peak {
-			out[i] = p.peak
+			y = p.peak
 		} else if y < -p.peak {
-			out[i] = -p.peak
+			y = -p.peak
 		}
+		block[i] = y
 	}
+	p.state = [pinkSections]float64{s0, s1, s2, s3, s4, s5, s6, s7}
 }

@@ -85,7 +85,7 @@ func encode(e Encoding, dst []byte, stride int, src []float64, dither rand.Sourc
 // Near full scale the dither saturates.
 func dithered(x, scale float64, dither rand.Source) uint32 {
 	u := dither.Uint64() // its halves are two uniform variates
-	tpdf := (float64(u>>32) - float64(u&math.MaxUint32)) * (1.0 / (1 << 32))
+	tpdf := float64(int64(u>>32)-int64(u&math.MaxUint32)) * (1.0 / (1 << 32))
 	v := math.RoundToEven(x*scale + tpdf)
 	return uint32(int32(max(min(v, scale-1), -scale)))
 }

@@ -144,6 +144,9 @@ func (s *Sweep) SetValue(branch int, value float64) error {
 	return nil
 }
 
+// Value is the present value of a branch, in Ω, H or F.
+func (s *Sweep) Value(branch int) float64 { return s.vals[branch] }
+
 // SetLoss changes the series resistance of an inductor or capacitor that was compiled with one, in Ω.
 func (s *Sweep) SetLoss(branch int, ohm float64) error {
 	if err := s.c.branch(branch); err != nil {
@@ -283,10 +286,10 @@ func (s *Sweep) mend(i int) error {
 // modulus is the larger of the parts' moduli: enough to tell finite from not, NaN included.
 func modulus(z complex128) float64 {
 	a, b := math.Abs(real(z)), math.Abs(imag(z))
-	if !(a <= b) {
+	if a > b || math.IsNaN(a) {
 		return a
 	}
-	return b
+	return b // NaN included
 }
 
 func finite(z complex128) bool {

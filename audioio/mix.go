@@ -1,0 +1,51 @@
+package audioio
+
+import (
+	"fmt"
+
+	"sixdown/audioio/wavfile"
+)
+
+// A Mix is a WAV file as one channel: the mean of its channels, or one of them.
+type Mix struct {
+	r       *wavfile.Reader
+	channel int // from 0; -1: the mean
+	frames  []float64
+}
+
+// NewMix reads channel, counted from 1, of r; 0 is the mean of all. The reader must know its length.
+func NewMix(r *wavfile.Reader, channel int) (*Mix, error) {
+	n := r.Format().NumChannels
+	if channel < 0 || channel > n {
+		return nil, fmt.Errorf("render: there is no channel %d in a file of %d; give 1 to %d, or 0 for all of them", channel, n, n)
+	}
+	if r.Frames() < 0 {
+		return nil, fmt.Errorf("render: the file does not say how long it is and cannot be searched; give a file on disk")
+	}
+	return &Mix{r: r, channel: channel - 1}, nil
+}
+
+// Len implements signal.Source.
+func (m *Mix) Len() int { return int(m.r.Frames()) }
+
+// ReadSamples implements signal.Source.
+func (m *Mix) ReadSamples(dst []float64) (int, error) {
+	ch := m.r.Format().NumChannels
+	if need := len(dst) * ch; cap(m.frames) < need {
+		m.frames = make([]float64, need)
+	}
+	n, err := m.r.ReadFrames(m.frames[:len(dst)*ch])
+	for i := range n {
+		f := m.frames[i*ch : (i+1)*ch]
+		if m.channel >= 0 {
+			dst[i] = f[m.channel]
+			continue
+		}
+		sum := 0.0
+		for _, x := range f {
+			sum += x
+		}
+		dst[i] = sum / float64(ch)
+	}
+	return n, err
+}

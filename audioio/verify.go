@@ -1,0 +1,299 @@
+package audioio
+
+import (
+	"context"
+	"errors"
+	"fmt"
+	"io"
+	"math"
+	"math/cmplx"
+
+	"sixdown/audioio/measure"
+	"sixdown/audioio/signal"
+	"sixdown/audioio/wavfile"
+	"sixdown/sim"
+	"sixdown/sim/circuit"
+)
+
+// Limits say when a recording passes. A number not above zero takes the default.
+type Limits struct {
+	GainDB   float64 // dB; default 0.005 for files of 24 bits and more, 0.02 for shorter ones, plus the recording's own fit error
+	PhaseDeg float64 // degrees; default 0.05 and 0.2, likewise
+	FloorDB  float64 // a point counts if its way is predicted above this, dB re the amplifier's terminals; default -60 for tones, -50 else
+}
+
+// A Point compares one way at one frequency. Gains are relative to the amplifier's terminals, wiring polarity
+// included.
+type Point struct {
+	Way       string
+	Hz        float64
+	Predicted complex128
+	Measured  complex128
+	Counted   bool // its level is above the floor
+}
+
+// GainErrorDB is the measured level less the predicted one, in dB.
+func (p *Point) GainErrorDB() float64 { return sim.DB(p.Measured) - sim.DB(p.Predicted) }
+
+// PhaseErrorDeg is the measured phase less the predicted one, in (-180, 180] degrees.
+func (p *Point) PhaseErrorDeg() float64 { return sim.PhaseDeg(p.Measured / p.Predicted) }
+
+// A Verification is what a recording says of a design.
+type Verification struct {
+	Points        []Point // way by way, in the order of the recording
+	WorstGain     *Point  // the counted point with the largest gain error; nil if none counts
+	WorstPhase    *Point
+	LimitGainDB   float64
+	LimitPhaseDeg float64
+	FloorDB       float64
+	Pass          bool
+	Suspects      []Suspect // empty when it passes
+	Warnings      []string  // about the file
+}
+
+// longest is the length of sweeps, noise and music that can be verified: they are taken as a whole.
+const longest = 120 // s
+
+// Verify reads a recording of sys and compares every way with the prediction, relative to channel 1, so that
+// neither the level nor the source resistance matters. Tones are measured by the sine fit of IEEE Std
+// 1057, other signals by the ratio of the spectra of the whole record at 24 points an octave.
+func Verify(ctx context.Context, sys *sim.System, rec *Recording, r io.ReadSeeker, lim Limits) (*Verification, error) {
+	in, err := wavfile.NewReader(r)
+	if err != nil {
+		return nil, err
+	}
+	if err := rec.check(sys, in); err != nil {
+		return nil, err
+	}
+	var hz []float64
+	var measured [][]complex128 // way by way
+	if rec.Signal == Tones {
+		hz, measured, err = measureTones(ctx, rec, in)
+	} else {
+		hz, measured, err = measureWhole(ctx, rec, in)
+	}
+	if err != nil {
+		return nil, err
+	}
+	p, err := newPredictor(sys, hz)
+	if err != nil {
+		return nil, err
+	}
+	v := &Verification{Warnings: in.Warnings()}
+	v.setLimits(lim, rec)
+	if err := p.sweep.Solve(); err != nil {
+		return nil, err
+	}
+	want := make([]complex128, len(hz))
+	for w, name := range rec.Ways {
+		p.sweep.Gain(want, w)
+		for i, f := range hz {
+			v.Points = append(v.Points, Point{
+				Way: name, Hz: f, Predicted: want[i], Measured: measured[w][i],
+				Counted: sim.DB(want[i]) > v.FloorDB,
+			})
+		}
+	}
+	v.judge()
+	if !v.Pass {
+		v.Suspects, err = p.suspects(sys, v.Points)
+	}
+	return v, err
+}
+
+// check holds the recording against the design and the file.
+func (rec *Recording) check(sys *sim.System, in *wavfile.Reader) error {
+	names := sys.Names()
+	same := len(names) == len(rec.Ways)
+	for i := 0; same && i < len(names); i++ {
+		same = names[i] == rec.Ways[i]
+	}
+	if !same {
+		return fmt.Errorf("verify: the recording is of the ways %q, the design has %q; render the design again", rec.Ways, names)
+	}
+	f := in.Format()
+	if f.NumChannels != 1+len(names) {
+		return fmt.Errorf("verify: the file has %d channels; a recording of this design has %d: the amplifier's terminals and a way each", f.NumChannels, 1+len(names))
+	}
+	if f.SampleRate != rec.Rate {
+		return fmt.Errorf("verify: the file's rate is %d Hz, its schedule's is %d Hz; give the two that were written together", f.SampleRate, rec.Rate)
+	}
+	if n := in.Frames(); n >= 0 && n < int64(rec.LengthSamples) {
+		return fmt.Errorf("verify: the file ends after %d of %d frames; render it again", n, rec.LengthSamples)
+	}
+	if rec.Signal != Tones {
+		return nil
+	}
+	return rec.Validate()
+}
+
+// measureTones fits the sines of the schedule.
+func measureTones(ctx context.Context, rec *Recording, in *wavfile.Reader) ([]float64, [][]complex128, error) {
+	channels := 1 + len(rec.Ways)
+	longest := 0
+	for _, t := range rec.Tones {
+		longest = max(longest, t.MeasureSamples)
+	}
+	window := grid(channels, longest)
+	view := make([][]float64, channels)
+	fits := make([]measure.Sine, channels)
+	hz := make([]float64, len(rec.Tones))
+	got := make([][]complex128, len(rec.Ways))
+	for w := range got {
+		got[w] = make([]complex128, len(rec.Tones))
+	}
+	for i, t := range rec.Tones {
+		if err := ctx.Err(); err != nil {
+			return nil, nil, err
+		}
+		if err := in.SeekFrame(int64(t.MeasureStart())); err != nil {
+			return nil, nil, err
+		}
+		for c := range view {
+			view[c] = window[c][:t.MeasureSamples]
+		}
+		if err := readFull(in, view); err != nil {
+			return nil, nil, err
+		}
+		if err := measure.FitSines(fits, view, t.FrequencyHz, float64(rec.Rate)); err != nil {
+			return nil, nil, err
+		}
+		hz[i] = t.FrequencyHz
+		for w := range got {
+			ratio, err := measure.Ratio(fits[1+w], fits[0])
+			if err != nil {
+				return nil, nil, fmt.Errorf("verify: at %.5g Hz: %w", t.FrequencyHz, err)
+			}
+			got[w][i] = ratio
+		}
+	}
+	return hz, got, nil
+}
+
+// perOctave is how many points an octave a broad-band recording is compared at.
+const perOctave = 24
+
+// measureWhole takes the spectra of a whole record.
+func measureWhole(ctx context.Context, rec *Recording, in *wavfile.Reader) ([]float64, [][]complex128, error) {
+	if rec.Signal == Music {
+		return nil, nil, errors.New("verify: music may leave whole bands silent and proves nothing there; verify tones, a sweep or noise")
+	}
+	if rec.LengthSamples > longest*rec.Rate {
+		return nil, nil, fmt.Errorf("verify: the recording lasts %d s; up to %d s can be verified: render a shorter one, or tones", rec.LengthSamples/rec.Rate, longest)
+	}
+	ch := grid(1+len(rec.Ways), rec.LengthSamples)
+	if err := readFull(in, ch); err != nil {
+		return nil, nil, err
+	}
+	var hz []float64
+	top := math.Min(rec.BandHz[1], signal.MaxToneHz(rec.Rate))
+	if !(rec.BandHz[0] > 0 && rec.BandHz[0] < top) {
+		return nil, nil, errors.New("verify: the recording does not say in which band it can be measured; render it anew")
+	}
+	for k := 0; ; k++ {
+		f := rec.BandHz[0] * math.Exp2(float64(k)/perOctave)
+		if f > top*(1+1e-9) {
+			break
+		}
+		hz = append(hz, f)
+	}
+	got := make([][]complex128, len(rec.Ways))
+	for w := range got {
+		got[w] = make([]complex128, len(hz))
+	}
+	if err := ctx.Err(); err != nil {
+		return nil, nil, err
+	}
+	return hz, got, measure.Transfer(got, ch[1:], ch[0], float64(rec.Rate), hz)
+}
+
+// readFull fills dst, one slice a channel.
+func readFull(in *wavfile.Reader, dst [][]float64) error {
+	rest := make([][]float64, len(dst))
+	for done := 0; done < len(dst[0]); {
+		for c := range dst {
+			rest[c] = dst[c][done:]
+		}
+		n, err := in.ReadChannels(rest)
+		if n == 0 && err == nil {
+			err = io.ErrNoProgress
+		}
+		if errors.Is(err, io.EOF) {
+			return errors.New("verify: the file ends before its schedule does; render it again")
+		}
+		if err != nil {
+			return err
+		}
+		done += n
+	}
+	return nil
+}
+
+func (v *Verification) setLimits(lim Limits, rec *Recording) {
+	v.LimitGainDB, v.LimitPhaseDeg, v.FloorDB = 0.005, 0.05, -60
+	if rec.Bits < 24 {
+		v.LimitGainDB, v.LimitPhaseDeg = 0.02, 0.2
+	}
+	if rec.Signal != Tones {
+		v.FloorDB = -50
+		v.LimitGainDB = math.Max(v.LimitGainDB, 0.01) + rec.FitDB
+		v.LimitPhaseDeg = math.Max(v.LimitPhaseDeg, 0.1) + rec.FitDeg
+	}
+	if lim.GainDB > 0 {
+		v.LimitGainDB = lim.GainDB
+	}
+	if lim.PhaseDeg > 0 {
+		v.LimitPhaseDeg = lim.PhaseDeg
+	}
+	if lim.FloorDB < 0 {
+		v.FloorDB = lim.FloorDB
+	}
+}
+
+// judge finds the worst of the points that count. A file in which none counts proves nothing: it fails.
+func (v *Verification) judge() {
+	v.Pass = false
+	for i := range v.Points {
+		p := &v.Points[i]
+		if !p.Counted {
+			continue
+		}
+		if v.WorstGain == nil || worse(p.GainErrorDB(), v.WorstGain.GainErrorDB()) {
+			v.WorstGain = p
+		}
+		if v.WorstPhase == nil || worse(p.PhaseErrorDeg(), v.WorstPhase.PhaseErrorDeg()) {
+			v.WorstPhase = p
+		}
+	}
+	if v.WorstGain != nil {
+		v.Pass = math.Abs(v.WorstGain.GainErrorDB()) <= v.LimitGainDB && math.Abs(v.WorstPhase.PhaseErrorDeg()) <= v.LimitPhaseDeg
+	}
+}
+
+// worse compares magnitudes; what is no number is worst.
+func worse(a, b float64) bool { return math.Abs(a) > math.Abs(b) || math.IsNaN(a) && !math.IsNaN(b) }
+
+// A predictor is the network between the amplifier's terminals and the drivers, on the recording's grid.
+type predictor struct {
+	net   *circuit.Netlist
+	sweep *circuit.Sweep
+	n     int // frequencies
+}
+
+// newPredictor compiles the network with an ideal source: gains are then relative to the terminals.
+func newPredictor(sys *sim.System, hz []float64) (*predictor, error) {
+	net := sys.Netlist()
+	net.Source = 0
+	c, err := circuit.Compile(net, sys.Outputs())
+	if err != nil {
+		return nil, err
+	}
+	s, err := c.NewSweep(hz)
+	if err != nil {
+		return nil, err
+	}
+	return &predictor{net, s, len(hz)}, nil
+}
+
+// logRatio is ln(a/b): its real part in nepers, its imaginary part in radians.
+func logRatio(a, b complex128) complex128 { return cmplx.Log(a / b) }
