@@ -1,8 +1,10 @@
 package discrete
 
-// block is the number of samples that are worked through at a time. All signals of a block, some twenty, then
-// stay in the nearest cache.
-const block = 128
+import "fmt"
+
+// block is the number of samples that are worked through at a time: so many that setting out costs little, and few
+// enough that all signals of a block, some twenty, stay in a near cache. 128 to 512 are much the same.
+const block = 256
 
 // A tap is one term of an output's sum, by where its signal lies.
 type tap struct {
@@ -119,6 +121,18 @@ func mix(dst []float64, s *signals, taps []tap) {
 		p0 = p0[:n]
 		for i := range dst {
 			dst[i] += f0 * p0[i]
+		}
+	}
+}
+
+// checkBlock panics unless dst has n slices of length samples.
+func checkBlock(dst [][]float64, n, samples int) {
+	if len(dst) != n {
+		panic(fmt.Sprintf("discrete: %d output slices; give %d", len(dst), n))
+	}
+	for k := range dst {
+		if len(dst[k]) != samples {
+			panic(fmt.Sprintf("discrete: output slice %d has %d samples; give it as many as the input, %d", k, len(dst[k]), samples))
 		}
 	}
 }

@@ -274,3 +274,57 @@ func BenchmarkNewMatched(b *testing.B) {
 		}
 	}
 }
+
+// TestMatchedRandom compares random ways behind a source resistance with the frequency solver, at rates in turn.
+func TestMatchedRandom(t *testing.T) {
+	count := 60
+	if testing.Short() {
+		count = 12
+	}
+	rates := []float64{44100, 48000, 96000}
+	for seed := range count {
+		b := randomWays(uint64(seed))
+		solver, err := circuit.Compile(&b.n, b.outs)
+		if err != nil {
+			t.Fatal(err)
+		}
+		rate := rates[seed%len(rates)]
+		m := newMatched(t, b, rate)
+		checkGain(t, m, rate, func(f float64) []complex128 {
+			p, err := solver.At(complex(0, 2*math.Pi*f))
+			if err != nil {
+				t.Fatal(err)
+			}
+			return p.Gain
+		})
+	}
+}
+
+// randomWays is two ways of one to three sections and a driver each, from values that a builder could take.
+func randomWays(seed uint64) *bench {
+	random := rand.New(rand.NewPCG(99, seed))
+	among := func(lo, hi float64) float64 { return lo * math.Pow(hi/lo, random.Float64()) }
+	b := newBench(among(0.01, 1))
+	b.output(circuit.Amp)
+	for way := range 2 {
+		hot := circuit.Amp
+		for range 1 + random.IntN(3) {
+			next := b.node()
+			if way == 0 {
+				b.coil(hot, next, among(0.1e-3, 5e-3), among(0.05, 0.5))
+				b.capacitor(next, circuit.Return, among(2e-6, 100e-6), among(0.005, 0.1))
+			} else {
+				b.capacitor(hot, next, among(2e-6, 50e-6), among(0.005, 0.1))
+				b.coil(next, circuit.Return, among(0.05e-3, 2e-3), among(0.05, 0.5))
+			}
+			hot = next
+		}
+		if way == 0 {
+			b.driver(hot, among(3, 8), among(0.1e-3, 1e-3), among(1, 10), among(0.1e-3, 1e-3), among(25, 80), among(2, 8), among(0.2, 0.8))
+		} else {
+			b.driver(hot, among(3, 8), among(5e-6, 0.1e-3), among(0.5, 5), among(5e-6, 0.1e-3), among(400, 1500), among(1, 5), among(0.5, 2))
+		}
+		b.output(hot)
+	}
+	return b
+}

@@ -11,8 +11,9 @@ import (
 // the axis is scaled (pre-warped) so that one frequency stays where it is.
 type Trapezoid struct {
 	states, outputs int
-	step            []float64 // (states + outputs) × (states + 1): next state and output from state and input
-	now, next       []float64 // states, and the input in the last place
+	columns         []float64 // column j is what now[j] adds to next; as many as now has places, one after the other
+	now             []float64 // the states and then the input; zeros up to a multiple of eight
+	next            []float64 // the next states and then the outputs
 
 	ss   *circuit.StateSpace
 	rate float64 // Hz
@@ -42,16 +43,23 @@ func NewTrapezoid(ss *circuit.StateSpace, rate, warpHz float64) (*Trapezoid, err
 	n := ss.States()
 	t := &Trapezoid{
 		states: n, outputs: ss.Outputs(),
-		now: make([]float64, n+1), next: make([]float64, n+1),
-		ss: ss, rate: rate, a: a,
+		now:  make([]float64, (n+1+7)/8*8),
+		next: make([]float64, n+ss.Outputs()),
+		ss:   ss, rate: rate, a: a,
 	}
-	t.step = make([]float64, 0, (n+t.outputs)*(n+1))
-	for i := range n {
-		t.step = append(append(t.step, m[i*n:(i+1)*n]...), f[i])
+	rows := len(t.next)
+	t.columns = make([]float64, rows*len(t.now))
+	for j := range n {
+		column := t.columns[j*rows:][:rows]
+		for i := range n {
+			column[i] = m[i*n+j]
+		}
+		for k := range t.outputs {
+			column[n+k] = g[k*n+j]
+		}
 	}
-	for k := range t.outputs {
-		t.step = append(append(t.step, g[k*n:(k+1)*n]...), h[k])
-	}
+	copy(t.columns[n*rows:], f)
+	copy(t.columns[n*rows+n:], h)
 	return t, nil
 }
 
@@ -63,54 +71,36 @@ func (t *Trapezoid) Reset() { clear(t.now) }
 func (t *Trapezoid) Process(dst [][]float64, u []float64) {
 	checkBlock(dst, t.outputs, len(u))
 	n := t.states
-	now, next := t.now, t.next
 	for i, ui := range u {
-		now[n] = ui
-		row := t.step
-		for j := range n {
-			next[j] = dot(row[:n+1], now)
-			row = row[n+1:]
+		t.now[n] = ui
+		t.step()
+		for k, v := range t.next[n:] {
+			dst[k][i] = v
 		}
-		for k := range dst {
-			dst[k][i] = dot(row[:n+1], now)
-			row = row[n+1:]
-		}
-		now, next = next, now
+		copy(t.now, t.next[:n])
 	}
-	t.now, t.next = now, next
+}
+
+// step computes next from now, eight columns at a time.
+func (t *Trapezoid) step() {
+	next := t.next
+	clear(next)
+	rows := len(next)
+	columns := t.columns
+	for x := t.now; len(x) >= 8; x = x[8:] {
+		x0, x1, x2, x3, x4, x5, x6, x7 := x[0], x[1], x[2], x[3], x[4], x[5], x[6], x[7]
+		c := columns[: 8*rows : 8*rows]
+		c0, c1, c2, c3 := c[:rows], c[rows:][:rows], c[2*rows:][:rows], c[3*rows:][:rows]
+		c4, c5, c6, c7 := c[4*rows:][:rows], c[5*rows:][:rows], c[6*rows:][:rows], c[7*rows:][:rows]
+		for i := range next {
+			next[i] += ((x0*c0[i] + x1*c1[i]) + (x2*c2[i] + x3*c3[i])) + ((x4*c4[i] + x5*c5[i]) + (x6*c6[i] + x7*c7[i]))
+		}
+		columns = columns[8*rows:]
+	}
 }
 
 // Gain stores in dst[k] the steady-state gain of output k at f Hz as the samples have it: that of the
 // network at f = warpHz, and elsewhere that at the frequency which the rule bends to f. It panics unless dst has Outputs places.
 func (t *Trapezoid) Gain(dst []complex128, f float64) {
 	t.ss.Response(dst, complex(0, t.a*math.Tan(math.Pi*f/t.rate)))
-}
-
-// dot is Σ a[i]·b[i]; four sums run side by side, so that none waits for the one before.
-func dot(a, b []float64) float64 {
-	b = b[:len(a)]
-	var s0, s1, s2, s3 float64
-	for len(a) >= 4 && len(b) >= 4 {
-		s0 += a[0] * b[0]
-		s1 += a[1] * b[1]
-		s2 += a[2] * b[2]
-		s3 += a[3] * b[3]
-		a, b = a[4:], b[4:]
-	}
-	for i := range a {
-		s0 += a[i] * b[i]
-	}
-	return (s0 + s1) + (s2 + s3)
-}
-
-// checkBlock panics unless dst has n slices of length samples.
-func checkBlock(dst [][]float64, n, samples int) {
-	if len(dst) != n {
-		panic(fmt.Sprintf("discrete: %d output slices; give %d", len(dst), n))
-	}
-	for k := range dst {
-		if len(dst[k]) != samples {
-			panic(fmt.Sprintf("discrete: output slice %d has %d samples; give it as many as the input, %d", k, len(dst[k]), samples))
-		}
-	}
 }
