@@ -5,6 +5,7 @@ import (
 	"errors"
 	"fmt"
 	"io"
+	"sync"
 
 	"github.com/go-audio/audio"
 
@@ -65,7 +66,8 @@ func RenderBroadband(ctx context.Context, sys *sim.System, in Input, w io.WriteS
 	return rec, finish(out)
 }
 
-// A pipe renders on one goroutine and writes on another.
+// A pipe reads the source, renders and writes, each on its own goroutine: on two cores the three come to the
+// time of the slower half.
 type pipe struct {
 	model *discrete.Matched
 	src   signal.Source
@@ -74,65 +76,69 @@ type pipe struct {
 	set   *Settings
 }
 
-// A sheet is a block of finished frames, one slice a channel.
+// depth is how many blocks may wait between two stages.
+const depth = 4
+
+// A sheet is a block on its way: the input in one slice, or the finished frames in one slice a channel.
 type sheet struct {
 	ch [][]float64
 	n  int
 }
 
-func (p *pipe) run(ctx context.Context, out *wavfile.Writer, channels int) error {
-	const depth = 4
-	free, full := make(chan *sheet, depth), make(chan *sheet, depth)
+// A belt carries sheets from one stage to the next and back when they are done with.
+type belt struct{ free, full chan *sheet }
+
+func newBelt(channels int) belt {
+	b := belt{make(chan *sheet, depth), make(chan *sheet, depth)}
 	for range depth {
-		free <- &sheet{ch: grid(channels, block)}
+		b.free <- &sheet{ch: grid(channels, block)}
 	}
-	failed := make(chan error, 1)
-	ctx, cancel := context.WithCancel(ctx)
-	defer cancel()
-	go func() {
-		defer close(full)
-		failed <- p.render(ctx, free, full)
-	}()
-	var err error
-	done := 0
-	view := make([][]float64, channels)
-	for s := range full {
-		if err == nil {
-			for c := range view {
-				view[c] = s.ch[c][:s.n]
-			}
-			if err = out.WriteChannels(view); err != nil {
-				cancel()
-			}
-			done += s.n
-			if p.set.Progress != nil {
-				p.set.Progress(done, p.total)
-			}
-		}
-		free <- s
-	}
-	// A failed write is the reason why the rendering was cancelled.
-	if fault := <-failed; err == nil {
-		err = fault
-	}
-	return err
+	return b
 }
 
-// render fills sheets until all frames are made. The first frames that come out of the model are before
-// the signal's beginning, and are dropped.
-func (p *pipe) render(ctx context.Context, free <-chan *sheet, full chan<- *sheet) error {
-	in := make([]float64, block)
-	skip := p.model.Latency()
-	for left, ended := p.total, false; left > 0; {
-		if err := ctx.Err(); err != nil {
+// run returns when all stages have: their first fault, or the context's.
+func (p *pipe) run(ctx context.Context, out *wavfile.Writer, channels int) error {
+	ctx, cancel := context.WithCancelCause(ctx)
+	defer cancel(nil)
+	in, frames := newBelt(1), newBelt(channels)
+	var stages sync.WaitGroup
+	stages.Go(func() { cancelOn(cancel, p.read(ctx, in)) })
+	stages.Go(func() { cancelOn(cancel, p.render(ctx, in, frames)) })
+	err := p.write(ctx, out, frames, channels)
+	cancelOn(cancel, err)
+	stages.Wait()
+	if err == nil {
+		return nil
+	}
+	return context.Cause(ctx)
+}
+
+func cancelOn(cancel context.CancelCauseFunc, err error) {
+	if err != nil {
+		cancel(err)
+	}
+}
+
+// take receives a sheet, or the reason why there will be none.
+func take(ctx context.Context, from <-chan *sheet) (*sheet, error) {
+	select {
+	case s := <-from:
+		return s, nil
+	case <-ctx.Done():
+		return nil, context.Cause(ctx)
+	}
+}
+
+// read fills input blocks, scaled; after the source's end they are silent. As many frames are read as are
+// written, the latency more.
+func (p *pipe) read(ctx context.Context, b belt) error {
+	ended := false
+	for left := p.total + p.model.Latency(); left > 0; left -= block {
+		s, err := take(ctx, b.free)
+		if err != nil {
 			return err
 		}
-		var s *sheet
-		select {
-		case s = <-free:
-		case <-ctx.Done():
-			return ctx.Err()
-		}
+		in := s.ch[0]
 		n := 0
 		for n < block && !ended {
 			k, err := p.src.ReadSamples(in[n:])
@@ -147,7 +153,26 @@ func (p *pipe) render(ctx context.Context, free <-chan *sheet, full chan<- *shee
 			in[i] *= p.scale
 		}
 		clear(in[n:])
-		p.model.Process(s.ch, in)
+		b.full <- s
+	}
+	return nil
+}
+
+// render runs the model. The first frames that come out of it are before the signal's beginning, and are
+// dropped.
+func (p *pipe) render(ctx context.Context, in, out belt) error {
+	skip := p.model.Latency()
+	for left := p.total; left > 0; {
+		x, err := take(ctx, in.full)
+		if err != nil {
+			return err
+		}
+		s, err := take(ctx, out.free)
+		if err != nil {
+			return err
+		}
+		p.model.Process(s.ch, x.ch[0])
+		in.free <- x
 		s.n = block
 		if skip > 0 {
 			k := min(skip, block)
@@ -158,7 +183,29 @@ func (p *pipe) render(ctx context.Context, free <-chan *sheet, full chan<- *shee
 		}
 		s.n = min(s.n, left)
 		left -= s.n
-		full <- s
+		out.full <- s
+	}
+	return nil
+}
+
+func (p *pipe) write(ctx context.Context, out *wavfile.Writer, b belt, channels int) error {
+	view := make([][]float64, channels)
+	for done := 0; done < p.total; {
+		s, err := take(ctx, b.full)
+		if err != nil {
+			return err
+		}
+		for c := range view {
+			view[c] = s.ch[c][:s.n]
+		}
+		if err := out.WriteChannels(view); err != nil {
+			return err
+		}
+		done += s.n
+		b.free <- s
+		if p.set.Progress != nil {
+			p.set.Progress(done, p.total)
+		}
 	}
 	return nil
 }

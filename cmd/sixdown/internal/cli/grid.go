@@ -101,8 +101,13 @@ func (g *gridOptions) frequencies(d *xover.Design, forPeople bool) []float64 {
 	if g.spaced || !forPeople {
 		return g.even()
 	}
+	return thirdOctaves(d, g.from, g.to)
+}
+
+// thirdOctaves are the third-octaves of ISO 266 between two frequencies in Hz, with the design's targets among them.
+func thirdOctaves(d *xover.Design, from, to float64) []float64 {
 	var freqs []float64
-	for _, b := range signal.ThirdOctaves(g.from, g.to) {
+	for _, b := range signal.ThirdOctaves(from, to) {
 		freqs = append(freqs, b.Nominal)
 	}
 	for _, w := range d.Ways {

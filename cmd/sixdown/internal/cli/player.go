@@ -35,7 +35,7 @@ func (o *signalOptions) player(d *xover.Design, sys *sim.System) (*player, error
 	var err error
 	switch o.signal {
 	case "tones":
-		return o.tonePlayer(d, sys)
+		return o.tonePlayer(d, sys), nil
 	case "sweep":
 		// It begins half an octave below the band and ends just below half the rate, so that the rise and the fall
 		// lie outside the band.
@@ -59,14 +59,11 @@ func broadband(sys *sim.System, in audioio.Input) *player {
 	}}
 }
 
-func (o *signalOptions) tonePlayer(d *xover.Design, sys *sim.System) (*player, error) {
-	hz, err := o.tones(d)
-	if err != nil {
-		return nil, err
-	}
+func (o *signalOptions) tonePlayer(d *xover.Design, sys *sim.System) *player {
+	hz := o.tones(d)
 	return &player{close: func() {}, render: func(ctx context.Context, w io.WriteSeeker, set audioio.Settings) (*audioio.Recording, error) {
 		return audioio.RenderTones(ctx, sys, hz, w, set)
-	}}, nil
+	}}
 }
 
 func (o *signalOptions) noise() (signal.Source, error) {

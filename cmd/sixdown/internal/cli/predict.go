@@ -6,6 +6,7 @@ import (
 	"github.com/spf13/cobra"
 
 	"sixdown/sim"
+	"sixdown/xover"
 )
 
 // predictOptions are what predict is asked.
@@ -68,19 +69,9 @@ func runPredict(s *streams, o *predictOptions) error {
 	if err != nil {
 		return err
 	}
-	p := prediction{level: sys.Level(), distance: d.Listen.Distance}
-	if p.Response, err = sys.Predict(o.grid.frequencies(d, !o.form.json && !o.form.csv)); err != nil {
+	p, err := predictAt(s, d, sys, o.grid.frequencies(d, !o.form.json && !o.form.csv))
+	if err != nil {
 		return err
-	}
-	if p.summary, err = sys.Summary([2]float64{}); err != nil {
-		return err
-	}
-	p.warnings = sys.Warnings()
-	for _, w := range slices.Concat(p.Response.Warnings, p.summary.Warnings) {
-		if !slices.Contains(p.warnings, w) {
-			p.warnings = append(p.warnings, w)
-			s.warn(w)
-		}
 	}
 	switch {
 	case o.form.json:
@@ -89,4 +80,23 @@ func runPredict(s *streams, o *predictOptions) error {
 		return s.answerCSV(p.records())
 	}
 	return s.answer(p.text())
+}
+
+// predictAt predicts at freqs, sums up, and prints the warnings that come with it.
+func predictAt(s *streams, d *xover.Design, sys *sim.System, freqs []float64) (*prediction, error) {
+	p := &prediction{level: sys.Level(), distance: d.Listen.Distance, warnings: sys.Warnings()}
+	var err error
+	if p.Response, err = sys.Predict(freqs); err != nil {
+		return nil, err
+	}
+	if p.summary, err = sys.Summary([2]float64{}); err != nil {
+		return nil, err
+	}
+	for _, w := range slices.Concat(p.Response.Warnings, p.summary.Warnings) {
+		if !slices.Contains(p.warnings, w) {
+			p.warnings = append(p.warnings, w)
+			s.warn(w)
+		}
+	}
+	return p, nil
 }

@@ -12,7 +12,6 @@ import (
 	"github.com/spf13/cobra"
 
 	"sixdown/audioio"
-	"sixdown/audioio/signal"
 	"sixdown/audioio/wavfile"
 	"sixdown/cmd/sixdown/internal/caution"
 	"sixdown/sim"
@@ -35,7 +34,7 @@ type signalOptions struct {
 	colour  string
 	seed    uint64
 	channel int
-	at      string
+	at      []float64 // Hz
 }
 
 func (o *signalOptions) addTo(cmd *cobra.Command) {
@@ -47,7 +46,7 @@ func (o *signalOptions) addTo(cmd *cobra.Command) {
 	f.StringVar(&o.colour, "colour", "pink", "of noise: pink or white")
 	f.Uint64Var(&o.seed, "seed", 1, "of noise and dither: the same seed gives the same file")
 	f.IntVar(&o.channel, "channel", 0, "of a WAV file: 1, 2, …; 0 mixes all of them")
-	f.StringVar(&o.at, "at", "", `of tones: their frequencies, as in "1 kHz,2 kHz"; without it third-octaves and the crossover points`)
+	f.Var(&quantityList{unit: quantity.Hertz, values: &o.at}, "at", "tones at these frequencies, as in `\"1 kHz,2 kHz\"`, instead of third-octaves and targets")
 }
 
 // wav is how the file is to be stored.
@@ -68,35 +67,12 @@ func (o *signalOptions) wav() (wavfile.Settings, error) {
 	return set, nil
 }
 
-// tones are the frequencies of the tones.
-func (o *signalOptions) tones(d *xover.Design) ([]float64, error) {
-	if o.at == "" {
-		return toneFrequencies(d), nil
+// tones are the frequencies of the tones, in Hz, rising.
+func (o *signalOptions) tones(d *xover.Design) []float64 {
+	if len(o.at) == 0 {
+		return thirdOctaves(d, audible[0], audible[1])
 	}
-	var hz []float64
-	for _, text := range strings.Split(o.at, ",") {
-		f, err := quantity.ParseAs(text, quantity.Hertz)
-		if err != nil {
-			return nil, fmt.Errorf("--at: %w", err)
-		}
-		hz = append(hz, f)
-	}
-	slices.Sort(hz)
-	return slices.Compact(hz), nil
-}
-
-// toneFrequencies are the third-octaves of ISO 266 from 20 Hz to 20 kHz and the crossover points.
-func toneFrequencies(d *xover.Design) []float64 {
-	var hz []float64
-	for _, b := range signal.ThirdOctaves(20, 20000) {
-		hz = append(hz, b.Hz)
-	}
-	for _, w := range d.Ways {
-		for _, t := range w.Targets {
-			hz = append(hz, t.Frequency)
-		}
-	}
-	slices.Sort(hz)
+	hz := slices.Sorted(slices.Values(o.at))
 	return slices.Compact(hz)
 }
 
