@@ -17,8 +17,8 @@ import (
 
 // Limits say when a recording passes. A number not above zero takes the default.
 type Limits struct {
-	GainDB   float64 // dB; default 0.005 for files of 24 bits and more, 0.02 for shorter ones, plus the recording's own fit error
-	PhaseDeg float64 // degrees; default 0.05 and 0.2, likewise
+	GainDB   float64 // dB; default 0.005 for tones of 24 bits and more, 0.02 for 16; 0.01 and the fit error for sweeps; 0.1 for noise
+	PhaseDeg float64 // degrees; default 0.05, 0.2, 0.1 and the fit error, 1
 	FloorDB  float64 // a point counts if its way is predicted above this, dB re the amplifier's terminals; default -60 for tones, -50 else
 }
 
@@ -234,10 +234,13 @@ func (v *Verification) setLimits(lim Limits, rec *Recording) {
 	if rec.Bits < 24 {
 		v.LimitGainDB, v.LimitPhaseDeg = 0.02, 0.2
 	}
-	if rec.Signal != Tones {
+	switch rec.Signal {
+	case Sweep:
 		v.FloorDB = -50
 		v.LimitGainDB = math.Max(v.LimitGainDB, 0.01) + rec.FitDB
 		v.LimitPhaseDeg = math.Max(v.LimitPhaseDeg, 0.1) + rec.FitDeg
+	case Noise: // its spectrum has weak places, where the file's own rounding is heard
+		v.FloorDB, v.LimitGainDB, v.LimitPhaseDeg = -50, 0.1, 1
 	}
 	if lim.GainDB > 0 {
 		v.LimitGainDB = lim.GainDB

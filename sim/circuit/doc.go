@@ -17,5 +17,8 @@
 // Derivatives come from the adjoint network (S. W. Director and R. A. Rohrer, "The Generalized Adjoint
 // Network and Network Sensitivities", IEEE Trans. Circuit Theory 16(3), 1969, 318–323).
 //
+// Next to all this, and sharing nothing with it but the netlist, a StateSpace holds the same network as
+// differential equations, for the time domain. What one road predicts the other can check.
+//
 // The time convention is e^{+jωt}. Gains are per volt of the open-circuit source.
 package circuit
