@@ -12,10 +12,13 @@ type commandGroup struct {
 func commandGroups(s *streams) []commandGroup {
 	return []commandGroup{
 		{"Begin and predict:", []*cobra.Command{
+			newStartCmd(s),
+			newSizeCmd(s),
 			newPredictCmd(s),
+		}},
+		{"Hear and check:", []*cobra.Command{
 			newRenderCmd(s),
 			newVerifyCmd(s),
 		}},
-		{"Hear and check:", []*cobra.Command{}},
 	}
 }

@@ -6,6 +6,7 @@ import (
 	"math/cmplx"
 	"strconv"
 	"strings"
+	"unicode/utf8"
 )
 
 // none stands in a table where there is no number.
@@ -65,3 +66,28 @@ func signed(v float64) string {
 
 // hasPhase reports whether z, neither 0 nor infinite, points anywhere.
 func hasPhase(z complex128) bool { return z != 0 && !cmplx.IsInf(z) && !cmplx.IsNaN(z) }
+
+// folded writes a text under a label, broken at blanks where a line would be wider than pageWidth, and set in
+// under the label from the second line on.
+func folded(label, text string) string {
+	var b strings.Builder
+	indent := strings.Repeat(" ", utf8.RuneCountInString(label))
+	b.WriteString(label)
+	column := len(indent)
+	for i, word := range strings.Fields(text) {
+		width := utf8.RuneCountInString(word)
+		switch {
+		case i == 0:
+		case column+1+width > pageWidth:
+			b.WriteString("\n" + indent)
+			column = len(indent)
+		default:
+			b.WriteByte(' ')
+			column++
+		}
+		b.WriteString(word)
+		column += width
+	}
+	b.WriteByte('\n')
+	return b.String()
+}

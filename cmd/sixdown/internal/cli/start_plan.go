@@ -1,0 +1,198 @@
+package cli
+
+import (
+	"fmt"
+	"math"
+	"slices"
+	"strconv"
+	"strings"
+
+	"sixdown/xover/ladder"
+	"sixdown/xover/quantity"
+)
+
+// A startPlan is a design file about to be written.
+type startPlan struct {
+	title   string
+	drivers []startDriver
+	ways    []startWay
+}
+
+// A startWay is a way of it.
+type startWay struct {
+	section
+	reversed bool
+	stages   []stage // from the amplifier to the driver
+}
+
+// A stage is some steps of a way that serve one end.
+type stage struct {
+	what  string // a comment
+	steps []string
+	parts []ladder.NamedPart
+}
+
+// leastPadDB is the difference in level that is worth a pad.
+const leastPadDB = 0.5
+
+// fill makes the ways: the crossover's ladders, pads that make the levels alike, and networks across drivers.
+func (p *startPlan) fill(c *crossover, o *startOptions) error {
+	t, err := newTrial(c.sections)
+	if err != nil {
+		return err
+	}
+	reversed := t.bestSum(t.sized, c.scale()).Reversed
+	if c.midReversed != nil {
+		reversed = []bool{false, *c.midReversed, false}
+	}
+	pads := p.padsDB(c)
+	var namer ladder.Namer
+	for i, s := range c.sections {
+		w := startWay{section: s, reversed: reversed[i]}
+		w.add(&namer, fmt.Sprintf("the crossover, into %s", quantity.Round(s.load, quantity.Ohm, 3)), s.network)
+		if !o.noPad && pads[i] >= leastPadDB {
+			pad, err := ladder.LPad(s.load, pads[i])
+			if err != nil {
+				return fmt.Errorf("--driver %s: %w", p.drivers[i].name, err)
+			}
+			w.add(&namer, fmt.Sprintf("a pad of %s, since this way is louder than the others; it gets hot", quantity.Round(pads[i], quantity.Decibel, 3)), pad.Network())
+		}
+		if o.compensate {
+			if err := w.compensate(&namer, &p.drivers[i]); err != nil {
+				return err
+			}
+		}
+		p.ways = append(p.ways, w)
+	}
+	return nil
+}
+
+// add appends a network as a stage, its values rounded to what is read with ease.
+func (w *startWay) add(namer *ladder.Namer, what string, n ladder.Network) {
+	steps, parts := n.Steps(namer)
+	w.stages = append(w.stages, stage{what, steps, parts})
+}
+
+// compensate adds the network that makes the driver a resistance, if enough is said of it.
+func (w *startWay) compensate(namer *ladder.Namer, d *startDriver) error {
+	si := func(key string) float64 {
+		if v := d.value(key); v != nil {
+			return v.si
+		}
+		return 0
+	}
+	re, le, fs, qms, qes := si("re"), si("le"), si("fs"), si("qms"), si("qes")
+	var n ladder.Network
+	var err error
+	switch resonant := fs != 0 && qms != 0 && qes != 0; {
+	case re == 0 || le == 0 && !resonant:
+		return nil
+	case le == 0:
+		n, err = ladder.Resonance(re, fs, qms, qes)
+	case !resonant:
+		n, err = ladder.VoiceCoil(re, le)
+	default:
+		n, err = ladder.Dual(re, le, fs, qms, qes)
+	}
+	if err != nil {
+		return fmt.Errorf("--driver %s: %w", d.name, err)
+	}
+	w.add(namer, fmt.Sprintf("across the driver, so that it shows %s", quantity.Round(re, quantity.Ohm, 3)), n)
+	return nil
+}
+
+// padsDB returns by how much each way is louder than the quietest: its driver's sensitivity, if that of every
+// driver is known, and what an all-pass arrangement makes the mid too loud by.
+func (p *startPlan) padsDB(c *crossover) []float64 {
+	levels := make([]float64, len(p.drivers))
+	known := !slices.ContainsFunc(p.drivers, func(d startDriver) bool { return d.value("sensitivity") == nil || d.value("response") != nil })
+	for i, d := range p.drivers {
+		if known {
+			levels[i] = d.value("sensitivity").si
+		}
+		if i == 1 && c.midReversed != nil {
+			levels[i] += c.midExcessDB
+		}
+	}
+	least := slices.Min(levels)
+	for i := range levels {
+		levels[i] -= least
+	}
+	return levels
+}
+
+// text writes the design file.
+func (p *startPlan) text() string {
+	var b strings.Builder
+	b.WriteString(`# A design to begin with. The parts are sized for resistances; predict shows what they
+# do to these drivers, and from there they are for you to change.
+
+`)
+	fmt.Fprintf(&b, "title = %s\n", tomlString(p.title))
+	b.WriteString(`
+[drive]
+level  = "2.83 V"            # rms, open circuit; levels at the ear are for this
+source = "0.05 ohm"          # amplifier and cable
+
+[listen]
+distance = "1 m"             # from the front of the cabinet
+height   = "0 mm"            # of the ear above its origin
+
+[parts]
+# A coil's wire has resistance. When you know it, write for example:
+# L1 = { value = "1.1 mH", dcr = "0.3 ohm" }
+`)
+	for _, w := range p.ways {
+		for _, s := range w.stages {
+			fmt.Fprintf(&b, "\n# %s: %s\n", w.name, s.what)
+			for _, part := range s.parts {
+				fmt.Fprintf(&b, "%s = %s\n", part.Name, tomlString(quantity.Format(fourFigures(part.Value), partUnit(part.Kind))))
+			}
+		}
+	}
+	for _, d := range p.drivers {
+		p.writeDriver(&b, d)
+	}
+	for i, w := range p.ways {
+		w.write(&b, p.drivers[i].name)
+	}
+	return b.String()
+}
+
+func (p *startPlan) writeDriver(b *strings.Builder, d startDriver) {
+	fmt.Fprintf(b, "\n[driver.%s]\n", d.name)
+	for _, v := range d.values {
+		fmt.Fprintf(b, "%s = %s\n", v.key, v.text)
+	}
+	switch {
+	case d.value("response") != nil:
+		b.WriteString("phase = \"measured\"\n")
+	case d.value("sensitivity") == nil:
+		b.WriteString("# sensitivity = \"88 dB\"    # at 2.83 V, 1 m; without it there is no level at the ear\n")
+	}
+	b.WriteString("at = [\"0 mm\", \"0 mm\", \"0 mm\"]   # acoustic centre: right, up, toward the listener\n")
+}
+
+func (w *startWay) write(b *strings.Builder, driver string) {
+	fmt.Fprintf(b, "\n[[way]]\nname    = %s\ndriver  = %s\n", tomlString(w.name), tomlString(driver))
+	if w.reversed {
+		b.WriteString("polarity = \"reversed\"        # so that the ways add up\n")
+	}
+	if len(w.targets) > 0 {
+		fmt.Fprintf(b, "target  = %s\n", tomlList(w.targets))
+	}
+	var steps []string
+	for _, s := range w.stages {
+		steps = append(steps, s.steps...)
+	}
+	fmt.Fprintf(b, "network = %s\n", tomlList(steps))
+}
+
+// fourFigures rounds a value to four figures.
+func fourFigures(v float64) float64 {
+	if v == 0 || math.IsInf(v, 0) || math.IsNaN(v) {
+		return v
+	}
+	rounded, _ := strconv.ParseFloat(strconv.FormatFloat(v, 'e', 3, 64), 64) // its own text always parses
+	return rounded
+}
