@@ -54,9 +54,11 @@ func (q *param) weight(tank bool, k Kind, v float64) float64 {
 	return 1 // z = R, z = jωL
 }
 
-// gradSlots is how many slots the gradient uses before those of the adjoints: base and base·ΔV of
-// each cell and two to work in.
-func gradSlots(p *program) int { return 2*len(p.cells) + 2 }
+// gradSlots is how many slots the gradient uses before those of the adjoints: two of each parameter and one to
+// work in. The first of a parameter's holds its pull: the derivative of a gain is pull·Δψ. The second, where
+// there is a source resistance, holds pull·ΔV: what the derivative is per κ in a cell that the output's current
+// does not reach, since ψ is κ·V there.
+func gradSlots(p *program) int { return 2*len(p.params) + 1 }
 
 // Gradient solves the network and computes the derivative of every output's gain by the value of every
 // resistor, inductor and capacitor: one more back-substitution an output. It allocates only when first called.
@@ -64,6 +66,11 @@ func (s *Sweep) Gradient() error {
 	stride := len(s.w) * lanes
 	if s.grad == nil {
 		s.grad = make([]complex128, len(s.c.outs)*len(s.c.net.Branches)*stride)
+		s.weights = make([]float64, len(s.c.p.params))
+	}
+	for i := range s.weights {
+		q := &s.c.p.params[i]
+		s.weights[i] = q.weight(s.c.p.cells[q.cell].tank, s.c.net.Branches[q.branch].Kind, s.vals[q.branch])
 	}
 	for b := range s.w {
 		s.forward(b)
@@ -74,7 +81,7 @@ func (s *Sweep) Gradient() error {
 		if len(s.wind) > 0 {
 			s.run(s.c.p.rest, b)
 		}
-		s.bases()
+		s.pulls(b)
 		for o := range s.c.p.adj {
 			s.backward(b, o)
 		}
@@ -95,73 +102,72 @@ func (s *Sweep) gradOf(o, branch int) []complex128 {
 	return s.grad[first : first+stride]
 }
 
-// bases computes what all outputs share: base of each cell and, where there is a source resistance, base·ΔV.
-func (s *Sweep) bases() {
+// pulls computes what all outputs share: each parameter's pull, weight × (1, jω or j/ω) × base, and pull·ΔV.
+func (s *Sweep) pulls(b int) {
 	p := s.c.p
-	for i := range p.cells {
-		k := &p.cells[i]
+	work := &s.v[p.slots+2*len(p.params)]
+	base, of := work, -1
+	for i := range p.params {
+		q := &p.params[i]
+		k := &p.cells[q.cell]
 		dv := &s.v[k.dv]
-		base, q := &s.v[p.slots+2*i], &s.v[p.slots+2*i+1]
-		if k.tank {
-			*base = *dv
+		if q.cell != of {
+			of = q.cell
+			if base = dv; !k.tank {
+				base = work
+				squareMulTo(base, &s.v[k.y], dv)
+			}
+		}
+		pull := &s.v[p.slots+2*i]
+		if x := s.factor(q.form, b); x != nil {
+			turnTo(pull, base, x, s.weights[i])
 		} else {
-			squareMulTo(base, &s.v[k.y], dv)
+			scaleTo(pull, base, s.weights[i])
 		}
 		if s.c.net.Source > 0 {
-			mulTo(q, base, dv)
+			mulTo(&s.v[p.slots+2*i+1], pull, dv)
 		}
-	}
-}
-
-// squareMulTo stores y²·v.
-func squareMulTo(dst, y, v *cvec) {
-	for i := range lanes {
-		yr, yi, vr, vi := y.re[i], y.im[i], v.re[i], v.im[i]
-		ir, ii := yr*vr-yi*vi, yr*vi+yi*vr
-		dst.re[i] = yr*ir - yi*ii
-		dst.im[i] = yr*ii + yi*ir
 	}
 }
 
 // backward solves the adjoint of output o in block b and stores the derivatives.
 func (s *Sweep) backward(b, o int) {
-	p, a, rs := s.c.p, &s.c.p.adj[o], s.c.net.Source
-	kappa, g, minus := &s.v[a.kappa], &s.v[a.g], &s.v[a.minus]
-	y := &s.v[p.yin]
-	for l := range lanes {
-		amp := 1 / (1 + complex(rs, 0)*complex(y.re[l], y.im[l]))
-		g.re[l], g.im[l] = real(amp), imag(amp)
-		minus.re[l], minus.im[l] = -real(amp), -imag(amp)
-		k := complex(rs, 0) * amp * amp * s.outVolts(o, l)
-		kappa.re[l], kappa.im[l] = real(k), imag(k)
+	p, a := s.c.p, &s.c.p.adj[o]
+	kappa, minus := &s.v[a.kappa], &s.v[a.minus]
+	s.v[a.g] = s.g
+	scaleTo(minus, &s.g, -1)
+	*kappa = cvec{}
+	if out := p.outs[o]; out.slot != noSlot {
+		rs := s.c.net.Source
+		if out.neg {
+			rs = -rs
+		}
+		mulTo(kappa, &s.g, &s.v[out.slot])
+		mulTo(kappa, kappa, &s.g)
+		scaleTo(kappa, kappa, rs)
 	}
 	runAdjoint(a.ops, s.v)
-	product, work := &s.v[p.slots+2*len(p.cells)], &s.v[p.slots+2*len(p.cells)+1]
+	work := &s.v[p.slots+2*len(p.params)]
 	for i, n := 0, len(p.params); i < n; {
 		c := p.params[i].cell
 		k := &p.cells[c]
 		from, to := k.from, k.to // to is eliminated later, or is Amp or the return
-		base := &s.v[p.slots+2*c]
-		left, right := base, kappa
+		first, right := p.slots+2*i, kappa
 		switch {
 		case a.hit[from] || a.hit[to]:
 			right = s.psiBetween(work, a, from, to)
-		case rs > 0: // no current reaches the cell: ψ is κ·V
-			left = &s.v[p.slots+2*c+1]
-		default: // and without a source resistance κ is zero: so are the derivatives, from the start
+		case s.c.net.Source > 0:
+			first++
+		default: // κ is zero, and so are the derivatives, from the start
 			for i < n && p.params[i].cell == c {
 				i++
 			}
 			continue
 		}
-		if i+1 == n || p.params[i+1].cell != c { // the only part of its cell: in one go
-			s.store(b, o, i, left, right)
-			i++
-			continue
-		}
-		mulTo(product, left, right)
 		for ; i < n && p.params[i].cell == c; i++ {
-			s.store(b, o, i, product, nil)
+			dst := s.gradOf(o, p.params[i].branch)[b*lanes:]
+			mulStore((*[lanes]complex128)(dst), &s.v[first], right)
+			first += 2
 		}
 	}
 	s.windingGradient(b, o)
@@ -175,36 +181,6 @@ func (s *Sweep) psiBetween(work *cvec, a *adjoint, from, to int) *cvec {
 	}
 	subTo(work, f, &s.v[a.psi[to]])
 	return work
-}
-
-// store writes the derivative by parameter i: weight × (1, jω or j/ω) × left·right, right nil for 1.
-func (s *Sweep) store(b, o, i int, left, right *cvec) {
-	p := s.c.p
-	q := &p.params[i]
-	c := q.weight(p.cells[q.cell].tank, s.c.net.Branches[q.branch].Kind, s.vals[q.branch])
-	dst := (*[lanes]complex128)(s.gradOf(o, q.branch)[b*lanes:])
-	switch x := s.factor(q.form, b); {
-	case right == nil && x == nil:
-		for l := range lanes {
-			dst[l] = complex(c*left.re[l], c*left.im[l])
-		}
-	case right == nil:
-		for l := range lanes {
-			t := c * x[l]
-			dst[l] = complex(-t*left.im[l], t*left.re[l])
-		}
-	case x == nil:
-		for l := range lanes {
-			ar, ai, br, bi := left.re[l], left.im[l], right.re[l], right.im[l]
-			dst[l] = complex(c*(ar*br-ai*bi), c*(ar*bi+ai*br))
-		}
-	default:
-		for l := range lanes {
-			ar, ai, br, bi := left.re[l], left.im[l], right.re[l], right.im[l]
-			t := c * x[l]
-			dst[l] = complex(-t*(ar*bi+ai*br), t*(ar*br-ai*bi))
-		}
-	}
 }
 
 // factor is ω or 1/ω of block b, or nil for 1.

@@ -25,7 +25,6 @@ type opcode uint8
 
 const (
 	opTank    opcode = iota // dst = tank cell
-	opTankAdd               // dst = a + tank cell
 	opChain                 // dst = chain cell
 	opAdd                   // dst = a + b
 	opSub                   // dst = a - b

@@ -23,6 +23,7 @@ type Sweep struct {
 	amp     []complex128
 	zin     []complex128
 	grad    []complex128     // output by output, branch by branch; nil until wanted
+	weights []float64        // of each parameter
 	nodes   [][]complex128   // folded node → voltage per volt of the open-circuit source; nil until wanted
 	across  [][]complex128   // group → the same across it
 	coils   [][][]complex128 // winding, coil → the same across it

@@ -1,0 +1,476 @@
+#include "textflag.h"
+
+// The kernels of kernel.go on four frequencies at a time (AVX2, no fused multiply-add, so that the digits are
+// those of the plain forms). A cvec is 16 real parts and, 128 bytes on, 16 imaginary parts. In Go's
+// assembler the last operand is the destination, and VSUBPD b, a, d is d = a - b.
+
+DATA ·realOne+0(SB)/8, $1.0
+GLOBL ·realOne(SB), RODATA, $8
+DATA ·signBit+0(SB)/8, $0x8000000000000000
+GLOBL ·signBit(SB), RODATA, $8
+
+// y = cond + j(w·c - u·gamma)
+#define TANK(O) \
+	VMULPD O(BX), Y14, Y0; \
+	VMULPD O(CX), Y15, Y1; \
+	VSUBPD Y1, Y0, Y0; \
+	VMOVUPD Y13, O(AX); \
+	VMOVUPD Y0, O+128(AX)
+
+TEXT ·fastTank(SB), NOSPLIT, $0-48
+	MOVQ y+0(FP), AX
+	MOVQ w+8(FP), BX
+	MOVQ u+16(FP), CX
+	VBROADCASTSD cond+24(FP), Y13
+	VBROADCASTSD c+32(FP), Y14
+	VBROADCASTSD gamma+40(FP), Y15
+	TANK(0)
+	TANK(32)
+	TANK(64)
+	TANK(96)
+	VZEROUPPER
+	RET
+
+// x = w·l - u·s, y = (r - jx)/(r² + x²)
+#define CHAIN(O) \
+	VMULPD O(BX), Y14, Y0; \
+	VMULPD O(CX), Y15, Y1; \
+	VSUBPD Y1, Y0, Y0; \
+	VMULPD Y0, Y0, Y2; \
+	VADDPD Y2, Y12, Y2; \
+	VDIVPD Y2, Y11, Y2; \
+	VMULPD Y13, Y2, Y3; \
+	VXORPD Y10, Y0, Y0; \
+	VMULPD Y0, Y2, Y4; \
+	VMOVUPD Y3, O(AX); \
+	VMOVUPD Y4, O+128(AX)
+
+TEXT ·fastChain(SB), NOSPLIT, $0-48
+	MOVQ y+0(FP), AX
+	MOVQ w+8(FP), BX
+	MOVQ u+16(FP), CX
+	VBROADCASTSD r+24(FP), Y13
+	VBROADCASTSD l+32(FP), Y14
+	VBROADCASTSD s+40(FP), Y15
+	VMULPD Y13, Y13, Y12
+	VBROADCASTSD ·realOne(SB), Y11
+	VBROADCASTSD ·signBit(SB), Y10
+	CHAIN(0)
+	CHAIN(32)
+	CHAIN(64)
+	CHAIN(96)
+	VZEROUPPER
+	RET
+
+// y = a + b
+#define ADD(O) \
+	VMOVUPD O(BX), Y0; \
+	VMOVUPD O+128(BX), Y1; \
+	VADDPD O(CX), Y0, Y0; \
+	VADDPD O+128(CX), Y1, Y1; \
+	VMOVUPD Y0, O(AX); \
+	VMOVUPD Y1, O+128(AX)
+
+TEXT ·fastAdd(SB), NOSPLIT, $0-24
+	MOVQ y+0(FP), AX
+	MOVQ a+8(FP), BX
+	MOVQ b+16(FP), CX
+	ADD(0)
+	ADD(32)
+	ADD(64)
+	ADD(96)
+	VZEROUPPER
+	RET
+
+// y = a - b
+#define SUB(O) \
+	VMOVUPD O(BX), Y0; \
+	VMOVUPD O+128(BX), Y1; \
+	VSUBPD O(CX), Y0, Y0; \
+	VSUBPD O+128(CX), Y1, Y1; \
+	VMOVUPD Y0, O(AX); \
+	VMOVUPD Y1, O+128(AX)
+
+TEXT ·fastSub(SB), NOSPLIT, $0-24
+	MOVQ y+0(FP), AX
+	MOVQ a+8(FP), BX
+	MOVQ b+16(FP), CX
+	SUB(0)
+	SUB(32)
+	SUB(64)
+	SUB(96)
+	VZEROUPPER
+	RET
+
+// y = a·b
+#define MUL(O) \
+	VMOVUPD O(BX), Y0; \
+	VMOVUPD O+128(BX), Y1; \
+	VMOVUPD O(CX), Y2; \
+	VMOVUPD O+128(CX), Y3; \
+	VMULPD Y2, Y0, Y4; \
+	VMULPD Y3, Y1, Y5; \
+	VMULPD Y3, Y0, Y6; \
+	VMULPD Y2, Y1, Y7; \
+	VSUBPD Y5, Y4, Y4; \
+	VADDPD Y7, Y6, Y6; \
+	VMOVUPD Y4, O(AX); \
+	VMOVUPD Y6, O+128(AX)
+
+TEXT ·fastMul(SB), NOSPLIT, $0-24
+	MOVQ y+0(FP), AX
+	MOVQ a+8(FP), BX
+	MOVQ b+16(FP), CX
+	MUL(0)
+	MUL(32)
+	MUL(64)
+	MUL(96)
+	VZEROUPPER
+	RET
+
+// y = -a·b
+#define MULNEG(O) \
+	VMOVUPD O(BX), Y0; \
+	VMOVUPD O+128(BX), Y1; \
+	VMOVUPD O(CX), Y2; \
+	VMOVUPD O+128(CX), Y3; \
+	VMULPD Y2, Y0, Y4; \
+	VMULPD Y3, Y1, Y5; \
+	VMULPD Y3, Y0, Y6; \
+	VMULPD Y2, Y1, Y7; \
+	VSUBPD Y4, Y5, Y4; \
+	VADDPD Y7, Y6, Y6; \
+	VXORPD Y10, Y6, Y6; \
+	VMOVUPD Y4, O(AX); \
+	VMOVUPD Y6, O+128(AX)
+
+TEXT ·fastMulNeg(SB), NOSPLIT, $0-24
+	MOVQ y+0(FP), AX
+	MOVQ a+8(FP), BX
+	MOVQ b+16(FP), CX
+	VBROADCASTSD ·signBit(SB), Y10
+	MULNEG(0)
+	MULNEG(32)
+	MULNEG(64)
+	MULNEG(96)
+	VZEROUPPER
+	RET
+
+// y = s + a·b
+#define MULADD(O) \
+	VMOVUPD O(CX), Y0; \
+	VMOVUPD O+128(CX), Y1; \
+	VMOVUPD O(DX), Y2; \
+	VMOVUPD O+128(DX), Y3; \
+	VMULPD Y2, Y0, Y4; \
+	VMULPD Y3, Y1, Y5; \
+	VMULPD Y3, Y0, Y6; \
+	VMULPD Y2, Y1, Y7; \
+	VSUBPD Y5, Y4, Y4; \
+	VADDPD Y7, Y6, Y6; \
+	VMOVUPD O(BX), Y0; \
+	VMOVUPD O+128(BX), Y1; \
+	VADDPD Y4, Y0, Y4; \
+	VADDPD Y6, Y1, Y6; \
+	VMOVUPD Y4, O(AX); \
+	VMOVUPD Y6, O+128(AX)
+
+TEXT ·fastMulAdd(SB), NOSPLIT, $0-32
+	MOVQ y+0(FP), AX
+	MOVQ s+8(FP), BX
+	MOVQ a+16(FP), CX
+	MOVQ b+24(FP), DX
+	MULADD(0)
+	MULADD(32)
+	MULADD(64)
+	MULADD(96)
+	VZEROUPPER
+	RET
+
+// y = s - a·b
+#define MULSUB(O) \
+	VMOVUPD O(CX), Y0; \
+	VMOVUPD O+128(CX), Y1; \
+	VMOVUPD O(DX), Y2; \
+	VMOVUPD O+128(DX), Y3; \
+	VMULPD Y2, Y0, Y4; \
+	VMULPD Y3, Y1, Y5; \
+	VMULPD Y3, Y0, Y6; \
+	VMULPD Y2, Y1, Y7; \
+	VSUBPD Y5, Y4, Y4; \
+	VADDPD Y7, Y6, Y6; \
+	VMOVUPD O(BX), Y0; \
+	VMOVUPD O+128(BX), Y1; \
+	VSUBPD Y4, Y0, Y4; \
+	VSUBPD Y6, Y1, Y6; \
+	VMOVUPD Y4, O(AX); \
+	VMOVUPD Y6, O+128(AX)
+
+TEXT ·fastMulSub(SB), NOSPLIT, $0-32
+	MOVQ y+0(FP), AX
+	MOVQ s+8(FP), BX
+	MOVQ a+16(FP), CX
+	MOVQ b+24(FP), DX
+	MULSUB(0)
+	MULSUB(32)
+	MULSUB(64)
+	MULSUB(96)
+	VZEROUPPER
+	RET
+
+// y = 1/a
+#define INV(O) \
+	VMOVUPD O(BX), Y0; \
+	VMOVUPD O+128(BX), Y1; \
+	VMULPD Y0, Y0, Y2; \
+	VMULPD Y1, Y1, Y3; \
+	VADDPD Y3, Y2, Y2; \
+	VDIVPD Y2, Y11, Y2; \
+	VXORPD Y10, Y1, Y1; \
+	VMULPD Y2, Y0, Y0; \
+	VMULPD Y2, Y1, Y1; \
+	VMOVUPD Y0, O(AX); \
+	VMOVUPD Y1, O+128(AX)
+
+TEXT ·fastInv(SB), NOSPLIT, $0-16
+	MOVQ y+0(FP), AX
+	MOVQ a+8(FP), BX
+	VBROADCASTSD ·realOne(SB), Y11
+	VBROADCASTSD ·signBit(SB), Y10
+	INV(0)
+	INV(32)
+	INV(64)
+	INV(96)
+	VZEROUPPER
+	RET
+
+// y = a/(a+b)
+#define SHARE(O) \
+	VMOVUPD O(BX), Y0; \
+	VMOVUPD O+128(BX), Y1; \
+	VMOVUPD O(CX), Y2; \
+	VMOVUPD O+128(CX), Y3; \
+	VADDPD Y2, Y0, Y4; \
+	VADDPD Y3, Y1, Y5; \
+	VMULPD Y4, Y4, Y6; \
+	VMULPD Y5, Y5, Y7; \
+	VADDPD Y7, Y6, Y6; \
+	VDIVPD Y6, Y11, Y8; \
+	VMULPD Y4, Y0, Y6; \
+	VMULPD Y5, Y1, Y7; \
+	VADDPD Y7, Y6, Y6; \
+	VMULPD Y4, Y1, Y7; \
+	VMULPD Y5, Y0, Y9; \
+	VSUBPD Y9, Y7, Y7; \
+	VMULPD Y8, Y6, Y6; \
+	VMULPD Y8, Y7, Y7; \
+	VMOVUPD Y6, O(AX); \
+	VMOVUPD Y7, O+128(AX)
+
+TEXT ·fastShare(SB), NOSPLIT, $0-24
+	MOVQ y+0(FP), AX
+	MOVQ a+8(FP), BX
+	MOVQ b+16(FP), CX
+	VBROADCASTSD ·realOne(SB), Y11
+	SHARE(0)
+	SHARE(32)
+	SHARE(64)
+	SHARE(96)
+	VZEROUPPER
+	RET
+
+// fac = a/(a+b), sum = fac·b
+#define ELIM(O) \
+	VMOVUPD O(CX), Y0; \
+	VMOVUPD O+128(CX), Y1; \
+	VMOVUPD O(DX), Y2; \
+	VMOVUPD O+128(DX), Y3; \
+	VADDPD Y2, Y0, Y4; \
+	VADDPD Y3, Y1, Y5; \
+	VMULPD Y4, Y4, Y6; \
+	VMULPD Y5, Y5, Y7; \
+	VADDPD Y7, Y6, Y6; \
+	VDIVPD Y6, Y11, Y8; \
+	VMULPD Y4, Y0, Y6; \
+	VMULPD Y5, Y1, Y7; \
+	VADDPD Y7, Y6, Y6; \
+	VMULPD Y4, Y1, Y7; \
+	VMULPD Y5, Y0, Y9; \
+	VSUBPD Y9, Y7, Y7; \
+	VMULPD Y8, Y6, Y6; \
+	VMULPD Y8, Y7, Y7; \
+	VMOVUPD Y6, O(AX); \
+	VMOVUPD Y7, O+128(AX); \
+	VMULPD Y2, Y6, Y4; \
+	VMULPD Y3, Y7, Y5; \
+	VSUBPD Y5, Y4, Y4; \
+	VMULPD Y3, Y6, Y5; \
+	VMULPD Y2, Y7, Y8; \
+	VADDPD Y8, Y5, Y5; \
+	VMOVUPD Y4, O(BX); \
+	VMOVUPD Y5, O+128(BX)
+
+TEXT ·fastElim(SB), NOSPLIT, $0-32
+	MOVQ fac+0(FP), AX
+	MOVQ sum+8(FP), BX
+	MOVQ a+16(FP), CX
+	MOVQ b+24(FP), DX
+	VBROADCASTSD ·realOne(SB), Y11
+	ELIM(0)
+	ELIM(32)
+	ELIM(64)
+	ELIM(96)
+	VZEROUPPER
+	RET
+
+// fac = a/(a+b), sum = src + fac·b
+#define ELIMADD(O) \
+	VMOVUPD O(DX), Y0; \
+	VMOVUPD O+128(DX), Y1; \
+	VMOVUPD O(SI), Y2; \
+	VMOVUPD O+128(SI), Y3; \
+	VADDPD Y2, Y0, Y4; \
+	VADDPD Y3, Y1, Y5; \
+	VMULPD Y4, Y4, Y6; \
+	VMULPD Y5, Y5, Y7; \
+	VADDPD Y7, Y6, Y6; \
+	VDIVPD Y6, Y11, Y8; \
+	VMULPD Y4, Y0, Y6; \
+	VMULPD Y5, Y1, Y7; \
+	VADDPD Y7, Y6, Y6; \
+	VMULPD Y4, Y1, Y7; \
+	VMULPD Y5, Y0, Y9; \
+	VSUBPD Y9, Y7, Y7; \
+	VMULPD Y8, Y6, Y6; \
+	VMULPD Y8, Y7, Y7; \
+	VMOVUPD Y6, O(AX); \
+	VMOVUPD Y7, O+128(AX); \
+	VMULPD Y2, Y6, Y4; \
+	VMULPD Y3, Y7, Y5; \
+	VSUBPD Y5, Y4, Y4; \
+	VMULPD Y3, Y6, Y5; \
+	VMULPD Y2, Y7, Y8; \
+	VADDPD Y8, Y5, Y5; \
+	VMOVUPD O(CX), Y0; \
+	VMOVUPD O+128(CX), Y1; \
+	VADDPD Y4, Y0, Y4; \
+	VADDPD Y5, Y1, Y5; \
+	VMOVUPD Y4, O(BX); \
+	VMOVUPD Y5, O+128(BX)
+
+TEXT ·fastElimAdd(SB), NOSPLIT, $0-40
+	MOVQ fac+0(FP), AX
+	MOVQ sum+8(FP), BX
+	MOVQ src+16(FP), CX
+	MOVQ a+24(FP), DX
+	MOVQ b+32(FP), SI
+	VBROADCASTSD ·realOne(SB), Y11
+	ELIMADD(0)
+	ELIMADD(32)
+	ELIMADD(64)
+	ELIMADD(96)
+	VZEROUPPER
+	RET
+
+// dst = y·(y·v)
+#define SQUAREMUL(O) \
+	VMOVUPD O(BX), Y0; \
+	VMOVUPD O+128(BX), Y1; \
+	VMOVUPD O(CX), Y2; \
+	VMOVUPD O+128(CX), Y3; \
+	VMULPD Y2, Y0, Y4; \
+	VMULPD Y3, Y1, Y5; \
+	VMULPD Y3, Y0, Y6; \
+	VMULPD Y2, Y1, Y7; \
+	VSUBPD Y5, Y4, Y4; \
+	VADDPD Y7, Y6, Y6; \
+	VMULPD Y4, Y0, Y2; \
+	VMULPD Y6, Y1, Y3; \
+	VSUBPD Y3, Y2, Y2; \
+	VMULPD Y6, Y0, Y5; \
+	VMULPD Y4, Y1, Y7; \
+	VADDPD Y7, Y5, Y5; \
+	VMOVUPD Y2, O(AX); \
+	VMOVUPD Y5, O+128(AX)
+
+TEXT ·fastSquareMul(SB), NOSPLIT, $0-24
+	MOVQ dst+0(FP), AX
+	MOVQ y+8(FP), BX
+	MOVQ v+16(FP), CX
+	SQUAREMUL(0)
+	SQUAREMUL(32)
+	SQUAREMUL(64)
+	SQUAREMUL(96)
+	VZEROUPPER
+	RET
+
+// y = c·a
+#define SCALE(O) \
+	VMULPD O(BX), Y14, Y0; \
+	VMULPD O+128(BX), Y14, Y1; \
+	VMOVUPD Y0, O(AX); \
+	VMOVUPD Y1, O+128(AX)
+
+TEXT ·fastScale(SB), NOSPLIT, $0-24
+	MOVQ y+0(FP), AX
+	MOVQ a+8(FP), BX
+	VBROADCASTSD c+16(FP), Y14
+	SCALE(0)
+	SCALE(32)
+	SCALE(64)
+	SCALE(96)
+	VZEROUPPER
+	RET
+
+// y = j·c·x·a
+#define TURN(O) \
+	VMULPD O(CX), Y14, Y2; \
+	VMULPD O+128(BX), Y2, Y0; \
+	VMULPD O(BX), Y2, Y1; \
+	VXORPD Y10, Y0, Y0; \
+	VMOVUPD Y0, O(AX); \
+	VMOVUPD Y1, O+128(AX)
+
+TEXT ·fastTurn(SB), NOSPLIT, $0-32
+	MOVQ y+0(FP), AX
+	MOVQ a+8(FP), BX
+	MOVQ x+16(FP), CX
+	VBROADCASTSD c+24(FP), Y14
+	VBROADCASTSD ·signBit(SB), Y10
+	TURN(0)
+	TURN(32)
+	TURN(64)
+	TURN(96)
+	VZEROUPPER
+	RET
+
+// dst = a·b, real and imaginary parts side by side
+#define MULSTORE(O) \
+	VMOVUPD O(BX), Y0; \
+	VMOVUPD O+128(BX), Y1; \
+	VMOVUPD O(CX), Y2; \
+	VMOVUPD O+128(CX), Y3; \
+	VMULPD Y2, Y0, Y4; \
+	VMULPD Y3, Y1, Y5; \
+	VMULPD Y3, Y0, Y6; \
+	VMULPD Y2, Y1, Y7; \
+	VSUBPD Y5, Y4, Y4; \
+	VADDPD Y7, Y6, Y6; \
+	VUNPCKLPD Y6, Y4, Y0; \
+	VUNPCKHPD Y6, Y4, Y1; \
+	VPERM2F128 $0x20, Y1, Y0, Y2; \
+	VPERM2F128 $0x31, Y1, Y0, Y3; \
+	VMOVUPD Y2, 2*O(AX); \
+	VMOVUPD Y3, 2*O+32(AX)
+
+TEXT ·fastMulStore(SB), NOSPLIT, $0-24
+	MOVQ dst+0(FP), AX
+	MOVQ a+8(FP), BX
+	MOVQ b+16(FP), CX
+	MULSTORE(0)
+	MULSTORE(32)
+	MULSTORE(64)
+	MULSTORE(96)
+	VZEROUPPER
+	RET
+
