@@ -13,6 +13,14 @@ func Sound() []string {
 	}
 }
 
+// Resistors are the cautions that go with resistors that take power, such as those of a pad.
+func Resistors() []string {
+	return []string{
+		"These resistors get hot: choose a rating of at least twice the power that they take, and keep them clear of wood, foam and capacitors.",
+		"How much power arrives is for the amplifier and the music to say; the part maker's data decide what a resistor stands.",
+	}
+}
+
 // Text sets cautions for people, a line each.
 func Text(cautions []string) string {
 	return "Caution\n  " + strings.Join(cautions, "\n  ") + "\n"

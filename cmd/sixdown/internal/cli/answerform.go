@@ -32,13 +32,14 @@ func (f *answerForm) check() error {
 	return nil
 }
 
-// answerCSV prints records, the first the names, as RFC 4180 has it.
-func (s *streams) answerCSV(records [][]string) error {
+// answerCSV prints records, the first the names.
+func (s *streams) answerCSV(records [][]string) error { return s.answer(csvText(records)) }
+
+// csvText writes records as RFC 4180 has them.
+func csvText(records [][]string) string {
 	var b strings.Builder
 	w := csv.NewWriter(&b)
 	w.UseCRLF = true
-	if err := w.WriteAll(records); err != nil {
-		return err
-	}
-	return s.answer(b.String())
+	w.WriteAll(records) // a strings.Builder takes all
+	return b.String()
 }

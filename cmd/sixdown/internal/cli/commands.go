@@ -19,6 +19,7 @@ func commandGroups(s *streams) []commandGroup {
 		{"Hear and check:", []*cobra.Command{
 			newRenderCmd(s),
 			newVerifyCmd(s),
+			newDemoCmd(s),
 		}},
 	}
 }

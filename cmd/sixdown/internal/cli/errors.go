@@ -103,7 +103,8 @@ func flagNames(cmd *cobra.Command) []string {
 	return names
 }
 
-// exampleOf shows how a flag is written. Our own flag values give an example; the others are numbers and texts.
+// exampleOf shows how a flag is written. Our own flag values give an example; the others are
+// numbers, and texts, whose usage names one.
 func exampleOf(f *pflag.Flag) string {
 	if v, ok := f.Value.(interface{ example() string }); ok {
 		return "--" + f.Name + " " + v.example()
@@ -116,5 +117,6 @@ func exampleOf(f *pflag.Flag) string {
 	case "float64":
 		return "--" + f.Name + " 0.5"
 	}
-	return "--" + f.Name + " VALUE"
+	name, _ := pflag.UnquoteUsage(f)
+	return "--" + f.Name + " " + name
 }

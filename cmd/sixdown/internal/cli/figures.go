@@ -91,3 +91,11 @@ func folded(label, text string) string {
 	b.WriteByte('\n')
 	return b.String()
 }
+
+// counted returns "1 driver is" or "3 drivers are".
+func counted(n int, noun string) string {
+	if n == 1 {
+		return "1 " + noun + " is"
+	}
+	return fmt.Sprintf("%d %ss are", n, noun)
+}

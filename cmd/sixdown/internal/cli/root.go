@@ -96,6 +96,9 @@ func newHelpCmd() *cobra.Command {
 			if err != nil || len(rest) > 0 {
 				return unknownCommand(about, rest)
 			}
+			// What cobra adds only to the command that runs.
+			about.InitDefaultHelpFlag()
+			about.InitDefaultVersionFlag()
 			return about.Help()
 		},
 	}

@@ -120,7 +120,7 @@ func (o *crossoverOptions) check() error {
 		}
 	}
 	if n := len(o.load); n > 1 && n != len(o.at)+1 {
-		return usageFault("--load", fmt.Sprintf("%d loads are given for %d ways", n, len(o.at)+1), "give one for all ways or one for each")
+		return usageFault("--load", fmt.Sprintf("%s given for %d ways", counted(n, "load"), len(o.at)+1), "give one for all ways or one for each")
 	}
 	for _, r := range o.load {
 		if err := checkLoad("--load", r); err != nil {

@@ -6,6 +6,7 @@ import (
 
 	"github.com/spf13/cobra"
 
+	"sixdown/cmd/sixdown/internal/caution"
 	"sixdown/cmd/sixdown/internal/table"
 	"sixdown/xover/ladder"
 	"sixdown/xover/preferred"
@@ -108,9 +109,9 @@ func (a *conditionerAnswer) text() string {
 			b.WriteString(folded("", f.say))
 		}
 	}
-	b.WriteString(folded("source   ", a.source))
-	for _, c := range a.cautions {
-		b.WriteString(folded("caution  ", c))
+	b.WriteString(folded("Source: ", a.source))
+	if len(a.cautions) > 0 {
+		b.WriteString("\n" + caution.Text(a.cautions))
 	}
 	return b.String()
 }

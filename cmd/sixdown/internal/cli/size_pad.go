@@ -6,6 +6,7 @@ import (
 
 	"github.com/spf13/cobra"
 
+	"sixdown/cmd/sixdown/internal/caution"
 	"sixdown/xover/ladder"
 	"sixdown/xover/preferred"
 	"sixdown/xover/quantity"
@@ -46,13 +47,10 @@ func (o *padOptions) size(series preferred.Series) (*conditioner, error) {
 		return nil, fmt.Errorf("size pad: %w", err)
 	}
 	c := &conditioner{
-		title:   fmt.Sprintf("Pad of %s for %s", quantity.Round(o.lossDB, quantity.Decibel, 3), quantity.Round(o.load, quantity.Ohm, 3)),
-		network: pad.Network(),
-		source:  "k = 10^(-loss/20), series R = load·(1 - k), shunt R = load·k/(1 - k): the loss is right, and so is the load before the pad",
-		cautions: []string{
-			"these resistors get hot; choose a rating of at least twice the power they take, and keep them clear of wood, foam and capacitors",
-			"what goes into them at full power is for the music to say; these are shares of whatever power arrives",
-		},
+		title:    fmt.Sprintf("Pad of %s for %s", quantity.Round(o.lossDB, quantity.Decibel, 3), quantity.Round(o.load, quantity.Ohm, 3)),
+		network:  pad.Network(),
+		source:   "k = 10^(-loss/20), series R = load·(1 - k), shunt R = load·k/(1 - k): the loss is right, and so is the load before the pad",
+		cautions: caution.Resistors(),
 	}
 	for _, share := range []struct {
 		key, say string

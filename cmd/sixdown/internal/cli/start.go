@@ -11,7 +11,6 @@ import (
 
 	"github.com/spf13/cobra"
 
-	"sixdown/cmd/sixdown/internal/atomicfile"
 	"sixdown/sim"
 	"sixdown/sim/driver"
 	"sixdown/xover"
@@ -76,7 +75,7 @@ func runStart(s *streams, o *startOptions) error {
 		return usageFault("--ways", fmt.Sprintf("%d ways have %d crossover frequencies, and --at gives %d", o.ways, o.ways-1, n-1), "give --at one frequency fewer than there are ways")
 	}
 	if len(o.drivers) != n {
-		return usageFault("--driver", fmt.Sprintf("%d drivers are given for %d ways", len(o.drivers), n), "give one for each way, from the lowest to the highest")
+		return usageFault("--driver", fmt.Sprintf("%s given for %d ways", counted(len(o.drivers), "driver"), n), "give one for each way, from the lowest to the highest")
 	}
 	if o.out != "" && !o.force {
 		if _, err := os.Lstat(o.out); !errors.Is(err, fs.ErrNotExist) {
@@ -95,7 +94,7 @@ func runStart(s *streams, o *startOptions) error {
 		return s.answer(text)
 	}
 	if err := writeWhole(o.out, text); err != nil {
-		return machineFault(o.out, err, "choose a place that can be written")
+		return err
 	}
 	return s.answer(fmt.Sprintf("%s is written. To see what it does: sixdown predict %s\n", o.out, o.out))
 }
@@ -202,12 +201,17 @@ func (o *startOptions) prove(s *streams, text string) error {
 
 // writeWhole writes a file, or on failure nothing.
 func writeWhole(path, text string) error {
-	f, err := atomicfile.Create(path)
+	f, err := createOutput(path)
 	if err != nil {
 		return err
 	}
-	if _, err := f.WriteString(text); err != nil {
-		return errors.Join(err, f.Abort())
+	if _, err = f.WriteString(text); err != nil {
+		err = errors.Join(err, f.Abort())
+	} else {
+		err = f.Commit()
 	}
-	return f.Commit()
+	if err != nil {
+		return machineFault(path, err, "make room on the disk, or give another folder")
+	}
+	return nil
 }

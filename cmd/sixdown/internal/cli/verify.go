@@ -10,6 +10,7 @@ import (
 	"github.com/spf13/cobra"
 
 	"sixdown/audioio"
+	"sixdown/cmd/sixdown/internal/table"
 	"sixdown/sim"
 	"sixdown/xover/quantity"
 )
@@ -193,39 +194,44 @@ func verifyRecords(v *audioio.Verification) [][]string {
 	return rows
 }
 
-// longTable is how many points a way are printed at most; what is left out is between those that are printed.
+// longTable is how many points a way are printed at most; what is left out lies between those that are printed.
 const longTable = 40
 
-// verifyText is the answer for people.
+// verifyText is the answer for people: a table a way, and the verdict.
 func verifyText(v *audioio.Verification) string {
 	var b strings.Builder
-	way := ""
 	for first := 0; first < len(v.Points); {
 		last := first
 		for last < len(v.Points) && v.Points[last].Way == v.Points[first].Way {
 			last++
 		}
-		step := (last - first + longTable - 1) / longTable
-		for i := first; i < last; i += step {
-			p := &v.Points[i]
-			if p.Way != way {
-				way = p.Way
-				fmt.Fprintf(&b, "%s\n%10s  %21s  %19s  %20s\n%10s  %10s %10s  %9s %9s  %9s %10s\n", way,
-					"", "gain, dB", "phase, deg", "measured - predicted",
-					"Hz", "predicted", "measured", "predicted", "measured", "dB", "deg")
-			}
-			if !p.Counted {
-				fmt.Fprintf(&b, "%10.5g  %10.3f %10s  %9.2f %9s  below the floor\n", p.Hz, sim.DB(p.Predicted), "", sim.PhaseDeg(p.Predicted), "")
-				continue
-			}
-			fmt.Fprintf(&b, "%10.5g  %10.4f %10.4f  %9.3f %9.3f  %9.5f %10.5f\n", p.Hz, sim.DB(p.Predicted), sim.DB(p.Measured),
-				sim.PhaseDeg(p.Predicted), sim.PhaseDeg(p.Measured), p.GainErrorDB(), p.PhaseErrorDeg())
-		}
-		first = last
+		b.WriteString(pointsTable(v.Points[first:last]).Text(pageWidth))
 		b.WriteByte('\n')
+		first = last
 	}
 	b.WriteString(verdict(v))
 	return b.String()
+}
+
+// pointsTable sets out the points of one way.
+func pointsTable(points []audioio.Point) *table.Table {
+	gain, phase, diff := points[0].Way+": gain", "phase", "measured - predicted"
+	t := table.New(
+		table.Column{Name: "f", Unit: "Hz"},
+		table.Column{Group: gain, Name: "predicted", Unit: "dB"}, table.Column{Group: gain, Name: "measured", Unit: "dB"},
+		table.Column{Group: phase, Name: "predicted", Unit: "deg"}, table.Column{Group: phase, Name: "measured", Unit: "deg"},
+		table.Column{Group: diff, Name: "gain", Unit: "dB"}, table.Column{Group: diff, Name: "phase", Unit: "deg"})
+	step := (len(points) + longTable - 1) / longTable
+	for i := 0; i < len(points); i += step {
+		p := &points[i]
+		row := []string{fmt.Sprintf("%.5g", p.Hz), fixed(sim.DB(p.Predicted), 3), "", angle(p.Predicted), "", "quiet", ""}
+		if p.Counted {
+			row = []string{row[0], row[1], fixed(sim.DB(p.Measured), 3), row[3], angle(p.Measured),
+				fixed(p.GainErrorDB(), 5), fixed(p.PhaseErrorDeg(), 5)}
+		}
+		t.Row(row...)
+	}
+	return t
 }
 
 // verdict is the summary of a verification.
@@ -237,20 +243,23 @@ func verdict(v *audioio.Verification) string {
 			counted++
 		}
 	}
-	fmt.Fprintf(&b, "%d of %d points count: those predicted above %.0f dB\n", counted, len(v.Points), v.FloorDB)
+	fmt.Fprintf(&b, "%d of %d points count, those predicted above %.0f dB; the others are too quiet to judge\n", counted, len(v.Points), v.FloorDB)
 	if v.WorstGain == nil {
 		b.WriteString("FAILS: no point is loud enough to be judged\n")
 		return b.String()
 	}
-	fmt.Fprintf(&b, "worst level  %9.5f dB   %s at %s   limit %.4g dB\n", v.WorstGain.GainErrorDB(), v.WorstGain.Way, quantity.Round(v.WorstGain.Hz, quantity.Hertz, 4), v.LimitGainDB)
-	fmt.Fprintf(&b, "worst phase  %9.5f °    %s at %s   limit %.4g°\n", v.WorstPhase.PhaseErrorDeg(), v.WorstPhase.Way, quantity.Round(v.WorstPhase.Hz, quantity.Hertz, 4), v.LimitPhaseDeg)
+	fmt.Fprintf(&b, "worst level  %9s dB   %s at %s   limit %.4g dB\n", fixed(v.WorstGain.GainErrorDB(), 5), v.WorstGain.Way, quantity.Round(v.WorstGain.Hz, quantity.Hertz, 4), v.LimitGainDB)
+	fmt.Fprintf(&b, "worst phase  %9s °    %s at %s   limit %.4g°\n", fixed(v.WorstPhase.PhaseErrorDeg(), 5), v.WorstPhase.Way, quantity.Round(v.WorstPhase.Hz, quantity.Hertz, 4), v.LimitPhaseDeg)
 	if v.Pass {
 		b.WriteString("PASSES: the recording says what the prediction says\n")
 		return b.String()
 	}
 	b.WriteString("FAILS: the recording is not of this design\n")
 	for _, x := range v.Suspects {
-		fmt.Fprintf(&b, "  %s at %.4g times its value would explain %.0f %% of it\n", x.Part, x.Estimate/x.Nominal, 100*x.Explained)
+		fmt.Fprintf(&b, "  suspect: %s at %s its value would explain %.1f %% of it\n", x.Part, times(x.Estimate/x.Nominal), 100*x.Explained)
 	}
 	return b.String()
 }
+
+// times writes a ratio of values.
+func times(ratio float64) string { return fmt.Sprintf("%.4g times", ratio) }
