@@ -169,13 +169,11 @@ func (d *demonstration) textbook(design *xover.Design) error {
 		}
 		d.say("   %-5s %s\n", w.Name, strings.Join(steps, ", "))
 	}
-	for i, x := range book.Parts {
-		if i%6 == 0 {
-			d.say("\n  ")
-		}
-		d.say(" %-11s", x.Name+" "+quantity.Round(x.Value, x.Kind.Unit(), 3))
+	var parts []string
+	for _, x := range book.Parts {
+		parts = append(parts, x.Name+" "+quantity.Round(x.Value, x.Kind.Unit(), 3))
 	}
-	d.say("\n\n   Into resistors, at one place, these ways add up flat. Into these drivers, where they are, they do not\n   (%s):\n\n%s", d.path(textbookFile), indent(p.summaryText()))
+	d.say("   parts %s\n\n   Into resistors, at one place, these ways add up flat. With these drivers, in their cabinet and\n   at their places, they do not (%s):\n\n%s", strings.Join(parts, ", "), d.path(textbookFile), indent(p.summaryText()))
 	return nil
 }
 
