@@ -26,7 +26,7 @@ func rooms() map[string][]string {
 		"sixdown/xover/preferred":  {"sixdown/xover/quantity"},
 		"sixdown/xover/align":      {},
 		"sixdown/xover/ladder":     {"sixdown/xover/align"},
-		"sixdown/sim/circuit":      {gonum},
+		"sixdown/sim/circuit":      {gonum, "golang.org/x/sys/cpu"},
 		"sixdown/sim/driver":       {gonum},
 		"sixdown/sim/field":        {"sixdown/sim/driver"},
 		"sixdown/sim":              {"sixdown/xover", "sixdown/xover/quantity", "sixdown/sim/circuit", "sixdown/sim/driver", "sixdown/sim/field"},
