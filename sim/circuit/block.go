@@ -61,6 +61,10 @@ func (s *Sweep) run(ops []op, b int) {
 			mulNegTo(&v[o.dst], &v[o.a], &v[o.b])
 		case opWatch:
 			watchPivot(&s.watch, v, o.aux)
+		case opWatchSum:
+			watchSum(&s.watch, &v[o.src], &v[o.a], &v[o.b], 1)
+		case opWatchDiff:
+			watchSum(&s.watch, &v[o.src], &v[o.a], &v[o.b], -1)
 		case opZero:
 			v[o.dst] = cvec{}
 		}
@@ -76,6 +80,18 @@ func watchPivot(watch *vec, v []cvec, ys []int32) {
 			re, im, sum = re+r, im+m, sum+abs(r)+abs(m)
 		}
 		if q := abs(re) + abs(im); q < watch[i]*sum {
+			watch[i] = q / sum
+		}
+	}
+}
+
+// watchSum keeps in watch the least ratio of s + sign·a·b to the moduli of its two terms.
+func watchSum(watch *vec, s, a, b *cvec, sign float64) {
+	for i := range lanes {
+		re := sign * (a.re[i]*b.re[i] - a.im[i]*b.im[i])
+		im := sign * (a.re[i]*b.im[i] + a.im[i]*b.re[i])
+		sum := abs(s.re[i]) + abs(s.im[i]) + abs(re) + abs(im)
+		if q := abs(s.re[i]+re) + abs(s.im[i]+im); q < watch[i]*sum {
 			watch[i] = q / sum
 		}
 	}

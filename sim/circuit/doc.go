@@ -14,6 +14,9 @@
 // crossover) meets a very small one, and at a real, positive s, where DC and infinite frequency are
 // taken as limits, the elimination contains no subtraction at all.
 //
+// Where digits may cancel all the same, at the pivot of a purely reactive node or among coupled coils, the sums
+// are watched, and a frequency at which one cancels is solved again in doubled precision.
+//
 // Derivatives come from the adjoint network (S. W. Director and R. A. Rohrer, "The Generalized Adjoint
 // Network and Network Sensitivities", IEEE Trans. Circuit Theory 16(3), 1969, 318–323).
 //

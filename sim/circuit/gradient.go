@@ -74,12 +74,12 @@ func (s *Sweep) Gradient() error {
 	}
 	for b := range s.w {
 		s.forward(b)
-		if err := s.finish(b); err != nil {
-			return err
-		}
 		s.run(s.c.p.more, b)
 		if len(s.wind) > 0 {
 			s.run(s.c.p.rest, b)
+		}
+		if err := s.finish(b); err != nil {
+			return err
 		}
 		s.pulls(b)
 		for o := range s.c.p.adj {
@@ -229,18 +229,18 @@ func (s *Sweep) mendGradient(i int) error {
 		pt.adjoint(from, to, g, complex(s.c.net.Source, 0)*g*g*pt.between(from, to))
 		for j := range p.params {
 			k := &p.cells[p.params[j].cell]
-			x := pt.between(k.from, k.to) * (pt.psiAt(k.from) - pt.psiAt(k.to))
+			x := pt.across(pt.volts, k.from, k.to).mul(pt.across(pt.psi, k.from, k.to))
 			if !k.tank {
-				y := chainAt(complex(0, w), s.tri[p.params[j].cell])
-				x *= y * y
+				y := cellAt(k, s.tri[p.params[j].cell], complex(0, w))
+				x = x.mul(y).mul(y)
 			}
-			s.gradOf(o, p.params[j].branch)[i] = s.wiggle(j, w) * x
+			s.gradOf(o, p.params[j].branch)[i] = s.wiggle(j, w) * x.complex()
 		}
 		for n := range p.wind {
 			coils := p.wind[n].coils
 			s.windingAt(o, i, n,
-				func(c int) complex128 { return pt.between(coils[c].from, coils[c].to) },
-				func(c int) complex128 { return pt.psiAt(coils[c].from) - pt.psiAt(coils[c].to) })
+				func(c int) cdoubled { return pt.across(pt.volts, coils[c].from, coils[c].to) },
+				func(c int) cdoubled { return pt.across(pt.psi, coils[c].from, coils[c].to) })
 		}
 	}
 	return nil
@@ -263,15 +263,15 @@ func (s *Sweep) windingGradient(b, o int) {
 				return s.lane(across{slot: a.kappa}, l) * s.lane(s.c.p.volts[k], l)
 			}
 			s.windingAt(o, b*lanes+l, n,
-				func(c int) complex128 { return s.lane(s.c.p.coils[n][c], l) },
-				func(c int) complex128 { return psi(coils[c].from) - psi(coils[c].to) })
+				func(c int) cdoubled { return doubledOf(s.lane(s.c.p.coils[n][c], l)) },
+				func(c int) cdoubled { return doubledOf(psi(coils[c].from) - psi(coils[c].to)) })
 		}
 	}
 }
 
 // windingAt stores the derivatives of output o by the coils of winding n at frequency i, from the voltages
 // across the coils and those of the adjoint network.
-func (s *Sweep) windingAt(o, i, n int, volt, psi func(coil int) complex128) {
+func (s *Sweep) windingAt(o, i, n int, volt, psi func(coil int) cdoubled) {
 	w := &s.wind[n]
 	jw := complex(0, 2*math.Pi*s.freqs[i])
 	w.invert(jw)

@@ -16,6 +16,7 @@ func (s *Sweep) look() error {
 		s.across = grid(len(p.groups), n)
 		for _, c := range p.coils {
 			s.coils = append(s.coils, grid(len(c), n))
+			s.amps = append(s.amps, grid(len(c), n))
 		}
 	}
 	for b := range s.w {
@@ -47,6 +48,9 @@ func (s *Sweep) look() error {
 			for w := range s.coils {
 				for c, x := range p.wind[w].coils {
 					s.coils[w][c][i] = volt(p.coils[w][c], x.from, x.to)
+				}
+				if err := s.coilAmps(w, i, l); err != nil {
+					return err
 				}
 			}
 		}
@@ -165,17 +169,29 @@ func (s *Sweep) chainCurrent(group, i int) complex128 {
 	return dv / z
 }
 
-// coilCurrents are the currents of a winding's coils.
-func (s *Sweep) coilCurrents(winding, i int) []complex128 {
-	w := &s.wind[winding]
+// coilAmps finds the currents of a winding's coils at frequency i, which is in lane l. A current may be the small
+// difference of large ones, as in a coil that is loaded with next to nothing; it is taken from the
+// slow road then.
+func (s *Sweep) coilAmps(winding, i, l int) error {
+	w, coils := &s.wind[winding], s.c.p.wind[winding].coils
 	w.invert(complex(0, s.omega(i)))
-	w.currents(w.i, func(c int) complex128 { return s.coils[winding][c][i] })
-	return w.i
+	amp := doubledOf(s.amp[i])
+	left := w.currents(w.i, func(c int) cdoubled { return doubledOf(s.coils[winding][c][i]) })
+	if left < lost || s.bad[l] {
+		if err := s.mend(i); err != nil {
+			return err
+		}
+		w.currents(w.i, func(c int) cdoubled { return s.pt.across(s.pt.volts, coils[c].from, coils[c].to).mul(amp) })
+	}
+	for c := range coils {
+		s.amps[winding][c][i] = w.i[c].complex()
+	}
+	return nil
 }
 
 func (s *Sweep) currentAt(branch, i int) complex128 {
 	if w := s.c.f.coilOf[branch]; w[0] >= 0 {
-		return s.coilCurrents(w[0], i)[w[1]]
+		return s.amps[w[0]][w[1]][i]
 	}
 	group := s.c.f.groupOf[branch]
 	if group < 0 {
@@ -209,7 +225,10 @@ func (s *Sweep) powerSlope(branch, i int) complex128 {
 	b, w, v := &s.c.net.Branches[branch], s.omega(i), s.vals[branch]
 	if o := s.c.f.coilOf[branch]; o[0] >= 0 {
 		x := &s.wind[o[0]]
-		copy(x.j, s.coilCurrents(o[0], i))
+		for c := range x.i {
+			x.i[c] = doubledOf(s.amps[o[0]][c][i])
+			x.j[c] = x.i[c]
+		}
 		return complex(0, w) * x.slope(o[1])
 	}
 	if s.c.f.groupOf[branch] < 0 || b.Kind == Port {

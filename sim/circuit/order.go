@@ -158,13 +158,17 @@ func (f *folded) alive(k int, driven []bool) int {
 	return k
 }
 
-// lossy tells if the group turns power into heat.
+// tooWeak is a resistance in Ω beside which a resonance can be all but lossless: such a one does not make a node
+// lossy.
+const tooWeak = 1e5
+
+// lossy tells if the group turns so much power into heat that its nodes' pivots cannot vanish.
 func (f *folded) lossy(n *Netlist, g *group) bool {
 	if g.port != nil {
 		return true
 	}
 	for _, l := range g.members {
-		if b := &n.Branches[l.branch]; b.Kind == Resistor || b.Loss > 0 {
+		if b := &n.Branches[l.branch]; b.Kind == Resistor && b.Value < tooWeak || b.Loss > 0 {
 			return true
 		}
 	}

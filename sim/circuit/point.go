@@ -13,20 +13,20 @@ type Point struct {
 	Zin  complex128   // Ω, between Amp and Return, the source resistance not included; infinite where no current flows
 }
 
-// pointScratch solves one frequency on the dense star-mesh network, with the pivots chosen by size as it
-// goes. It is the slow road: for limits, for s off the imaginary axis, and where the compiled order meets
-// a vanishing pivot.
+// pointScratch solves one frequency on the dense star-mesh network, in doubled precision and with the pivots
+// chosen by size as it goes. It is the slow road: for limits, for s off the imaginary axis, and where the
+// compiled order meets a vanishing pivot or coupled coils cost digits.
 type pointScratch struct {
 	place []int // folded node → row; -1: the return or not driven
 	nodes []int // row → folded node; row 0 is Amp
-	y     []complex128
-	gnd   []complex128
+	y     []cdoubled
+	gnd   []cdoubled
 	gone  []bool
-	fac   []complex128 // row k, at its elimination: y_kj/Σ
-	inv   []complex128
+	fac   []cdoubled // row k, at its elimination: y_kj/Σ
+	inv   []cdoubled
 	order []int
-	volts []complex128
-	psi   []complex128
+	volts []cdoubled
+	psi   []cdoubled
 	yin   complex128
 	wind  []windValues
 }
@@ -44,41 +44,44 @@ func newPointScratch(c *Circuit) *pointScratch {
 		pt.place[k] = i
 	}
 	n := len(pt.nodes)
-	pt.y, pt.fac = make([]complex128, n*n), make([]complex128, n*n)
-	pt.gnd, pt.inv, pt.volts = make([]complex128, n), make([]complex128, n), make([]complex128, n)
-	pt.psi = make([]complex128, n)
+	pt.y, pt.fac = make([]cdoubled, n*n), make([]cdoubled, n*n)
+	pt.gnd, pt.inv, pt.volts, pt.psi = make([]cdoubled, n), make([]cdoubled, n), make([]cdoubled, n), make([]cdoubled, n)
 	pt.gone, pt.order = make([]bool, n), make([]int, 0, n)
 	for i := range c.p.wind {
 		m := len(c.p.wind[i].coils)
-		pt.wind = append(pt.wind, windValues{n: m, z: make([]complex128, m*m)})
+		pt.wind = append(pt.wind, windValues{n: m, z: make([]cdoubled, m*m)})
 	}
 	return pt
 }
 
 // add puts admittance y between two folded nodes.
-func (pt *pointScratch) add(a, b int, y complex128) {
+func (pt *pointScratch) add(a, b int, y cdoubled) {
 	i, j, n := pt.place[a], pt.place[b], len(pt.nodes)
 	switch {
 	case i == j:
 	case i < 0:
-		pt.gnd[j] += y
+		pt.gnd[j] = pt.gnd[j].add(y)
 	case j < 0:
-		pt.gnd[i] += y
+		pt.gnd[i] = pt.gnd[i].add(y)
 	default:
-		pt.y[i*n+j] += y
-		pt.y[j*n+i] += y
+		pt.y[i*n+j] = pt.y[i*n+j].add(y)
+		pt.y[j*n+i] = pt.y[j*n+i].add(y)
 	}
 }
 
-// chainAt is 1/(r + s·l + inv/s). Where a lossless trap resonates exactly it is an all but perfect
+// cellAt is the admittance of a cell at s. Where a lossless trap resonates exactly it is an all but perfect
 // conductor, so that the network answers with its limit.
-func chainAt(s complex128, t [3]float64) complex128 {
-	zl, zc := s*complex(t[1], 0), complex(t[2], 0)/s
-	z := complex(t[0], 0) + zl + zc
-	if z == 0 {
-		z = complex((cmplx.Abs(zl)+cmplx.Abs(zc))*0x1p-60, 0)
+func cellAt(k *cell, t [3]float64, s complex128) cdoubled {
+	ds := doubledOf(s)
+	real, direct, inverse := doubledOf(complex(t[0], 0)), ds.scale(t[1]), ds.inv().scale(t[2])
+	x := real.add(direct).add(inverse)
+	if k.tank {
+		return x
 	}
-	return 1 / z
+	if x.zero() {
+		x = doubledOf(complex((direct.modulus()+inverse.modulus())*0x1p-60, 0))
+	}
+	return x.inv()
 }
 
 // fill assembles the network at s.
@@ -87,20 +90,15 @@ func (pt *pointScratch) fill(c *Circuit, s complex128, tri [][3]float64, wind []
 	clear(pt.gnd)
 	for i := range c.p.cells {
 		k := &c.p.cells[i]
-		t := tri[i]
-		y := chainAt(s, t)
-		if k.tank {
-			y = complex(t[0], 0) + s*complex(t[1], 0) + complex(t[2], 0)/s
-		}
-		pt.add(k.from, k.to, y)
+		pt.add(k.from, k.to, cellAt(k, tri[i], s))
 	}
 	for i := range c.p.ports {
 		k := &c.p.ports[i]
-		y := 1 / c.net.Branches[k.branch].Port.Impedance(s)
-		if !finite(y) {
+		z := c.net.Branches[k.branch].Port.Impedance(s)
+		if !finite(z) || !finite(1/z) {
 			return fmt.Errorf("circuit: %s: no usable impedance at s = %.6g rad/s", c.net.Branches[k.branch].Name, s)
 		}
-		pt.add(k.from, k.to, y)
+		pt.add(k.from, k.to, doubledOf(1/z)) // rounded as in a sweep
 	}
 	for i := range c.p.wind {
 		w, k := &pt.wind[i], &c.p.wind[i]
@@ -112,8 +110,9 @@ func (pt *pointScratch) fill(c *Circuit, s complex128, tri [][3]float64, wind []
 				q, y := k.coils[b], w.z[a*w.n+b]
 				pt.add(p.from, q.to, y)
 				pt.add(p.to, q.from, y)
-				pt.add(p.from, q.from, -y)
-				pt.add(p.to, q.to, -y)
+				y = cdoubled{}.sub(y)
+				pt.add(p.from, q.from, y)
+				pt.add(p.to, q.to, y)
 			}
 		}
 	}
@@ -131,24 +130,24 @@ func (pt *pointScratch) solve(c *Circuit, s complex128, tri [][3]float64, wind [
 	pt.order = pt.order[:0]
 	for range n - 1 {
 		k, quality := pt.pivot()
-		if quality < 1e-13 && !real {
+		if quality < 1e-25 && !real {
 			return fmt.Errorf("circuit: at %g Hz the network resonates without any loss at %s and has no finite answer; give its coils their resistance, or load it",
 				imag2hz(s), c.net.nodeName(pt.nodes[k]))
 		}
 		pt.eliminate(k)
 	}
-	pt.yin = pt.gnd[0]
-	pt.volts[0] = 1
+	pt.yin = pt.gnd[0].complex()
+	pt.volts[0] = doubledOf(1)
 	for i := len(pt.order) - 1; i >= 0; i-- {
 		k := pt.order[i]
-		var v complex128
+		var v cdoubled
 		for j := range n {
-			if f := pt.fac[k*n+j]; f != 0 {
-				v += f * pt.volts[j]
+			if f := pt.fac[k*n+j]; !f.zero() {
+				v = v.add(f.mul(pt.volts[j]))
 			}
 		}
 		pt.volts[k] = v
-		if !(modulus(v) < huge) {
+		if !(v.modulus() < huge) {
 			return fmt.Errorf("circuit: at %g Hz the network resonates without any loss at %s and has no finite answer; give its coils their resistance, or load it",
 				imag2hz(s), c.net.nodeName(pt.nodes[k]))
 		}
@@ -166,16 +165,16 @@ func (pt *pointScratch) pivot() (row int, quality float64) {
 		if pt.gone[k] {
 			continue
 		}
-		sum, mod := pt.gnd[k], cmplx.Abs(pt.gnd[k])
+		sum, mod := pt.gnd[k], pt.gnd[k].modulus()
 		for j := range n {
-			if !pt.gone[j] && j != k {
-				sum += pt.y[k*n+j]
-				mod += cmplx.Abs(pt.y[k*n+j])
+			if y := pt.y[k*n+j]; !pt.gone[j] && j != k && !y.zero() {
+				sum = sum.add(y)
+				mod += y.modulus()
 			}
 		}
 		q := 0.0
 		if mod > 0 {
-			q = cmplx.Abs(sum) / mod
+			q = sum.modulus() / mod
 		}
 		if q > quality {
 			row, quality = k, q
@@ -190,39 +189,46 @@ func (pt *pointScratch) eliminate(k int) {
 	sum := pt.gnd[k]
 	for j := range n {
 		if !pt.gone[j] && j != k {
-			sum += pt.y[k*n+j]
+			sum = sum.add(pt.y[k*n+j])
 		}
 	}
-	inv := 1 / sum
+	inv := sum.inv()
 	pt.gone[k] = true
 	pt.inv[k] = inv
 	pt.order = append(pt.order, k)
 	for i := range n {
-		pt.fac[k*n+i] = 0
-		if pt.gone[i] || pt.y[k*n+i] == 0 {
+		pt.fac[k*n+i] = cdoubled{}
+		if pt.gone[i] || pt.y[k*n+i].zero() {
 			continue
 		}
-		f := pt.y[k*n+i] * inv
+		f := pt.y[k*n+i].mul(inv)
 		pt.fac[k*n+i] = f
-		pt.gnd[i] += f * pt.gnd[k]
+		pt.gnd[i] = pt.gnd[i].add(f.mul(pt.gnd[k]))
 		for j := i + 1; j < n; j++ {
-			if !pt.gone[j] {
-				d := f * pt.y[k*n+j]
-				pt.y[i*n+j] += d
-				pt.y[j*n+i] += d
+			if y := pt.y[k*n+j]; !pt.gone[j] && !y.zero() {
+				d := f.mul(y)
+				pt.y[i*n+j] = pt.y[i*n+j].add(d)
+				pt.y[j*n+i] = pt.y[j*n+i].add(d)
 			}
 		}
 	}
 }
 
 // between is the voltage between two folded nodes per volt at Amp.
-func (pt *pointScratch) between(from, to int) complex128 { return pt.at(from) - pt.at(to) }
+func (pt *pointScratch) between(from, to int) complex128 {
+	return pt.across(pt.volts, from, to).complex()
+}
 
-func (pt *pointScratch) at(k int) complex128 {
-	if i := pt.place[k]; i >= 0 {
-		return pt.volts[i]
+// across is the difference of v, volts or psi, between two folded nodes; both are zero at the return.
+func (pt *pointScratch) across(v []cdoubled, from, to int) cdoubled {
+	var a, b cdoubled
+	if i := pt.place[from]; i >= 0 {
+		a = v[i]
 	}
-	return 0
+	if i := pt.place[to]; i >= 0 {
+		b = v[i]
+	}
+	return a.sub(b)
 }
 
 // adjoint finds ψ for a current of g put in between two folded nodes, with ψ at Amp held at kappa.
@@ -230,32 +236,32 @@ func (pt *pointScratch) adjoint(from, to int, g, kappa complex128) {
 	n := len(pt.nodes)
 	clear(pt.psi)
 	if i := pt.place[from]; i > 0 {
-		pt.psi[i] += g
+		pt.psi[i] = pt.psi[i].add(doubledOf(g))
 	}
 	if i := pt.place[to]; i > 0 {
-		pt.psi[i] -= g
+		pt.psi[i] = pt.psi[i].sub(doubledOf(g))
 	}
 	for _, k := range pt.order {
+		if pt.psi[k].zero() {
+			continue
+		}
 		for j := 1; j < n; j++ {
-			pt.psi[j] += pt.fac[k*n+j] * pt.psi[k]
+			if f := pt.fac[k*n+j]; !f.zero() {
+				pt.psi[j] = pt.psi[j].add(f.mul(pt.psi[k]))
+			}
 		}
 	}
-	pt.psi[0] = kappa
+	pt.psi[0] = doubledOf(kappa)
 	for i := len(pt.order) - 1; i >= 0; i-- {
 		k := pt.order[i]
-		v := pt.psi[k] * pt.inv[k]
+		v := pt.psi[k].mul(pt.inv[k])
 		for j := range n {
-			v += pt.fac[k*n+j] * pt.psi[j]
+			if f := pt.fac[k*n+j]; !f.zero() {
+				v = v.add(f.mul(pt.psi[j]))
+			}
 		}
 		pt.psi[k] = v
 	}
-}
-
-func (pt *pointScratch) psiAt(k int) complex128 {
-	if i := pt.place[k]; i >= 0 {
-		return pt.psi[i]
-	}
-	return 0
 }
 
 // ampGain is V_amp/V_open behind a source of rs Ω.

@@ -24,22 +24,24 @@ type portCell struct {
 type opcode uint8
 
 const (
-	opTank    opcode = iota // dst = tank cell
-	opChain                 // dst = chain cell
-	opAdd                   // dst = a + b
-	opSub                   // dst = a - b
-	opWinding               // the admittance matrix of winding `cell` into the slots from dst on
-	opElimG                 // node with near a and the return b: factor dst, fill sum = src + …
-	opElim2                 // node with near a and b: factors dst and dst+1, fill sum = src + …
-	opShare                 // dst = a/(a+b)
-	opPivot                 // dst = 1/Σ of aux slots
-	opFill                  // sum = src + a·b; src -1: none
-	opWatch                 // mark where the pivot of aux slots nearly vanishes
-	opMul                   // dst = a·b
-	opMulAdd                // dst = src + a·b
-	opMulSub                // dst = src - a·b
-	opMulNeg                // dst = -a·b
-	opZero                  // dst = 0
+	opTank      opcode = iota // dst = tank cell
+	opChain                   // dst = chain cell
+	opAdd                     // dst = a + b
+	opSub                     // dst = a - b
+	opWinding                 // the admittance matrix of winding `cell` into the slots from dst on
+	opElimG                   // node with near a and the return b: factor dst, fill sum = src + …
+	opElim2                   // node with near a and b: factors dst and dst+1, fill sum = src + …
+	opShare                   // dst = a/(a+b)
+	opPivot                   // dst = 1/Σ of aux slots
+	opFill                    // sum = src + a·b; src -1: none
+	opWatch                   // mark where the sum of aux slots nearly vanishes beside its terms
+	opWatchSum                // mark where src + a·b does
+	opWatchDiff               // mark where src - a·b does
+	opMul                     // dst = a·b
+	opMulAdd                  // dst = src + a·b
+	opMulSub                  // dst = src - a·b
+	opMulNeg                  // dst = -a·b
+	opZero                    // dst = 0
 )
 
 type op struct {
@@ -83,6 +85,7 @@ type elim struct {
 	inv    int     // slot: 1/Σ_k; noSlot until something needs it
 	ground int     // slot: admittance to the return, or noSlot
 	all    []int32 // slots of the admittances that add up to Σ_k
+	coiled bool    // part of a winding meets at the node
 }
 
 // across is a voltage per volt at Amp: the slot that holds it, or its negative; noSlot: 0 V.
@@ -124,6 +127,7 @@ type assembler struct {
 	rank   []int          // folded node → when it is eliminated; Amp and Return come last
 	known  map[[2]int]int // voltages that have a slot
 	leak   map[int]int    // node → slot of y_ground/Σ
+	coiled map[edge]bool  // edges that carry part of a winding, of either sign
 }
 
 func (p *assembler) slot() int {
@@ -135,7 +139,7 @@ func (p *assembler) emit(o op) { *p.dest = append(*p.dest, o) }
 
 // assemble turns the folded network and its order into a program.
 func assemble(n *Netlist, f *folded, driven []bool, steps []step, outs []Output) *program {
-	p := &assembler{f: f, driven: driven, at: map[edge]int{}}
+	p := &assembler{f: f, driven: driven, at: map[edge]int{}, coiled: map[edge]bool{}}
 	p.dest = &p.ops
 	p.one = p.slot()
 	p.tanks()
@@ -258,6 +262,11 @@ func (p *assembler) windings() {
 				p.add(a.to, b.from, y, 1)
 				p.add(a.from, b.from, y, -1)
 				p.add(a.to, b.to, y, -1)
+				for _, x := range [2]int{a.from, a.to} {
+					for _, z := range [2]int{b.from, b.to} {
+						p.coiled[edgeOf(p.f.alive(x, p.driven), p.f.alive(z, p.driven))] = true
+					}
+				}
 			}
 		}
 	}
@@ -277,7 +286,10 @@ func (p *assembler) eliminate(s step) {
 	for _, y := range ys {
 		e.all = append(e.all, int32(y))
 	}
-	if s.reactive {
+	for _, j := range near {
+		e.coiled = e.coiled || p.coiled[edgeOf(s.node, j)]
+	}
+	if s.reactive || e.coiled {
 		p.emit(op{code: opWatch, aux: e.all})
 	}
 	for _, j := range near {
@@ -295,17 +307,33 @@ func (p *assembler) eliminate(s step) {
 			o.code = opElim2
 		}
 		p.emit(o)
+		p.watchFill(&e, near[0], near[1], o.src, o.dst, o.b)
 	default:
 		e.inv = p.invert(e.all)
 		for i, fac := range e.factor {
 			p.emit(op{code: opMul, dst: int32(fac), a: int32(ys[i]), b: int32(e.inv)})
 			for j := i + 1; j < len(near); j++ {
-				p.emit(op{code: opFill, a: int32(fac), b: int32(ys[j]),
-					src: int32(p.edge(near[i], near[j])), sum: int32(p.renew(near[i], near[j]))})
+				o := op{code: opFill, a: int32(fac), b: int32(ys[j]),
+					src: int32(p.edge(near[i], near[j])), sum: int32(p.renew(near[i], near[j]))}
+				p.emit(o)
+				p.watchFill(&e, near[i], near[j], o.src, o.a, o.b)
 			}
 		}
 	}
 	p.steps = append(p.steps, e)
+}
+
+// watchFill has the sum src + a·b watched that a fill of the edge between i and j has made, if part of a winding is
+// in it: then its terms may cancel.
+func (p *assembler) watchFill(e *elim, i, j int, src, a, b int32) {
+	ed := edgeOf(i, j)
+	if !e.coiled && !p.coiled[ed] {
+		return
+	}
+	p.coiled[ed] = true
+	if src != noSlot {
+		p.emit(op{code: opWatchSum, src: src, a: a, b: b})
+	}
 }
 
 // invert writes the reciprocal of a sum.

@@ -35,8 +35,8 @@ type yardstick struct {
 	worstMiss string
 }
 
-// compare holds got against want. noise is the relative error that even a perfect method of this kind makes when
-// impedances and voltages are float64 numbers; where that exceeds the agreement asked for, noise is the limit.
+// compare holds got against want. noise is the relative error that must be granted; where that exceeds the agreement
+// asked for, noise is the limit.
 func (y *yardstick) compare(got, want complex128, noise float64, where func() string) {
 	y.count++
 	relative, limit := cmplx.Abs(got-want)/cmplx.Abs(want), agreement
@@ -109,7 +109,11 @@ func (y *yardsticks) each(do func(*yardstick)) {
 // equations (branch currents as unknowns), solves them by LAPACK and refines them in extended precision.
 //
 // Networks with coupled coils have yardsticks of their own: the star-mesh form writes a mutual inductance as admittances
-// that all but cancel, and at 1 Hz, where they are largest, that costs digits. reference.py says how many.
+// that all but cancel, and at 1 Hz, where they are largest, the solver must see that and take its slow road.
+//
+// The agreement is asked for of every number by itself, however small it is beside others, with three exceptions: where
+// the reference's extended precision is not enough, and the current of a wire and the voltage across an empty place, which
+// are sums and differences of float64 numbers.
 func TestAgainstReference(t *testing.T) {
 	count := 180
 	if testing.Short() {
@@ -178,19 +182,17 @@ func TestAgainstReference(t *testing.T) {
 				})
 			}
 		}
-		// 8: the parts of an admittance, its reciprocal and the comparison's own rounding come to a few units each.
 		for o, out := range n.outs {
 			s.Gain(got, o)
 			compare(&y.gain, want.Gain[o], func(f int) float64 {
-				return 8*unit*want.GainSense[o][f] + 8*reply.ExtendedEps*cancelling(want.NodeMagnitude, out.From, out.To, f, want.Gain[o][f])
+				return 8 * reply.ExtendedEps * cancelling(want.NodeMagnitude, out.From, out.To, f, want.Gain[o][f])
 			}, fmt.Sprintf(" output %d", o))
 		}
 		s.AmpGain(got)
-		compare(&y.amp, want.Amp, func(f int) float64 {
-			return 8 * unit * want.ZinSense[f] // |dA/A| ≤ |dZ/Z| in a divider of passive parts
-		}, "")
+		none := func(int) float64 { return 0 }
+		compare(&y.amp, want.Amp, none, "")
 		s.InputImpedance(got)
-		compare(&y.zin, want.Zin, func(f int) float64 { return 8 * unit * want.ZinSense[f] }, "")
+		compare(&y.zin, want.Zin, none, "")
 		for k, b := range n.netlist.Branches {
 			item := " " + b.Name
 			noise := func(sense [][]float64) func(int) float64 {
@@ -203,7 +205,7 @@ func TestAgainstReference(t *testing.T) {
 						// An empty place has no current to find its voltage from, only its two nodes.
 						return 8 * unit * (sense[k][f] + cancelling(want.NodeMagnitude, b.From, b.To, f, want.BranchVoltage[k][f]))
 					}
-					return 8*unit*sense[k][f] + 8*reply.ExtendedEps*cancelling(want.NodeMagnitude, b.From, b.To, f, want.BranchVoltage[k][f])
+					return 8 * reply.ExtendedEps * cancelling(want.NodeMagnitude, b.From, b.To, f, want.BranchVoltage[k][f])
 				}
 			}
 			if err := s.BranchVoltage(got, k); err != nil {

@@ -27,7 +27,8 @@ type Sweep struct {
 	nodes   [][]complex128   // folded node → voltage per volt of the open-circuit source; nil until wanted
 	across  [][]complex128   // group → the same across it
 	coils   [][][]complex128 // winding, coil → the same across it
-	fresh   bool             // the three above belong to the present values
+	amps    [][][]complex128 // winding, coil → its current
+	fresh   bool             // the four above belong to the present values
 	g, zinv cvec             // V_amp/V_open and the input impedance of the present block
 	bad     [lanes]bool      // lanes of the present block that were mended
 	pt      *pointScratch
@@ -201,9 +202,9 @@ func (s *Sweep) forward(b int) {
 	s.run(p.ops, b)
 }
 
-// lost is where a purely reactive pivot has cost so many digits that the frequency is solved again, the
-// slow way, with pivots chosen by size.
-const lost = 1e-5
+// lost is the share of its terms below which a sum that may cancel has cost so many digits that the frequency
+// is solved again on the slow road: the pivot of a purely reactive node, and whatever coupled coils enter.
+const lost = 1e-4
 
 // huge is a gain that no passive network with any loss reaches; beyond it stand resonances without loss.
 const huge = 1e8

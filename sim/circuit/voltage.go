@@ -83,6 +83,14 @@ func (p *assembler) forward(k, m int) int {
 		case sum != noSlot:
 			o.code = opMulAdd
 		}
+		if e.coiled && sum != noSlot {
+			watch := o
+			watch.code = opWatchSum
+			if v.neg {
+				watch.code = opWatchDiff
+			}
+			p.emit(watch)
+		}
 		sum = p.slot()
 		o.dst = int32(sum)
 		p.emit(o)

@@ -7,14 +7,14 @@ type windValues struct {
 	r []float64 // Ω, per coil
 	m []float64 // H, row by row; the diagonal holds the inductances
 	n int
-	z []complex128 // scratch, n × n
-	i []complex128 // scratch, n: currents
-	j []complex128 // scratch, n: currents of the adjoint network
+	z []cdoubled // scratch, n × n
+	i []cdoubled // scratch, n: currents
+	j []cdoubled // scratch, n: currents of the adjoint network
 }
 
 func (c *windCell) values(vals, loss []float64) windValues {
 	n := len(c.coils)
-	w := windValues{r: make([]float64, n), m: make([]float64, n*n), n: n, z: make([]complex128, n*n), i: make([]complex128, n), j: make([]complex128, n)}
+	w := windValues{r: make([]float64, n), m: make([]float64, n*n), n: n, z: make([]cdoubled, n*n), i: make([]cdoubled, n), j: make([]cdoubled, n)}
 	w.set(c, vals, loss)
 	return w
 }
@@ -41,7 +41,7 @@ func (w *windValues) admittance(y []cvec, omega *vec) {
 		k := 0
 		for a := range w.n {
 			for b := a; b < w.n; b++ {
-				y[k].re[i], y[k].im[i] = real(w.z[a*w.n+b]), imag(w.z[a*w.n+b])
+				y[k].re[i], y[k].im[i] = w.z[a*w.n+b].re.hi, w.z[a*w.n+b].im.hi
 				k++
 			}
 		}
@@ -66,52 +66,62 @@ func (w *windValues) pair(y []cvec, omega *vec) {
 // invert leaves (diag(r) + s·M)⁻¹ in z. The matrix is the impedance of a passive circuit, with a positive
 // definite real or imaginary part, so that Gauss-Jordan elimination needs no exchange of rows.
 func (w *windValues) invert(s complex128) {
-	n, z := w.n, w.z
+	n, z, ds := w.n, w.z, doubledOf(s)
 	for i := range z {
-		z[i] = s * complex(w.m[i], 0)
+		z[i] = ds.scale(w.m[i])
 	}
 	for i := range n {
-		z[i*n+i] += complex(w.r[i], 0)
+		z[i*n+i] = z[i*n+i].add(doubledOf(complex(w.r[i], 0)))
 	}
 	for k := range n {
-		p := 1 / z[k*n+k]
-		z[k*n+k] = 1
+		p := z[k*n+k].inv()
+		z[k*n+k] = doubledOf(1)
 		for j := range n {
-			z[k*n+j] *= p
+			z[k*n+j] = z[k*n+j].mul(p)
 		}
 		for i := range n {
 			if i == k {
 				continue
 			}
 			f := z[i*n+k]
-			z[i*n+k] = 0
+			z[i*n+k] = cdoubled{}
 			for j := range n {
-				z[i*n+j] -= f * z[k*n+j]
+				z[i*n+j] = z[i*n+j].sub(f.mul(z[k*n+j]))
 			}
 		}
 	}
 }
 
-// currents stores in dst the currents of the coils for the voltages across them that volt gives; z must
-// hold the admittances.
-func (w *windValues) currents(dst []complex128, volt func(coil int) complex128) {
-	clear(dst)
-	for b := range w.n {
-		v := volt(b)
-		for a := range dst {
-			dst[a] += w.z[a*w.n+b] * v
+// currents stores in dst the currents of the coils for the voltages across them that volt gives; z must hold the
+// admittances. It returns how much is left, at the least, of the terms that a current is the sum of: near 0,
+// voltages of float64 are not enough.
+func (w *windValues) currents(dst []cdoubled, volt func(coil int) cdoubled) (left float64) {
+	left = 1
+	for a := range dst {
+		var sum cdoubled
+		terms := 0.0
+		for b := range w.n {
+			t := w.z[a*w.n+b].mul(volt(b))
+			sum = sum.add(t)
+			terms += t.modulus()
+		}
+		dst[a] = sum
+		if terms > 0 {
+			left = min(left, sum.modulus()/terms)
 		}
 	}
+	return left
 }
 
 // slope is ∂H/∂L of coil a, per jω, from the currents i and j: L itself, and the mutual inductances
 // M = k·√(L_a·L_b), of which ∂M/∂L_a = M/(2·L_a).
 func (w *windValues) slope(a int) complex128 {
-	x := w.i[a] * w.j[a]
+	x := w.i[a].mul(w.j[a])
 	for b := range w.n {
 		if b != a {
-			x += complex(w.m[a*w.n+b]/(2*w.m[a*w.n+a]), 0) * (w.i[a]*w.j[b] + w.i[b]*w.j[a])
+			both := w.i[a].mul(w.j[b]).add(w.i[b].mul(w.j[a]))
+			x = x.add(both.scale(w.m[a*w.n+b] / (2 * w.m[a*w.n+a])))
 		}
 	}
-	return x
+	return x.complex()
 }
