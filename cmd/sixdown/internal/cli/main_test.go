@@ -157,6 +157,19 @@ func TestTomlString(t *testing.T) {
 	}
 }
 
+func TestTomlKey(t *testing.T) {
+	for _, c := range []struct{ name, want string }{
+		{"woofer-2_b", "woofer-2_b"},
+		{"a]\n[parts", `"a]\n[parts"`},
+		{"µ", `"µ"`},
+		{"", `""`},
+	} {
+		if got := tomlKey(c.name); got != c.want {
+			t.Errorf("%q is %s, want %s", c.name, got, c.want)
+		}
+	}
+}
+
 // TestProgressIsSilent: where standard error is no terminal, nothing is drawn.
 func TestProgressIsSilent(t *testing.T) {
 	var stderr bytes.Buffer

@@ -37,7 +37,8 @@ among them; JSON and CSV are in 24 points an octave from 20 Hz to 20 kHz.`,
 		Example: `  sixdown predict harbour.toml
   sixdown predict harbour.toml --at "1 kHz,2.2 kHz" --set C3=5.6uF
   sixdown predict harbour.toml --from 100Hz --to 10kHz --per-octave 48 --csv`,
-		Args: oneDesign,
+		Args:              oneDesign,
+		ValidArgsFunction: designFiles,
 		RunE: func(cmd *cobra.Command, args []string) error {
 			o.design.path = args[0]
 			if err := o.grid.read(cmd); err != nil {

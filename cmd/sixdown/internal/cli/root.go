@@ -140,6 +140,14 @@ func oneDesign(cmd *cobra.Command, args []string) error {
 	return usageFault(cmd.Name(), fmt.Sprintf("%d arguments are given, %s", len(args), quoted(args)), "give one design file, and quote what has a blank in it")
 }
 
+// designFiles completes the name of a design file in a shell.
+func designFiles(_ *cobra.Command, args []string, _ string) ([]string, cobra.ShellCompDirective) {
+	if len(args) > 0 {
+		return nil, cobra.ShellCompDirectiveNoFileComp
+	}
+	return []string{"toml"}, cobra.ShellCompDirectiveFilterFileExt
+}
+
 // noArguments is the Args of a command that works on its flags alone.
 func noArguments(cmd *cobra.Command, args []string) error {
 	if len(args) == 0 {

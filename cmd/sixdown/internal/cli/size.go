@@ -44,9 +44,9 @@ func (o *crossoverOptions) addTo(cmd *cobra.Command) {
 	f.Var(&quantityList{unit: quantity.Hertz, values: &o.at}, "at", "crossover `frequency`; two of them, \"400Hz,3kHz\", for three ways")
 	f.Var(&quantityList{unit: quantity.Ohm, values: &o.load}, "load", "`resistance` that every way drives, or one for each way, \"8ohm,6ohm\"")
 	f.Var(&quantityFlag{unit: quantity.Decibel, value: &o.rippleDB}, "ripple", "pass-band ripple of a chebyshev, as in `\"0.5 dB\"`")
-	f.StringVar(&o.reference, "reference", "", "what a bessel's frequency `means`: magnitude (its -3 dB point, the default), phase or delay")
-	f.StringVar(&o.arrangement, "arrangement", plainArrangement, "of three ways, `plain`: sections of that alignment, or all-pass: sized together for a flat sum")
-	f.StringVar(&o.mid, "mid", "", "polarity of the mid in an all-pass arrangement, `normal` or reversed")
+	f.StringVar(&o.reference, "reference", "", "`point` that a bessel's frequency means: magnitude (-3 dB, the default), phase or delay")
+	f.StringVar(&o.arrangement, "arrangement", plainArrangement, "`how` three ways are made: plain, of sections with that alignment, or all-pass, together for a flat sum")
+	f.StringVar(&o.mid, "mid", "", "`polarity` of the mid in an all-pass arrangement, normal or reversed")
 }
 
 func newSizeCmd(s *streams) *cobra.Command {

@@ -2,6 +2,7 @@ package cli
 
 import (
 	"fmt"
+	"math"
 	"path/filepath"
 	"slices"
 	"strconv"
@@ -108,10 +109,10 @@ func parseDriverValue(name, item string) (driverValue, error) {
 	}
 	if keys[i].unit == quantity.None {
 		v, err := strconv.ParseFloat(value, 64)
-		if err != nil || !(v > 0) {
+		if err != nil || !(v > 0) || math.IsInf(v, 1) {
 			return driverValue{}, usageFault("--driver "+name, fmt.Sprintf("%s is %q", key, value), "give a positive number")
 		}
-		return driverValue{key: key, text: value, si: v}, nil
+		return driverValue{key: key, text: number(v).csv(), si: v}, nil
 	}
 	v, err := quantity.ParseAs(value, keys[i].unit)
 	if err != nil {

@@ -160,7 +160,7 @@ height   = "0 mm"            # of the ear above its origin
 }
 
 func (p *startPlan) writeDriver(b *strings.Builder, d startDriver) {
-	fmt.Fprintf(b, "\n[driver.%s]\n", d.name)
+	fmt.Fprintf(b, "\n[driver.%s]\n", tomlKey(d.name))
 	for _, v := range d.values {
 		fmt.Fprintf(b, "%s = %s\n", v.key, v.text)
 	}

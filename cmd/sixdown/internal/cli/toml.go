@@ -4,6 +4,7 @@ import (
 	"bytes"
 	"encoding/json"
 	"strings"
+	"unicode"
 )
 
 // tomlString writes a text as a TOML string. What JSON escapes, TOML understands; the delete character, which
@@ -25,4 +26,15 @@ func tomlList(texts []string) string {
 		all[i] = tomlString(text)
 	}
 	return "[" + strings.Join(all, ", ") + "]"
+}
+
+// tomlKey writes a name as a TOML key, in quotes only if it needs them.
+func tomlKey(name string) string {
+	bare := name != "" && strings.IndexFunc(name, func(r rune) bool {
+		return r > unicode.MaxASCII || !unicode.IsLetter(r) && !unicode.IsDigit(r) && r != '-' && r != '_'
+	}) < 0
+	if bare {
+		return name
+	}
+	return tomlString(name)
 }
