@@ -97,7 +97,8 @@ sweeps, noise and music pass through a model with the network's own poles, whose
 error is told. Full scale is chosen so that no channel clips.`,
 		Example: `  sixdown render harbour.toml --out sound
   sixdown render harbour.toml --out music --signal record.wav`,
-		Args: oneDesign,
+		Args:              oneDesign,
+		ValidArgsFunction: designFiles,
 		RunE: func(cmd *cobra.Command, args []string) error {
 			o.path = args[0]
 			return runRender(cmd.Context(), s, &o)

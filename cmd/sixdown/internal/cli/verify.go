@@ -38,7 +38,8 @@ noise). It passes if the worst of them is within the limits; else it says where
 it is worst and which single part, at another value, would explain it.`,
 		Example: `  sixdown render harbour.toml --out sound
   sixdown verify harbour.toml --from sound`,
-		Args: oneDesign,
+		Args:              oneDesign,
+		ValidArgsFunction: designFiles,
 		RunE: func(cmd *cobra.Command, args []string) error {
 			o.path = args[0]
 			return runVerify(cmd.Context(), s, &o)
