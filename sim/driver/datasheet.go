@@ -15,6 +15,7 @@ type DataSheet struct {
 	Fs     float64 // Hz, resonance; 0: no motional branch
 	Qms    float64 // mechanical Q at Fs
 	Qes    float64 // electrical Q at Fs, from Re
+	Vent   Vent    // of InVentedBox; the zero Vent: none
 }
 
 // InClosedBox returns the same driver on a closed box of net volume vb, vas being the driver's compliance as
@@ -50,21 +51,21 @@ func (d DataSheet) coil(s complex128) complex128 {
 	return z
 }
 
-// motion returns the impedance of the motional branch. It is written as sL/(1 + sL/R + s²LC), not as the
-// inverse of a sum, so that s = 0 needs no special case.
+// motion returns the impedance of the motional branch, with the box's branch beside it. It is written as
+// sL/(1 + sL/R + s²LC), not as the inverse of a sum, so that s = 0 needs no special case.
 func (d DataSheet) motion(s complex128) complex128 {
 	if d.Fs == 0 {
 		return 0
 	}
 	res, lces, cmes := d.Motional()
 	x := s * complex(lces, 0)
-	return x / (1 + x*complex(1/res, 0) + x*s*complex(cmes, 0))
+	return x / (1 + x*complex(1/res, 0) + x*s*complex(cmes, 0) + d.boxLoad(s))
 }
 
 // Impedance returns the impedance at s.
 func (d DataSheet) Impedance(s complex128) complex128 { return d.coil(s) + d.motion(s) }
 
-// Elements returns Re, then Le, then the loss pair, then the motional branch, leaving out what is 0.
+// Elements returns Re, then Le, then the loss pair, then the motional branch and the box's, leaving out what is 0.
 func (d DataSheet) Elements() []Element {
 	type group []Element
 	chain := []group{{{Name: "Re", Kind: Resistor, Value: d.Re}}}
@@ -98,17 +99,38 @@ func (d DataSheet) Elements() []Element {
 		}
 		from = to
 	}
-	return es
+	return append(es, d.boxElements(es)...)
 }
 
-// Acceleration returns the diaphragm's acceleration for each volt, relative to that of a coil without
-// inductance well above resonance: s·Re·Cmes·Z_m/(Z_e + Z_m), which tends to 1 there. The far-field pressure
-// of a small diaphragm in a large baffle is proportional to it (Small 1972, as above). Without Fs it is 1.
+// boxElements returns the box's branch, to be put beside the motional branch, the last of es.
+func (d DataSheet) boxElements(es []Element) []Element {
+	lceb, cmep, rel := d.BoxBranch()
+	if lceb == 0 {
+		return nil
+	}
+	from := es[len(es)-1].From
+	box := []Element{{Name: "Lceb", Kind: Inductor, Value: lceb}, {Name: "Cmep", Kind: Capacitor, Value: cmep}}
+	if rel > 0 {
+		box = append(box, Element{Name: "Rel", Kind: Resistor, Value: rel})
+	}
+	next := from + 1
+	for i := range box {
+		box[i].From, box[i].To = from, next
+		from, next = next, next+1
+	}
+	box[len(box)-1].To = Minus
+	return box
+}
+
+// Acceleration returns the acceleration of the air that leaves diaphragm, vent and leaks together, for each volt,
+// relative to that of a coil without inductance well above resonance: s·Re·Cmes·Z_m/(Z_e + Z_m), which tends to
+// 1 there, and for a vented box the share that goes out. The far-field pressure of a small source in a large
+// baffle is proportional to it (Small 1972 and 1973). Without Fs it is 1.
 func (d DataSheet) Acceleration(s complex128) complex128 {
 	if d.Fs == 0 {
 		return 1
 	}
 	_, _, cmes := d.Motional()
 	m := d.motion(s)
-	return s * complex(d.Re*cmes, 0) * m / (d.coil(s) + m)
+	return s * complex(d.Re*cmes, 0) * m / (d.coil(s) + m) * d.radiated(s)
 }
