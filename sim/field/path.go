@@ -17,11 +17,12 @@ func (p Point) Distance(q Point) float64 {
 type Listener struct {
 	Distance   float64 // m from the origin along +z, > 0; the flight time over it is common to all drivers and taken out
 	Height     float64 // m, of the ear above the origin
+	Angle      Angle   // how far the ear is then turned about the origin
 	SoundSpeed float64 // m/s
 }
 
 // Ear returns where the ear is.
-func (l Listener) Ear() Point { return Point{0, l.Height, l.Distance} }
+func (l Listener) Ear() Point { return l.Angle.turned(Point{0, l.Height, l.Distance}) }
 
 // A Path is what becomes of a driver's pressure on the way to the ear.
 type Path struct {
