@@ -36,8 +36,10 @@ type SumSummary struct {
 	MeanSPL  float64    // dB, mean of the levels in dB
 	RippleDB float64    // the highest level less the lowest
 	RMSDB    float64    // rms deviation from MeanSPL
-	Low3DB   float64    // Hz: going down from the middle of Band, where the sum first is 3.01 dB below MeanSPL; 0: not in the Summary's Band
-	High3DB  float64    // Hz: the same going up
+	Low3DB   float64    // Hz: coming up from the lower end of the Summary's Band, where the sum first is within 3.01 dB of MeanSPL; 0: at that end already
+	High3DB  float64    // Hz: the same coming down from the upper end
+	DipDB    float64    // how far below MeanSPL the sum is at its lowest between the two, if that is more than 3.01 dB; else 0
+	DipAt    float64    // Hz, on a grid of 48 points an octave
 }
 
 // A ToneSummary is the tone network's gain in third-octave steps.
@@ -239,26 +241,27 @@ func (s *System) summarizeSum(r *Response) (*SumSummary, error) {
 		return SPL(in.sum) - (sum.MeanSPL - halfPower), nil
 	}
 	spl = SPLs(r.Sum)
-	middle := math.Sqrt(s.tuneBand[0] * s.tuneBand[1])
-	start := 0
-	for start < len(r.Freqs)-1 && r.Freqs[start] < middle {
-		start++
-	}
 	low := func(k int) bool { return spl[k] < sum.MeanSPL-halfPower }
-	for k := start; k > 0; k-- {
-		if low(k-1) && !low(k) {
-			if sum.Low3DB, err = root(r.Freqs[k-1], r.Freqs[k], below); err != nil {
-				return nil, err
-			}
-			break
+	first, last := 0, len(spl)-1
+	for first < last && low(first) {
+		first++
+	}
+	for last > first && low(last) {
+		last--
+	}
+	if first > 0 {
+		if sum.Low3DB, err = root(r.Freqs[first-1], r.Freqs[first], below); err != nil {
+			return nil, err
 		}
 	}
-	for k := start; k < len(spl)-1; k++ {
-		if low(k+1) && !low(k) {
-			if sum.High3DB, err = root(r.Freqs[k], r.Freqs[k+1], below); err != nil {
-				return nil, err
-			}
-			break
+	if last < len(spl)-1 {
+		if sum.High3DB, err = root(r.Freqs[last], r.Freqs[last+1], below); err != nil {
+			return nil, err
+		}
+	}
+	for k := first; k <= last; k++ {
+		if d := sum.MeanSPL - spl[k]; d > halfPower && d > sum.DipDB {
+			sum.DipDB, sum.DipAt = d, r.Freqs[k]
 		}
 	}
 	return sum, nil

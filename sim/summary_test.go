@@ -149,6 +149,23 @@ func TestSumSummary(t *testing.T) {
 	}
 }
 
+// A null at the crossover is a dip, not an end of the range: a Linkwitz-Riley pair with one way reversed cancels at
+// the crossover and is flat far from it (Linkwitz 1976).
+func TestDipIsNoEnd(t *testing.T) {
+	const fc = 2000
+	s := mustSummary(t, twoWay(linkwitzRiley4, fc, 8, true), [2]float64{})
+	if s.Sum.Low3DB != 0 || s.Sum.High3DB != 0 {
+		t.Errorf("its ends are at %g and %g Hz, want none", s.Sum.Low3DB, s.Sum.High3DB)
+	}
+	if !(s.Sum.DipDB > 40) {
+		t.Errorf("the dip is %g dB, want a null", s.Sum.DipDB)
+	}
+	near(t, "place of the dip", s.Sum.DipAt, fc, fc*0.015) // the grid's spacing
+	if flat := mustSummary(t, twoWay(linkwitzRiley4, fc, 8, false), [2]float64{}); flat.Sum.DipDB != 0 {
+		t.Errorf("a flat sum has a dip of %g dB", flat.Sum.DipDB)
+	}
+}
+
 // The ends of a second-order Butterworth high-pass and of a first-order low-pass are their corners, 3.01 dB
 // down.
 func TestEndsOfTheSum(t *testing.T) {

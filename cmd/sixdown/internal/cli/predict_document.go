@@ -61,6 +61,8 @@ type (
 		RMSDB     number   `json:"rms_db"`
 		Low3DBHz  *number  `json:"low_3db_hz"`  // null: not within summary.band_hz
 		High3DBHz *number  `json:"high_3db_hz"` // null: not within summary.band_hz
+		DipDB     *number  `json:"dip_db"`      // below the mean, null: none of more than 3 dB between the two
+		DipHz     *number  `json:"dip_hz"`
 	}
 	toneSummaryDocument struct {
 		FrequencyHz     []number `json:"frequency_hz"`
@@ -116,6 +118,7 @@ func summarize(s *sim.Summary) summaryDocument {
 			BandHz:    numbers(s.Sum.Band[:]),
 			MeanSPLDB: number(s.Sum.MeanSPL), RippleDB: number(s.Sum.RippleDB), RMSDB: number(s.Sum.RMSDB),
 			Low3DBHz: unlessZero(s.Sum.Low3DB), High3DBHz: unlessZero(s.Sum.High3DB),
+			DipDB: unlessZero(s.Sum.DipDB), DipHz: unlessZero(s.Sum.DipAt),
 		}
 	}
 	if s.Tone != nil {

@@ -88,6 +88,9 @@ func (p *prediction) summaryText() string {
 	}
 	if q := s.Sum; q != nil {
 		fmt.Fprintf(&b, "sum       %s to %s: mean %s SPL, %s from lowest to highest, %s rms about the mean\n", hertz(q.Band[0]), hertz(q.Band[1]), decibels(q.MeanSPL), decibels(q.RippleDB), decibels(q.RMSDB))
+		if q.DipDB > 0 {
+			fmt.Fprintf(&b, "          a dip of %s below the mean at %s\n", decibels(q.DipDB), hertz(q.DipAt))
+		}
 		fmt.Fprintf(&b, "          3 dB below the mean: %s and %s\n", orBeyond(q.Low3DB, "not above "+hertz(s.Band[0])), orBeyond(q.High3DB, "not below "+hertz(s.Band[1])))
 	}
 	if t := s.Tone; t != nil && len(t.Freqs) > 0 {
