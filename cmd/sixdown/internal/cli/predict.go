@@ -11,15 +11,17 @@ import (
 
 // predictOptions are what predict is asked.
 type predictOptions struct {
-	design designOptions
-	grid   gridOptions
-	form   answerForm
+	design  designOptions
+	against string // a design to compare with; "": none
+	grid    gridOptions
+	form    answerForm
+	chart   chartOptions
 }
 
 func newPredictCmd(s *streams) *cobra.Command {
 	var o predictOptions
 	cmd := &cobra.Command{
-		Use:   "predict DESIGN",
+		Use:   "predict DESIGN [OTHER]",
 		Short: "Predict what each driver gets, what adds up at the ear, and the load",
 		Long: `Predict computes, for a design file:
 
@@ -33,15 +35,32 @@ func newPredictCmd(s *streams) *cobra.Command {
 - in short, where the ways cross, how even the sum is, and where the load is lowest.
 
 Without --at or a grid, the table is in third-octaves with the design's targets
-among them; JSON and CSV are in 24 points an octave from 20 Hz to 20 kHz.`,
+among them; JSON and CSV are in 24 points an octave from 20 Hz to 20 kHz.
+
+With two designs, A and B, both are set side by side with their difference; --set
+and --turn then change B alone, so that one file named twice shows what a change
+does.
+
+With --chart the answer is drawn too, over the grid's span: the response with each
+way and its target, phase, group delay, the load, the phasors at each crossing, the
+sum with one side reversed, and the step response, which needs frequencies up to
+56 kHz: beyond its end a driver's table is carried on by its slope.`,
 		Example: `  sixdown predict harbour.toml
   sixdown predict harbour.toml --at "1 kHz,2.2 kHz" --set C3=5.6uF
-  sixdown predict harbour.toml --from 100Hz --to 10kHz --per-octave 48 --csv`,
-		Args:              oneDesign,
-		ValidArgsFunction: designFiles,
+  sixdown predict harbour.toml --from 100Hz --to 10kHz --per-octave 48 --csv
+  sixdown predict harbour.toml --chart harbour.svg
+  sixdown predict harbour.toml harbour.toml --set C3=5.6uF --chart change.png`,
+		Args:              oneOrTwoDesigns,
+		ValidArgsFunction: twoDesignFiles,
 		RunE: func(cmd *cobra.Command, args []string) error {
-			o.design.path = args[0]
+			o.design.path = args[len(args)-1]
+			if len(args) > 1 {
+				o.against = args[0]
+			}
 			if err := o.grid.read(cmd); err != nil {
+				return err
+			}
+			if err := o.chart.check(cmd); err != nil {
 				return err
 			}
 			return runPredict(s, &o)
@@ -50,12 +69,15 @@ among them; JSON and CSV are in 24 points an octave from 20 Hz to 20 kHz.`,
 	o.grid.addTo(cmd)
 	o.design.addTo(cmd)
 	o.form.addTo(cmd)
+	o.chart.addTo(cmd)
 	return cmd
 }
 
 // A prediction is the answer of predict.
 type prediction struct {
 	*sim.Response
+	design   *xover.Design
+	system   *sim.System
 	summary  *sim.Summary
 	level    float64 // V rms, what SPL is for
 	distance float64 // m
@@ -66,6 +88,9 @@ func runPredict(s *streams, o *predictOptions) error {
 	if err := o.form.check(); err != nil {
 		return err
 	}
+	if o.against != "" {
+		return runCompare(s, o)
+	}
 	d, sys, err := o.design.loadSystem(s)
 	if err != nil {
 		return err
@@ -73,6 +98,11 @@ func runPredict(s *streams, o *predictOptions) error {
 	p, err := predictAt(s, d, sys, o.grid.frequencies(d, !o.form.json && !o.form.csv))
 	if err != nil {
 		return err
+	}
+	if o.chart.path != "" {
+		if err := o.chart.draw([]*prediction{p}, &o.grid, o.design.path); err != nil {
+			return err
+		}
 	}
 	switch {
 	case o.form.json:
@@ -85,7 +115,7 @@ func runPredict(s *streams, o *predictOptions) error {
 
 // predictAt predicts at freqs, sums up, and prints the warnings that come with it.
 func predictAt(s *streams, d *xover.Design, sys *sim.System, freqs []float64) (*prediction, error) {
-	p := &prediction{level: sys.Level(), distance: d.Listen.Distance, warnings: sys.Warnings()}
+	p := &prediction{design: d, system: sys, level: sys.Level(), distance: d.Listen.Distance, warnings: sys.Warnings()}
 	var err error
 	if p.Response, err = sys.Predict(freqs); err != nil {
 		return nil, err

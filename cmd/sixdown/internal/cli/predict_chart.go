@@ -1,0 +1,307 @@
+package cli
+
+import (
+	"bytes"
+	"fmt"
+	"math"
+	"path/filepath"
+	"slices"
+	"strings"
+
+	"github.com/spf13/cobra"
+
+	"sixdown/cmd/sixdown/internal/chart"
+	"sixdown/sim"
+	"sixdown/xover"
+	"sixdown/xover/align"
+)
+
+// chartOptions say what picture is wanted and where it goes.
+type chartOptions struct {
+	path   string // "": none
+	panels []string
+	theme  string
+	width  int
+}
+
+// The widest picture that may be asked for, in pixels.
+const maxChartWidth = 8000
+
+// panelNames are the panels in the order in which a page shows them.
+func panelNames() []string {
+	return []string{"response", "phase", "delay", "impedance", "phasor", "null", "step"}
+}
+
+func (o *chartOptions) addTo(cmd *cobra.Command) {
+	cmd.Flags().StringVar(&o.path, "chart", "", "draw the answer into this `file`: .svg, .png or .pdf")
+	cmd.Flags().StringSliceVar(&o.panels, "panels", nil, "draw only these `panels`: "+strings.Join(panelNames(), ","))
+	cmd.Flags().StringVar(&o.theme, "theme", "auto", "draw in the `theme` light or dark; auto lets the reader of an SVG choose")
+	cmd.Flags().IntVar(&o.width, "width", 1200, "draw that many `pixels` wide; a PDF is on A4")
+	for name, choices := range map[string][]string{"theme": {"auto", "light", "dark"}, "panels": panelNames()} {
+		if err := cmd.RegisterFlagCompletionFunc(name, cobra.FixedCompletions(choices, cobra.ShellCompDirectiveNoFileComp)); err != nil {
+			panic(err) // a slip: the flag is declared above
+		}
+	}
+}
+
+// check judges the options before anything is computed.
+func (o *chartOptions) check(cmd *cobra.Command) error {
+	if o.path == "" {
+		for _, name := range []string{"panels", "theme", "width"} {
+			if cmd.Flags().Changed(name) {
+				return usageFault("--"+name, "it is about a picture, and none is asked for", "give --chart too, as in --chart harbour.svg")
+			}
+		}
+		return nil
+	}
+	if !slices.Contains([]string{".svg", ".png", ".pdf"}, o.format()) {
+		return usageFault("--chart "+o.path, "the name does not say what kind of picture it is", "end it in .svg, .png or .pdf")
+	}
+	if _, err := chart.ParseTheme(o.theme); err != nil {
+		return usageFault("--theme", fmt.Sprintf("there is no theme %q", o.theme), didYouMean(o.theme, []string{"auto", "light", "dark"}, "give auto, light or dark"))
+	}
+	if o.width < 100 || o.width > maxChartWidth {
+		return usageFault("--width", fmt.Sprintf("%d pixels cannot be drawn", o.width), fmt.Sprintf("give 100 to %d", maxChartWidth))
+	}
+	for _, p := range o.panels {
+		if !slices.Contains(panelNames(), p) {
+			return usageFault("--panels", fmt.Sprintf("there is no panel %q", p), didYouMean(p, panelNames(), "the panels are "+strings.Join(panelNames(), ", ")))
+		}
+	}
+	return nil
+}
+
+// format is the ending of the file's name, which says what kind of picture it is.
+func (o *chartOptions) format() string { return strings.ToLower(filepath.Ext(o.path)) }
+
+// wants reports whether a panel is to be drawn if there is something to draw.
+func (o *chartOptions) wants(panel string) bool {
+	return len(o.panels) == 0 || slices.Contains(o.panels, panel)
+}
+
+// drawing is how finely curves in a picture are computed: their holes are narrow.
+const drawingPerOctave = 96
+
+// draw writes a page about one or two predictions to the file. inputs must not be overwritten by it.
+func (o *chartOptions) draw(ps []*prediction, grid *gridOptions, inputs ...string) error {
+	page, err := o.page(ps, grid)
+	if err != nil {
+		return err
+	}
+	var b bytes.Buffer
+	theme, err := chart.ParseTheme(o.theme)
+	if err != nil {
+		return err
+	}
+	switch o.format() {
+	case ".svg":
+		err = page.WriteSVG(&b, theme, o.width)
+	case ".png":
+		err = page.WritePNG(&b, theme, o.width)
+	default:
+		err = page.WritePDF(&b, theme)
+	}
+	if err != nil {
+		return err
+	}
+	f, err := createOutput(o.path, inputs...)
+	if err != nil {
+		return err
+	}
+	defer f.Abort() // after Commit it does nothing
+	if _, err := f.Write(b.Bytes()); err != nil {
+		return outputFault(o.path, err)
+	}
+	if err := f.Commit(); err != nil {
+		return outputFault(o.path, err)
+	}
+	return nil
+}
+
+// page sets out the panels that are wanted and can be drawn. A panel that was asked for by name and cannot be is an
+// error.
+func (o *chartOptions) page(ps []*prediction, grid *gridOptions) (*chart.Page, error) {
+	page := &chart.Page{Title: ps[0].Title}
+	var subjects []*chart.Subject
+	for k, p := range ps {
+		s, err := o.subject(p, grid)
+		if err != nil {
+			return nil, err
+		}
+		line := p.keyNumbers()
+		if len(ps) > 1 {
+			s.Name = string(rune('A' + k))
+			line = s.Name + ": " + line
+		}
+		subjects = append(subjects, s)
+		page.Caption = append(page.Caption, line)
+	}
+	if len(ps) > 1 {
+		page.Title = "A: " + orUntitled(ps[0].Title) + "   B: " + orUntitled(ps[1].Title)
+	}
+	first := ps[0]
+	tone, sums, crosses := first.summary.Tone != nil, true, true
+	for _, p := range ps {
+		sums = sums && p.Sum != nil
+		crosses = crosses && len(p.summary.Crossings) > 0
+	}
+	heard := fmt.Sprintf("dB SPL at %s m for %s V", figures(first.distance, 4), figures(first.level, 4))
+	gain := "gain across the drivers, dB re open circuit"
+	if tone {
+		gain = "output over the open-circuit source"
+	}
+	levels, phases := gain, "of the gain"
+	if sums {
+		levels, phases = heard, "at the ear, without the flight over the listening distance"
+	}
+	for _, c := range []struct {
+		name  string
+		there bool
+		why   string
+		draw  func() []chart.Panel
+	}{
+		{"response", true, "", func() []chart.Panel { return []chart.Panel{chart.Response(subjects, levels)} }},
+		{"phase", true, "", func() []chart.Panel { return []chart.Panel{chart.Phase(subjects, phases)} }},
+		{"delay", sums, "no sum at the ear", func() []chart.Panel {
+			return []chart.Panel{chart.GroupDelay(subjects, "of the sum, without the flight over the listening distance")}
+		}},
+		{"impedance", true, "", func() []chart.Panel { return chart.Impedance(subjects, "what the amplifier sees") }},
+		{"phasor", sums && crosses, "no sum or no crossing", func() []chart.Panel {
+			var all []chart.Panel
+			for _, s := range subjects {
+				all = append(all, chart.Phasors(s)...)
+			}
+			return all
+		}},
+		{"null", sums && crosses, "no sum or no crossing", func() []chart.Panel {
+			var all []chart.Panel
+			for _, s := range subjects {
+				all = append(all, chart.Null(s))
+			}
+			return all
+		}},
+		{"step", true, "", func() []chart.Panel { return []chart.Panel{chart.StepResponse(subjects)} }},
+	} {
+		switch {
+		case !o.wants(c.name):
+		case c.there:
+			page.Panels = append(page.Panels, c.draw()...)
+		case len(o.panels) > 0:
+			return nil, usageFault("--panels "+c.name, "there is "+c.why+" to draw", "leave it out")
+		}
+	}
+	return page, nil
+}
+
+// subject computes what a picture needs beyond the table.
+func (o *chartOptions) subject(p *prediction, grid *gridOptions) (*chart.Subject, error) {
+	fine := gridOptions{from: grid.from, to: grid.to, perOctave: max(grid.perOctave, drawingPerOctave)}
+	r, err := p.system.Predict(fine.even())
+	if err != nil {
+		return nil, err
+	}
+	s := &chart.Subject{Response: r}
+	if s.Targets, err = targetLevels(p, r); err != nil {
+		return nil, err
+	}
+	var at []float64
+	for _, c := range p.summary.Crossings {
+		at = append(at, c.Frequency)
+	}
+	there, err := p.system.Predict(at)
+	if err != nil {
+		return nil, err
+	}
+	for k, c := range p.summary.Crossings {
+		x := chart.Crossing{Crossing: c}
+		for _, w := range there.Ways {
+			if w.P != nil {
+				x.Parts = append(x.Parts, w.P[k])
+			}
+		}
+		s.Crossing = append(s.Crossing, x)
+	}
+	if o.wants("step") {
+		long, err := p.system.Predict(chart.StepFrequencies())
+		if err != nil {
+			return nil, err
+		}
+		if s.Step, err = chart.StepOf(long); err != nil {
+			return nil, err
+		}
+	}
+	return s, nil
+}
+
+// targetLevels returns the levels in dB that the design's targets ask of each way over r: the product of the way's
+// alignments, about the mean level of the sum or, without a sum, about 0 dB.
+func targetLevels(p *prediction, r *sim.Response) ([][]float64, error) {
+	mean := 0.0
+	if p.summary.Sum != nil {
+		mean = p.summary.Sum.MeanSPL
+	}
+	levels := make([][]float64, len(r.Ways))
+	for i := range p.design.Ways {
+		way := &p.design.Ways[i]
+		if len(way.Targets) == 0 || r.Sum == nil && p.summary.Sum != nil {
+			continue
+		}
+		levels[i] = make([]float64, len(r.Freqs))
+		for k := range levels[i] {
+			levels[i][k] = mean
+		}
+		for _, t := range way.Targets {
+			a, err := targetAlignment(t)
+			if err != nil {
+				return nil, err
+			}
+			for k, f := range r.Freqs {
+				s := complex(0, f/t.Frequency)
+				if t.HighPass {
+					levels[i][k] += sim.DB(a.HighPass(s))
+				} else {
+					levels[i][k] += sim.DB(a.LowPass(s))
+				}
+			}
+		}
+	}
+	return levels, nil
+}
+
+// targetAlignment returns the alignment that a target names.
+func targetAlignment(t xover.Target) (*align.Alignment, error) {
+	shape, err := align.ParseShape(t.Shape)
+	if err != nil {
+		return nil, err
+	}
+	spec := align.Spec{Shape: shape, Order: t.Order, RippleDB: t.RippleDB}
+	if t.Reference != "" {
+		if spec.Reference, err = align.ParseReference(t.Reference); err != nil {
+			return nil, err
+		}
+	}
+	return align.New(spec)
+}
+
+// keyNumbers is the caption of a picture: what a builder looks for first, in one line.
+func (p *prediction) keyNumbers() string {
+	s := p.summary
+	var said []string
+	for _, c := range s.Crossings {
+		said = append(said, fmt.Sprintf("%s to %s at %s, %s each", c.Low, c.High, hertz(c.Frequency), fixed(c.LevelDB, 1)+" dB"))
+	}
+	if q := s.Sum; q != nil {
+		said = append(said, fmt.Sprintf("ripple %s dB from %s to %s", fixed(q.RippleDB, 1), hertz(q.Band[0]), hertz(q.Band[1])))
+	}
+	if !math.IsInf(s.MinImpedance, 0) {
+		said = append(said, fmt.Sprintf("lowest |Z| %s Ω at %s", figures(s.MinImpedance, 3), hertz(s.MinImpedanceAt)))
+	}
+	return strings.ReplaceAll(strings.Join(said, "; "), "-", "−")
+}
+
+func orUntitled(title string) string {
+	if title == "" {
+		return "untitled"
+	}
+	return title
+}
