@@ -157,7 +157,9 @@ func TestDipIsNoEnd(t *testing.T) {
 	if s.Sum.Low3DB != 0 || s.Sum.High3DB != 0 {
 		t.Errorf("its ends are at %g and %g Hz, want none", s.Sum.Low3DB, s.Sum.High3DB)
 	}
-	if !(s.Sum.DipDB > 40) {
+	// H_low - H_high of the fourth order is (1 - s⁴)/(s² + √2s + 1)²: 1/96 octave off, the most that the grid can miss
+	// it by, |1 - s⁴| is 0.029 and the rest 1/2, so the dip is at least 36 dB.
+	if !(s.Sum.DipDB > 36) {
 		t.Errorf("the dip is %g dB, want a null", s.Sum.DipDB)
 	}
 	near(t, "place of the dip", s.Sum.DipAt, fc, fc*0.015) // the grid's spacing
