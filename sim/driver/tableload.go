@@ -4,16 +4,19 @@ import (
 	"fmt"
 	"math"
 	"math/cmplx"
+	"sync"
 )
 
-// An ImpedanceTable is a measured impedance: |Z| in Ω and its angle, interpolated as said of type curve. It
-// has no equivalent circuit.
+// An ImpedanceTable is a measured impedance: |Z| in Ω and its angle, interpolated as said of type curve. Its
+// equivalent circuit is fitted when it is first asked for.
 type ImpedanceTable struct {
 	name   string
-	lo, hi float64 // Hz, first and last row
+	freqs  []float64 // Hz, of the rows
+	lo, hi float64   // Hz, first and last row
 	ends   [2]float64
 	curve  curve
 	notes  []string
+	fit    func() (*Fit, error)
 }
 
 // NewImpedanceTable makes a load of a table with a phase in every row and values in Ω, > 0 and below 1 GΩ.
@@ -36,7 +39,7 @@ func NewImpedanceTable(t *Table) (*ImpedanceTable, error) {
 	}
 	phase, doubtful := unwrap(deg)
 	z := &ImpedanceTable{
-		name: t.Name, lo: freqs[0], hi: freqs[len(freqs)-1],
+		name: t.Name, freqs: freqs, lo: freqs[0], hi: freqs[len(freqs)-1],
 		ends:  [2]float64{ohms[0], ohms[len(ohms)-1]},
 		curve: newCurve(freqs, lnMag, phase, 1), // no passive impedance rises or falls faster for long than a coil's or a capacitor's
 		notes: append(append([]string(nil), t.Notes...), t.doubts(doubtful)...),
@@ -44,6 +47,7 @@ func NewImpedanceTable(t *Table) (*ImpedanceTable, error) {
 	if active > 0 {
 		z.notes = append(z.notes, fmt.Sprintf("%s:%d: the impedance's angle is beyond 90 degrees, which no driver's is; check how it was measured", t.Name, active))
 	}
+	z.fit = sync.OnceValues(func() (*Fit, error) { return FitImpedance(z, FitSettings{}) })
 	return z, nil
 }
 
@@ -68,8 +72,18 @@ func (z *ImpedanceTable) Impedance(s complex128) complex128 {
 	return polarRect(lnMag, phase)
 }
 
-// Elements returns nil: a table is no circuit.
-func (z *ImpedanceTable) Elements() []Element { return nil }
+// Fit returns the equivalent circuit that stands for the table in the time domain, as FitImpedance makes it. It is
+// fitted at the first call; all goroutines get the same.
+func (z *ImpedanceTable) Fit() (*Fit, error) { return z.fit() }
+
+// Elements returns those of Fit; nil if the table has too few rows for one.
+func (z *ImpedanceTable) Elements() []Element {
+	f, err := z.Fit()
+	if err != nil {
+		return nil
+	}
+	return f.Elements()
+}
 
 // Range returns the frequencies in Hz of the first and the last row; beyond them the impedance is invented.
 func (z *ImpedanceTable) Range() (lo, hi float64) { return z.lo, z.hi }
