@@ -6,9 +6,9 @@ import (
 	"strings"
 )
 
-// nearest returns the known name that name was most likely meant to be, "" if none is near: one that
+// Nearest returns the known name that name was most likely meant to be, "" if none is near: one that
 // differs in case alone, else the one with the fewest slips, if they are no more than a third of its length.
-func nearest(name string, known []string) string {
+func Nearest(name string, known []string) string {
 	for _, k := range known {
 		if strings.EqualFold(k, name) && k != name {
 			return k
@@ -62,7 +62,7 @@ func editDistance(a, b []rune) int {
 
 // didYouMean proposes the nearest known name, or says the fallback if there is none.
 func didYouMean(name string, known []string, fallback string) string {
-	if near := nearest(name, known); near != "" {
+	if near := Nearest(name, known); near != "" {
 		return fmt.Sprintf("did you mean %q?", near)
 	}
 	return fallback

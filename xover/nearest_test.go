@@ -11,6 +11,7 @@ func TestEditDistance(t *testing.T) {
 	}{
 		{"", "", 0}, {"", "abc", 3}, {"level", "level", 0}, {"levle", "level", 1}, {"lvel", "level", 1},
 		{"leevel", "level", 1}, {"label", "level", 2}, {"ca", "abc", 3}, {"höhe", "hohe", 1},
+		{"kitten", "sitting", 3}, // the usual example of the distance without swaps, which need none here
 	} {
 		if got := editDistance([]rune(test.a), []rune(test.b)); got != test.want {
 			t.Errorf("%q to %q is %d, want %d", test.a, test.b, got, test.want)
@@ -27,8 +28,25 @@ func TestNearest(t *testing.T) {
 		"c1": "C1", "C9": "C1", "L9": "L1", "LEVEL": "level", "levl": "level", "ratedpower": "rated_power",
 		"x": "", "volume": "", "": "", "level": "",
 	} {
-		if got := nearest(name, known); got != want {
+		if got := Nearest(name, known); got != want {
 			t.Errorf("nearest to %q is %q, want %q", name, got, want)
+		}
+	}
+}
+
+func TestCheckName(t *testing.T) {
+	for name, want := range map[string]string{
+		"woofer": "", "tief_2": "", "höhe": "",
+		"":     "the name is empty; " + nameMend,
+		"my t": "the name has ' ' in it; " + nameMend,
+		"8":    "the name begins with '8'; " + nameMend,
+	} {
+		got := ""
+		if err := CheckName(name); err != nil {
+			got = err.Error()
+		}
+		if got != want {
+			t.Errorf("of %q: %q, want %q", name, got, want)
 		}
 	}
 }

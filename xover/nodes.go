@@ -189,7 +189,7 @@ func (w *wiring) resolve(i int, step Step, name string) int {
 		}
 		names := sortedKeys(s.names)
 		mend := fmt.Sprintf("add \"mark %s\" to way %q", node, way)
-		if near := nearest(node, names); near != "" {
+		if near := Nearest(node, names); near != "" {
 			mend = fmt.Sprintf("did you mean %q?", way+"."+near)
 		}
 		w.fail(step.Pos, fmt.Sprintf("node %q is not defined: way %q has no %q", name, way, node), mend)
@@ -235,8 +235,8 @@ func (w *wiring) report() {
 		switch {
 		case node.ends < 2:
 			mend := "connect something else there, or leave it out"
-			if others := w.othersThan(node); node.name != "" && nearest(node.name, others) != "" {
-				mend = fmt.Sprintf("did you mean node %q?", nearest(node.name, others))
+			if others := w.othersThan(node); node.name != "" && Nearest(node.name, others) != "" {
+				mend = fmt.Sprintf("did you mean node %q?", Nearest(node.name, others))
 			}
 			w.fail(node.pos, fmt.Sprintf("%s: %s hangs loose: only %s reaches it", s.label, node.label, shortened(node.last)), mend)
 		case w.find(n) == n:

@@ -329,4 +329,13 @@ func nameFault(name string) string {
 	return ""
 }
 
+// CheckName returns an error of the form "what; how to mend" if a part, driver, way, node or control cannot be
+// called name in a design file.
+func CheckName(name string) error {
+	if fault := nameFault(name); fault != "" {
+		return errors.New(oneLine(fault) + "; " + nameMend)
+	}
+	return nil
+}
+
 const nameMend = "use letters, digits, _ and -, a letter first"

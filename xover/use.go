@@ -3,6 +3,8 @@ package xover
 import (
 	"fmt"
 	"math"
+
+	"sixdown/xover/quantity"
 )
 
 // checkUse looks at what the networks use, once all is read: each part and driver once, coils that couple
@@ -44,6 +46,9 @@ func (p *parser) checkUse() {
 			p.warn(part.Pos, fmt.Sprintf("%s is a potentiometer that no control turns; it stands at %v", part.Name, DefaultTurn),
 				fmt.Sprintf("add a table [control.NAME] with part = %q and at", part.Name))
 		}
+		if len(p.design.Ways) > 0 && part.Same == "" && !p.faulty[part.Name] {
+			p.checkSize(part)
+		}
 	}
 	for i := range p.design.Drivers {
 		if d := &p.design.Drivers[i]; !drivers[d.Name] {
@@ -53,6 +58,23 @@ func (p *parser) checkUse() {
 	p.checkCouplings(networks, used)
 	if !p.full() && (len(p.design.Ways) == 0) != (p.design.Tone == nil) {
 		p.checkWiring()
+	}
+}
+
+// checkSize warns of a part that no loudspeaker has: most likely a prefix is wrong. The bounds are wider than
+// what is sold (common practice, no source).
+func (p *parser) checkSize(part *Part) {
+	unit := part.Kind.Unit()
+	least, most := 0.01, 10e3 // Ω
+	switch unit {
+	case quantity.Henry:
+		least, most = 1e-6, 0.2
+	case quantity.Farad:
+		least, most = 1e-9, 5e-3
+	}
+	if part.Value < least || part.Value > most {
+		p.warn(part.Pos, fmt.Sprintf("%s is %s; parts of a loudspeaker lie between %s and %s", part.Name,
+			quantity.Format(part.Value, unit), quantity.Format(least, unit), quantity.Format(most, unit)), "check the unit's prefix")
 	}
 }
 

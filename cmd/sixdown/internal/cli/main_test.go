@@ -124,24 +124,6 @@ func TestFigures(t *testing.T) {
 	}
 }
 
-// TestEditDistance: V. I. Levenshtein's distance by its usual example, and what differs in case or is empty.
-func TestEditDistance(t *testing.T) {
-	for _, c := range []struct {
-		a, b string
-		want int
-	}{
-		{"kitten", "sitting", 3},
-		{"", "abc", 3},
-		{"abc", "", 3},
-		{"µF", "uF", 1},
-		{"same", "same", 0},
-	} {
-		if got := editDistance(c.a, c.b); got != c.want {
-			t.Errorf("from %q to %q are %d, want %d", c.a, c.b, got, c.want)
-		}
-	}
-}
-
 // TestTomlString: what TOML 1.0 asks of a basic string: quotation mark, backslash and control characters are
 // escaped, the rest stands as it is.
 func TestTomlString(t *testing.T) {
