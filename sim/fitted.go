@@ -1,0 +1,77 @@
+package sim
+
+import (
+	"fmt"
+
+	"sixdown/sim/circuit"
+	"sixdown/sim/driver"
+)
+
+// A DriverFit is the equivalent circuit that stands for a driver's impedance table in the time domain.
+type DriverFit struct {
+	Driver string
+	File   string
+	Fit    *driver.Fit // nil if Err is not
+	Err    error       // the table cannot be fitted
+}
+
+// A fitter is a load that is known by measurement.
+type fitter interface {
+	driver.Load
+	Name() string
+	Fit() (*driver.Fit, error)
+}
+
+// Fits returns the fit of each driver with an impedance table, in the order of the ways. The first call takes the
+// time of the fitting, some tens of milliseconds a driver.
+func (s *System) Fits() []DriverFit {
+	var fits []DriverFit
+	seen := map[*speaker]bool{}
+	for _, w := range s.ways {
+		t, ok := w.speaker.load.(fitter)
+		if !ok || seen[w.speaker] {
+			continue
+		}
+		seen[w.speaker] = true
+		f := DriverFit{Driver: w.speaker.name, File: t.Name()}
+		f.Fit, f.Err = t.Fit()
+		fits = append(fits, f)
+	}
+	return fits
+}
+
+// coarseFit is the error in per cent above which a table holds what no driver's impedance does.
+const coarseFit = 10
+
+// FitNotes returns what sound files take in place of the drivers' impedance tables and how near it is, a
+// sentence each; none if there are no tables.
+func (s *System) FitNotes() []string {
+	var notes []string
+	for _, f := range s.Fits() {
+		if f.Err != nil {
+			notes = append(notes, fmt.Sprintf("driver %q: there can be no sound files: %v", f.Driver, f.Err))
+			continue
+		}
+		note := fmt.Sprintf("driver %q: in sound files its impedance is an equivalent circuit, within %.2g %% of %s (worst %.2g %% at %s)",
+			f.Driver, f.Fit.RMSPercent, f.File, f.Fit.WorstPercent, hertz(f.Fit.WorstAt))
+		if f.Fit.WorstPercent > coarseFit {
+			note += "; that is far for a driver: check the table"
+		}
+		notes = append(notes, note)
+	}
+	return notes
+}
+
+// FittedNetlist is Netlist with each driver's equivalent circuit in place of its impedance table: the circuit
+// that sound files are of. It differs from Netlist by the fits' errors alone, and not at all without tables.
+func (s *System) FittedNetlist() *circuit.Netlist {
+	n := s.Netlist()
+	for _, w := range s.ways {
+		if t, ok := w.speaker.load.(fitter); ok {
+			if f, err := t.Fit(); err == nil {
+				n.Branches[w.branch].Port = port{f}
+			}
+		}
+	}
+	return n
+}
