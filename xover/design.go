@@ -110,8 +110,16 @@ type Driver struct {
 	HasSensitivity bool
 	Xmax           float64 // m, peak; 0: not stated
 	Box            Box
+	Breakup        []Peak // resonances of the diaphragm, on what the data sheet says
 
 	Pos Position
+}
+
+// A Peak is a resonance of a diaphragm that bends, as it shows on the axis.
+type Peak struct {
+	Frequency float64 // Hz
+	Q         float64 // of the resonance: Frequency over its width
+	GainDB    float64 // dB at Frequency, over what there would be without it; negative: a dip
 }
 
 // BoxKind is the cabinet behind a data-sheet driver.

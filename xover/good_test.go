@@ -121,13 +121,14 @@ func TestThreeway(t *testing.T) {
 			Xmax: 6.5e-3, Sensitivity: 88, HasSensitivity: true, At: [3]float64{0, -0.4, -0.035},
 			Box: Box{Kind: VentedBox, Volume: 48e-3, Tuning: 31, QL: 7}},
 		{Name: "middle", Re: 5.8, Le: 0.25e-3, Fs: 95, Qms: 3, Qes: 0.5, Vas: 6.5e-3, Diameter: 0.110,
-			Sensitivity: 89, HasSensitivity: true, At: [3]float64{0, -0.120, -0.012}, Box: Box{Kind: ClosedBox, Volume: 3e-3}},
+			Sensitivity: 89, HasSensitivity: true, At: [3]float64{0, -0.120, -0.012}, Box: Box{Kind: ClosedBox, Volume: 3e-3},
+			Breakup: []Peak{{4500, 4, 6}, {6200, 9, -3.5}}},
 		{Name: "treble", ImpedanceFile: "treble.zma", ResponseFile: "treble.frd", MinimumPhase: true,
 			HasMic: true, Mic: [3]float64{0, 0, 1}},
 	} {
 		got := *d.Driver(want.Name)
 		got.Pos = Position{}
-		if got != want {
+		if !reflect.DeepEqual(got, want) {
 			t.Errorf("got  %+v\nwant %+v", got, want)
 		}
 	}

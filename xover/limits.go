@@ -10,10 +10,13 @@ const (
 	MaxDrivers    = 64      // [driver.NAME] tables
 	MaxWays       = 16      // [[way]] tables
 	MaxControls   = 64      // [control.NAME] tables
+	MaxPeaks      = 16      // peaks of a driver's breakup
 	MaxTargets    = 8       // targets of a way
 	MaxSteps      = 500     // steps of a network
 	MaxExpression = 100     // parts in one step
 	MaxTextBytes  = 1000    // bytes in a string
 	MaxNameRunes  = 32      // characters in the name of a part, driver, way, node or control
 	MaxErrors     = 100     // errors that are reported; what follows is left out
+
+	maxPeakDB = 40 // dB, of a breakup's peak, up or down
 )

@@ -2,6 +2,7 @@ package xover
 
 import (
 	"fmt"
+	"math"
 	"path"
 	"strings"
 
@@ -31,6 +32,7 @@ func (p *parser) driver(name string, r *tableReader) {
 	d.HasSensitivity = r.quantity("sensitivity", quantity.Decibel, anySign, &d.Sensitivity)
 	r.quantity("xmax", quantity.Metre, positive, &d.Xmax)
 	hasBox := p.driverBox(&d, r)
+	p.driverBreakup(&d, r)
 
 	switch {
 	case !hasImpedance && !hasRe:
@@ -62,6 +64,11 @@ func (p *parser) driver(name string, r *tableReader) {
 		}
 	} else if e := r.table.index["sensitivity"]; e != nil {
 		p.warn(p.pos(e.at), r.label+" has a response file, whose level counts, and a sensitivity", "take one of them out")
+	}
+	if e := r.table.index["breakup"]; e != nil && d.ResponseFile != "" {
+		p.warn(p.pos(e.at), r.label+" has a response file, which has the breakup in it, and breakup", "take one of them out")
+	} else if e != nil && !d.HasSensitivity {
+		p.warn(p.pos(e.at), r.label+" has breakup and no sensitivity, so it makes no sound", "give the sensitivity, or take breakup out")
 	}
 	p.design.Drivers = append(p.design.Drivers, d)
 }
@@ -142,4 +149,47 @@ func (p *parser) driverBox(d *Driver, r *tableReader) bool {
 		}
 	})
 	return r.table.index["box"] != nil
+}
+
+// driverBreakup reads `breakup = [{ at, q, gain }]`.
+func (p *parser) driverBreakup(d *Driver, r *tableReader) {
+	const example = `breakup = [{ at = "4.5 kHz", q = 4, gain = "6 dB" }]`
+	e := r.take("breakup")
+	if e == nil {
+		return
+	}
+	if e.value.kind != listNode || len(e.value.items) == 0 {
+		p.fail(p.pos(e.at), "breakup is "+emptyOr(e.value), "write it like "+example)
+		return
+	}
+	for i, item := range e.value.items {
+		switch {
+		case i >= MaxPeaks:
+			p.fail(p.pos(item.at), fmt.Sprintf("%s breakup has more than %d peaks", r.label, MaxPeaks), "leave some out")
+			return
+		case item.kind != tableNode:
+			p.fail(p.pos(item.at), fmt.Sprintf("%s breakup holds %s", r.label, item.kind), "write it like "+example)
+			continue
+		}
+		peak := p.read(item.table, r.label+" breakup")
+		d.Breakup = append(d.Breakup, p.driverPeak(peak))
+		peak.done()
+	}
+}
+
+// driverPeak reads `{ at, q, gain }`.
+func (p *parser) driverPeak(r *tableReader) (peak Peak) {
+	if !r.quantity("at", quantity.Hertz, positive, &peak.Frequency) {
+		r.missing("at", `give the peak's frequency, such as at = "4.5 kHz"`)
+	}
+	if !r.number("q", 0.1, 1000, "a number from 0.1 to 1000, such as 4", &peak.Q) {
+		r.missing("q", "give the Q of the resonance, its frequency over its width, such as q = 4")
+	}
+	if !r.quantity("gain", quantity.Decibel, anySign, &peak.GainDB) {
+		r.missing("gain", `give how high the peak stands, such as gain = "6 dB", or "-6 dB" for a dip`)
+	} else if math.Abs(peak.GainDB) > maxPeakDB {
+		p.fail(p.pos(r.table.index["gain"].value.at), fmt.Sprintf("gain: %s is beyond what a resonance does", quantity.Format(peak.GainDB, quantity.Decibel)),
+			fmt.Sprintf("give it between -%d dB and %d dB", maxPeakDB, maxPeakDB))
+	}
+	return peak
 }

@@ -42,6 +42,10 @@ func TestWarnings(t *testing.T) {
 				"f:4:1: [driver.d] has mic and no response; give the response file, or take it out"}},
 		{"sensitivity and response", "[driver.d]\nimpedance = \"8 ohm\"\nresponse = \"d.frd\"\nsensitivity = \"87 dB\"\n" + way(`[]`),
 			[]string{"f:4:1: [driver.d] has a response file, whose level counts, and a sensitivity; take one of them out"}},
+		{"breakup and response", "[driver.d]\nimpedance = \"8 ohm\"\nresponse = \"d.frd\"\nbreakup = [{ at = \"4 kHz\", q = 4, gain = \"6 dB\" }]\n" + way(`[]`),
+			[]string{"f:4:1: [driver.d] has a response file, which has the breakup in it, and breakup; take one of them out"}},
+		{"breakup without sensitivity", "[driver.d]\nimpedance = \"8 ohm\"\nbreakup = [{ at = \"4 kHz\", q = 4, gain = \"6 dB\" }]\n" + way(`[]`),
+			[]string{"f:3:1: [driver.d] has breakup and no sensitivity, so it makes no sound; give the sensitivity, or take breakup out"}},
 	}
 	for _, test := range tests {
 		t.Run(test.name, func(t *testing.T) {
