@@ -46,6 +46,7 @@ type speaker struct {
 type table interface {
 	Name() string
 	Range() (lo, hi float64)
+	Beyond() string // how it is carried on there
 	Notes() []string
 }
 
@@ -128,27 +129,7 @@ func (sp *speaker) setRadiator(d *xover.Driver, sheet driver.DataSheet, l field.
 	sp.path = l.FromOneMetre(at)
 	switch {
 	case d.ResponseFile != "":
-		if d.MinimumPhase {
-			return fmt.Errorf("driver %q: phase = \"minimum\" is not in this version; give a response with its measured phase and phase = \"measured\"", d.Name)
-		}
-		mic := field.Point{0, 0, 1}
-		if d.HasMic {
-			mic = field.Point(d.Mic)
-		}
-		if at.Distance(mic) == 0 {
-			return fmt.Errorf("driver %q: its microphone stands at its acoustic centre; correct mic or at", d.Name)
-		}
-		t, err := readTable(d, d.ResponseFile, open)
-		if err != nil {
-			return err
-		}
-		r, err := driver.NewResponseTable(t)
-		if err != nil {
-			return fmt.Errorf("driver %q: %w", d.Name, err)
-		}
-		sp.radiator = r
-		sp.tables = append(sp.tables, r)
-		sp.path = l.FromMicrophone(at, mic)
+		return sp.setMeasured(d, l, open)
 	case !d.HasSensitivity:
 		return nil
 	case sheet.Fs == 0:
@@ -158,6 +139,46 @@ func (sp *speaker) setRadiator(d *xover.Driver, sheet driver.DataSheet, l field.
 	default:
 		sp.radiator = driver.NewSheet(sheet, d.Sensitivity)
 	}
+	return nil
+}
+
+// setMeasured makes a measured response the radiator. It was measured at mic: where nothing is said of that, 1 m in
+// front of the origin, or for minimum phase, which knows no common origin, 1 m straight ahead of the driver.
+func (sp *speaker) setMeasured(d *xover.Driver, l field.Listener, open opener) error {
+	at, mic := field.Point(d.At), field.Point{0, 0, 1}
+	if d.MinimumPhase {
+		mic = field.Point{at[0], at[1], at[2] + 1}
+	}
+	if d.HasMic {
+		mic = field.Point(d.Mic)
+	}
+	if at.Distance(mic) == 0 {
+		return fmt.Errorf("driver %q: its microphone stands at its acoustic centre; correct mic or at", d.Name)
+	}
+	t, err := readTable(d, d.ResponseFile, open)
+	if err != nil {
+		return err
+	}
+	if d.MinimumPhase {
+		r, err := driver.NewMinimumResponse(t)
+		if err != nil {
+			return fmt.Errorf("driver %q: %w", d.Name, err)
+		}
+		sp.radiator = r
+		sp.tables = append(sp.tables, r)
+		sp.path = l.FromOneMetre(at) // there is no flight time in the phase, wherever the microphone was
+		if d.HasMic {
+			sp.path.Gain *= at.Distance(mic)
+		}
+		return nil
+	}
+	r, err := driver.NewResponseTable(t)
+	if err != nil {
+		return fmt.Errorf("driver %q: %w", d.Name, err)
+	}
+	sp.radiator = r
+	sp.tables = append(sp.tables, r)
+	sp.path = l.FromMicrophone(at, mic)
 	return nil
 }
 

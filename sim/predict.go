@@ -169,12 +169,12 @@ func (s *System) rangeWarnings(freqs []float64) []string {
 			}
 			seen[t.Name()] = true
 			from, to := t.Range()
-			const tell = "%s: the table %s at %s; from there to %s the slope of its nearest third of an octave is carried on, which is invented"
+			const tell = "%s: the table %s at %s; from there to %s %s is carried on, which is invented"
 			if lo < from {
-				ws = append(ws, fmt.Sprintf(tell, t.Name(), "begins", hertz(from), hertz(lo)))
+				ws = append(ws, fmt.Sprintf(tell, t.Name(), "begins", hertz(from), hertz(lo), t.Beyond()))
 			}
 			if hi > to {
-				ws = append(ws, fmt.Sprintf(tell, t.Name(), "ends", hertz(to), hertz(hi)))
+				ws = append(ws, fmt.Sprintf(tell, t.Name(), "ends", hertz(to), hertz(hi), t.Beyond()))
 			}
 		}
 	}

@@ -88,52 +88,11 @@ func (z *ImpedanceTable) Elements() []Element {
 // Range returns the frequencies in Hz of the first and the last row; beyond them the impedance is invented.
 func (z *ImpedanceTable) Range() (lo, hi float64) { return z.lo, z.hi }
 
+// Beyond says how the table is carried on beyond its ends.
+func (z *ImpedanceTable) Beyond() string { return "the slope of its nearest third of an octave" }
+
 // Notes returns what is odd about the table, a sentence each.
 func (z *ImpedanceTable) Notes() []string { return z.notes }
 
 // Name returns the file's name.
 func (z *ImpedanceTable) Name() string { return z.name }
-
-// A ResponseTable is a measured response: dB SPL and its phase for ReferenceVoltage across the terminals.
-type ResponseTable struct {
-	name   string
-	lo, hi float64 // Hz, first and last row
-	curve  curve
-	notes  []string
-}
-
-// NewResponseTable makes a radiator of a table with a phase in every row and values in dB SPL between -500
-// and 500. The error is a *TableError.
-func NewResponseTable(t *Table) (*ResponseTable, error) {
-	if !t.HasPhase {
-		return nil, &TableError{File: t.Name, What: "the response has no phase column", Mend: "give three columns: Hz, dB, degrees"}
-	}
-	freqs, db, deg := t.columns()
-	lnMag := make([]float64, len(db))
-	for i, l := range db {
-		if math.Abs(l) > 500 {
-			return nil, &TableError{File: t.Name, Line: t.Rows[i].Line, What: fmt.Sprintf("the level is %g dB", l), Mend: "give the sound pressure level in dB"}
-		}
-		lnMag[i] = math.Log(pascal(l))
-	}
-	phase, doubtful := unwrap(deg)
-	return &ResponseTable{
-		name: t.Name, lo: freqs[0], hi: freqs[len(freqs)-1],
-		curve: newCurve(freqs, lnMag, phase, math.Inf(1)),
-		notes: append(append([]string(nil), t.Notes...), t.doubts(doubtful)...),
-	}, nil
-}
-
-// Pressure returns the interpolated pressure at f, where the microphone was.
-func (r *ResponseTable) Pressure(f float64) complex128 {
-	return polarRect(r.curve.polar(f))
-}
-
-// Range returns the frequencies in Hz of the first and the last row; beyond them the response is invented.
-func (r *ResponseTable) Range() (lo, hi float64) { return r.lo, r.hi }
-
-// Notes returns what is odd about the table, a sentence each.
-func (r *ResponseTable) Notes() []string { return r.notes }
-
-// Name returns the file's name.
-func (r *ResponseTable) Name() string { return r.name }
