@@ -28,7 +28,7 @@ const explains = 0.8
 func (p *predictor) suspects(sys *sim.System, points []Point) ([]Suspect, error) {
 	before := 0.0
 	for i := range points {
-		before += deviation(&points[i], points[i].Predicted)
+		before += deviation(&points[i], points[i].Fitted)
 	}
 	var found []Suspect
 	seen := map[string]bool{}

@@ -28,21 +28,31 @@ type Point struct {
 	Way       string
 	Hz        float64
 	Predicted complex128
+	Fitted    complex128 // Predicted with the circuits that stand for impedance tables in sound files; Predicted itself without tables
 	Measured  complex128
 	Counted   bool // its level is above the floor
 }
 
-// GainErrorDB is the measured level less the predicted one, in dB.
-func (p *Point) GainErrorDB() float64 { return sim.DB(p.Measured) - sim.DB(p.Predicted) }
+// GainErrorDB is the measured level less that of Fitted, in dB: a recording is of the fitted circuits, so what they
+// change is no error of it.
+func (p *Point) GainErrorDB() float64 { return sim.DB(p.Measured) - sim.DB(p.Fitted) }
 
-// PhaseErrorDeg is the measured phase less the predicted one, in (-180, 180] degrees.
-func (p *Point) PhaseErrorDeg() float64 { return sim.PhaseDeg(p.Measured / p.Predicted) }
+// PhaseErrorDeg is the measured phase less that of Fitted, in (-180, 180] degrees.
+func (p *Point) PhaseErrorDeg() float64 { return sim.PhaseDeg(p.Measured / p.Fitted) }
+
+// FitGainDB is the level of Fitted less that of Predicted, in dB: what the fits' errors make.
+func (p *Point) FitGainDB() float64 { return sim.DB(p.Fitted) - sim.DB(p.Predicted) }
+
+// FitPhaseDeg is the phase of Fitted less that of Predicted, in (-180, 180] degrees.
+func (p *Point) FitPhaseDeg() float64 { return sim.PhaseDeg(p.Fitted / p.Predicted) }
 
 // A Verification is what a recording says of a design.
 type Verification struct {
 	Points        []Point // way by way, in the order of the recording
 	WorstGain     *Point  // the counted point with the largest gain error; nil if none counts
 	WorstPhase    *Point
+	WorstFitGain  *Point // the counted point where the fits' errors make most of a difference; nil without impedance tables
+	WorstFitPhase *Point
 	LimitGainDB   float64
 	LimitPhaseDeg float64
 	FloorDB       float64
@@ -55,7 +65,8 @@ type Verification struct {
 const longest = 120 // s
 
 // Verify reads a recording of sys and compares every way with the prediction, relative to channel 1, so that
-// neither the level nor the source resistance matters. Tones are measured by the sine fit of IEEE Std
+// neither the level nor the source resistance matters. Where drivers are known by impedance tables, the recording is
+// held against the circuits fitted to them, and what these change is told apart. Tones are measured by the sine fit of IEEE Std
 // 1057, other signals by the ratio of the spectra of the whole record at 24 points an octave.
 func Verify(ctx context.Context, sys *sim.System, rec *Recording, r io.ReadSeeker, lim Limits) (*Verification, error) {
 	in, err := wavfile.NewReader(r)
@@ -84,17 +95,25 @@ func Verify(ctx context.Context, sys *sim.System, rec *Recording, r io.ReadSeeke
 	if err := p.sweep.Solve(); err != nil {
 		return nil, err
 	}
-	want := make([]complex128, len(hz))
+	tables, err := p.withTables(sys, hz)
+	if err != nil {
+		return nil, err
+	}
+	fitted, want := make([]complex128, len(hz)), make([]complex128, len(hz))
 	for w, name := range rec.Ways {
-		p.sweep.Gain(want, w)
+		p.sweep.Gain(fitted, w)
+		tables.Gain(want, w)
 		for i, f := range hz {
 			v.Points = append(v.Points, Point{
-				Way: name, Hz: f, Predicted: want[i], Measured: measured[w][i],
-				Counted: sim.DB(want[i]) > v.FloorDB,
+				Way: name, Hz: f, Predicted: want[i], Fitted: fitted[i], Measured: measured[w][i],
+				Counted: sim.DB(fitted[i]) > v.FloorDB,
 			})
 		}
 	}
 	v.judge()
+	if tables != p.sweep {
+		v.judgeFits()
+	}
 	if !v.Pass {
 		v.Suspects, err = p.suspects(sys, v.Points)
 	}
@@ -273,29 +292,62 @@ func (v *Verification) judge() {
 	}
 }
 
+// judgeFits finds where the fits' errors make most of a difference.
+func (v *Verification) judgeFits() {
+	for i := range v.Points {
+		p := &v.Points[i]
+		if !p.Counted {
+			continue
+		}
+		if v.WorstFitGain == nil || worse(p.FitGainDB(), v.WorstFitGain.FitGainDB()) {
+			v.WorstFitGain = p
+		}
+		if v.WorstFitPhase == nil || worse(p.FitPhaseDeg(), v.WorstFitPhase.FitPhaseDeg()) {
+			v.WorstFitPhase = p
+		}
+	}
+}
+
 // worse compares magnitudes; what is no number is worst.
 func worse(a, b float64) bool { return math.Abs(a) > math.Abs(b) || math.IsNaN(a) && !math.IsNaN(b) }
 
 // A predictor is the network between the amplifier's terminals and the drivers, on the recording's grid.
+// Impedance tables are represented by the circuits fitted to them, as in the recording.
 type predictor struct {
 	net   *circuit.Netlist
 	sweep *circuit.Sweep
 	n     int // frequencies
 }
 
-// newPredictor compiles the network with an ideal source: gains are then relative to the terminals.
 func newPredictor(sys *sim.System, hz []float64) (*predictor, error) {
-	net := sys.Netlist()
+	net := sys.FittedNetlist()
+	s, err := sweepOf(net, sys, hz)
+	if err != nil {
+		return nil, err
+	}
+	return &predictor{net, s, len(hz)}, nil
+}
+
+// withTables returns a solved sweep of the network with the impedance tables themselves; p's own if there are none.
+func (p *predictor) withTables(sys *sim.System, hz []float64) (*circuit.Sweep, error) {
+	if len(sys.Fits()) == 0 {
+		return p.sweep, nil
+	}
+	s, err := sweepOf(sys.Netlist(), sys, hz)
+	if err != nil {
+		return nil, err
+	}
+	return s, s.Solve()
+}
+
+// sweepOf compiles the network with an ideal source: gains are then relative to the terminals.
+func sweepOf(net *circuit.Netlist, sys *sim.System, hz []float64) (*circuit.Sweep, error) {
 	net.Source = 0
 	c, err := circuit.Compile(net, sys.Outputs())
 	if err != nil {
 		return nil, err
 	}
-	s, err := c.NewSweep(hz)
-	if err != nil {
-		return nil, err
-	}
-	return &predictor{net, s, len(hz)}, nil
+	return c.NewSweep(hz)
 }
 
 // logRatio is ln(a/b): its real part in nepers, its imaginary part in radians.
