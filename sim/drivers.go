@@ -4,6 +4,7 @@ import (
 	"errors"
 	"fmt"
 	"io"
+	"math"
 
 	"sixdown/sim/circuit"
 	"sixdown/sim/driver"
@@ -37,7 +38,11 @@ type speaker struct {
 	name     string
 	load     driver.Load
 	radiator driver.Radiator // nil: it has no acoustic output
-	path     field.Path
+	at       field.Point     // acoustic centre
+	path     func(field.Listener) field.Path
+	measured bool          // its response is a measurement, which has diaphragm and cabinet in it
+	radius   float64       // m, of the diaphragm, if it is not in the response already; 0: a point
+	baffle   *field.Baffle // nil: its edges are not in the model, or in the response already
 	tables   []table
 	notes    []string
 }
@@ -54,8 +59,8 @@ type table interface {
 type opener func(name string) (io.ReadCloser, error)
 
 // newSpeaker makes a speaker of what the design says about it.
-func newSpeaker(d *xover.Driver, l field.Listener, open opener) (*speaker, error) {
-	sp := &speaker{name: d.Name}
+func newSpeaker(d *xover.Driver, l field.Listener, baffle *field.Baffle, open opener) (*speaker, error) {
+	sp := &speaker{name: d.Name, at: d.At}
 	sheet, err := dataSheet(d)
 	if err != nil {
 		return nil, err
@@ -65,6 +70,10 @@ func newSpeaker(d *xover.Driver, l field.Listener, open opener) (*speaker, error
 	}
 	if err := sp.setRadiator(d, sheet, l, open); err != nil {
 		return nil, err
+	}
+	if sp.radiator != nil && !sp.measured {
+		sp.setBreakup(d)
+		sp.setFront(d, baffle)
 	}
 	for _, t := range sp.tables {
 		sp.notes = append(sp.notes, t.Notes()...)
@@ -88,10 +97,10 @@ func dataSheet(d *xover.Driver) (driver.DataSheet, error) {
 		}
 		s = s.InClosedBox(d.Vas, d.Box.Volume)
 	case xover.VentedBox:
-		// Only a driver whose behaviour is measured, box and all, can do without the model.
-		if d.ImpedanceFile == "" || d.ResponseFile == "" && d.HasSensitivity {
-			return s, fmt.Errorf("driver %q: vented boxes are not in this version; measure the impedance and the response of the driver in its box and give both tables", d.Name)
+		if !(d.Vas > 0 && d.Box.Volume > 0 && d.Box.Tuning > 0) {
+			return s, fmt.Errorf("driver %q: a vented box needs vas, the box's volume and its tuning; give all three", d.Name)
 		}
+		s = s.InVentedBox(d.Vas, d.Box.Volume, d.Box.Tuning, orDefault(d.Box.QL, defaultQL))
 	}
 	return s, nil
 }
@@ -122,14 +131,14 @@ func (sp *speaker) setLoad(d *xover.Driver, sheet driver.DataSheet, open opener)
 
 // setRadiator chooses the acoustical side: a table, else the data sheet, else flat, else nothing.
 func (sp *speaker) setRadiator(d *xover.Driver, sheet driver.DataSheet, l field.Listener, open opener) error {
-	at := field.Point(d.At)
+	at := sp.at
 	if at.Distance(l.Ear()) == 0 {
 		return fmt.Errorf("driver %q: it stands where the ear is; move one of them", d.Name)
 	}
-	sp.path = l.FromOneMetre(at)
+	sp.path = func(l field.Listener) field.Path { return l.FromOneMetre(at) }
 	switch {
 	case d.ResponseFile != "":
-		return sp.setMeasured(d, l, open)
+		return sp.setMeasured(d, open)
 	case !d.HasSensitivity:
 		return nil
 	case sheet.Fs == 0:
@@ -144,7 +153,8 @@ func (sp *speaker) setRadiator(d *xover.Driver, sheet driver.DataSheet, l field.
 
 // setMeasured makes a measured response the radiator. It was measured at mic: where nothing is said of that, 1 m in
 // front of the origin, or for minimum phase, which knows no common origin, 1 m straight ahead of the driver.
-func (sp *speaker) setMeasured(d *xover.Driver, l field.Listener, open opener) error {
+func (sp *speaker) setMeasured(d *xover.Driver, open opener) error {
+	sp.measured = true
 	at, mic := field.Point(d.At), field.Point{0, 0, 1}
 	if d.MinimumPhase {
 		mic = field.Point{at[0], at[1], at[2] + 1}
@@ -166,9 +176,10 @@ func (sp *speaker) setMeasured(d *xover.Driver, l field.Listener, open opener) e
 		}
 		sp.radiator = r
 		sp.tables = append(sp.tables, r)
-		sp.path = l.FromOneMetre(at) // there is no flight time in the phase, wherever the microphone was
-		if d.HasMic {
-			sp.path.Gain *= at.Distance(mic)
+		sp.path = func(l field.Listener) field.Path {
+			p := l.FromOneMetre(at) // there is no flight time in the phase, wherever the microphone was
+			p.Gain *= at.Distance(mic)
+			return p
 		}
 		return nil
 	}
@@ -178,8 +189,40 @@ func (sp *speaker) setMeasured(d *xover.Driver, l field.Listener, open opener) e
 	}
 	sp.radiator = r
 	sp.tables = append(sp.tables, r)
-	sp.path = l.FromMicrophone(at, mic)
+	sp.path = func(l field.Listener) field.Path { return l.FromMicrophone(at, mic) }
 	return nil
+}
+
+// setBreakup puts the peaks of the diaphragm's resonances on the response.
+func (sp *speaker) setBreakup(d *xover.Driver) {
+	if len(d.Breakup) == 0 {
+		return
+	}
+	peaks := make([]driver.Peak, len(d.Breakup))
+	for i, p := range d.Breakup {
+		peaks[i] = driver.Peak(p)
+	}
+	sp.radiator = driver.NewBreakup(sp.radiator, peaks)
+}
+
+// setFront says what of the speaker's own front the model has: the diaphragm's size and the baffle's edges.
+func (sp *speaker) setFront(d *xover.Driver, baffle *field.Baffle) {
+	sp.radius = d.Diameter / 2
+	if sp.radius == 0 {
+		sp.radius = math.Sqrt(d.Sd / math.Pi)
+	}
+	if baffle == nil {
+		return
+	}
+	room := baffle.Room(sp.at)
+	if room <= 0 {
+		sp.notes = append(sp.notes, fmt.Sprintf("driver %q: it stands beside the baffle, whose edges are left out for it; correct at, or the baffle's width and height", sp.name))
+		return
+	}
+	if room < sp.radius {
+		sp.notes = append(sp.notes, fmt.Sprintf("driver %q: its diaphragm reaches over the edge of the baffle; correct its diameter, at, or the baffle's width and height", sp.name))
+	}
+	sp.baffle = baffle
 }
 
 // readTable opens and reads a table that a driver names.

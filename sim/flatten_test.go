@@ -185,7 +185,7 @@ func TestNewErrors(t *testing.T) {
 		"half a box": {drv(func(d *xover.Driver) { d.Fs, d.Qms, d.Qes, d.Box.Kind = 40, 3, 0.4, xover.ClosedBox }),
 			`driver "woofer": a closed box needs vas and the box's volume; give both`},
 		"vented box": {drv(func(d *xover.Driver) { d.Fs, d.Qms, d.Qes, d.Box.Kind = 40, 3, 0.4, xover.VentedBox }),
-			`driver "woofer": vented boxes are not in this version; measure the impedance and the response of the driver in its box and give both tables`},
+			`driver "woofer": a vented box needs vas, the box's volume and its tuning; give all three`},
 		"fs without re": {drv(func(d *xover.Driver) { d.Fs, d.Qms, d.Qes = 40, 3, 0.4 }), `driver "woofer": fs is given without re; give re too`},
 		"no out": {func(d *xover.Design) { d.Ways, d.Tone = nil, &xover.Tone{Network: []xover.Step{series(leaf("R1"))}} },
 			`tone network: no node is called out; add "mark out" where the load is connected`},

@@ -1,13 +1,15 @@
 package sim
 
 import (
+	"cmp"
 	"fmt"
 	"math"
-	"math/cmplx"
 	"runtime"
 	"sync"
+	"sync/atomic"
 
 	"sixdown/sim/circuit"
+	"sixdown/sim/field"
 	"sixdown/xover/quantity"
 )
 
@@ -19,112 +21,72 @@ const chunk = 2048
 // 1e-15/(nudge·ωτ).
 const nudge = 1e-5
 
-// Predict answers at freqs, in Hz, each > 0 and finite, in any order; it keeps a copy. Long grids are shared
-// among the machine's cores, which changes no digit of the answer.
+// Predict answers at freqs, in Hz, each > 0 and finite, in any order, for the ear where the design has it; it
+// keeps a copy. Long grids are shared among the machine's cores, which changes no digit of the answer.
 func (s *System) Predict(freqs []float64) (*Response, error) {
+	return s.PredictAt(freqs, field.Angle{})
+}
+
+// PredictAt is Predict with the ear turned by angle from where the design has it.
+func (s *System) PredictAt(freqs []float64, angle field.Angle) (*Response, error) {
+	rs, err := s.Field(freqs, []field.Angle{angle})
+	if err != nil {
+		return nil, err
+	}
+	return rs[0], nil
+}
+
+// Field is Predict with the ear turned by each of angles in turn, a Response for each. The circuit is solved
+// once, and the answers share what does not depend on the ear: Freqs, Amp, Zin and the ways' H. Angles must be
+// finite, and none may put the ear where a driver is.
+//
+// A driver whose response was measured is taken to radiate alike to all sides, which a warning in the Response
+// says where it matters; one from the data sheet has its diaphragm's directivity and, where the design has a
+// baffle, its edges.
+func (s *System) Field(freqs []float64, angles []field.Angle) ([]*Response, error) {
 	for _, f := range freqs {
 		if !(f > 0) || math.IsInf(f, 1) {
 			return nil, fmt.Errorf("predict: a frequency is %g Hz; give positive ones", f)
 		}
 	}
-	r := s.newResponse(freqs)
-	if len(freqs) == 0 {
-		return r, nil
-	}
-	r.Warnings = s.rangeWarnings(freqs)
-	workers := min(runtime.GOMAXPROCS(0), (len(freqs)+chunk-1)/chunk)
-	errs := make([]error, workers)
-	var wg sync.WaitGroup
-	for w := range workers {
-		lo, hi := w*len(freqs)/workers, (w+1)*len(freqs)/workers
-		if workers == 1 {
-			errs[w] = s.predict(r, lo, hi)
-			break
-		}
-		wg.Go(func() { errs[w] = s.predict(r, lo, hi) })
-	}
-	wg.Wait()
-	for _, err := range errs {
-		if err != nil {
-			return nil, err
-		}
-	}
-	return r, nil
-}
-
-// newResponse returns a Response with its slices made.
-func (s *System) newResponse(freqs []float64) *Response {
-	n := len(freqs)
-	r := &Response{
-		Title: s.title,
-		Freqs: append(make([]float64, 0, n), freqs...),
-		Amp:   make([]complex128, n),
-		Zin:   make([]complex128, n),
-	}
-	for i, name := range s.names {
-		w := WayResponse{Name: name, H: make([]complex128, n)}
-		if s.tone == nil {
-			w.Driver = s.ways[i].speaker.name
-		}
-		if s.Sounds(i) {
-			w.P = make([]complex128, n)
-		}
-		r.Ways = append(r.Ways, w)
-	}
-	if s.Sums() {
-		r.Sum = make([]complex128, n)
-		r.SumDelay = make([]float64, n)
-	}
-	return r
-}
-
-// predict fills r from lo up to hi.
-func (s *System) predict(r *Response, lo, hi int) error {
-	n := hi - lo
-	grid := r.Freqs[lo:hi:hi]
-	if s.Sums() {
-		for _, f := range r.Freqs[lo:hi] {
-			grid = append(grid, f*(1-nudge))
-		}
-		for _, f := range r.Freqs[lo:hi] {
-			grid = append(grid, f*(1+nudge))
-		}
-	}
-	sweep, err := s.circuit.NewSweep(grid)
+	q, err := s.solve(freqs)
 	if err != nil {
+		return nil, err
+	}
+	rs, airs := make([]*Response, len(angles)), make([][]air, len(angles))
+	err = share(len(angles), func(i int) (err error) {
+		airs[i], err = s.airs(angles[i])
+		rs[i] = s.newResponse(q, angles[i])
 		return err
+	})
+	if err != nil {
+		return nil, err
 	}
-	if err := sweep.Solve(); err != nil {
-		return err
-	}
-	z := make([]complex128, len(grid))
-	sweep.AmpGain(z)
-	copy(r.Amp[lo:hi], z)
-	sweep.InputImpedance(z)
-	copy(r.Zin[lo:hi], z)
-	sum := make([]complex128, len(grid))
-	air := make([]complex128, len(grid))
-	for i := range r.Ways {
-		sweep.Gain(z, i)
-		copy(r.Ways[i].H[lo:hi], z)
-		if !s.Sounds(i) {
-			continue
-		}
-		s.Pressures(air, i, grid)
-		for k := range z {
-			z[k] *= air[k]
-			sum[k] += z[k]
-		}
-		copy(r.Ways[i].P[lo:hi], z)
-	}
-	if s.Sums() {
-		copy(r.Sum[lo:hi], sum)
-		for k := range n {
-			turn := cmplx.Phase(sum[2*n+k] * cmplx.Conj(sum[n+k]))
-			r.SumDelay[lo+k] = -turn / (2 * math.Pi * (grid[2*n+k] - grid[n+k]))
+	chunks := (len(freqs) + chunk - 1) / chunk
+	return rs, share(len(angles)*chunks, func(task int) error {
+		i, c := task/chunks, task%chunks
+		q.hear(rs[i], airs[i], c*len(freqs)/chunks, (c+1)*len(freqs)/chunks)
+		return nil
+	})
+}
+
+// share calls do for 0 … n-1, on as many goroutines as there are cores, and returns the error of the lowest
+// that fails.
+func share(n int, do func(task int) error) error {
+	errs := make([]error, n)
+	var next atomic.Int64
+	work := func() {
+		for task := int(next.Add(1)) - 1; task < n; task = int(next.Add(1)) - 1 {
+			errs[task] = do(task)
 		}
 	}
-	return nil
+	var wg sync.WaitGroup
+	for range min(runtime.GOMAXPROCS(0), n) - 1 {
+		wg.Go(work)
+	}
+	work()
+	wg.Wait()
+	return cmp.Or(errs...)
 }
 
 // Sounds reports whether the driver of way i has an acoustic output.
@@ -140,17 +102,17 @@ func (s *System) Sums() bool {
 	return s.tone == nil
 }
 
-// Pressures stores in dst[k] the pressure in Pa rms at the ear that way i gives at freqs[k], in Hz, for a gain
+// Pressures stores in dst[k] the pressure in Pa rms at the ear, where the design has it, that way i gives at freqs[k], in Hz, for a gain
 // of 1 at the drive's level; so what it gives is this times its gain. len(dst) must be len(freqs), and the way
 // must sound, else Pressures panics. It allocates nothing.
 func (s *System) Pressures(dst []complex128, i int, freqs []float64) {
 	if len(dst) != len(freqs) {
 		panic("sim: Pressures: dst and freqs differ in length")
 	}
-	sp := s.ways[i].speaker
+	radiator, air := s.ways[i].speaker.radiator, &s.straight[i]
 	level := complex(s.level, 0)
 	for k, f := range freqs {
-		dst[k] = level * sp.radiator.Pressure(f) * sp.path.At(f)
+		dst[k] = level * radiator.Pressure(f) * air.factor(f)
 	}
 }
 
@@ -176,6 +138,22 @@ func (s *System) rangeWarnings(freqs []float64) []string {
 			if hi > to {
 				ws = append(ws, fmt.Sprintf(tell, t.Name(), "ends", hertz(to), hertz(hi), t.Beyond()))
 			}
+		}
+	}
+	return ws
+}
+
+// angleWarnings names the drivers whose responses say nothing of the ear's angle.
+func (s *System) angleWarnings(angle field.Angle) []string {
+	if angle == (field.Angle{}) {
+		return nil
+	}
+	var ws []string
+	seen := map[string]bool{}
+	for _, w := range s.ways {
+		if sp := w.speaker; sp.measured && !seen[sp.name] {
+			seen[sp.name] = true
+			ws = append(ws, fmt.Sprintf("driver %q: its response was measured at one angle and is taken to be the same at all others, which is invented", sp.name))
 		}
 	}
 	return ws

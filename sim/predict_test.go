@@ -5,7 +5,6 @@ import (
 	"math"
 	"math/cmplx"
 	"slices"
-	"strings"
 	"testing"
 
 	"sixdown/xover"
@@ -152,10 +151,6 @@ func TestNoSumWithoutEveryWay(t *testing.T) {
 	}
 	if want := []string{`driver "tweeter": it has neither response nor sensitivity, so no sum is given; give one of them`}; !slices.Equal(s.Warnings(), want) {
 		t.Errorf("warnings: got %q, want %q", s.Warnings(), want)
-	}
-	d.Baffle = &xover.Baffle{Width: 0.2, Height: 0.4}
-	if w := mustNew(t, d).Warnings(); len(w) != 2 || !strings.HasPrefix(w[0], "baffle: ") {
-		t.Errorf("warnings with a baffle: %q", w)
 	}
 }
 

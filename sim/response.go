@@ -5,11 +5,13 @@ import (
 	"math/cmplx"
 
 	"sixdown/sim/driver"
+	"sixdown/sim/field"
 )
 
-// A Response is what Predict found. All slices but Ways and Warnings are as long as Freqs.
+// A Response is what Predict or Field found. All slices but Ways and Warnings are as long as Freqs.
 type Response struct {
 	Title    string
+	Angle    field.Angle   // of the ear, from where the design has it
 	Freqs    []float64     // Hz
 	Ways     []WayResponse // in the order of the design; one, called out, for a tone network
 	Sum      []complex128  // Pa rms at the ear, for the drive's level; nil unless every way has an acoustic output

@@ -24,6 +24,8 @@ type System struct {
 	names    []string
 	ways     []way // empty for a tone network
 	branches map[string][]int
+	listener field.Listener
+	straight []air // by way, to the ear where the design has it; of no meaning for a way that makes no sound
 	warnings []string
 }
 
@@ -38,6 +40,7 @@ const (
 	defaultLevel    = 2.83 // V
 	defaultDistance = 1    // m
 	defaultSound    = 343  // m/s
+	defaultQL       = 7    // of a vented box; common practice, no source
 	tuneBandFrom    = 200  // Hz
 	tuneBandTo      = 20e3 // Hz
 )
@@ -113,13 +116,14 @@ func (s *System) addTone(d *xover.Design, f *flattener) error {
 // addWays lays out the ways of a loudspeaker, a driver at the end of each.
 func (s *System) addWays(d *xover.Design, f *flattener, open opener) error {
 	f.net.Source = d.Drive.Source
-	ear := field.Listener{
+	s.listener = field.Listener{
 		Distance:   orDefault(d.Listen.Distance, defaultDistance),
 		Height:     d.Listen.Height,
 		SoundSpeed: orDefault(d.Air.SoundSpeed, defaultSound),
 	}
+	var baffle *field.Baffle
 	if d.Baffle != nil {
-		s.warnings = append(s.warnings, "baffle: the diffraction of cabinet edges is not in this version; the answers leave it out")
+		baffle = field.NewBaffle(d.Baffle.Width, d.Baffle.Height)
 	}
 	speakers := map[string]*speaker{}
 	for i := range d.Drivers {
@@ -127,7 +131,7 @@ func (s *System) addWays(d *xover.Design, f *flattener, open opener) error {
 		if !slices.ContainsFunc(d.Ways, func(w xover.Way) bool { return w.Driver == name }) {
 			continue // Parse warns of it
 		}
-		sp, err := newSpeaker(&d.Drivers[i], ear, open)
+		sp, err := newSpeaker(&d.Drivers[i], s.listener, baffle, open)
 		if err != nil {
 			return err
 		}
@@ -153,6 +157,11 @@ func (s *System) addWays(d *xover.Design, f *flattener, open opener) error {
 		b := f.add("", circuit.Branch{Name: sp.name, Kind: circuit.Port, From: from, To: to, Port: port{sp.load}})
 		s.ways = append(s.ways, way{speaker: sp, branch: b})
 		s.names = append(s.names, w.Name)
+		var a air
+		if sp.radiator != nil {
+			a = sp.to(s.listener)
+		}
+		s.straight = append(s.straight, a)
 		if w.Reversed {
 			from, to = to, from
 		}

@@ -1,0 +1,145 @@
+package sim
+
+import (
+	"fmt"
+	"math"
+	"math/cmplx"
+
+	"sixdown/sim/field"
+)
+
+// A solved is what does not depend on where the ear is. If there is a sum, the grid holds the n frequencies
+// asked for, then each of them nudged down, then up.
+type solved struct {
+	grid     []float64
+	n        int
+	amp, zin []complex128
+	gain     [][]complex128 // by way, over the grid
+	source   [][]complex128 // by way, gain times what the driver gives to the air, in Pa; nil: nothing
+}
+
+// solve answers for the circuit and the drivers.
+func (s *System) solve(freqs []float64) (*solved, error) {
+	n := len(freqs)
+	q := &solved{grid: append(make([]float64, 0, 3*n), freqs...), n: n}
+	if s.Sums() {
+		for _, f := range freqs {
+			q.grid = append(q.grid, f*(1-nudge))
+		}
+		for _, f := range freqs {
+			q.grid = append(q.grid, f*(1+nudge))
+		}
+	}
+	q.amp, q.zin = make([]complex128, len(q.grid)), make([]complex128, len(q.grid))
+	q.gain, q.source = make([][]complex128, len(s.names)), make([][]complex128, len(s.names))
+	for i := range s.names {
+		q.gain[i] = make([]complex128, len(q.grid))
+		if s.Sounds(i) {
+			q.source[i] = make([]complex128, len(q.grid))
+		}
+	}
+	if n == 0 {
+		return q, nil
+	}
+	chunks := (len(q.grid) + chunk - 1) / chunk
+	return q, share(chunks, func(task int) error {
+		return s.solvePart(q, task*len(q.grid)/chunks, (task+1)*len(q.grid)/chunks)
+	})
+}
+
+// solvePart fills q from lo up to hi.
+func (s *System) solvePart(q *solved, lo, hi int) error {
+	grid := q.grid[lo:hi]
+	sweep, err := s.circuit.NewSweep(grid)
+	if err != nil {
+		return err
+	}
+	if err := sweep.Solve(); err != nil {
+		return err
+	}
+	sweep.AmpGain(q.amp[lo:hi])
+	sweep.InputImpedance(q.zin[lo:hi])
+	for i, gain := range q.gain {
+		sweep.Gain(gain[lo:hi], i)
+		if source := q.source[i]; source != nil {
+			radiator := s.ways[i].speaker.radiator
+			for k := lo; k < hi; k++ {
+				source[k] = gain[k] * complex(s.level, 0) * radiator.Pressure(q.grid[k])
+			}
+		}
+	}
+	return nil
+}
+
+// newResponse returns a Response without the sound, which hear puts in.
+func (s *System) newResponse(q *solved, angle field.Angle) *Response {
+	n := q.n
+	r := &Response{Title: s.title, Angle: angle, Freqs: q.grid[:n:n], Amp: q.amp[:n:n], Zin: q.zin[:n:n]}
+	for i, name := range s.names {
+		w := WayResponse{Name: name, H: q.gain[i][:n:n]}
+		if s.tone == nil {
+			w.Driver = s.ways[i].speaker.name
+		}
+		if s.Sounds(i) {
+			w.P = make([]complex128, n)
+		}
+		r.Ways = append(r.Ways, w)
+	}
+	if s.Sums() {
+		r.Sum, r.SumDelay = make([]complex128, n), make([]float64, n)
+	}
+	if n > 0 {
+		r.Warnings = append(s.rangeWarnings(r.Freqs), s.angleWarnings(angle)...)
+	}
+	return r
+}
+
+// hear fills r's pressures, sum and delay from lo up to hi.
+func (q *solved) hear(r *Response, airs []air, lo, hi int) {
+	for i := range r.Ways {
+		source := q.source[i]
+		if source == nil {
+			continue
+		}
+		for k := lo; k < hi; k++ {
+			r.Ways[i].P[k] = source[k] * airs[i].factor(q.grid[k])
+		}
+	}
+	if r.Sum == nil {
+		return
+	}
+	for k := lo; k < hi; k++ {
+		var below, above complex128
+		down, up := k+q.n, k+2*q.n
+		for i := range r.Ways {
+			r.Sum[k] += r.Ways[i].P[k]
+			below += q.source[i][down] * airs[i].factor(q.grid[down])
+			above += q.source[i][up] * airs[i].factor(q.grid[up])
+		}
+		r.SumDelay[k] = -cmplx.Phase(above*cmplx.Conj(below)) / (2 * math.Pi * (q.grid[up] - q.grid[down]))
+	}
+}
+
+// airs returns the air from each way's driver to the ear, turned by angle.
+func (s *System) airs(angle field.Angle) ([]air, error) {
+	if angle == (field.Angle{}) {
+		return s.straight, nil
+	}
+	l := s.listener
+	l.Angle = angle
+	if ear := l.Ear(); !(ear.Distance(field.Point{}) < math.Inf(1)) {
+		return nil, fmt.Errorf("predict: an angle is %g, %g degrees; give finite ones", angle.HorizontalDeg, angle.VerticalDeg)
+	}
+	as := make([]air, len(s.ways))
+	for i := range s.ways {
+		if !s.Sounds(i) {
+			continue
+		}
+		sp := s.ways[i].speaker
+		if sp.at.Distance(l.Ear()) == 0 {
+			return nil, fmt.Errorf("driver %q: it stands where the ear is at %g, %g degrees; move one of them", sp.name, angle.HorizontalDeg, angle.VerticalDeg)
+		}
+		as[i] = sp.to(l)
+	}
+	return as, nil
+}
