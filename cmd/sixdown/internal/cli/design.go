@@ -69,38 +69,51 @@ func (o *designOptions) loadSystem(s *streams) (*xover.Design, *sim.System, erro
 
 // change makes the changes of --set and --turn in d.
 func (o *designOptions) change(d *xover.Design) error {
+	var all []error // every slip is told at once
 	for _, text := range o.set {
-		name, value, ok := strings.Cut(text, "=")
-		if name = strings.TrimSpace(name); !ok || name == "" {
-			return usageFault("--set", fmt.Sprintf("%q names no part and value", text), "write it as in --set C1=6.8uF")
-		}
-		part := d.Part(name)
-		if part == nil {
-			return fmt.Errorf("--set: %w", d.SetPart(name, 1))
-		}
-		v, unit, err := quantity.ParsePart(name, strings.TrimSpace(value))
-		if err != nil {
-			return fmt.Errorf("--set %s: %w", name, err)
-		}
-		if want := part.Kind.Unit(); unit != want {
-			return usageFault("--set "+name, fmt.Sprintf("%q is %s and %s is %s", strings.TrimSpace(value), unit.Noun(), name, withArticle(part.Kind.String())), fmt.Sprintf("give %s, as in %q", want.Noun(), want.Example()))
-		}
-		if err := d.SetPart(name, v); err != nil {
-			return fmt.Errorf("--set: %w", err)
-		}
+		all = append(all, setPart(d, text))
 	}
 	for _, text := range o.turn {
-		name, value, ok := strings.Cut(text, "=")
-		if name = strings.TrimSpace(name); !ok || name == "" {
-			return usageFault("--turn", fmt.Sprintf("%q names no control and turn", text), "write it as in --turn treble=0.8")
-		}
-		at, err := strconv.ParseFloat(strings.TrimSpace(value), 64)
-		if err != nil {
-			return usageFault("--turn "+name, fmt.Sprintf("%q is not a number", value), "give a number from 0 to 1")
-		}
-		if err := d.SetControl(name, at); err != nil {
-			return fmt.Errorf("--turn: %w", err)
-		}
+		all = append(all, turnControl(d, text))
+	}
+	return errors.Join(all...)
+}
+
+// setPart makes the change that a --set asks for, as in "C1=6.8uF".
+func setPart(d *xover.Design, text string) error {
+	name, value, ok := strings.Cut(text, "=")
+	if name = strings.TrimSpace(name); !ok || name == "" {
+		return usageFault("--set", fmt.Sprintf("%q names no part and value", text), "write it as in --set C1=6.8uF")
+	}
+	part := d.Part(name)
+	if part == nil {
+		return fmt.Errorf("--set: %w", d.SetPart(name, 1))
+	}
+	v, unit, err := quantity.ParsePart(name, strings.TrimSpace(value))
+	if err != nil {
+		return fmt.Errorf("--set %s: %w", name, err)
+	}
+	if want := part.Kind.Unit(); unit != want {
+		return usageFault("--set "+name, fmt.Sprintf("%q is %s and %s is %s", strings.TrimSpace(value), unit.Noun(), name, withArticle(part.Kind.String())), fmt.Sprintf("give %s, as in %q", want.Noun(), want.Example()))
+	}
+	if err := d.SetPart(name, v); err != nil {
+		return fmt.Errorf("--set: %w", err)
+	}
+	return nil
+}
+
+// turnControl makes the change that a --turn asks for, as in "treble=0.8".
+func turnControl(d *xover.Design, text string) error {
+	name, value, ok := strings.Cut(text, "=")
+	if name = strings.TrimSpace(name); !ok || name == "" {
+		return usageFault("--turn", fmt.Sprintf("%q names no control and turn", text), "write it as in --turn treble=0.8")
+	}
+	at, err := strconv.ParseFloat(strings.TrimSpace(value), 64)
+	if err != nil {
+		return usageFault("--turn "+name, fmt.Sprintf("%q is not a number", value), "give a number from 0 to 1")
+	}
+	if err := d.SetControl(name, at); err != nil {
+		return fmt.Errorf("--turn: %w", err)
 	}
 	return nil
 }

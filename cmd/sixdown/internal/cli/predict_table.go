@@ -2,8 +2,11 @@ package cli
 
 import (
 	"fmt"
+	"math"
+	"slices"
 	"strings"
 
+	"sixdown/cmd/sixdown/internal/caution"
 	"sixdown/cmd/sixdown/internal/table"
 	"sixdown/sim"
 )
@@ -26,6 +29,9 @@ func (p *prediction) text() string {
 	b.WriteString(p.table().Text(pageWidth))
 	b.WriteByte('\n')
 	b.WriteString(p.summaryText())
+	if p.design.Tone != nil {
+		b.WriteString("\n" + caution.Text(caution.Valves()))
+	}
 	return b.String()
 }
 
@@ -44,7 +50,12 @@ func (p *prediction) table() *table.Table {
 	if p.Sum != nil {
 		columns = append(columns, table.Column{Group: "sum", Name: "SPL", Unit: "dB"}, table.Column{Group: "sum", Name: "delay", Unit: "ms"})
 	}
-	columns = append(columns, table.Column{Group: "load", Name: "|Z|", Unit: "Ω"}, table.Column{Group: "load", Name: "angle", Unit: "deg"}, table.Column{Group: "load", Name: "EPDR", Unit: "Ω"})
+	columns = append(columns, table.Column{Group: "load", Name: "|Z|", Unit: "Ω"}, table.Column{Group: "load", Name: "angle", Unit: "deg"})
+	// A tone network has no output stage before it that could run hot.
+	heats := p.design.Tone == nil
+	if heats {
+		columns = append(columns, table.Column{Group: "load", Name: "EPDR", Unit: "Ω"})
+	}
 	t := table.New(columns...)
 	for k, f := range p.Freqs {
 		row := []string{figures(f, 5)}
@@ -58,7 +69,11 @@ func (p *prediction) table() *table.Table {
 			row = append(row, fixed(sim.SPL(p.Sum[k]), 2), fixed(1000*p.SumDelay[k], 3))
 		}
 		z := p.Zin[k]
-		t.Row(append(row, ohms(sim.Magnitudes(p.Zin[k : k+1])[0]), angle(z), ohms(sim.EPDR(z)))...)
+		row = append(row, ohms(sim.Magnitudes(p.Zin[k : k+1])[0]), angle(z))
+		if heats {
+			row = append(row, ohms(sim.EPDR(z)))
+		}
+		t.Row(row...)
 	}
 	return t
 }
@@ -81,12 +96,19 @@ func (p *prediction) summaryText() string {
 	var b strings.Builder
 	for _, c := range s.Crossings {
 		level := decibels(c.LevelDB) + " each"
-		if s.Sum != nil {
-			level = decibels(c.LevelDB) + " each, relative to the sum"
+		switch {
+		case math.IsInf(c.LevelDB, 0):
+			level = "no sum is left of them"
+		case s.Sum != nil:
+			level += ", relative to the sum"
 		}
 		fmt.Fprintf(&b, "crossing  %s to %s at %s: %s; %s\n", c.Low, c.High, hertz(c.Frequency), level, relativePhase(c))
 	}
-	if q := s.Sum; q != nil {
+	switch q := s.Sum; {
+	case q == nil:
+	case math.IsInf(q.MeanSPL, 0):
+		fmt.Fprintf(&b, "sum       %s to %s: nothing is heard at some of these frequencies, so there is no mean\n", hertz(q.Band[0]), hertz(q.Band[1]))
+	default:
 		fmt.Fprintf(&b, "sum       %s to %s: mean %s SPL, %s from lowest to highest, %s rms about the mean\n", hertz(q.Band[0]), hertz(q.Band[1]), decibels(q.MeanSPL), decibels(q.RippleDB), decibels(q.RMSDB))
 		if q.DipDB > 0 {
 			fmt.Fprintf(&b, "          a dip of %s below the mean at %s\n", decibels(q.DipDB), hertz(q.DipAt))
@@ -105,19 +127,46 @@ func (p *prediction) summaryText() string {
 		}
 		fmt.Fprintf(&b, "output    in third-octaves from %s at %s to %s at %s\n", decibels(t.GainDB[low]), hertz(t.Freqs[low]), decibels(t.GainDB[high]), hertz(t.Freqs[high]))
 	}
-	fmt.Fprintf(&b, "load      lowest |Z| %s Ω at %s; lowest EPDR %s Ω at %s\n", ohms(s.MinImpedance), hertz(s.MinImpedanceAt), ohms(s.MinEPDR), hertz(s.MinEPDRAt))
+	fmt.Fprintf(&b, "load      lowest |Z| %s Ω at %s", ohms(s.MinImpedance), hertz(s.MinImpedanceAt))
+	if s.Tone == nil {
+		fmt.Fprintf(&b, "; lowest EPDR %s Ω at %s", ohms(s.MinEPDR), hertz(s.MinEPDRAt))
+	}
+	b.WriteByte('\n')
+	// IEC 60268-5 asks that the impedance be nowhere below 80 % of the rated one (from memory).
+	if d := p.design.Drive; d.RatedPower > 0 && s.MinImpedance < 0.8*d.RatedLoad {
+		fmt.Fprintf(&b, "          below %s Ω, 80 %% of rated_load, the least that IEC 60268-5 asks for\n", ohms(0.8*d.RatedLoad))
+	}
+	if flat := p.flatDrivers(); len(flat) > 0 {
+		fmt.Fprintf(&b, "flat      no fs is given for %s: the level is taken as flat down to 0 Hz\n", strings.Join(flat, ", "))
+	}
 	return b.String()
+}
+
+// flatDrivers names the drivers of which no more is known than a sensitivity.
+func (p *prediction) flatDrivers() []string {
+	var names []string
+	for _, w := range p.design.Ways {
+		x := p.design.Driver(w.Driver)
+		if x.HasSensitivity && x.ResponseFile == "" && x.Fs == 0 && !slices.Contains(names, x.Name) {
+			names = append(names, x.Name)
+		}
+	}
+	return names
 }
 
 // relativePhase says which of two ways is ahead at their crossing.
 func relativePhase(c sim.Crossing) string {
-	switch text := fixed(c.PhaseDeg, 1); {
-	case text == "0.0":
+	text := fmt.Sprintf("%s leads by %s", c.High, degrees(c.PhaseDeg))
+	switch {
+	case fixed(c.PhaseDeg, 1) == "0.0":
 		return "in phase"
 	case c.PhaseDeg < 0:
-		return fmt.Sprintf("%s lags by %s", c.High, degrees(-c.PhaseDeg))
+		text = fmt.Sprintf("%s lags by %s", c.High, degrees(-c.PhaseDeg))
 	}
-	return fmt.Sprintf("%s leads by %s", c.High, degrees(c.PhaseDeg))
+	if math.Abs(c.PhaseDeg) > 120 { // beyond which the two are less than either alone
+		text += ", nearly opposed: try the other polarity"
+	}
+	return text
 }
 
 func orBeyond(f float64, otherwise string) string {

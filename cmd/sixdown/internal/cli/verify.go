@@ -1,8 +1,10 @@
 package cli
 
 import (
+	"cmp"
 	"context"
 	"fmt"
+	"math"
 	"os"
 	"path/filepath"
 	"strings"
@@ -42,19 +44,30 @@ it is worst and which single part, at another value, would explain it.`,
 		ValidArgsFunction: designFiles,
 		RunE: func(cmd *cobra.Command, args []string) error {
 			o.path = args[0]
+			if err := cmp.Or(checkLimit(cmd, "limit-gain", o.limitDB), checkLimit(cmd, "limit-phase", o.limitDeg)); err != nil {
+				return err
+			}
 			return runVerify(cmd.Context(), s, &o)
 		},
 	}
 	f := cmd.Flags()
 	f.StringVar(&o.from, "from", "", "folder that render wrote")
-	f.Float64Var(&o.limitDB, "limit-gain", 0, "largest error in dB that passes; 0: what the file's resolution allows")
-	f.Float64Var(&o.limitDeg, "limit-phase", 0, "largest error in degrees that passes; 0: what the file's resolution allows")
+	f.Float64Var(&o.limitDB, "limit-gain", 0, "largest error in dB that passes; without it, what the file's resolution allows")
+	f.Float64Var(&o.limitDeg, "limit-phase", 0, "largest error in degrees that passes; without it, what the file's resolution allows")
 	f.IntVar(&o.rate, "rate", 48000, "without --from: samples a second, in Hz")
 	f.StringVar(&o.bits, "bits", "24", "without --from: 16, 24, 32 or float")
 	o.designOptions.addTo(cmd)
 	o.answerForm.addTo(cmd)
 	o.signal, o.seed = "tones", 1
 	return cmd
+}
+
+// checkLimit refuses a limit that is given and that nothing, or everything, would pass.
+func checkLimit(cmd *cobra.Command, flag string, limit float64) error {
+	if !cmd.Flags().Changed(flag) || limit > 0 && !math.IsInf(limit, 1) {
+		return nil
+	}
+	return usageFault("--"+flag, fmt.Sprintf("%v is no limit", limit), "give a positive number, or leave the flag out")
 }
 
 func runVerify(ctx context.Context, s *streams, o *verifyOptions) error {
