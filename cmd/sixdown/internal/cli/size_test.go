@@ -90,6 +90,12 @@ func TestSizeRounding(t *testing.T) {
 				break
 			}
 		}
+		// At the ends of the two octaves it is exact.
+		for _, f := range []float64{fc / 4, fc * 4} {
+			if d := level(f, newL, newC) - level(f, l, c); math.Abs(d) > math.Abs(got.WorstDB)+1e-9 {
+				t.Errorf("%s changes %v Hz by %v dB, and the worst is said to be %v", what, f, d, got.WorstDB)
+			}
+		}
 	}
 	// 1.801 mH and 14.07 uF lie between these values of IEC 60063's E12.
 	want := map[string][3]float64{"L1": {1.8e-3, 2.2e-3, 1.8e-3}, "C1": {12e-6, 15e-6, 15e-6}}

@@ -59,6 +59,9 @@ func (s *sizing) facts() string {
 		low, high := s.ways[i], s.ways[i+1]
 		fmt.Fprintf(&b, "crossover  %s: %s at %s, %s at %s\n", hertz(w.crossings[0]), s.sections[i].name, decibels(low.levelDB[len(low.levelDB)-1]), w.name, decibels(high.levelDB[0]))
 	}
+	if len(s.sections) == 3 && s.midReversed == nil {
+		b.WriteString("           the mid is off: its two sections are each sized as if alone, and load one another\n")
+	}
 	fmt.Fprintf(&b, "polarity   %s: %s\n", s.polarities(), s.sum)
 	if x := s.midExcessDB; x > 0 {
 		fmt.Fprintf(&b, "           when the mid is brought down by %s: with a pad, or a less sensitive driver\n", decibels(x))

@@ -80,15 +80,18 @@ func partUnit(k ladder.Kind) quantity.Unit {
 	return quantity.Ohm
 }
 
-// trialGrid returns an even grid about the crossovers, and the crossovers themselves.
+// trialGrid returns an even grid about the crossovers, the crossovers themselves, and the ends of the bands that
+// effects are about.
 func trialGrid(sections []section) []float64 {
-	var at []float64
+	var at, ends []float64
 	for _, w := range sections {
 		at = append(at, w.crossings...)
+		from, to := w.effectBand()
+		ends = append(ends, from, to)
 	}
 	wide := math.Exp2(trialOctaves)
 	g := gridOptions{from: slices.Min(at) / wide, to: slices.Max(at) * wide, perOctave: trialPerOctave}
-	freqs := append(g.even(), at...)
+	freqs := slices.Concat(g.even(), at, ends)
 	slices.Sort(freqs)
 	return slices.Compact(freqs)
 }
@@ -133,10 +136,15 @@ type effect struct {
 	WorstHz    float64 // where that is
 }
 
+// effectBand returns the band from two octaves below the way's crossovers to two octaves above them, in Hz.
+func (w *section) effectBand() (from, to float64) {
+	return slices.Min(w.crossings) / 4, slices.Max(w.crossings) * 4
+}
+
 // effect compares the gain h of way i with that as sized.
 func (t *trial) effect(i int, h []complex128) effect {
 	at := t.sections[i].crossings
-	from, to := slices.Min(at)/4, slices.Max(at)*4
+	from, to := t.sections[i].effectBand()
 	var e effect
 	for k, f := range t.freqs {
 		change := sim.DB(h[k]) - sim.DB(t.sized[i][k])
