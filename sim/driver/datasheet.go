@@ -51,19 +51,28 @@ func (d DataSheet) coil(s complex128) complex128 {
 	return z
 }
 
-// motion returns the impedance of the motional branch, with the box's branch beside it. It is written as
-// sL/(1 + sL/R + s²LC), not as the inverse of a sum, so that s = 0 needs no special case.
-func (d DataSheet) motion(s complex128) complex128 {
+// motion returns the impedance num/den of the motional branch, with the box's branch beside it, and out/den, the
+// part of num/den that shows the air that goes out: all of it but for a vented box. They are polynomials, not
+// sums of admittances, so that neither s = 0 nor a resonance without losses needs a special case.
+func (d DataSheet) motion(s complex128) (num, out, den complex128) {
 	if d.Fs == 0 {
-		return 0
+		return 0, 0, 1
 	}
 	res, lces, cmes := d.Motional()
 	x := s * complex(lces, 0)
-	return x / (1 + x*complex(1/res, 0) + x*s*complex(cmes, 0) + d.boxLoad(s))
+	den = 1 + x*complex(1/res, 0) + x*s*complex(cmes, 0)
+	if d.Vent.Alpha == 0 {
+		return x, x, den
+	}
+	all, air := d.Vent.box(s)
+	return x * all, x * air, den*all + complex(d.Vent.Alpha, 0)*air
 }
 
 // Impedance returns the impedance at s.
-func (d DataSheet) Impedance(s complex128) complex128 { return d.coil(s) + d.motion(s) }
+func (d DataSheet) Impedance(s complex128) complex128 {
+	num, _, den := d.motion(s)
+	return d.coil(s) + num/den
+}
 
 // Elements returns Re, then Le, then the loss pair, then the motional branch and the box's, leaving out what is 0.
 func (d DataSheet) Elements() []Element {
@@ -124,13 +133,13 @@ func (d DataSheet) boxElements(es []Element) []Element {
 
 // Acceleration returns the acceleration of the air that leaves diaphragm, vent and leaks together, for each volt,
 // relative to that of a coil without inductance well above resonance: s·Re·Cmes·Z_m/(Z_e + Z_m), which tends to
-// 1 there, and for a vented box the share that goes out. The far-field pressure of a small source in a large
+// 1 there, times for a vented box the share that goes out. The far-field pressure of a small source in a large
 // baffle is proportional to it (Small 1972 and 1973). Without Fs it is 1.
 func (d DataSheet) Acceleration(s complex128) complex128 {
 	if d.Fs == 0 {
 		return 1
 	}
 	_, _, cmes := d.Motional()
-	m := d.motion(s)
-	return s * complex(d.Re*cmes, 0) * m / (d.coil(s) + m) * d.radiated(s)
+	num, out, den := d.motion(s)
+	return s * complex(d.Re*cmes, 0) * out / (d.coil(s)*den + num)
 }

@@ -35,18 +35,11 @@ func (d DataSheet) BoxBranch() (lceb, cmep, rel float64) {
 	return lceb, 1 / (w * w * lceb), w * lceb / d.Vent.QL
 }
 
-// radiated returns the part of the diaphragm's volume velocity that vent and leaks do not take back: that which
-// compresses the air in the box, since all that goes in must come out. It is s²T²/(s²T² + sT/QL + 1), T = 1/ω of
-// the tuning (Small 1973), and 1 without a vented box.
-func (d DataSheet) radiated(s complex128) complex128 {
-	if d.Vent.Alpha == 0 {
-		return 1
-	}
-	x := s / complex(2*math.Pi*d.Vent.Tuning, 0)
-	return x * x / (1 + x*complex(1/d.Vent.QL, 0) + x*x)
-}
-
-// boxLoad returns the admittance of the box's branch times s·Lces: α·radiated.
-func (d DataSheet) boxLoad(s complex128) complex128 {
-	return complex(d.Vent.Alpha, 0) * d.radiated(s)
+// box returns air/all, the part of the diaphragm's volume velocity that vent and leaks do not take back: that
+// which compresses the air in the box, since all that goes in must come out. It is s²T²/(s²T² + sT/QL + 1), T =
+// 1/ω of the tuning (Small 1973).
+func (v Vent) box(s complex128) (all, air complex128) {
+	x := s / complex(2*math.Pi*v.Tuning, 0)
+	air = x * x
+	return air + x*complex(1/v.QL, 0) + 1, air
 }
