@@ -31,7 +31,7 @@ func (a *axis) part(v float64) float64 {
 // frequencyAxis goes from lo to hi in Hz: a line for each step of one figure, a number at 1, 2 and 5 of each decade
 // (the preferred frequencies of ISO 266, one in three), and the unit at the first and the last.
 func frequencyAxis(lo, hi float64) axis {
-	a := logAxis(lo, hi, func(v float64) string {
+	a := logAxis(lo, hi, true, func(v float64) string {
 		if v >= 1000 {
 			return number(v/1000, 3) + "k"
 		}
@@ -43,16 +43,18 @@ func frequencyAxis(lo, hi float64) axis {
 	return a
 }
 
-// logAxis has a line at each step of one figure and a number at 1, 2 and 5 of each decade.
-func logAxis(lo, hi float64, write func(float64) string) axis {
+// logAxis has a line at each step of one figure and a number at 1, 2 and 5 of each decade; over more than two and a half
+// decades at 1 alone, unless roomy.
+func logAxis(lo, hi float64, roomy bool, write func(float64) string) axis {
 	a := axis{lo: lo, hi: hi, log: true}
 	const slack = 1e-9 // an end that is a line is on it
+	sparse := hi > 300*lo && !roomy
 	for decade := math.Floor(math.Log10(lo)); decade <= math.Ceil(math.Log10(hi)); decade++ {
 		for step := 1; step < 10; step++ {
 			v, err := strconv.ParseFloat(strconv.Itoa(step)+"e"+strconv.Itoa(int(decade)), 64)
 			switch {
 			case err != nil || v < lo*(1-slack) || v > hi*(1+slack):
-			case step == 1 || step == 2 || step == 5:
+			case step == 1 || !sparse && (step == 2 || step == 5):
 				a.ticks = append(a.ticks, tick{v, write(v)})
 			default:
 				a.minor = append(a.minor, v)

@@ -43,20 +43,51 @@ func (f *fonts) face(bold bool) *sfnt.Font {
 	return f.regular
 }
 
+// fontUnits is how many units of the font's own its size has; at that size nothing is rounded.
+const fontUnits = 2048
+
 // width returns how wide a text of that size is. Kerning, which not every viewer applies, is left out.
 func (f *fonts) width(s string, size float64, bold bool) float64 {
-	const ppem = 2048 // font units, so that nothing is rounded
-	face := f.face(bold)
 	total := 0.0
 	for _, r := range s {
-		g, err := face.GlyphIndex(&f.buf, r)
-		if err != nil {
-			continue // a rune that the font cannot look up has no width
-		}
-		a, err := face.GlyphAdvance(&f.buf, g, fixed.I(ppem), font.HintingNone)
-		if err == nil {
-			total += float64(a) / 64
-		}
+		total += f.advance(r, size, bold)
 	}
-	return total / ppem * size
+	return total
+}
+
+// advance returns how wide a rune is; one that the font cannot look up has no width.
+func (f *fonts) advance(r rune, size float64, bold bool) float64 {
+	face := f.face(bold)
+	g, err := face.GlyphIndex(&f.buf, r)
+	if err != nil {
+		return 0
+	}
+	a, err := face.GlyphAdvance(&f.buf, g, fixed.I(fontUnits), font.HintingNone)
+	if err != nil {
+		return 0
+	}
+	return float64(a) / 64 / fontUnits * size
+}
+
+// glyph returns a rune's outline in font units, good until the next call, and its width.
+func (f *fonts) glyph(r rune, size float64, bold bool) (outline sfnt.Segments, advance float64, err error) {
+	face := f.face(bold)
+	g, err := face.GlyphIndex(&f.buf, r)
+	if err != nil {
+		return nil, 0, err
+	}
+	advance = f.advance(r, size, bold)
+	outline, err = face.LoadGlyph(&f.buf, g, fixed.I(fontUnits), nil)
+	return outline, advance, err
+}
+
+// from returns where a text begins.
+func (f *fonts) from(t text) float64 {
+	switch w := f.width(t.text, t.size, t.bold); t.anchor {
+	case middle:
+		return t.at.x - w/2
+	case end:
+		return t.at.x - w
+	}
+	return t.at.x
 }

@@ -35,8 +35,11 @@ func (l *labels) name(own [][]point, c series, near float64) bool {
 				continue
 			}
 			cost += float64(side) + 0.5*(bottom-top) // level pieces, and above rather than below
+			if l.ambiguous(own, box) {
+				cost += 30
+			}
 			if near >= 0 {
-				cost += 0.12 * math.Abs(x+w/2-near)
+				cost += 0.04 * math.Abs(x+w/2-near)
 			}
 			if cost < best {
 				best, found = cost, box
@@ -53,10 +56,10 @@ func (l *labels) name(own [][]point, c series, near float64) bool {
 // remark writes a callout's text near its point; over a curve if there is no other place, and not at all if there
 // is none.
 func (l *labels) remark(at point, c callout) {
-	t := text{text: c.text, size: labelSize, anchor: start, ink: writing}
+	t := text{text: c.text, size: labelSize, anchor: start, ink: c.ink}
 	w, h := l.scene.fonts.width(t.text, t.size, false), labelSize*capHeight
 	best, found := math.Inf(1), rect{}
-	for _, r := range []float64{8, 14, 22, 32, 44, 60} {
+	for _, r := range []float64{8, 14, 22, 32, 44, 60, 80} {
 		for k := range 16 {
 			sin, cos := math.Sincos(2 * math.Pi * float64(k) / 16)
 			// The box touches the circle of radius r at that angle.
@@ -112,6 +115,18 @@ func (l *labels) cost(box rect) (cost float64, ok bool) {
 		}
 	}
 	return cost, true
+}
+
+// ambiguous reports whether another curve lies between a box and own, or so near to own that a name in the box could
+// be either's.
+func (l *labels) ambiguous(own [][]point, box rect) bool {
+	x := box.x + box.w/2
+	top, bottom, ok := span(own, x-0.5, x+0.5)
+	if !ok {
+		return false
+	}
+	top, bottom = min(top-5, box.y), max(bottom+5, box.bottom())
+	return l.crossings(rect{x - 0.5, top, 1, bottom - top}) > 1
 }
 
 // crossed reports whether a curve runs through a box.

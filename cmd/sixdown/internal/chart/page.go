@@ -1,11 +1,14 @@
 package chart
 
-import "math"
+import (
+	"math"
+	"strings"
+)
 
 // A Page is what is put on one or more sheets.
 type Page struct {
 	Title   string
-	Caption []string // the numbers to take away, a line each
+	Caption []string // the numbers to take away; lines too long are broken after a semicolon
 	Panels  []Panel  // below each other; two narrow ones side by side
 }
 
@@ -40,7 +43,7 @@ func compose(p *Page, limit float64) ([]*scene, error) {
 		c.now.add(text{point{margin, c.y + titleSize*capHeight}, p.Title, titleSize, true, start, writing})
 		c.y += titleSpace
 	}
-	for _, l := range p.Caption {
+	for _, l := range f.folded(p.Caption, captionSize, pageWidth-2*margin) {
 		c.now.add(text{point{margin, c.y + captionSize*capHeight}, l, captionSize, false, start, faint})
 		c.y += captionLine
 	}
@@ -95,4 +98,21 @@ func (c *composer) row(panels []Panel) int {
 	}
 	c.y += h + panelGap
 	return n
+}
+
+// folded breaks lines that are wider than width, after a semicolon where there is one.
+func (f *fonts) folded(lines []string, size, width float64) []string {
+	var out []string
+	for _, l := range lines {
+		now := ""
+		for _, piece := range strings.SplitAfter(l, "; ") {
+			if now != "" && f.width(strings.TrimSpace(now+piece), size, false) > width {
+				out = append(out, strings.TrimSpace(now))
+				now = ""
+			}
+			now += piece
+		}
+		out = append(out, strings.TrimSpace(now))
+	}
+	return out
 }

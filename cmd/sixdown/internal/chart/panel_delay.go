@@ -6,7 +6,7 @@ import "math"
 // axis is in equal ratios.
 func GroupDelay(subjects []*Subject, note string) Panel {
 	lo, hi := ends(subjects)
-	p := &plotPanel{high: 180, plot: plot{title: "Group delay", note: note, x: frequencyAxis(lo, hi)}}
+	p := &plotPanel{high: 146, plot: plot{title: "Group delay", note: note, x: frequencyAxis(lo, hi)}}
 	var all [][]float64
 	for k, s := range subjects {
 		ms := make([]float64, len(s.Response.SumDelay))
@@ -19,7 +19,7 @@ func GroupDelay(subjects []*Subject, note string) Panel {
 	from, to := least(all...), most(all...)
 	if from > 0 && to > 20*from {
 		// A thousandth of the longest delay is of no account, however small the least one is.
-		p.y = logAxis(roundDown(max(from, to/2000)), roundUp(to), func(v float64) string { return number(v, 3) })
+		p.y = logAxis(roundDown(max(from, to/2000)), roundUp(to), false, func(v float64) string { return number(v, 3) })
 		p.y.ticks[len(p.y.ticks)-1].text += " ms"
 		return p
 	}

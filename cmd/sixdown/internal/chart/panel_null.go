@@ -8,21 +8,27 @@ import (
 	"sixdown/sim"
 )
 
+// nullRange is how many dB below the top the deepest hole is shown.
+const nullRange = 60
+
 // Null draws the sum as it is, and for each crossing with the ways on one side of it reversed: the deeper the hole
 // at the crossing, the better the two are in step there. It needs a sum and a crossing.
 func Null(s *Subject) Panel {
 	f := s.Response.Freqs
-	p := &plotPanel{high: 255, half: true, plot: plot{title: "Reversed", note: "the hole shows how well the ways are in step", x: frequencyAxis(ends([]*Subject{s}))}}
+	p := &plotPanel{high: 240, half: true, plot: plot{title: s.named("Reversed"), note: "the hole shows how well the ways are in step", x: frequencyAxis(ends([]*Subject{s}))}}
 	normal := sumLevels(s)
+	bottom := topOf(normal) - 20
 	for k := range s.Crossing {
 		reversed, names, colour := s.reversed(k)
 		levels := sim.SPLs(reversed)
-		p.series = append(p.series, series{name: strings.Join(names, ", ") + " reversed", x: f, y: levels, pen: pen{wayInk(colour), wayWidth, dashes(max(1, colour))}, near: s.Crossing[k].Frequency})
+		p.series = append(p.series, series{x: f, y: levels, pen: pen{wayInk(colour), wayWidth, dashes(max(1, colour))}})
 		at, depth := hole(f, reversed, s.Response.Sum, s.Crossing[k].Frequency)
-		p.callouts = append(p.callouts, callout{at, max(depth+interpolated(f, normal, at), most(normal)-LevelRange+3), decimals(depth, 1) + " dB at " + hertz(at), wayInk(colour)})
+		level := max(depth+interpolated(f, normal, at), topOf(normal)-nullRange)
+		bottom = min(bottom, level)
+		p.callouts = append(p.callouts, callout{at, level, strings.Join(names, ", ") + " reversed: " + decimals(depth, 1) + " dB at " + hertz(at), wayInk(colour)})
 	}
 	p.series = append(p.series, series{name: "sum", x: f, y: normal, pen: pen{total, totalWidth, nil}, bold: true})
-	p.y = linearAxis(topOf(normal)-LevelRange, topOf(normal), 6, " dB", false)
+	p.y = linearAxis(5*math.Floor(bottom/5)-10, topOf(normal), 5, " dB", false)
 	return p
 }
 

@@ -9,7 +9,7 @@ import (
 // Phase draws the phase of the sum and of each way where it is heard: within LevelRange/2 dB of the sum.
 func Phase(subjects []*Subject, note string) Panel {
 	lo, hi := ends(subjects)
-	p := &plotPanel{high: 205, plot: plot{title: "Phase", note: note, x: frequencyAxis(lo, hi), y: phaseAxis(180)}}
+	p := &plotPanel{high: 174, plot: plot{title: "Phase", note: note, x: frequencyAxis(lo, hi), y: phaseAxis(180)}}
 	for k, s := range subjects {
 		f := s.Response.Freqs
 		for i, w := range s.Response.Ways {

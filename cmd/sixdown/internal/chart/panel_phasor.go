@@ -23,16 +23,14 @@ type phasorPanel struct {
 	crossing Crossing
 }
 
-func (p *phasorPanel) height() float64 { return 255 }
+func (p *phasorPanel) height() float64 { return 240 }
 func (p *phasorPanel) narrow() bool    { return true }
 
 func (p *phasorPanel) draw(s *scene, room rect) {
 	c := p.crossing
-	heading := plot{title: "Phasors", note: c.Low + " to " + c.High + " at " + hertz(c.Frequency)}
+	heading := plot{title: p.subject.named("Phasors"), note: c.Low + " to " + c.High + " at " + hertz(c.Frequency)}
 	taken := heading.heading(s, room)
 	in := frameIn(room)
-	s.add(line{[]point{{in.x, in.y}, {in.right(), in.y}, {in.right(), in.bottom()}, {in.x, in.bottom()}, {in.x, in.y}}, pen{ink: frame, width: 0.8}})
-
 	var sum complex128
 	for _, v := range c.Parts {
 		sum += v
@@ -66,10 +64,12 @@ func (p *phasorPanel) draw(s *scene, room rect) {
 	place := func(v complex128) point {
 		return point{in.x + in.w/2 + (real(v)-(left+right)/2)*scale, in.y + in.h/2 - (imag(v)-(low+high)/2)*scale}
 	}
-	y := place(0).y
-	s.stroke(point{in.x, y}, point{in.right(), y}, pen{ink: major, width: 0.7})
+	polarGrid(s, in, place(0), cmplx.Abs(sum)*scale)
 
-	l := &labels{scene: s, in: in, taken: taken}
+	s.frame(in)
+	key := text{point{in.x + 7, in.bottom() - 7}, "broad: the sum; circles 6 dB apart", noteSize - 1, false, start, faint}
+	s.add(key)
+	l := &labels{scene: s, in: in, taken: append(taken, s.box(key))}
 	end := corners[len(corners)-1]
 	s.arrow(place(0), place(end), pen{totalPale, 8, nil}, 20)
 	l.curves = append(l.curves, []point{place(0), place(end)})
@@ -86,6 +86,40 @@ func (p *phasorPanel) draw(s *scene, room rect) {
 		}
 		l.remark(place((corners[i]+corners[i+1])/2), callout{text: said, ink: p.subject.wayInk(i)})
 	}
+}
+
+// polarGrid draws rays each 30° from a centre, and circles about it: one of radius r, and others 6.02 dB apart.
+func polarGrid(s *scene, in rect, centre point, r float64) {
+	far := math.Hypot(in.w, in.h)
+	for k := range 12 {
+		sin, cos := math.Sincos(float64(k) * math.Pi / 6)
+		if a, b, ok := clipSegment(centre, point{centre.x + far*cos, centre.y + far*sin}, in); ok {
+			s.stroke(a, b, pen{ink: minor, width: 0.7})
+		}
+	}
+	for _, k := range []float64{0.25, 0.5, 1, 2} {
+		for _, part := range clipped(circle(centre, k*r), in) {
+			w := pen{ink: minor, width: 0.7}
+			if k == 1 {
+				w.ink = major
+			}
+			s.add(line{part, w})
+		}
+	}
+	if a, b, ok := clipSegment(centre, point{centre.x + far, centre.y}, in); ok {
+		s.stroke(a, b, pen{ink: major, width: 0.7})
+	}
+}
+
+// circle returns a circle as a polyline.
+func circle(centre point, r float64) []point {
+	const sides = 120
+	points := make([]point, sides+1)
+	for i := range points {
+		sin, cos := math.Sincos(2 * math.Pi * float64(i%sides) / sides)
+		points[i] = point{centre.x + r*cos, centre.y + r*sin}
+	}
+	return points
 }
 
 // arrow draws an arrow with a head of the given length; a short arrow has a shorter head.

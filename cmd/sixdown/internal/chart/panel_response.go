@@ -13,16 +13,16 @@ const LevelRange = 50
 // the levels are for.
 func Response(subjects []*Subject, note string) Panel {
 	lo, hi := ends(subjects)
-	p := &plotPanel{high: 330, plot: plot{title: "Response", note: note, x: frequencyAxis(lo, hi)}}
+	p := &plotPanel{high: 280, plot: plot{title: "Response", note: note, x: frequencyAxis(lo, hi)}}
 	top, bottom := math.Inf(-1), math.Inf(1)
 	for k, s := range subjects {
 		f := s.Response.Freqs
 		for i, t := range s.Targets {
-			if t == nil {
-				continue
+			if t == nil || k > 0 {
+				continue // two designs that are compared have one aim
 			}
 			name := ""
-			if i == 0 && k == 0 {
+			if i == 0 {
 				name = "target"
 			}
 			p.series = append(p.series, series{name: name, x: f, y: t, pen: pen{aim, aimWidth, []float64{4, 3}}})

@@ -110,12 +110,5 @@ func (d *pdfDrawer) write(t text) {
 	d.doc.SetFont("sans", style, t.size*d.k)
 	c := d.theme.colour(t.ink)
 	d.doc.SetTextColor(int(c.R), int(c.G), int(c.B))
-	x := t.at.x
-	switch w := d.fonts.width(t.text, t.size, t.bold); t.anchor {
-	case middle:
-		x -= w / 2
-	case end:
-		x -= w
-	}
-	d.doc.Text(x*d.k, t.at.y*d.k, t.text)
+	d.doc.Text(d.fonts.from(t)*d.k, t.at.y*d.k, t.text)
 }

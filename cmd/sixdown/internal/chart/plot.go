@@ -1,6 +1,9 @@
 package chart
 
-import "math"
+import (
+	"math"
+	"slices"
+)
 
 // A plot is a frame with two axes, curves in it and what is said about them.
 type plot struct {
@@ -9,7 +12,7 @@ type plot struct {
 	areas       []area // under the grid
 	series      []series
 	callouts    []callout
-	noCorner    bool // the first number of the x axis is left out, since another plot stands below
+	bare        bool // the areas are not to be crossed by grid lines
 }
 
 // A series is a curve. Not-a-number is a gap in it.
@@ -63,11 +66,13 @@ func (p *plot) draw(s *scene, room rect) {
 	for _, a := range p.areas {
 		sh := shape{ink: a.ink}
 		for _, loop := range a.loops {
-			placed := make([]point, len(loop))
+			placed := make([]point, len(loop), len(loop)+1)
 			for i, v := range loop {
 				placed[i] = p.place(in, v.x, v.y)
 			}
-			sh.loops = append(sh.loops, placed)
+			if placed = thinned(append(placed, placed[0])); len(placed) > 3 {
+				sh.loops = append(sh.loops, placed[:len(placed)-1])
+			}
 		}
 		s.add(sh)
 	}
@@ -137,6 +142,11 @@ func (p *plot) grid(s *scene, in rect) {
 			s.stroke(point{x, in.y}, point{x, in.bottom()}, w)
 		}
 	}
+	if p.bare {
+		s.frame(in)
+		p.numbers(s, in)
+		return
+	}
 	for _, v := range p.x.minor {
 		rule(&p.x, v, minor, false)
 	}
@@ -149,21 +159,27 @@ func (p *plot) grid(s *scene, in rect) {
 	for _, t := range p.y.ticks {
 		rule(&p.y, t.at, major, true)
 	}
-	s.add(line{[]point{{in.x, in.y}, {in.right(), in.y}, {in.right(), in.bottom()}, {in.x, in.bottom()}, {in.x, in.y}}, pen{ink: frame, width: 0.8}})
+	s.frame(in)
 	p.numbers(s, in)
 }
 
 // numbers writes the axes' numbers; one that would run into its neighbour is left out.
 func (p *plot) numbers(s *scene, in rect) {
-	last := math.Inf(1)
-	for i, t := range p.y.ticks {
+	// The last number, which has the unit, and the first go before those between.
+	order := make([]int, 0, len(p.y.ticks))
+	for i := range p.y.ticks {
+		order = append(order, (i+len(p.y.ticks)-1)%len(p.y.ticks))
+	}
+	var written []float64
+	for _, i := range order {
+		t := p.y.ticks[i]
 		y := in.bottom() - p.y.part(t.at)*in.h
-		if last-y < tickSize+2 && i > 0 && i < len(p.y.ticks)-1 {
-			continue
-		}
-		last = y
 		// A number at an end is moved in, so that it stays clear of the heading and of the other axis.
 		base := min(max(y+tickSize*capHeight/2, in.y+tickSize*capHeight), in.bottom()+0.5)
+		if slices.ContainsFunc(written, func(w float64) bool { return math.Abs(w-base) < tickSize+1 }) {
+			continue
+		}
+		written = append(written, base)
 		s.add(text{point{in.x - tickGap, base}, t.text, tickSize, false, end, faint})
 	}
 	var before rect

@@ -6,7 +6,7 @@ import (
 	"math"
 
 	"git.sr.ht/~sbinet/gg"
-	"golang.org/x/image/font/opentype"
+	"golang.org/x/image/font/sfnt"
 )
 
 // WritePNG writes the page as a PNG picture of the given width in pixels.
@@ -82,21 +82,41 @@ func (d *pngDrawer) draw(m mark) error {
 	return nil
 }
 
+// write fills the outlines of a text's glyphs, each set where the layout has it.
 func (d *pngDrawer) write(t text) error {
-	face, err := opentype.NewFace(d.fonts.face(t.bold), &opentype.FaceOptions{Size: t.size * d.k, DPI: 72})
-	if err != nil {
-		return fmt.Errorf("chart: the font: %w", err)
-	}
-	defer face.Close() // it holds nothing
-	d.c.SetFontFace(face)
 	d.c.SetColor(d.theme.colour(t.ink))
-	x := t.at.x
-	switch w := d.fonts.width(t.text, t.size, t.bold); t.anchor {
-	case middle:
-		x -= w / 2
-	case end:
-		x -= w
+	at := point{d.fonts.from(t), t.at.y}
+	for _, r := range t.text {
+		outline, advance, err := d.fonts.glyph(r, t.size, t.bold)
+		if err != nil {
+			return fmt.Errorf("chart: the glyph %q: %w", r, err)
+		}
+		for _, part := range outline {
+			p := func(i int) (x, y float64) {
+				a := part.Args[i]
+				return (at.x + float64(a.X)/64/fontUnits*t.size) * d.k, (at.y + float64(a.Y)/64/fontUnits*t.size) * d.k
+			}
+			x0, y0 := p(0)
+			x1, y1 := p(1)
+			switch part.Op {
+			case sfnt.SegmentOpMoveTo:
+				d.c.ClosePath()
+				d.c.MoveTo(x0, y0)
+			case sfnt.SegmentOpLineTo:
+				d.c.LineTo(x0, y0)
+			case sfnt.SegmentOpQuadTo:
+				d.c.QuadraticTo(x0, y0, x1, y1)
+			case sfnt.SegmentOpCubeTo:
+				x2, y2 := p(2)
+				d.c.CubicTo(x0, y0, x1, y1, x2, y2)
+			}
+		}
+		at.x += advance
 	}
-	d.c.DrawString(t.text, x*d.k, t.at.y*d.k)
+	d.c.ClosePath()
+	// Strokes of a glyph may overlap.
+	d.c.SetFillRuleWinding()
+	d.c.Fill()
+	d.c.SetFillRuleEvenOdd()
 	return nil
 }

@@ -93,15 +93,12 @@ func (s *scene) fill(r rect, i ink) {
 	s.add(shape{[][]point{{{r.x, r.y}, {r.right(), r.y}, {r.right(), r.bottom()}, {r.x, r.bottom()}}}, i})
 }
 
+// frame draws the edge of a box.
+func (s *scene) frame(r rect) {
+	s.add(line{[]point{{r.x, r.y}, {r.right(), r.y}, {r.right(), r.bottom()}, {r.x, r.bottom()}, {r.x, r.y}}, pen{ink: frame, width: 0.8}})
+}
+
 // box is where a text stands, from the top of its capitals to the foot of its descenders.
 func (s *scene) box(t text) rect {
-	w := s.fonts.width(t.text, t.size, t.bold)
-	r := rect{t.at.x, t.at.y - capHeight*t.size, w, (capHeight + descent) * t.size}
-	switch t.anchor {
-	case middle:
-		r.x -= w / 2
-	case end:
-		r.x -= w
-	}
-	return r
+	return rect{s.fonts.from(t), t.at.y - capHeight*t.size, s.fonts.width(t.text, t.size, t.bold), (capHeight + descent) * t.size}
 }

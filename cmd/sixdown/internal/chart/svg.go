@@ -28,7 +28,7 @@ func (p *Page) WriteSVG(w io.Writer, theme Theme, width int) error {
 	b.WriteString("<style>\n" + styleSheet(s, theme) + "</style>\n")
 	fmt.Fprintf(&b, `<rect class="f%d" width="%s" height="%s"/>`+"\n", paper, coordinate(s.w), coordinate(s.h))
 	for _, m := range s.marks {
-		writeMark(&b, m)
+		s.writeMark(&b, m)
 	}
 	b.WriteString("</svg>\n")
 	_, err = w.Write(b.Bytes())
@@ -77,7 +77,7 @@ func styleSheet(s *scene, theme Theme) string {
 	return b.String()
 }
 
-func writeMark(b *bytes.Buffer, m mark) {
+func (s *scene) writeMark(b *bytes.Buffer, m mark) {
 	switch m := m.(type) {
 	case line:
 		fmt.Fprintf(b, `<polyline class="s%d" stroke-width="%s"`, m.pen.ink, coordinate(m.pen.width))
@@ -109,7 +109,8 @@ func writeMark(b *bytes.Buffer, m mark) {
 		if m.anchor != start {
 			fmt.Fprintf(b, ` text-anchor="%s"`, [...]string{"start", "middle", "end"}[m.anchor])
 		}
-		fmt.Fprintf(b, ">%s</text>\n", html.EscapeString(m.text))
+		// Where the viewer lacks the font, another takes no more room than this one.
+		fmt.Fprintf(b, ` textLength="%s" lengthAdjust="spacingAndGlyphs">%s</text>`+"\n", coordinate(s.box(m).w), html.EscapeString(m.text))
 	}
 }
 

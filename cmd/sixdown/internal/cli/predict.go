@@ -43,8 +43,9 @@ does.
 
 With --chart the answer is drawn too, over the grid's span: the response with each
 way and its target, phase, group delay, the load, the phasors at each crossing, the
-sum with one side reversed, and the step response, which needs frequencies up to
-56 kHz: beyond its end a driver's table is carried on by its slope.`,
+sum with one side reversed, the step response, which needs frequencies up to
+56 kHz (beyond its end a driver's table is carried on by its slope), and the polar
+maps.`,
 		Example: `  sixdown predict harbour.toml
   sixdown predict harbour.toml --at "1 kHz,2.2 kHz" --set C3=5.6uF
   sixdown predict harbour.toml --from 100Hz --to 10kHz --per-octave 48 --csv
@@ -100,7 +101,7 @@ func runPredict(s *streams, o *predictOptions) error {
 		return err
 	}
 	if o.chart.path != "" {
-		if err := o.chart.draw([]*prediction{p}, &o.grid, o.design.path); err != nil {
+		if err := o.chart.draw(s, []*prediction{p}, &o.grid, o.design.path); err != nil {
 			return err
 		}
 	}
@@ -110,7 +111,15 @@ func runPredict(s *streams, o *predictOptions) error {
 	case o.form.csv:
 		return s.answerCSV(p.records())
 	}
-	return s.answer(p.text())
+	text := p.text()
+	if width, ok := isTerminal(s.out); ok {
+		curve, err := p.curve(width, colourful())
+		if err != nil {
+			return err
+		}
+		text += curve
+	}
+	return s.answer(text)
 }
 
 // predictAt predicts at freqs, sums up, and prints the warnings that come with it.
@@ -124,10 +133,15 @@ func predictAt(s *streams, d *xover.Design, sys *sim.System, freqs []float64) (*
 		return nil, err
 	}
 	for _, w := range slices.Concat(p.Response.Warnings, p.summary.Warnings) {
-		if !slices.Contains(p.warnings, w) {
-			p.warnings = append(p.warnings, w)
-			s.warn(w)
-		}
+		p.warnOnce(s, w)
 	}
 	return p, nil
+}
+
+// warnOnce prints a warning that has not been printed yet.
+func (p *prediction) warnOnce(s *streams, w string) {
+	if !slices.Contains(p.warnings, w) {
+		p.warnings = append(p.warnings, w)
+		s.warn(w)
+	}
 }

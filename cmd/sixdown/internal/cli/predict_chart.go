@@ -29,7 +29,7 @@ const maxChartWidth = 8000
 
 // panelNames are the panels in the order in which a page shows them.
 func panelNames() []string {
-	return []string{"response", "phase", "delay", "impedance", "phasor", "null", "step"}
+	return []string{"response", "phase", "delay", "impedance", "phasor", "null", "step", "polar"}
 }
 
 func (o *chartOptions) addTo(cmd *cobra.Command) {
@@ -83,8 +83,8 @@ func (o *chartOptions) wants(panel string) bool {
 const drawingPerOctave = 96
 
 // draw writes a page about one or two predictions to the file. inputs must not be overwritten by it.
-func (o *chartOptions) draw(ps []*prediction, grid *gridOptions, inputs ...string) error {
-	page, err := o.page(ps, grid)
+func (o *chartOptions) draw(s *streams, ps []*prediction, grid *gridOptions, inputs ...string) error {
+	page, err := o.page(s, ps, grid)
 	if err != nil {
 		return err
 	}
@@ -120,72 +120,87 @@ func (o *chartOptions) draw(ps []*prediction, grid *gridOptions, inputs ...strin
 
 // page sets out the panels that are wanted and can be drawn. A panel that was asked for by name and cannot be is an
 // error.
-func (o *chartOptions) page(ps []*prediction, grid *gridOptions) (*chart.Page, error) {
+func (o *chartOptions) page(s *streams, ps []*prediction, grid *gridOptions) (*chart.Page, error) {
 	page := &chart.Page{Title: ps[0].Title}
 	var subjects []*chart.Subject
 	for k, p := range ps {
-		s, err := o.subject(p, grid)
+		subject, err := o.subject(p, grid)
 		if err != nil {
 			return nil, err
 		}
 		line := p.keyNumbers()
 		if len(ps) > 1 {
-			s.Name = string(rune('A' + k))
-			line = s.Name + ": " + line
+			subject.Name = string(rune('A' + k))
+			line = subject.Name + ": " + line
 		}
-		subjects = append(subjects, s)
+		subjects = append(subjects, subject)
 		page.Caption = append(page.Caption, line)
 	}
 	if len(ps) > 1 {
 		page.Title = "A: " + orUntitled(ps[0].Title) + "   B: " + orUntitled(ps[1].Title)
 	}
 	first := ps[0]
-	tone, sums, crosses := first.summary.Tone != nil, true, true
+	sums, crosses := true, true
 	for _, p := range ps {
 		sums = sums && p.Sum != nil
 		crosses = crosses && len(p.summary.Crossings) > 0
 	}
-	heard := fmt.Sprintf("dB SPL at %s m for %s V", figures(first.distance, 4), figures(first.level, 4))
-	gain := "gain across the drivers, dB re open circuit"
-	if tone {
-		gain = "output over the open-circuit source"
+	levels, phases := "gain across the drivers, dB re open circuit", "of the gain"
+	switch {
+	case sums:
+		levels = fmt.Sprintf("dB SPL at %s m for %s V", figures(first.distance, 4), figures(first.level, 4))
+		phases = "at the ear, without the flight over the listening distance"
+	case first.summary.Tone != nil:
+		levels = "output, dB re the open-circuit source"
 	}
-	levels, phases := gain, "of the gain"
-	if sums {
-		levels, phases = heard, "at the ear, without the flight over the listening distance"
+	one := func(p chart.Panel) ([]chart.Panel, error) { return []chart.Panel{p}, nil }
+	each := func(draw func(*chart.Subject) []chart.Panel) ([]chart.Panel, error) {
+		var all []chart.Panel
+		for _, s := range subjects {
+			all = append(all, draw(s)...)
+		}
+		return all, nil
 	}
 	for _, c := range []struct {
 		name  string
 		there bool
 		why   string
-		draw  func() []chart.Panel
+		draw  func() ([]chart.Panel, error)
 	}{
-		{"response", true, "", func() []chart.Panel { return []chart.Panel{chart.Response(subjects, levels)} }},
-		{"phase", true, "", func() []chart.Panel { return []chart.Panel{chart.Phase(subjects, phases)} }},
-		{"delay", sums, "no sum at the ear", func() []chart.Panel {
-			return []chart.Panel{chart.GroupDelay(subjects, "of the sum, without the flight over the listening distance")}
+		{"response", true, "", func() ([]chart.Panel, error) { return one(chart.Response(subjects, levels)) }},
+		{"phase", true, "", func() ([]chart.Panel, error) { return one(chart.Phase(subjects, phases)) }},
+		{"delay", sums, "no sum at the ear", func() ([]chart.Panel, error) {
+			return one(chart.GroupDelay(subjects, "of the sum, without the flight over the listening distance"))
 		}},
-		{"impedance", true, "", func() []chart.Panel { return chart.Impedance(subjects, "what the amplifier sees") }},
-		{"phasor", sums && crosses, "no sum or no crossing", func() []chart.Panel {
+		{"impedance", true, "", func() ([]chart.Panel, error) { return chart.Impedance(subjects, "what the amplifier sees"), nil }},
+		{"phasor", sums && crosses, "no sum or no crossing", func() ([]chart.Panel, error) { return each(chart.Phasors) }},
+		{"null", sums && crosses, "no sum or no crossing", func() ([]chart.Panel, error) {
+			return each(func(s *chart.Subject) []chart.Panel { return []chart.Panel{chart.Null(s)} })
+		}},
+		{"step", true, "", func() ([]chart.Panel, error) { return one(chart.StepResponse(subjects)) }},
+		{"polar", sums, "no sum at the ear", func() ([]chart.Panel, error) {
 			var all []chart.Panel
-			for _, s := range subjects {
-				all = append(all, chart.Phasors(s)...)
+			for k, p := range ps {
+				panels, err := polarPanels(s, p, subjects[k].Name, grid)
+				if err != nil {
+					return nil, err
+				}
+				all = append(all, panels...)
 			}
-			return all
-		}},
-		{"null", sums && crosses, "no sum or no crossing", func() []chart.Panel {
-			var all []chart.Panel
-			for _, s := range subjects {
-				all = append(all, chart.Null(s))
+			if all == nil && len(o.panels) > 0 {
+				return nil, usageFault("--panels polar", "the design sounds alike to all sides, since no driver has a place, a diameter or a baffle", "give these, or leave it out")
 			}
-			return all
+			return all, nil
 		}},
-		{"step", true, "", func() []chart.Panel { return []chart.Panel{chart.StepResponse(subjects)} }},
 	} {
 		switch {
 		case !o.wants(c.name):
 		case c.there:
-			page.Panels = append(page.Panels, c.draw()...)
+			panels, err := c.draw()
+			if err != nil {
+				return nil, err
+			}
+			page.Panels = append(page.Panels, panels...)
 		case len(o.panels) > 0:
 			return nil, usageFault("--panels "+c.name, "there is "+c.why+" to draw", "leave it out")
 		}
@@ -288,13 +303,13 @@ func (p *prediction) keyNumbers() string {
 	s := p.summary
 	var said []string
 	for _, c := range s.Crossings {
-		said = append(said, fmt.Sprintf("%s to %s at %s, %s each", c.Low, c.High, hertz(c.Frequency), fixed(c.LevelDB, 1)+" dB"))
+		said = append(said, fmt.Sprintf("%s to %s at %s, %s each", c.Low, c.High, roughly(c.Frequency), fixed(c.LevelDB, 1)+" dB"))
 	}
 	if q := s.Sum; q != nil {
 		said = append(said, fmt.Sprintf("ripple %s dB from %s to %s", fixed(q.RippleDB, 1), hertz(q.Band[0]), hertz(q.Band[1])))
 	}
 	if !math.IsInf(s.MinImpedance, 0) {
-		said = append(said, fmt.Sprintf("lowest |Z| %s Ω at %s", figures(s.MinImpedance, 3), hertz(s.MinImpedanceAt)))
+		said = append(said, fmt.Sprintf("lowest |Z| %s Ω at %s", figures(s.MinImpedance, 3), roughly(s.MinImpedanceAt)))
 	}
 	return strings.ReplaceAll(strings.Join(said, "; "), "-", "−")
 }
@@ -304,4 +319,12 @@ func orUntitled(title string) string {
 		return "untitled"
 	}
 	return title
+}
+
+// roughly writes a frequency with three figures.
+func roughly(f float64) string {
+	if f >= 999.5 {
+		return figures(f/1000, 3) + " kHz"
+	}
+	return figures(f, 3) + " Hz"
 }

@@ -83,7 +83,7 @@ func runCompare(s *streams, o *predictOptions) error {
 		return err
 	}
 	if o.chart.path != "" {
-		if err := o.chart.draw([]*prediction{c.a, c.b}, &o.grid, o.against, o.design.path); err != nil {
+		if err := o.chart.draw(s, []*prediction{c.a, c.b}, &o.grid, o.against, o.design.path); err != nil {
 			return err
 		}
 	}
@@ -183,7 +183,11 @@ func (c *comparison) table() *table.Table {
 		three("SPL of the sum")
 	}
 	for _, w := range c.common() {
-		three("gain of " + w[0].Name)
+		if c.sums() {
+			columns = append(columns, table.Column{Group: "gain, B less A", Name: w[0].Name, Unit: "dB"})
+		} else {
+			three("gain of " + w[0].Name)
+		}
 	}
 	columns = append(columns, table.Column{Group: "load |Z|", Name: "A", Unit: "Ω"}, table.Column{Group: "load |Z|", Name: "B", Unit: "Ω"})
 	t := table.New(columns...)
@@ -194,7 +198,11 @@ func (c *comparison) table() *table.Table {
 			pair(sim.SPL(c.a.Sum[k]), sim.SPL(c.b.Sum[k]))
 		}
 		for _, w := range c.common() {
-			pair(sim.DB(w[0].H[k]), sim.DB(w[1].H[k]))
+			if a, b := sim.DB(w[0].H[k]), sim.DB(w[1].H[k]); c.sums() {
+				row = append(row, signed(b-a))
+			} else {
+				pair(a, b)
+			}
 		}
 		t.Row(append(row, ohms(sim.Magnitudes(c.a.Zin[k : k+1])[0]), ohms(sim.Magnitudes(c.b.Zin[k : k+1])[0]))...)
 	}

@@ -4,8 +4,6 @@ import (
 	"fmt"
 	"io"
 	"time"
-
-	"golang.org/x/term"
 )
 
 // A progress is one line on standard error that says how far a long job is. It is silent unless standard error
@@ -18,8 +16,7 @@ type progress struct {
 
 // newProgress makes a progress line that begins with label.
 func newProgress(s *streams, label string) *progress {
-	f, ok := s.err.(interface{ Fd() uintptr })
-	if !ok || !term.IsTerminal(int(f.Fd())) {
+	if _, ok := isTerminal(s.err); !ok {
 		return &progress{}
 	}
 	return &progress{w: s.err, label: label}
