@@ -87,7 +87,6 @@ func TestTableInTheTimeDomain(t *testing.T) {
 
 func TestFitNotes(t *testing.T) {
 	for src, want := range map[string]string{
-		"20 8 0\n200 8 0\n": `driver "woofer": there can be no sound files: w.zma: 2 row(s) are too few to fit an equivalent circuit; measure 20 or more over the audible range`,
 		// |Z| and angle of what is no driver: a tank cannot follow, whatever the fit.
 		"20 8 80\n40 80 -80\n80 8 80\n160 80 -80\n320 8 80\n640 80 -80\n1280 8 80\n": "; that is far for a driver: check the table",
 	} {

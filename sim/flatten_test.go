@@ -207,8 +207,8 @@ func TestNewErrors(t *testing.T) {
 	d := base()
 	d.Drivers[0].ImpedanceFile, d.Drivers[0].Resistance = "bad.zma", 0
 	for src, want := range map[string]string{
-		"20 8 0\n30 x 0": `driver "woofer": bad.zma:2: column 2 is "x", which is no number; give a number such as 6.25`,
-		"20 0 0":         `driver "woofer": bad.zma:1: the impedance is 0 ohm; give its magnitude in ohm, above 0`,
+		"20 8 0\n30 x 0":         `driver "woofer": bad.zma:2: column 2 is "x", which is no number; give a number such as 6.25`,
+		"20 0 0\n30 8 0\n40 8 0": `driver "woofer": bad.zma:1: the impedance is 0 ohm; give its magnitude in ohm, above 0`,
 	} {
 		if _, err := New(d, files(map[string]string{"bad.zma": src})); err == nil || err.Error() != want {
 			t.Errorf("got error %v, want %s", err, want)

@@ -247,7 +247,10 @@ func TestFitOfOtherTables(t *testing.T) {
 }
 
 func TestTooFewRowsForAFit(t *testing.T) {
-	z := mustImpedance(t, "10 8 0\n100 8 0\n")
+	z, err := NewImpedanceTable(&Table{Name: "w.zma", HasPhase: true, Rows: []Row{{Frequency: 10, Value: 8}, {Frequency: 100, Value: 8}}})
+	if err != nil {
+		t.Fatal(err)
+	}
 	const want = "w.zma: 2 row(s) are too few to fit an equivalent circuit; measure 20 or more over the audible range"
 	if f, err := z.Fit(); f != nil || err == nil || err.Error() != want {
 		t.Errorf("got %v and error %v, want error %s", f, err, want)

@@ -1,7 +1,6 @@
 package driver
 
 import (
-	"bytes"
 	"errors"
 	"fmt"
 	"io"
@@ -15,21 +14,23 @@ import (
 // MaxTableBytes is the size of the largest table that ReadTable takes. A 1/96-octave table is some 30 kB.
 const MaxTableBytes = 16 << 20
 
-// closest is the least relative distance of two frequencies that count as different.
-const closest = 1e-6
+const (
+	closest   = 1e-6 // the least relative distance of two frequencies that count as different
+	leastRows = 3
+)
 
 // A Row is one line of a table.
 type Row struct {
 	Frequency float64 // Hz, > 0
 	Value     float64 // the second column: Ω, or dB
 	PhaseDeg  float64 // the third column; 0 if there is none
-	Line      int     // of the file, from 1
+	Line      int     // of the file, from 1; of the first, where rows were averaged
 }
 
 // A Table is a measurement as it stands in a file, in rising order of frequency.
 type Table struct {
 	Name     string   // of the file, for messages
-	Rows     []Row    // one or more
+	Rows     []Row    // three or more
 	HasPhase bool     // every row has a third column
 	Notes    []string // what was passed over, in sentences that name the file and line
 }
@@ -51,11 +52,14 @@ func (e *TableError) Error() string {
 
 // ReadTable reads a table of two or three columns: frequency in Hz, a value, and the phase in degrees.
 //
-// Columns are parted by spaces, tabs, commas or semicolons; what follows the third is not looked at. Lines that
-// begin with a letter or with one of * # ; " ' ! % / [ are comments, as is any line without numbers before the
-// first row. Line ends may be LF, CR LF or CR; a byte-order mark is passed over. Numbers have a decimal point:
-// a decimal comma is refused, since 20,5 might as well be two columns. Rows are put in rising order; a row that
-// repeats a frequency, and one at 0 Hz, is passed over with a note.
+// The text may be UTF-8, UTF-16 or Latin-1, with a byte-order mark or without, and its lines end in LF, CR LF or CR.
+// Columns are parted by semicolons, else by commas, else by spaces and tabs; what follows the third is not looked at.
+// Numbers have a decimal point, or a decimal comma in all rows if commas do not part columns; where a comma could be
+// either, or part thousands, the table is refused. Lines that begin with a letter or with one of * # ; " ' ! % / [ are
+// comments, as is any line that is no row of numbers before the first row.
+//
+// Rows are put in rising order. Those that repeat a frequency are averaged, and a row at 0 Hz is passed over, with a
+// note. At least three rows must be left.
 //
 // The error is a *TableError, or wraps what r returned. name is used in messages only.
 func ReadTable(name string, r io.Reader) (*Table, error) {
@@ -72,13 +76,18 @@ func ReadTable(name string, r io.Reader) (*Table, error) {
 
 // A tableParser holds what has been read so far.
 type tableParser struct {
-	name    string
-	line    int
-	rows    []Row
-	phases  int // rows that have a third column
-	columns int // of the first row
-	bare    int // line of the first row that has none
-	dcRow   int // line of the first row at 0 Hz
+	name         string
+	line         int
+	decimalComma bool
+	rows         []Row
+	phases       int // rows that have a third column
+	columns      int // of the first row
+	bare         int // line of the first row that has no third one
+	dcRow        int // line of the first row at 0 Hz
+
+	title     error // of the first line before the rows that is a title or a bad row: what is bad about it
+	titleLine int
+	titleText string
 }
 
 func (p *tableParser) errorf(mend, format string, args ...any) error {
@@ -90,71 +99,95 @@ func (p *tableParser) file(src []byte) error {
 	if len(src) > MaxTableBytes {
 		return p.errorf("give a table of measured rows, which is far smaller", "the file is larger than %d MiB", MaxTableBytes>>20)
 	}
-	if bytes.HasPrefix(src, []byte{0xFF, 0xFE}) || bytes.HasPrefix(src, []byte{0xFE, 0xFF}) || bytes.IndexByte(src, 0) >= 0 {
+	text, ok := decode(src)
+	if !ok {
 		return p.errorf("save it as plain text (UTF-8 or ASCII)", "the file is not plain text")
 	}
-	src = bytes.TrimPrefix(src, []byte("\uFEFF"))
-	for len(src) > 0 {
-		p.line++
-		text := src
-		if i := bytes.IndexAny(src, "\r\n"); i < 0 {
-			src = nil
-		} else {
-			text = src[:i]
-			if src[i] == '\r' && i+1 < len(src) && src[i+1] == '\n' {
-				i++
-			}
-			src = src[i+1:]
+	if err := p.findCommas(text); err != nil {
+		return err
+	}
+	for no, line := range lines(text) {
+		p.line = no
+		if line == "" || strings.ContainsRune("*#;\"'!%/[", rune(line[0])) {
+			continue
 		}
-		if err := p.row(string(bytes.TrimSpace(text))); err != nil {
+		fields := p.split(line)
+		if p.isWords(line, fields) {
+			continue
+		}
+		err := p.row(fields)
+		if err != nil && len(p.rows) == 0 && p.dcRow == 0 && !isAllNumbers(line) && !p.areNumbers(fields) {
+			// A title that begins with a digit, such as "2 way box"; or else a slip in the first row.
+			if p.title == nil {
+				p.title, p.titleLine, p.titleText = err, no, line
+			}
+			continue
+		}
+		if err != nil {
 			return err
 		}
 	}
 	return nil
 }
 
-// isComment reports whether a line, trimmed and not empty, holds words rather than numbers.
-func isComment(line string) bool {
-	if strings.ContainsRune("*#;\"'!%/[", rune(line[0])) {
-		return true
+// split parts a line into fields.
+func (p *tableParser) split(line string) []string {
+	var parter string
+	switch {
+	case strings.Contains(line, ";"):
+		parter = ";"
+	case strings.Contains(line, ",") && !p.decimalComma:
+		parter = ","
+	default:
+		return strings.Fields(line)
 	}
+	fields := strings.Split(line, parter)
+	for i, f := range fields {
+		fields[i] = strings.TrimSpace(f)
+	}
+	if n := len(fields); fields[n-1] == "" {
+		fields = fields[:n-1]
+	}
+	return fields
+}
+
+// isWords reports whether a line is a comment because it begins with a letter. "NaN" and "Inf" do so too, but are
+// numbers of a kind; and what has as many columns as the rows before it, all numbers but the first, is a row with a slip,
+// such as "l00 8 0".
+func (p *tableParser) isWords(line string, fields []string) bool {
 	first, _ := utf8.DecodeRuneInString(line)
 	if !unicode.IsLetter(first) {
 		return false
 	}
-	// "NaN" and "Inf" begin with a letter but are a row, and a bad one.
-	field, _, _ := strings.Cut(strings.Map(separatorToSpace, line), " ")
-	_, err := strconv.ParseFloat(field, 64)
-	return err != nil
+	if p.areNumbers(fields[:1]) {
+		return false
+	}
+	return len(p.rows) == 0 || len(fields) != p.columns || !p.areNumbers(fields[1:])
 }
 
-func separatorToSpace(r rune) rune {
-	if r == ',' || r == ';' || r == '\t' {
-		return ' '
+// areNumbers reports whether all fields are numbers; NaN and Inf are.
+func (p *tableParser) areNumbers(fields []string) bool {
+	for _, f := range fields {
+		if _, err := p.number(f); err != nil {
+			return false
+		}
 	}
-	return r
+	return true
 }
 
-// row reads one line.
-func (p *tableParser) row(line string) error {
-	if line == "" || isComment(line) {
-		return nil
-	}
-	fields, err := p.split(line)
-	if err != nil {
-		return err
-	}
+// row reads one row.
+func (p *tableParser) row(fields []string) error {
 	var v [3]float64
 	n := min(len(fields), len(v))
 	for i, field := range fields[:n] {
-		v[i], err = number(field)
-		if err != nil {
-			if len(p.rows) == 0 && p.dcRow == 0 {
-				return nil // a title that begins with a digit, such as "2 way box"
-			}
+		var err error
+		v[i], err = p.number(field)
+		switch {
+		case field == "":
+			return p.errorf("give a number such as 6.25", "column %d is empty", i+1)
+		case err != nil:
 			return p.errorf("give a number such as 6.25", "column %d is %s, which is no number", i+1, quote(field))
-		}
-		if math.IsNaN(v[i]) || math.IsInf(v[i], 0) {
+		case math.IsNaN(v[i]) || math.IsInf(v[i], 0):
 			return p.errorf("leave the row out", "column %d is %s", i+1, quote(field))
 		}
 	}
@@ -183,46 +216,17 @@ func (p *tableParser) row(line string) error {
 	return nil
 }
 
-// split parts a line into fields, and refuses those in which a comma may be a decimal comma or may part
-// thousands.
-func (p *tableParser) split(line string) ([]string, error) {
-	fields := strings.FieldsFunc(line, func(r rune) bool {
-		return r == ',' || r == ';' || unicode.IsSpace(r)
-	})
-	commas := strings.Count(line, ",")
-	if commas == 0 {
-		return fields, nil
-	}
-	refused := p.errorf("write numbers with a decimal point and no thousands comma, 1020.5", "a comma stands inside a number, or looks as if it did")
-	inside := false // a comma between two digits, which columns may have too
-	for i := 1; i+1 < len(line); i++ {
-		inside = inside || line[i] == ',' && isDigit(line[i-1]) && isDigit(line[i+1])
-	}
-	points := strings.Contains(line, ".")
-	switch others := strings.ContainsFunc(line, func(r rune) bool { return r == ';' || unicode.IsSpace(r) }); {
-	case inside && others && (!points || commas != len(fields)-1):
-		// "20,5 6,1 -3", "20,5;6,1;-3", "1,020 6.1 -3"; but "20,6.1, -3" is columns.
-		return nil, refused
-	case !others && !points && len(fields) >= 4 && len(fields)%2 == 0:
-		// "20,5,6,1,-3,2": six columns, or three.
-		return nil, refused
-	case p.columns != 0 && len(fields) != p.columns:
-		// "1,020, 6.1, -3" after "980, 6.1, -3".
-		return nil, refused
-	}
-	return fields, nil
-}
-
-func isDigit(b byte) bool { return b >= '0' && b <= '9' }
-
 var errNotANumber = errors.New("not a number")
 
 // number reads a decimal number. It does not take the hexadecimal numbers and the underscores of Go.
-func number(field string) (float64, error) {
+func (p *tableParser) number(field string) (float64, error) {
 	if strings.ContainsAny(field, "xXpP_") {
 		return 0, errNotANumber
 	}
-	v, err := strconv.ParseFloat(field, 64)
+	if p.decimalComma {
+		field = strings.Replace(field, ",", ".", 1)
+	}
+	v, err := strconv.ParseFloat(strings.Replace(field, "\u2212", "-", 2), 64) // U+2212 is the typographer's minus sign
 	if err != nil && !errors.Is(err, strconv.ErrRange) {
 		return 0, errNotANumber
 	}
@@ -238,37 +242,75 @@ func quote(text string) string {
 	return strconv.Quote(text)
 }
 
-// table sorts the rows and drops those that repeat a frequency.
+// table sorts the rows and averages those that repeat a frequency.
 func (p *tableParser) table() (*Table, error) {
-	if len(p.rows) == 0 {
+	switch {
+	case len(p.rows) == 0 && p.title != nil:
+		return nil, p.title
+	case len(p.rows) == 0:
 		p.line = 0
 		return nil, p.errorf("give rows of a frequency in Hz, a value and a phase in degrees", "there are no rows of numbers in the file")
-	}
-	t := &Table{Name: p.name, HasPhase: p.bare == 0}
-	if p.phases > 0 && p.bare > 0 {
+	case p.phases > 0 && p.bare > 0:
 		p.line = p.bare
 		return nil, p.errorf("give a phase in every row or in none", "the row has no phase, and others have one")
+	}
+	t := &Table{Name: p.name, HasPhase: p.bare == 0}
+	if p.title != nil {
+		t.Notes = append(t.Notes, fmt.Sprintf("%s:%d: %s is no row of numbers and was taken for a title", p.name, p.titleLine, quote(p.titleText)))
 	}
 	if p.dcRow > 0 {
 		t.Notes = append(t.Notes, fmt.Sprintf("%s:%d: the row at 0 Hz was passed over", p.name, p.dcRow))
 	}
-	rising(p.rows)
-	t.Rows = p.rows[:1]
-	repeats, first := 0, 0
-	for _, r := range p.rows[1:] {
-		if last := t.Rows[len(t.Rows)-1]; r.Frequency-last.Frequency <= closest*last.Frequency {
-			if repeats == 0 {
-				first = r.Line
-			}
-			repeats++
-			continue
-		}
-		t.Rows = append(t.Rows, r)
+	last := p.rows[len(p.rows)-1].Line
+	if err := p.merge(t); err != nil {
+		return nil, err
 	}
-	if repeats > 0 {
-		t.Notes = append(t.Notes, fmt.Sprintf("%s:%d: %d row(s) repeat a frequency and were passed over", p.name, first, repeats))
+	if len(t.Rows) < leastRows {
+		p.line = last
+		return nil, p.errorf("give three or more; ten an octave make a good one", "the table ends after %d row(s) of different frequency", len(t.Rows))
 	}
 	return t, nil
+}
+
+// merge puts the rows into t in rising order, one for each frequency. Rows of the same frequency, as programs write that
+// round it, are averaged; the phases over the shorter way round, which must be clear.
+func (p *tableParser) merge(t *Table) error {
+	rising(p.rows)
+	repeats, first, most, at := 0, 0, 0.0, 0.0
+	for i := 0; i < len(p.rows); {
+		r, n := p.rows[i], 1
+		same := p.rows[i:]
+		for n < len(same) && same[n].Frequency-r.Frequency <= closest*r.Frequency {
+			n++
+		}
+		var value, turned float64 // sums of what the others are away from the first
+		for _, o := range same[1:n] {
+			d, angle := o.Value-r.Value, math.Remainder(o.PhaseDeg-r.PhaseDeg, 360)
+			if math.Abs(angle) > 90 {
+				p.line = o.Line
+				return p.errorf("leave one of them out", "the phase is %.0f degrees from that of another row at %s Hz", math.Abs(angle), hertz(r.Frequency))
+			}
+			if repeats++; repeats == 1 {
+				first = o.Line
+			}
+			if math.Abs(d) > most {
+				most, at = math.Abs(d), r.Frequency
+			}
+			value += d
+			turned += angle
+		}
+		r.Value += value / float64(n)
+		r.PhaseDeg += turned / float64(n)
+		t.Rows = append(t.Rows, r)
+		i += n
+	}
+	switch {
+	case repeats > 0 && most > 0:
+		t.Notes = append(t.Notes, fmt.Sprintf("%s:%d: %d row(s) repeat a frequency and were averaged; they differ by up to %.3g, at %s Hz", p.name, first, repeats, most, hertz(at)))
+	case repeats > 0:
+		t.Notes = append(t.Notes, fmt.Sprintf("%s:%d: %d row(s) repeat another and were passed over", p.name, first, repeats))
+	}
+	return nil
 }
 
 // columns returns the frequencies, values and phases of the rows.

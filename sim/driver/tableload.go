@@ -4,6 +4,7 @@ import (
 	"fmt"
 	"math"
 	"math/cmplx"
+	"slices"
 	"sync"
 )
 
@@ -27,28 +28,49 @@ func NewImpedanceTable(t *Table) (*ImpedanceTable, error) {
 	}
 	freqs, ohms, deg := t.columns()
 	lnMag := make([]float64, len(ohms))
-	active := 0
 	for i, z := range ohms {
 		if !(z > 0 && z < 1e9) {
 			return nil, &TableError{File: t.Name, Line: t.Rows[i].Line, What: fmt.Sprintf("the impedance is %g ohm", z), Mend: "give its magnitude in ohm, above 0"}
 		}
 		lnMag[i] = math.Log(z)
-		if active == 0 && math.Cos(deg[i]*math.Pi/180) < 0 {
-			active = t.Rows[i].Line
-		}
 	}
 	phase, doubtful := unwrap(deg)
 	z := &ImpedanceTable{
 		name: t.Name, freqs: freqs, lo: freqs[0], hi: freqs[len(freqs)-1],
 		ends:  [2]float64{ohms[0], ohms[len(ohms)-1]},
 		curve: newCurve(freqs, lnMag, phase, 1), // no passive impedance rises or falls faster for long than a coil's or a capacitor's
-		notes: append(append([]string(nil), t.Notes...), t.doubts(doubtful)...),
-	}
-	if active > 0 {
-		z.notes = append(z.notes, fmt.Sprintf("%s:%d: the impedance's angle is beyond 90 degrees, which no driver's is; check how it was measured", t.Name, active))
+		notes: slices.Concat(t.Notes, t.doubts(doubtful), t.active()),
 	}
 	z.fit = sync.OnceValues(func() (*Fit, error) { return FitImpedance(z, FitSettings{}) })
 	return z, nil
+}
+
+// active returns a note about the rows in which the resistance, the real part of the impedance, is negative: where they
+// begin and end, and the worst.
+func (t *Table) active() []string {
+	var first, last, worst Row
+	least, rows := 0.0, 0
+	for _, r := range t.Rows {
+		resistance := r.Value * math.Cos(r.PhaseDeg*math.Pi/180)
+		if resistance >= 0 {
+			continue
+		}
+		if rows++; rows == 1 {
+			first = r
+		}
+		last = r
+		if resistance < least {
+			least, worst = resistance, r
+		}
+	}
+	where := fmt.Sprintf("%d rows from %s to %s Hz, at worst", rows, hertz(first.Frequency), hertz(last.Frequency))
+	switch rows {
+	case 0:
+		return nil
+	case 1:
+		where = "one row,"
+	}
+	return []string{fmt.Sprintf("%s:%d: the real part of the impedance is negative in %s %.3g ohm at %s Hz, and no passive driver gives power; check how it was measured", t.Name, worst.Line, where, least, hertz(worst.Frequency))}
 }
 
 // Impedance returns the interpolated impedance at s = ±j2πf. At a real s it is a resistance, the magnitude in
