@@ -132,7 +132,7 @@ func predictAt(s *streams, d *xover.Design, sys *sim.System, freqs []float64) (*
 	if p.summary, err = sys.Summary([2]float64{}); err != nil {
 		return nil, err
 	}
-	for _, w := range slices.Concat(p.Response.Warnings, p.summary.Warnings) {
+	for _, w := range slices.Concat(lowHighPasses(d), p.Response.Warnings, p.summary.Warnings) {
 		p.warnOnce(s, w)
 	}
 	return p, nil

@@ -8,6 +8,7 @@ import (
 	"math/cmplx"
 	"os"
 	"path/filepath"
+	"slices"
 
 	"github.com/spf13/cobra"
 
@@ -40,7 +41,8 @@ and changed.
 Drivers are given from the lowest way to the highest, each as
   NAME=8ohm                      a resistance
   NAME=KEY:VALUE,KEY:VALUE,...   numbers of its data sheet: re, le, fs, qms, qes, vas,
-                                 sd, diameter, xmax, sensitivity
+                                 sd, diameter, xmax, sensitivity; and what it stands
+                                 in, closed:VOLUME or vented:VOLUME/TUNING
   NAME=FILE.zma,FILE.frd         tables of its impedance and response
 or a mixture. Without --load a way is sized for its driver's resistance or re; for a
 table, for the magnitude of the impedance at the crossover.`,
@@ -62,7 +64,7 @@ table, for the magnitude of the impedance at the crossover.`,
 	o.crossover.addTo(cmd)
 	f.StringArrayVar(&o.drivers, "driver", nil, "a driver, as in `tweeter=re:5.4ohm,fs:850Hz`; once for each way")
 	f.StringVar(&o.title, "title", "", "the design's `title`")
-	f.BoolVar(&o.compensate, "compensate", false, "add to each driver that has a re the network that makes it that resistance")
+	f.BoolVar(&o.compensate, "compensate", false, "add across each driver the network that makes it the resistance re, where that does good")
 	f.BoolVar(&o.noPad, "no-pad", false, "leave the levels of the drivers as they are")
 	f.StringVarP(&o.out, "out", "o", "", "`file` to write; standard output without it")
 	f.BoolVar(&o.force, "force", false, "replace the file if it is there")
@@ -86,6 +88,9 @@ func runStart(s *streams, o *startOptions) error {
 	if err != nil {
 		return err
 	}
+	for _, w := range plan.warnings {
+		s.warn(w)
+	}
 	text := plan.text()
 	if err := o.prove(s, text); err != nil {
 		return err
@@ -108,6 +113,9 @@ func (o *startOptions) plan() (*startPlan, error) {
 			return nil, err
 		}
 		o.placeTables(&d)
+		if slices.ContainsFunc(p.drivers, func(other startDriver) bool { return other.name == d.name }) {
+			return nil, usageFault("--driver", fmt.Sprintf("%q is given twice", d.name), "give every driver a name of its own")
+		}
 		p.drivers = append(p.drivers, d)
 	}
 	if len(o.crossover.load) == 0 {
@@ -184,13 +192,18 @@ func (o *startOptions) loadOf(d *startDriver, i int) (float64, error) {
 	return cmplx.Abs(z.Impedance(complex(0, 2*math.Pi*f))), nil
 }
 
-// prove reads what is to be written as any design is read. A fault in it is one of the names or values given.
+// prove reads what is to be written as any design is read. A fault in it is one of the names or values given, so
+// places in a file that is not there yet are left out.
 func (o *startOptions) prove(s *streams, text string) error {
 	d, warnings, err := xover.Parse("start", []byte(text))
-	if err != nil {
-		return err
+	if faults, ok := errors.AsType[xover.Errors](err); ok {
+		for _, f := range faults {
+			f.Pos = xover.Position{}
+		}
+		return faults
 	}
 	for _, w := range warnings {
+		w.Pos = xover.Position{}
 		s.warn(w.String())
 	}
 	if _, err := sim.New(d, tablesIn(o.dir())); err != nil {

@@ -8,6 +8,7 @@ import (
 	"strconv"
 	"strings"
 
+	"sixdown/xover"
 	"sixdown/xover/quantity"
 )
 
@@ -21,8 +22,9 @@ type startDriver struct {
 type driverValue struct {
 	key  string
 	text string  // as the file has it
-	si   float64 // 0 for a file
+	si   float64 // 0 for a file and a box
 	path string  // of a file, from the folder of the design file
+	box  xover.Box
 }
 
 // A driverKey is a key that --driver takes.
@@ -31,6 +33,12 @@ type driverKey struct {
 	unit quantity.Unit // of its value; None: a bare number
 	file bool          // it names a table, or, for impedance, a resistance
 }
+
+// The keys that say what box a driver stands in: closed:14l, vented:40l/32Hz.
+const (
+	closedKey = "closed"
+	ventedKey = "vented"
+)
 
 func driverKeys() []driverKey {
 	return []driverKey{
@@ -46,6 +54,8 @@ func driverKeys() []driverKey {
 		{name: "diameter", unit: quantity.Metre},
 		{name: "xmax", unit: quantity.Metre},
 		{name: "sensitivity", unit: quantity.Decibel},
+		{name: closedKey, unit: quantity.CubicMetre},
+		{name: ventedKey, unit: quantity.CubicMetre},
 	}
 }
 
@@ -54,6 +64,9 @@ func parseStartDriver(text string) (startDriver, error) {
 	name, list, ok := strings.Cut(text, "=")
 	if name = strings.TrimSpace(name); !ok || name == "" {
 		return startDriver{}, usageFault("--driver", fmt.Sprintf("%q names no driver and what it is", text), "write it as in --driver woofer=8ohm or --driver tweeter=re:5.4ohm,sensitivity:91dB")
+	}
+	if err := xover.CheckName(name); err != nil {
+		return startDriver{}, &fault{code: exitUsage, text: fmt.Sprintf("--driver %q: %s", name, err), err: err}
 	}
 	d := startDriver{name: name}
 	for item := range strings.SplitSeq(list, ",") {
@@ -114,11 +127,61 @@ func parseDriverValue(name, item string) (driverValue, error) {
 		}
 		return driverValue{key: key, text: number(v).csv(), si: v}, nil
 	}
-	v, err := quantity.ParseAs(value, keys[i].unit)
-	if err != nil {
-		return driverValue{}, fmt.Errorf("--driver %s: %s: %w", name, key, err)
+	if key == closedKey || key == ventedKey {
+		return parseBox(name, key, value)
 	}
-	return driverValue{key: key, text: tomlString(quantity.Format(v, keys[i].unit)), si: v}, nil
+	v, err := parseSheetValue(name, key, value, keys[i].unit)
+	return driverValue{key: key, text: tomlString(quantity.Format(v, keys[i].unit)), si: v}, err
+}
+
+// parseSheetValue reads a number of the data sheet. Levels alone may be negative.
+func parseSheetValue(name, key, value string, unit quantity.Unit) (float64, error) {
+	v, err := quantity.ParseAs(value, unit)
+	if err != nil {
+		return 0, fmt.Errorf("--driver %s: %s: %w", name, key, err)
+	}
+	if unit != quantity.Decibel && !(v > 0) {
+		return 0, usageFault("--driver "+name, fmt.Sprintf("%s is %s", key, quantity.Format(v, unit)), "give a positive value, or leave it out")
+	}
+	return v, nil
+}
+
+// parseBox reads the box of a driver: its volume, and for a vented one a stroke and what the vent is tuned to.
+func parseBox(name, key, value string) (driverValue, error) {
+	box := xover.Box{Kind: xover.ClosedBox}
+	volume, tuning, tuned := strings.Cut(value, "/")
+	if tuned != (key == ventedKey) {
+		return driverValue{}, usageFault("--driver "+name, fmt.Sprintf("%s is %q", key, value), "write closed:14l for a volume, or vented:40l/32Hz for a volume and what the vent is tuned to")
+	}
+	var err error
+	if box.Volume, err = parseSheetValue(name, key, strings.TrimSpace(volume), quantity.CubicMetre); err != nil {
+		return driverValue{}, err
+	}
+	text := fmt.Sprintf("{ kind = %q, volume = %s", key, tomlString(quantity.Format(box.Volume, quantity.CubicMetre)))
+	if tuned {
+		box.Kind = xover.VentedBox
+		if box.Tuning, err = parseSheetValue(name, key, strings.TrimSpace(tuning), quantity.Hertz); err != nil {
+			return driverValue{}, err
+		}
+		text += ", tuning = " + tomlString(quantity.Format(box.Tuning, quantity.Hertz))
+	}
+	return driverValue{key: "box", text: text + " }", box: box}, nil
+}
+
+// box is what the driver stands in; the zero Box: nothing is said.
+func (d *startDriver) box() xover.Box {
+	if v := d.value("box"); v != nil {
+		return v.box
+	}
+	return xover.Box{}
+}
+
+// number returns what is said of a key, in SI units; 0: nothing.
+func (d *startDriver) number(key string) float64 {
+	if v := d.value(key); v != nil {
+		return v.si
+	}
+	return 0
 }
 
 // isResistance tells a resistance, "5.6 ohm", from a file's name.

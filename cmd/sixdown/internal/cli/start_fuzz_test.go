@@ -13,6 +13,7 @@ func FuzzStartDriver(f *testing.F) {
 	for _, seed := range []string{
 		"woofer=8ohm", "tweeter=re:5.4ohm,le:0.04mH,fs:850Hz,qms:3.1,qes:1.2,sensitivity:91dB", "t=re:5ohm,diameter:26mm,sd:7cm2,xmax:0.5mm,vas:1l",
 		"a=", "=8ohm", "a=8", "a]\n[parts=8ohm", "w=none.zma,none.frd", "w=impedance:1.2.3", "q=qms:1e400", "µ=8Ω", "a=re:5ohm,", `C=C:\w.zma`,
+		"w=re:6ohm,vas:20l,fs:40Hz,qms:4,qes:0.4,closed:14l", "w=re:6ohm,vented:14l/40Hz", "my t=6ohm",
 	} {
 		f.Add(seed, "Title \"quoted\"\x7f")
 	}

@@ -16,6 +16,8 @@ type startPlan struct {
 	title   string
 	drivers []startDriver
 	ways    []startWay
+
+	warnings []string // a sentence each
 }
 
 // A startWay is a way of it.
@@ -25,7 +27,7 @@ type startWay struct {
 	stages   []stage // from the amplifier to the driver
 }
 
-// A stage is some steps of a way that serve one end.
+// A stage is some steps of a way that serve one end, or a remark without any.
 type stage struct {
 	what  string // a comment
 	steps []string
@@ -45,22 +47,34 @@ func (p *startPlan) fill(c *crossover, o *startOptions) error {
 	if c.midReversed != nil {
 		reversed = []bool{false, *c.midReversed, false}
 	}
-	pads := p.padsDB(c)
+	levels := p.levelsDB(c)
 	var namer ladder.Namer
 	for i, s := range c.sections {
 		w := startWay{section: s, reversed: reversed[i]}
 		w.add(&namer, fmt.Sprintf("the crossover, into %s", quantity.Round(s.load, quantity.Ohm, 3)), s.network)
-		if !o.noPad && pads[i] >= leastPadDB {
-			pad, err := ladder.LPad(s.load, pads[i])
+		d := &p.drivers[i]
+		switch {
+		case levels[i] <= -leastPadDB:
+			w.note(fmt.Sprintf("%s is %s quieter than %s here: choose a louder driver, or accept it", d.name, quantity.Round(-levels[i], quantity.Decibel, 3), p.drivers[0].name))
+		case levels[i] >= leastPadDB && !o.noPad:
+			pad, err := ladder.LPad(s.load, levels[i])
 			if err != nil {
-				return fmt.Errorf("--driver %s: %w", p.drivers[i].name, err)
+				return fmt.Errorf("--driver %s: %w", d.name, err)
 			}
-			w.add(&namer, fmt.Sprintf("a pad of %s, since this way is louder than the others; it gets hot", quantity.Round(pads[i], quantity.Decibel, 3)), pad.Network())
+			w.add(&namer, fmt.Sprintf("a pad of %s, since this way is louder than %s; it gets hot", quantity.Round(levels[i], quantity.Decibel, 3), c.sections[0].name), pad.Network())
+		}
+		highPass := 0.0
+		if i > 0 {
+			highPass = o.crossover.at[i-1]
 		}
 		if o.compensate {
-			if err := w.compensate(&namer, &p.drivers[i]); err != nil {
+			if err := w.compensate(&namer, d, highPass, i < len(o.crossover.at)); err != nil {
 				return err
 			}
+		}
+		if caution := lowHighPass(d.name, highPass, d.resonance()); caution != "" && i > 0 {
+			w.note("caution: " + caution)
+			p.warnings = append(p.warnings, fmt.Sprintf("way %q: %s", w.name, caution))
 		}
 		p.ways = append(p.ways, w)
 	}
@@ -73,50 +87,22 @@ func (w *startWay) add(namer *ladder.Namer, what string, n ladder.Network) {
 	w.stages = append(w.stages, stage{what, steps, parts})
 }
 
-// compensate adds the network that makes the driver a resistance, if enough is said of it.
-func (w *startWay) compensate(namer *ladder.Namer, d *startDriver) error {
-	si := func(key string) float64 {
-		if v := d.value(key); v != nil {
-			return v.si
-		}
-		return 0
-	}
-	re, le, fs, qms, qes := si("re"), si("le"), si("fs"), si("qms"), si("qes")
-	var n ladder.Network
-	var err error
-	switch resonant := fs != 0 && qms != 0 && qes != 0; {
-	case re == 0 || le == 0 && !resonant:
-		return nil
-	case le == 0:
-		n, err = ladder.Resonance(re, fs, qms, qes)
-	case !resonant:
-		n, err = ladder.VoiceCoil(re, le)
-	default:
-		n, err = ladder.Dual(re, le, fs, qms, qes)
-	}
-	if err != nil {
-		return fmt.Errorf("--driver %s: %w", d.name, err)
-	}
-	w.add(namer, fmt.Sprintf("across the driver, so that it shows %s", quantity.Round(re, quantity.Ohm, 3)), n)
-	return nil
-}
+// note appends a remark.
+func (w *startWay) note(what string) { w.stages = append(w.stages, stage{what: what}) }
 
-// padsDB returns by how much each way is louder than the quietest: its driver's sensitivity, if that of every
-// driver is known, and what an all-pass arrangement makes the mid too loud by.
-func (p *startPlan) padsDB(c *crossover) []float64 {
+// levelsDB returns by how much each way is louder than the lowest, which is never padded, a woofer wasting
+// most power in a pad: its driver's sensitivity, if that of every driver is known, and what an all-pass
+// arrangement makes the mid too loud by.
+func (p *startPlan) levelsDB(c *crossover) []float64 {
 	levels := make([]float64, len(p.drivers))
 	known := !slices.ContainsFunc(p.drivers, func(d startDriver) bool { return d.value("sensitivity") == nil || d.value("response") != nil })
 	for i, d := range p.drivers {
 		if known {
-			levels[i] = d.value("sensitivity").si
+			levels[i] = d.number("sensitivity") - p.drivers[0].number("sensitivity")
 		}
 		if i == 1 && c.midReversed != nil {
 			levels[i] += c.midExcessDB
 		}
-	}
-	least := slices.Min(levels)
-	for i := range levels {
-		levels[i] -= least
 	}
 	return levels
 }
@@ -144,7 +130,10 @@ height   = "0 mm"            # of the ear above its origin
 `)
 	for _, w := range p.ways {
 		for _, s := range w.stages {
-			fmt.Fprintf(&b, "\n# %s: %s\n", w.name, s.what)
+			b.WriteByte('\n')
+			for line := range strings.Lines(folded(w.name+": ", s.what)) {
+				b.WriteString("# " + line)
+			}
 			for _, part := range s.parts {
 				fmt.Fprintf(&b, "%s = %s\n", part.Name, tomlString(quantity.Format(fourFigures(part.Value), partUnit(part.Kind))))
 			}
