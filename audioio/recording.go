@@ -65,11 +65,6 @@ const ceiling = 0.8
 // equations are the network's differential equations, with the amplifier's terminals and then each way as
 // outputs: the order of the channels.
 func equations(sys *sim.System) (*circuit.StateSpace, error) {
-	for _, f := range sys.Fits() {
-		if f.Err != nil {
-			return nil, fmt.Errorf("render: driver %q: %w", f.Driver, f.Err)
-		}
-	}
 	outs := append([]circuit.Output{{From: circuit.Amp, To: circuit.Return}}, sys.Outputs()...)
 	ss, err := circuit.NewStateSpace(sys.Netlist(), outs)
 	if err != nil {

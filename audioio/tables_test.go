@@ -127,19 +127,3 @@ func TestSweepWithTables(t *testing.T) {
 		t.Errorf("worst %.5f dB and %.5f°, limits %g dB and %g°", v.WorstGain.GainErrorDB(), v.WorstPhase.PhaseErrorDeg(), v.LimitGainDB, v.LimitPhaseDeg)
 	}
 }
-
-// A table that no circuit can be fitted to is named.
-func TestNoFitNoSound(t *testing.T) {
-	d := &xover.Design{
-		Drivers: []xover.Driver{{Name: "woofer", ImpedanceFile: "w.zma"}},
-		Ways:    []xover.Way{{Name: "low", Driver: "woofer"}},
-	}
-	sys, err := sim.New(d, func(string) (io.ReadCloser, error) { return io.NopCloser(strings.NewReader("20 8 0\n30 8 0\n")), nil })
-	if err != nil {
-		t.Fatal(err)
-	}
-	const want = `render: driver "woofer": w.zma: 2 row(s) are too few to fit an equivalent circuit; measure 20 or more over the audible range`
-	if _, err := audioio.RenderTones(t.Context(), sys, []float64{1000}, &tape{}, audioio.Settings{}); err == nil || err.Error() != want {
-		t.Errorf("got %v, want %s", err, want)
-	}
-}

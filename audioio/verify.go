@@ -53,6 +53,7 @@ type Verification struct {
 	WorstPhase    *Point
 	WorstFitGain  *Point // the counted point where the fits' errors make most of a difference; nil without impedance tables
 	WorstFitPhase *Point
+	FitNotes      []string // what was fitted, and how near it is to its table
 	LimitGainDB   float64
 	LimitPhaseDeg float64
 	FloorDB       float64
@@ -113,6 +114,7 @@ func Verify(ctx context.Context, sys *sim.System, rec *Recording, r io.ReadSeeke
 	v.judge()
 	if tables != p.sweep {
 		v.judgeFits()
+		v.FitNotes = sys.FitNotes()
 	}
 	if !v.Pass {
 		v.Suspects, err = p.suspects(sys, v.Points)

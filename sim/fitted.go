@@ -2,6 +2,7 @@ package sim
 
 import (
 	"fmt"
+	"math"
 
 	"sixdown/sim/circuit"
 	"sixdown/sim/driver"
@@ -11,15 +12,14 @@ import (
 type DriverFit struct {
 	Driver string
 	File   string
-	Fit    *driver.Fit // nil if Err is not
-	Err    error       // the table cannot be fitted
+	Fit    *driver.Fit
 }
 
 // A fitter is a load that is known by measurement.
 type fitter interface {
 	driver.Load
 	Name() string
-	Fit() (*driver.Fit, error)
+	Fit() *driver.Fit
 }
 
 // Fits returns the fit of each driver with an impedance table, in the order of the ways. The first call takes the
@@ -33,9 +33,7 @@ func (s *System) Fits() []DriverFit {
 			continue
 		}
 		seen[w.speaker] = true
-		f := DriverFit{Driver: w.speaker.name, File: t.Name()}
-		f.Fit, f.Err = t.Fit()
-		fits = append(fits, f)
+		fits = append(fits, DriverFit{w.speaker.name, t.Name(), t.Fit()})
 	}
 	return fits
 }
@@ -48,12 +46,8 @@ const coarseFit = 10
 func (s *System) FitNotes() []string {
 	var notes []string
 	for _, f := range s.Fits() {
-		if f.Err != nil {
-			notes = append(notes, fmt.Sprintf("driver %q: there can be no sound files: %v", f.Driver, f.Err))
-			continue
-		}
 		note := fmt.Sprintf("driver %q: in sound files its impedance is an equivalent circuit, within %.2g %% of %s (worst %.2g %% at %s)",
-			f.Driver, f.Fit.RMSPercent, f.File, f.Fit.WorstPercent, hertz(f.Fit.WorstAt))
+			f.Driver, math.Max(f.Fit.RMSPercent, 0.01), f.File, math.Max(f.Fit.WorstPercent, 0.01), hertz(f.Fit.WorstAt))
 		if f.Fit.WorstPercent > coarseFit {
 			note += "; that is far for a driver: check the table"
 		}
@@ -68,9 +62,7 @@ func (s *System) FittedNetlist() *circuit.Netlist {
 	n := s.Netlist()
 	for _, w := range s.ways {
 		if t, ok := w.speaker.load.(fitter); ok {
-			if f, err := t.Fit(); err == nil {
-				n.Branches[w.branch].Port = port{f}
-			}
+			n.Branches[w.branch].Port = port{t.Fit()}
 		}
 	}
 	return n

@@ -1,7 +1,6 @@
 package driver
 
 import (
-	"fmt"
 	"math"
 	"math/cmplx"
 
@@ -61,9 +60,6 @@ type FitSettings struct {
 	Coil Coil // AutoCoil: whichever the data speak for
 }
 
-// fewestRows is what a fit needs.
-const fewestRows = 3
-
 // FitImpedance fits an equivalent circuit to the rows of an impedance table.
 //
 // Start values come from the curve; then a damped least-squares search with exact derivatives brings the
@@ -73,16 +69,14 @@ const fewestRows = 3
 // "On the Theoretical Specification and Sampling Properties of Autocorrelated Time-Series", Suppl. J. Royal
 // Statist. Soc. 8(1), 27–41, 1946).
 //
-// The error is a *TableError: the table has too few rows.
-func FitImpedance(t *ImpedanceTable, set FitSettings) (*Fit, error) {
-	if len(t.freqs) < fewestRows {
-		return nil, &TableError{File: t.name, What: fmt.Sprintf("%d row(s) are too few to fit an equivalent circuit", len(t.freqs)), Mend: "measure 20 or more over the audible range"}
-	}
+// There is always a fit; from rows that are few, or of what is no driver, it is a poor one, as its errors say. 500
+// rows take some tens of milliseconds.
+func FitImpedance(t *ImpedanceTable, set FitSettings) *Fit {
 	fine := newSearch(t.freqs, t.Impedance)
 	best := fine.fit(fine.coarse().choose(set.Coil).model, 2*mostSteps)
 	f := fine.result(best)
 	f.judge(t)
-	return f, nil
+	return f
 }
 
 // Tables finer than this are thinned by means over as narrow bands: half of it is less than a tenth of the
@@ -134,6 +128,10 @@ func (s *search) weigh() {
 	for i := range s.points {
 		s.ohm = math.Min(s.ohm, cmplx.Abs(s.points[i].z))
 	}
+	if n == 1 {
+		s.points[0].weight = 1
+		return
+	}
 	mean := math.Log(s.band[1]/s.band[0]) / float64(n-1)
 	total := 0.0
 	for i := range s.points {
@@ -158,7 +156,11 @@ const (
 // choose grows a model: the body first, then the coil, then one resonance after another as long as the
 // criterion asks for it. The second resonance is tried as a vented box's too.
 func (s *search) choose(coil Coil) fitted {
-	best := s.fit(s.first(s.humps()), mostSteps)
+	m := s.first(s.humps())
+	if !s.affords(m) {
+		m = &model{coil: NoCoil, p: []float64{math.Log(s.ohm)}}
+	}
+	best := s.fit(m, mostSteps)
 	best = s.chooseCoil(best, coil)
 	for range 1 + mostExtras {
 		next, ok := s.grow(best, coil)
@@ -313,11 +315,13 @@ func (f *Fit) judge(t *ImpedanceTable) {
 	for i, hz := range t.freqs {
 		s := complex(0, 2*math.Pi*hz)
 		miss := 100 * cmplx.Abs(f.Impedance(s)/t.Impedance(s)-1)
-		a, b := max(i-1, 0), min(i+1, len(t.freqs)-1)
-		share := math.Log(t.freqs[b] / t.freqs[a])
+		share := 1.0
+		if last := len(t.freqs) - 1; last > 0 {
+			share = math.Log(t.freqs[min(i+1, last)] / t.freqs[max(i-1, 0)])
+		}
 		sum += share * miss * miss
 		span += share
-		if miss > f.WorstPercent {
+		if i == 0 || miss > f.WorstPercent {
 			f.WorstPercent, f.WorstAt = miss, hz
 		}
 	}

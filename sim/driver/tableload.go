@@ -17,7 +17,7 @@ type ImpedanceTable struct {
 	ends   [2]float64
 	curve  curve
 	notes  []string
-	fit    func() (*Fit, error)
+	fit    func() *Fit
 }
 
 // NewImpedanceTable makes a load of a table with a phase in every row and values in Ω, > 0 and below 1 GΩ.
@@ -41,7 +41,7 @@ func NewImpedanceTable(t *Table) (*ImpedanceTable, error) {
 		curve: newCurve(freqs, lnMag, phase, 1), // no passive impedance rises or falls faster for long than a coil's or a capacitor's
 		notes: slices.Concat(t.Notes, t.doubts(doubtful), t.active()),
 	}
-	z.fit = sync.OnceValues(func() (*Fit, error) { return FitImpedance(z, FitSettings{}) })
+	z.fit = sync.OnceValue(func() *Fit { return FitImpedance(z, FitSettings{}) })
 	return z, nil
 }
 
@@ -96,16 +96,10 @@ func (z *ImpedanceTable) Impedance(s complex128) complex128 {
 
 // Fit returns the equivalent circuit that stands for the table in the time domain, as FitImpedance makes it. It is
 // fitted at the first call; all goroutines get the same.
-func (z *ImpedanceTable) Fit() (*Fit, error) { return z.fit() }
+func (z *ImpedanceTable) Fit() *Fit { return z.fit() }
 
-// Elements returns those of Fit; nil if the table has too few rows for one.
-func (z *ImpedanceTable) Elements() []Element {
-	f, err := z.Fit()
-	if err != nil {
-		return nil
-	}
-	return f.Elements()
-}
+// Elements returns those of Fit.
+func (z *ImpedanceTable) Elements() []Element { return z.Fit().Elements() }
 
 // Range returns the frequencies in Hz of the first and the last row; beyond them the impedance is invented.
 func (z *ImpedanceTable) Range() (lo, hi float64) { return z.lo, z.hi }

@@ -9,13 +9,14 @@ import (
 // The JSON document of predict. Keys say units; lists are as long as frequency_hz, or null.
 type (
 	predictDocument struct {
-		Title       string          `json:"title"`
-		FrequencyHz []number        `json:"frequency_hz"`
-		Ways        []wayDocument   `json:"ways"`
-		Sum         sumDocument     `json:"sum"`
-		Input       inputDocument   `json:"input"`
-		Summary     summaryDocument `json:"summary"`
-		Warnings    []string        `json:"warnings"`
+		Title       string           `json:"title"`
+		FrequencyHz []number         `json:"frequency_hz"`
+		Ways        []wayDocument    `json:"ways"`
+		Sum         sumDocument      `json:"sum"`
+		Input       inputDocument    `json:"input"`
+		Drivers     []driverDocument `json:"drivers"` // those with impedance tables
+		Summary     summaryDocument  `json:"summary"`
+		Warnings    []string         `json:"warnings"`
 	}
 	wayDocument struct {
 		Name        string   `json:"name"`
@@ -81,6 +82,7 @@ func (p *prediction) document() predictDocument {
 			PhaseDeg:     phases(p.Zin),
 			EPDROhm:      numbers(sim.EPDRs(p.Zin)),
 		},
+		Drivers:  driverDocuments(p.system.Fits()),
 		Summary:  summarize(p.summary),
 		Warnings: append([]string{}, p.warnings...), // [] and not null where there are none
 	}

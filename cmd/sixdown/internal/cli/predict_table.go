@@ -127,6 +127,7 @@ func (p *prediction) summaryText() string {
 		}
 		fmt.Fprintf(&b, "output    in third-octaves from %s at %s to %s at %s\n", decibels(t.GainDB[low]), hertz(t.Freqs[low]), decibels(t.GainDB[high]), hertz(t.Freqs[high]))
 	}
+	b.WriteString(fitsText(p.system.Fits()))
 	fmt.Fprintf(&b, "load      lowest |Z| %s Ω at %s", ohms(s.MinImpedance), hertz(s.MinImpedanceAt))
 	if s.Tone == nil {
 		fmt.Fprintf(&b, "; lowest EPDR %s Ω at %s", ohms(s.MinEPDR), hertz(s.MinEPDRAt))

@@ -129,9 +129,10 @@ func runRender(ctx context.Context, s *streams, o *renderOptions) error {
 			Schedule string   `json:"schedule"`
 			Cautions []string `json:"cautions"`
 			*audioio.Recording
-		}{filepath.Join(o.out, soundFile), filepath.Join(o.out, scheduleFile), caution.Sound(), rec})
+			Notes []string `json:"notes"`
+		}{filepath.Join(o.out, soundFile), filepath.Join(o.out, scheduleFile), caution.Sound(), rec, append([]string{}, sys.FitNotes()...)})
 	}
-	return s.answer(renderText(rec, o.out) + "\n" + caution.Text(caution.Sound()))
+	return s.answer(renderText(rec, o.out) + noteLines(sys.FitNotes()) + "\n" + caution.Text(caution.Sound()))
 }
 
 // renderText says what was written.

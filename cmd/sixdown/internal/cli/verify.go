@@ -33,6 +33,8 @@ func newVerifyCmd(s *streams) *cobra.Command {
 		Short: "Measure a rendering and hold it against the prediction",
 		Long: `Verify reads the WAV file that render wrote, measures every way against channel 1,
 and compares level and phase with the prediction for the design as it stands now.
+Where a driver is known by an impedance table, sound files are of a circuit fitted
+to it, and so is this prediction; how much that changes is said.
 Without --from it renders tones first, into a folder that it removes again.
 
 Points count where the way is predicted above -60 dB (tones) or -50 dB (sweep,
@@ -141,6 +143,8 @@ type pointAnswer struct {
 	MeasuredGainDB    number `json:"measured_gain_db"`
 	PredictedPhaseDeg number `json:"predicted_phase_deg"`
 	MeasuredPhaseDeg  number `json:"measured_phase_deg"`
+	FitGainDB         number `json:"fit_gain_db"` // what the circuits fitted to impedance tables change of predicted
+	FitPhaseDeg       number `json:"fit_phase_deg"`
 	Counted           bool   `json:"counted"`
 }
 
@@ -173,7 +177,8 @@ type verificationAnswer struct {
 
 func pointOf(p *audioio.Point) pointAnswer {
 	return pointAnswer{p.Way, number(p.Hz), number(sim.DB(p.Predicted)), number(sim.DB(p.Measured)),
-		number(sim.PhaseDeg(p.Predicted)), number(sim.PhaseDeg(p.Measured)), p.Counted}
+		number(sim.PhaseDeg(p.Predicted)), number(sim.PhaseDeg(p.Measured)),
+		number(p.FitGainDB()), number(p.FitPhaseDeg()), p.Counted}
 }
 
 func verifyAnswer(v *audioio.Verification) verificationAnswer {
@@ -199,11 +204,11 @@ func verifyAnswer(v *audioio.Verification) verificationAnswer {
 }
 
 func verifyRecords(v *audioio.Verification) [][]string {
-	rows := [][]string{{"way", "frequency_hz", "predicted_gain_db", "measured_gain_db", "predicted_phase_deg", "measured_phase_deg", "counted"}}
+	rows := [][]string{{"way", "frequency_hz", "predicted_gain_db", "measured_gain_db", "predicted_phase_deg", "measured_phase_deg", "fit_gain_db", "fit_phase_deg", "counted"}}
 	for i := range v.Points {
 		p := pointOf(&v.Points[i])
 		rows = append(rows, []string{p.Way, p.FrequencyHz.csv(), p.PredictedGainDB.csv(), p.MeasuredGainDB.csv(),
-			p.PredictedPhaseDeg.csv(), p.MeasuredPhaseDeg.csv(), fmt.Sprint(p.Counted)})
+			p.PredictedPhaseDeg.csv(), p.MeasuredPhaseDeg.csv(), p.FitGainDB.csv(), p.FitPhaseDeg.csv(), fmt.Sprint(p.Counted)})
 	}
 	return rows
 }
@@ -238,7 +243,7 @@ func pointsTable(points []audioio.Point) *table.Table {
 	step := (len(points) + longTable - 1) / longTable
 	for i := 0; i < len(points); i += step {
 		p := &points[i]
-		row := []string{fmt.Sprintf("%.5g", p.Hz), fixed(sim.DB(p.Predicted), 3), "", angle(p.Predicted), "", "quiet", ""}
+		row := []string{fmt.Sprintf("%.5g", p.Hz), fixed(sim.DB(p.Fitted), 3), "", angle(p.Fitted), "", "quiet", ""}
 		if p.Counted {
 			row = []string{row[0], row[1], fixed(sim.DB(p.Measured), 3), row[3], angle(p.Measured),
 				fixed(p.GainErrorDB(), 5), fixed(p.PhaseErrorDeg(), 5)}
@@ -264,6 +269,11 @@ func verdict(v *audioio.Verification) string {
 	}
 	fmt.Fprintf(&b, "worst level  %9s dB   %s at %s   limit %.4g dB\n", fixed(v.WorstGain.GainErrorDB(), 5), v.WorstGain.Way, quantity.Round(v.WorstGain.Hz, quantity.Hertz, 4), v.LimitGainDB)
 	fmt.Fprintf(&b, "worst phase  %9s °    %s at %s   limit %.4g°\n", fixed(v.WorstPhase.PhaseErrorDeg(), 5), v.WorstPhase.Way, quantity.Round(v.WorstPhase.Hz, quantity.Hertz, 4), v.LimitPhaseDeg)
+	if p, q := v.WorstFitGain, v.WorstFitPhase; p != nil {
+		b.WriteString(noteLines(v.FitNotes))
+		b.WriteString(folded("  ", fmt.Sprintf("predicted is with these circuits; they change the prediction by at most %s dB (%s at %s) and %s° (%s at %s)",
+			fixed(p.FitGainDB(), 4), p.Way, quantity.Round(p.Hz, quantity.Hertz, 4), fixed(q.FitPhaseDeg(), 4), q.Way, quantity.Round(q.Hz, quantity.Hertz, 4))))
+	}
 	if v.Pass {
 		b.WriteString("PASSES: the recording says what the prediction says\n")
 		return b.String()

@@ -1,0 +1,123 @@
+package cli
+
+import (
+	"fmt"
+	"math"
+	"strconv"
+	"strings"
+
+	"sixdown/sim"
+	"sixdown/sim/driver"
+)
+
+// fitsText says, for each driver with an impedance table, what was found in it, a few lines each.
+func fitsText(fits []sim.DriverFit) string {
+	var b strings.Builder
+	for _, d := range fits {
+		f := d.Fit
+		text := d.Driver + ": Re " + estimate(f.Re, " Ω")
+		if f.Fs.Value > 0 {
+			text += ", fs " + estimate(f.Fs, " Hz") + ", Qms " + estimate(f.Qms, "") + ", Qes " + estimate(f.Qes, "") + ", Qts " + estimate(f.Qts, "")
+		}
+		b.WriteString(folded("fit       ", text))
+		if v := f.Box; v != nil {
+			b.WriteString("          vented: fb " + estimate(v.Fb, " Hz") + ", Vas/Vb " + estimate(v.Alpha, "") + ", QL " + estimate(v.QL, "") + "\n")
+		}
+		fmt.Fprintf(&b, "          within %s %% of %s, worst %s %% at %s\n", percent(f.RMSPercent), d.File, percent(f.WorstPercent), hertz(f.WorstAt))
+	}
+	return b.String()
+}
+
+// percent writes a fit's error; it is not worth telling how far below a hundredth it is.
+func percent(v float64) string { return figures(math.Max(v, 0.01), 2) }
+
+// estimate writes a value and its standard deviation to one figure of the latter, but to no more than four of the
+// value: "5.62 ± 0.01 Ω". What the four figures hide is left out.
+func estimate(e driver.Estimate, unit string) string {
+	if !(e.Value > 0) || math.IsInf(e.Value, 0) {
+		return none
+	}
+	finest := 3 - int(math.Floor(math.Log10(e.Value))) // decimals of four figures
+	decimals := finest
+	if e.Sigma > 0 {
+		decimals = min(finest, -int(math.Floor(math.Log10(e.Sigma))))
+	}
+	decimals = max(decimals, 0)
+	value := fixed(e.Value, decimals)
+	sigma := strconv.FormatFloat(e.Sigma, 'f', decimals, 64)
+	if strings.Trim(sigma, "0.") == "" {
+		return value + unit
+	}
+	return value + " ± " + sigma + unit
+}
+
+// The JSON of a driver's fit.
+type (
+	driverDocument struct {
+		Name              string            `json:"name"`
+		Impedance         string            `json:"impedance"` // the file
+		Re                estimateDocument  `json:"re_ohm"`
+		Fs                *estimateDocument `json:"fs_hz"` // null, as are the Qs, if no resonance shows
+		Qms               *estimateDocument `json:"qms"`
+		Qes               *estimateDocument `json:"qes"`
+		Qts               *estimateDocument `json:"qts"`
+		Box               *boxDocument      `json:"vented_box"`
+		Elements          []elementDocument `json:"elements"`
+		RMSErrorPercent   number            `json:"rms_error_percent"`
+		WorstErrorPercent number            `json:"worst_error_percent"`
+		WorstAtHz         number            `json:"worst_at_hz"`
+	}
+	estimateDocument struct {
+		Value number `json:"value"`
+		Sigma number `json:"sigma"`
+	}
+	boxDocument struct {
+		Fb    estimateDocument `json:"fb_hz"`
+		Alpha estimateDocument `json:"vas_over_vb"`
+		QL    estimateDocument `json:"ql"`
+	}
+	elementDocument struct {
+		Name  string `json:"name"`
+		Kind  string `json:"kind"` // R, L or C; the value is in ohm, henry or farad
+		From  int    `json:"from"` // node 1 is the plus terminal, node 0 the minus
+		To    int    `json:"to"`
+		Value number `json:"value"`
+	}
+)
+
+// driverDocuments returns the fits as JSON has them; [] where there are none.
+func driverDocuments(fits []sim.DriverFit) []driverDocument {
+	docs := []driverDocument{}
+	for _, d := range fits {
+		f := d.Fit
+		doc := driverDocument{
+			Name: d.Driver, Impedance: d.File, Re: estimated(f.Re),
+			RMSErrorPercent: number(f.RMSPercent), WorstErrorPercent: number(f.WorstPercent), WorstAtHz: number(f.WorstAt),
+		}
+		if f.Fs.Value > 0 {
+			fs, qms, qes, qts := estimated(f.Fs), estimated(f.Qms), estimated(f.Qes), estimated(f.Qts)
+			doc.Fs, doc.Qms, doc.Qes, doc.Qts = &fs, &qms, &qes, &qts
+		}
+		if v := f.Box; v != nil {
+			doc.Box = &boxDocument{estimated(v.Fb), estimated(v.Alpha), estimated(v.QL)}
+		}
+		for _, e := range f.Elements() {
+			doc.Elements = append(doc.Elements, elementDocument{e.Name, [...]string{"R", "L", "C"}[e.Kind], e.From, e.To, number(e.Value)})
+		}
+		docs = append(docs, doc)
+	}
+	return docs
+}
+
+func estimated(e driver.Estimate) estimateDocument {
+	return estimateDocument{number(e.Value), number(e.Sigma)}
+}
+
+// noteLines writes sentences a line or more each.
+func noteLines(notes []string) string {
+	var b strings.Builder
+	for _, n := range notes {
+		b.WriteString(folded("  ", n))
+	}
+	return b.String()
+}
