@@ -59,6 +59,9 @@ func RenderBroadband(ctx context.Context, sys *sim.System, in Input, w io.WriteS
 	if err != nil {
 		return nil, err
 	}
+	if err := out.Admit(int64(rec.LengthSamples)); err != nil {
+		return nil, err
+	}
 	p := pipe{model: model, src: in.Source, scale: in.Volts / rec.VoltsPerFullScale, total: rec.LengthSamples, set: &set}
 	if err := p.run(ctx, out, format.NumChannels); err != nil {
 		return nil, err
@@ -143,10 +146,13 @@ func (p *pipe) read(ctx context.Context, b belt) error {
 		for n < block && !ended {
 			k, err := p.src.ReadSamples(in[n:])
 			n += k
+			if k == 0 && err == nil {
+				err = io.ErrNoProgress
+			}
 			if errors.Is(err, io.EOF) {
 				ended = true
 			} else if err != nil {
-				return fmt.Errorf("render: %w", err)
+				return fmt.Errorf("render: reading the signal: %w", err)
 			}
 		}
 		for i := range in[:n] {

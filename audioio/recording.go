@@ -37,12 +37,11 @@ type Recording struct {
 	FitDeg float64 `json:"fit_error_deg"`
 }
 
-// Settings of a rendering. The zero value is good but for Rate.
+// Settings of a rendering. The zero value is good.
 type Settings struct {
-	Rate     int                               // Hz, of signals that are made; 0: 48000
-	Wav      wavfile.Settings                  // zero: 24-bit PCM
-	Progress func(done, total int)             // samples; nil: nobody asks
-	Signal   func(signal.Source) signal.Source // for tests: what goes in, changed; nil: as it is
+	Rate     int                   // Hz, of tones; 0: 48000
+	Wav      wavfile.Settings      // zero: 24-bit PCM
+	Progress func(done, total int) // called now and then; nil: nobody asks
 }
 
 func (s *Settings) rate() int {
@@ -85,5 +84,5 @@ func settleSeconds(ss *circuit.StateSpace) float64 {
 	return math.Min(settleTimes*ss.SlowestTime(), settleMost)
 }
 
-// peakVolts is the peak of a sine at the design's drive level.
-func peakVolts(sys *sim.System) float64 { return sys.Level() * math.Sqrt2 }
+// PeakVolts is the peak in V of a sine at the design's drive level.
+func PeakVolts(sys *sim.System) float64 { return sys.Level() * math.Sqrt2 }

@@ -4,7 +4,7 @@ import (
 	"context"
 	"fmt"
 	"io"
-	"math/cmplx"
+	"math"
 
 	"github.com/go-audio/audio"
 
@@ -12,6 +12,7 @@ import (
 	"sixdown/audioio/signal"
 	"sixdown/audioio/wavfile"
 	"sixdown/sim"
+	"sixdown/sim/circuit"
 )
 
 // block is how many frames are rendered or read at a time.
@@ -42,62 +43,95 @@ func RenderTones(ctx context.Context, sys *sim.System, freqs []float64, w io.Wri
 		TailSeconds:    0.1,
 		MeasureSeconds: 0.25,
 	}
-	// A tone's gain does not depend on its amplitude, so the plan is made once for the frequencies and the
-	// steppers, and again with the amplitude that just fits.
+	rec := &Recording{Title: sys.Title(), Signal: Tones, Ways: sys.Names(), Bits: set.bits()}
+	plan.VoltsPerFullScale = PeakVolts(sys) / plan.Peak
 	sched, err := signal.NewSchedule(below, rate, plan)
 	if err != nil {
 		return nil, err
 	}
-	steppers := make([]*discrete.Trapezoid, len(sched.Tones))
-	loudest := 1.0
-	gains := make([]complex128, ss.Outputs())
-	for i, t := range sched.Tones {
-		if steppers[i], err = discrete.NewTrapezoid(ss, float64(rate), t.FrequencyHz); err != nil {
-			return nil, err
-		}
-		steppers[i].Gain(gains, t.FrequencyHz)
-		for _, g := range gains {
-			loudest = max(loudest, cmplx.Abs(g))
-		}
+	rec.Schedule = *sched
+	out, err := wavfile.NewWriter(w, audio.Format{NumChannels: 1 + len(rec.Ways), SampleRate: rate}, set.Wav)
+	if err != nil {
+		return nil, err
 	}
-	plan.Peak = ceiling / loudest
-	plan.VoltsPerFullScale = peakVolts(sys) / plan.Peak
+	if err := out.Admit(int64(rec.LengthSamples)); err != nil {
+		return nil, err
+	}
+	p := tonePlayer{rec: rec, set: &set, total: 2 * rec.LengthSamples}
+	if p.steppers, err = steppers(ss, rec); err != nil {
+		return nil, err
+	}
+	// The first pass finds how loud it gets, where a resonance builds up too; the network is linear, so that the
+	// second is as much quieter or louder as its tones are.
+	loudest := 0.0
+	if err := p.play(ctx, func(part [][]float64) error {
+		for _, ch := range part {
+			for _, v := range ch {
+				loudest = max(loudest, math.Abs(v))
+			}
+		}
+		return nil
+	}); err != nil {
+		return nil, err
+	}
+	plan.Peak *= ceiling / max(loudest, ceiling)
+	plan.VoltsPerFullScale = PeakVolts(sys) / plan.Peak
 	if sched, err = signal.NewSchedule(below, rate, plan); err != nil {
 		return nil, err
 	}
-	rec := &Recording{Title: sys.Title(), Signal: Tones, Ways: sys.Names(), Bits: set.bits(), Schedule: *sched}
-	return rec, playTones(ctx, rec, steppers, w, set)
+	rec.Schedule = *sched
+	if err := p.play(ctx, out.WriteChannels); err != nil {
+		return nil, err
+	}
+	return rec, finish(out)
 }
 
-// playTones steps the network through the schedule. At a tone's end the input is silent, and the state passes
-// to the next tone's stepper as it stands.
-func playTones(ctx context.Context, rec *Recording, steppers []*discrete.Trapezoid, w io.WriteSeeker, set Settings) error {
+// steppers makes a stepper for each tone of the schedule.
+func steppers(ss *circuit.StateSpace, rec *Recording) ([]*discrete.Trapezoid, error) {
+	all := make([]*discrete.Trapezoid, len(rec.Tones))
+	for i, t := range rec.Tones {
+		var err error
+		if all[i], err = discrete.NewTrapezoid(ss, float64(rec.Rate), t.FrequencyHz); err != nil {
+			return nil, err
+		}
+	}
+	return all, nil
+}
+
+// A tonePlayer steps the network through a schedule.
+type tonePlayer struct {
+	rec      *Recording
+	steppers []*discrete.Trapezoid
+	set      *Settings
+	done     int // samples, of all passes
+	total    int
+}
+
+// play makes one pass from rest and hands out the channels block by block. At a tone's end the input is silent, and
+// the state passes to the next tone's stepper as it stands.
+func (p *tonePlayer) play(ctx context.Context, take func(part [][]float64) error) error {
+	rec := p.rec
 	src, err := signal.NewTones(&rec.Schedule)
 	if err != nil {
 		return err
 	}
-	channels := 1 + len(rec.Ways)
-	out, err := wavfile.NewWriter(w, audio.Format{NumChannels: channels, SampleRate: rec.Rate}, set.Wav)
-	if err != nil {
-		return err
-	}
 	in := make([]float64, block)
-	whole := grid(channels, block)
-	part := make([][]float64, channels)
-	done := 0
-	for i, s := range steppers {
-		if i > 0 {
-			s.Continue(steppers[i-1])
+	whole := grid(1+len(rec.Ways), block)
+	part := make([][]float64, len(whole))
+	at := 0
+	for i, s := range p.steppers {
+		if s.Reset(); i > 0 {
+			s.Continue(p.steppers[i-1])
 		}
 		end := rec.LengthSamples
-		if i+1 < len(steppers) {
+		if i+1 < len(p.steppers) {
 			end = rec.Tones[i+1].StartSample
 		}
-		for done < end {
+		for at < end {
 			if err := ctx.Err(); err != nil {
 				return err
 			}
-			n, err := src.ReadSamples(in[:min(block, end-done)])
+			n, err := src.ReadSamples(in[:min(block, end-at)])
 			if err != nil {
 				return fmt.Errorf("render: %w", err)
 			}
@@ -105,16 +139,17 @@ func playTones(ctx context.Context, rec *Recording, steppers []*discrete.Trapezo
 				part[c] = whole[c][:n]
 			}
 			s.Process(part, in[:n])
-			if err := out.WriteChannels(part); err != nil {
+			if err := take(part); err != nil {
 				return err
 			}
-			done += n
-			if set.Progress != nil {
-				set.Progress(done, rec.LengthSamples)
+			at += n
+			p.done += n
+			if p.set.Progress != nil {
+				p.set.Progress(p.done, p.total)
 			}
 		}
 	}
-	return finish(out)
+	return nil
 }
 
 func finish(out *wavfile.Writer) error {

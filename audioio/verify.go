@@ -15,7 +15,7 @@ import (
 	"sixdown/sim/circuit"
 )
 
-// Limits say when a recording passes. A number not above zero takes the default.
+// Limits say when a recording passes. A limit not above zero, and a floor not below it, takes the default.
 type Limits struct {
 	GainDB   float64 // dB; default 0.005 for tones of 24 bits and more, 0.02 for 16; 0.01 and the fit error for sweeps; 0.1 for noise
 	PhaseDeg float64 // degrees; default 0.05, 0.2, 0.1 and the fit error, 1
@@ -77,22 +77,22 @@ func Verify(ctx context.Context, sys *sim.System, rec *Recording, r io.ReadSeeke
 	if err := rec.check(sys, in); err != nil {
 		return nil, err
 	}
-	var hz []float64
-	var measured [][]complex128 // way by way
+	var m *measurement
 	if rec.Signal == Tones {
-		hz, measured, err = measureTones(ctx, rec, in)
+		m, err = measureTones(ctx, rec, in)
 	} else {
-		hz, measured, err = measureWhole(ctx, rec, in)
+		m, err = measureWhole(ctx, rec, in)
 	}
 	if err != nil {
 		return nil, err
 	}
+	hz, measured := m.hz, m.ways
 	p, err := newPredictor(sys, hz)
 	if err != nil {
 		return nil, err
 	}
-	v := &Verification{Warnings: in.Warnings()}
-	v.setLimits(lim, rec)
+	v := &Verification{Warnings: append(in.Warnings(), m.notes()...)}
+	v.setLimits(lim, rec, in.Encoding().Bits())
 	if err := p.sweep.Solve(); err != nil {
 		return nil, err
 	}
@@ -117,7 +117,7 @@ func Verify(ctx context.Context, sys *sim.System, rec *Recording, r io.ReadSeeke
 		v.FitNotes = sys.FitNotes()
 	}
 	if !v.Pass {
-		v.Suspects, err = p.suspects(sys, v.Points)
+		v.Suspects, err = p.suspects(sys, v)
 	}
 	return v, err
 }
@@ -148,69 +148,121 @@ func (rec *Recording) check(sys *sim.System, in *wavfile.Reader) error {
 	return rec.Validate()
 }
 
+// A measurement is what a file says.
+type measurement struct {
+	hz   []float64
+	ways [][]complex128 // way by way, over the amplifier's terminals
+
+	clipped int     // samples at full scale
+	rough   float64 // the most that is left of channel 1 beside a tone, of the tone's rms
+	roughAt float64 // Hz
+}
+
+func newMeasurement(hz []float64, ways int) *measurement {
+	m := &measurement{hz: hz}
+	for range ways {
+		m.ways = append(m.ways, make([]complex128, len(hz)))
+	}
+	return m
+}
+
+// fullScale is what a sample must reach to count as clipped: the last step of 16 bits.
+const fullScale = 1 - 0x1p-15
+
+// smooth is how much may be left beside a tone in channel 1, which holds nothing else: far above the steps of 16
+// bits, far below what a cut, a shift into a tone's rise, or distortion leaves.
+const smooth = 0.003
+
+func (m *measurement) countClipped(ch [][]float64) {
+	for _, c := range ch {
+		for _, v := range c {
+			if math.Abs(v) >= fullScale {
+				m.clipped++
+			}
+		}
+	}
+}
+
+// notes says what makes the file doubtful.
+func (m *measurement) notes() []string {
+	var n []string
+	if m.clipped > 0 {
+		n = append(n, fmt.Sprintf("%d samples are at full scale: it was clipped, and its levels are not to be trusted; record it again, quieter", m.clipped))
+	}
+	if m.rough > smooth {
+		n = append(n, fmt.Sprintf("channel 1 is not the steady tone that the schedule says at %.4g Hz, by %.2g of it: the file was cut, shifted or changed; give it as it was rendered", m.roughAt, m.rough))
+	}
+	return n
+}
+
 // measureTones fits the sines of the schedule.
-func measureTones(ctx context.Context, rec *Recording, in *wavfile.Reader) ([]float64, [][]complex128, error) {
+func measureTones(ctx context.Context, rec *Recording, in *wavfile.Reader) (*measurement, error) {
 	channels := 1 + len(rec.Ways)
 	longest := 0
-	for _, t := range rec.Tones {
-		longest = max(longest, t.MeasureSamples)
+	hz := make([]float64, len(rec.Tones))
+	for i, t := range rec.Tones {
+		longest, hz[i] = max(longest, t.MeasureSamples), t.FrequencyHz
 	}
+	m := newMeasurement(hz, len(rec.Ways))
 	window := grid(channels, longest)
 	view := make([][]float64, channels)
 	fits := make([]measure.Sine, channels)
-	hz := make([]float64, len(rec.Tones))
-	got := make([][]complex128, len(rec.Ways))
-	for w := range got {
-		got[w] = make([]complex128, len(rec.Tones))
-	}
 	for i, t := range rec.Tones {
 		if err := ctx.Err(); err != nil {
-			return nil, nil, err
+			return nil, err
 		}
 		if err := in.SeekFrame(int64(t.MeasureStart())); err != nil {
-			return nil, nil, err
+			return nil, err
 		}
 		for c := range view {
 			view[c] = window[c][:t.MeasureSamples]
 		}
 		if err := readFull(in, view); err != nil {
-			return nil, nil, err
+			return nil, err
 		}
 		if err := measure.FitSines(fits, view, t.FrequencyHz, float64(rec.Rate)); err != nil {
-			return nil, nil, err
+			return nil, err
 		}
-		hz[i] = t.FrequencyHz
-		for w := range got {
+		m.countClipped(view)
+		if r := fits[0].Residual * math.Sqrt2 / fits[0].Amplitude(); r > m.rough {
+			m.rough, m.roughAt = r, t.FrequencyHz
+		}
+		for w := range m.ways {
 			ratio, err := measure.Ratio(fits[1+w], fits[0])
 			if err != nil {
-				return nil, nil, fmt.Errorf("verify: at %.5g Hz: %w", t.FrequencyHz, err)
+				return nil, fmt.Errorf("verify: at %.5g Hz: %w", t.FrequencyHz, err)
 			}
-			got[w][i] = ratio
+			m.ways[w][i] = ratio
 		}
 	}
-	return hz, got, nil
+	return m, nil
 }
 
 // perOctave is how many points an octave a broad-band recording is compared at.
 const perOctave = 24
 
+// shortestNoise is how long noise must be for its spectrum to be measured at all.
+const shortestNoise = 2 // s
+
 // measureWhole takes the spectra of a whole record.
-func measureWhole(ctx context.Context, rec *Recording, in *wavfile.Reader) ([]float64, [][]complex128, error) {
-	if rec.Signal == Music {
-		return nil, nil, errors.New("verify: music may leave whole bands silent and proves nothing there; verify tones, a sweep or noise")
+func measureWhole(ctx context.Context, rec *Recording, in *wavfile.Reader) (*measurement, error) {
+	switch {
+	case rec.Signal == Music:
+		return nil, errors.New("verify: music may leave whole bands silent and proves nothing there; verify tones, a sweep or noise")
+	case rec.LengthSamples > longest*rec.Rate:
+		return nil, fmt.Errorf("verify: the recording lasts %d s; up to %d s can be verified: render a shorter one, or tones", rec.LengthSamples/rec.Rate, longest)
+	case rec.Signal == Noise && rec.LengthSamples < shortestNoise*rec.Rate:
+		return nil, fmt.Errorf("verify: the noise lasts %.2g s, too little to measure it at 20 Hz; render %d s or more", float64(rec.LengthSamples)/float64(rec.Rate), shortestNoise)
 	}
-	if rec.LengthSamples > longest*rec.Rate {
-		return nil, nil, fmt.Errorf("verify: the recording lasts %d s; up to %d s can be verified: render a shorter one, or tones", rec.LengthSamples/rec.Rate, longest)
+	top := math.Min(rec.BandHz[1], signal.MaxToneHz(rec.Rate))
+	if !(rec.BandHz[0] > 0 && rec.BandHz[0] < top) {
+		return nil, errors.New("verify: the recording does not say in which band it can be measured; render it anew")
 	}
 	ch := grid(1+len(rec.Ways), rec.LengthSamples)
 	if err := readFull(in, ch); err != nil {
-		return nil, nil, err
+		return nil, err
 	}
 	var hz []float64
-	top := math.Min(rec.BandHz[1], signal.MaxToneHz(rec.Rate))
-	if !(rec.BandHz[0] > 0 && rec.BandHz[0] < top) {
-		return nil, nil, errors.New("verify: the recording does not say in which band it can be measured; render it anew")
-	}
 	for k := 0; ; k++ {
 		f := rec.BandHz[0] * math.Exp2(float64(k)/perOctave)
 		if f > top*(1+1e-9) {
@@ -218,14 +270,12 @@ func measureWhole(ctx context.Context, rec *Recording, in *wavfile.Reader) ([]fl
 		}
 		hz = append(hz, f)
 	}
-	got := make([][]complex128, len(rec.Ways))
-	for w := range got {
-		got[w] = make([]complex128, len(hz))
-	}
+	m := newMeasurement(hz, len(rec.Ways))
+	m.countClipped(ch)
 	if err := ctx.Err(); err != nil {
-		return nil, nil, err
+		return nil, err
 	}
-	return hz, got, measure.Transfer(got, ch[1:], ch[0], float64(rec.Rate), hz)
+	return m, measure.Transfer(m.ways, ch[1:], ch[0], float64(rec.Rate), hz)
 }
 
 // readFull fills dst, one slice a channel.
@@ -250,9 +300,9 @@ func readFull(in *wavfile.Reader, dst [][]float64) error {
 	return nil
 }
 
-func (v *Verification) setLimits(lim Limits, rec *Recording) {
+func (v *Verification) setLimits(lim Limits, rec *Recording, bits int) {
 	v.LimitGainDB, v.LimitPhaseDeg, v.FloorDB = 0.005, 0.05, -60
-	if rec.Bits < 24 {
+	if bits < 24 {
 		v.LimitGainDB, v.LimitPhaseDeg = 0.02, 0.2
 	}
 	switch rec.Signal {

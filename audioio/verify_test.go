@@ -9,6 +9,7 @@ import (
 	"math"
 	"math/rand/v2"
 	"path/filepath"
+	"slices"
 	"strings"
 	"testing"
 
@@ -162,7 +163,10 @@ func TestBroadbandMeetsThePrediction(t *testing.T) {
 func TestOnePerCentIsFoundOut(t *testing.T) {
 	for _, name := range []string{harbour, "breakwater.toml"} {
 		d, nominal := load(t, name)
-		for _, part := range d.Parts {
+		for i, part := range d.Parts {
+			if name != harbour && i%4 != 0 { // the three-way's parts are many and alike
+				continue
+			}
 			other, _ := load(t, name)
 			if err := other.SetPart(part.Name, part.Value*1.01); err != nil {
 				t.Fatal(err)
@@ -177,7 +181,7 @@ func TestOnePerCentIsFoundOut(t *testing.T) {
 				t.Errorf("%s: %s is 1 %% off and it passes: worst %.5f dB, %.5f°", d.Title, part.Name, v.WorstGain.GainErrorDB(), v.WorstPhase.PhaseErrorDeg())
 				continue
 			}
-			if len(v.Suspects) == 0 || v.Suspects[0].Part != part.Name {
+			if len(v.Suspects) == 0 || v.Suspects[0].Part != part.Name || v.Suspects[0].Fault != audioio.WrongValue || !v.Suspects[0].Passes {
 				t.Errorf("%s: %s is 1 %% off; the suspects are %v", d.Title, part.Name, v.Suspects)
 				continue
 			}
@@ -216,6 +220,110 @@ func TestWrongPartIsFoundOut(t *testing.T) {
 	}
 }
 
+// A way connected the other way round, two channels exchanged, a knob elsewhere and a coil of thinner wire are named
+// for what they are; and of two wrong parts neither is accused alone.
+func TestOtherFaultsAreNamed(t *testing.T) {
+	d, nominal := load(t, harbour)
+	check := func(t *testing.T, nominal *sim.System, other *xover.Design, hz []float64, part string, fault audioio.Fault, estimate float64) {
+		t.Helper()
+		sys, err := sim.New(other, nil)
+		if err != nil {
+			t.Fatal(err)
+		}
+		var file tape
+		rec, err := audioio.RenderTones(context.Background(), sys, hz, &file, audioio.Settings{})
+		if err != nil {
+			t.Fatal(err)
+		}
+		v := verify(t, nominal, &file, rec)
+		switch {
+		case v.Pass:
+			t.Error("it passes")
+		case len(v.Suspects) == 0 && part != "":
+			t.Error("no suspect")
+		case part == "":
+			if len(v.Suspects) > 0 && v.Suspects[0].Passes {
+				t.Errorf("%v is accused alone", v.Suspects[0])
+			}
+		case v.Suspects[0].Part != part || v.Suspects[0].Fault != fault || math.Abs(v.Suspects[0].Estimate-estimate) > 1e-3*estimate:
+			t.Errorf("suspects %v, want the %s of %s at %g", v.Suspects, fault, part, estimate)
+		}
+	}
+	t.Run("polarity", func(t *testing.T) {
+		other, _ := load(t, harbour)
+		other.Ways[1].Reversed = true
+		check(t, nominal, other, tones(d), "high", audioio.WrongPolar, 0)
+	})
+	t.Run("loss", func(t *testing.T) {
+		other, _ := load(t, harbour)
+		other.Part("L1").DCR = 0.5
+		check(t, nominal, other, tones(d), "L1", audioio.WrongLoss, 0.5)
+	})
+	t.Run("two parts", func(t *testing.T) {
+		other, _ := load(t, harbour)
+		for name, v := range map[string]float64{"L1": 0.7e-3, "C3": 4.7e-6} {
+			if err := other.SetPart(name, v); err != nil {
+				t.Fatal(err)
+			}
+		}
+		check(t, nominal, other, tones(d), "", "", 0)
+	})
+	t.Run("swapped", func(t *testing.T) {
+		file, rec := renderTones(t, d, nominal, audioio.Settings{})
+		exchanged := *rec
+		exchanged.Ways = []string{"high", "low"}
+		ways := load2(t, d, "high", "low")
+		v := verify(t, ways, file, &exchanged)
+		if v.Pass || len(v.Suspects) == 0 || v.Suspects[0].Fault != audioio.SwappedSides || v.Suspects[0].Part != "high and low" {
+			t.Errorf("pass %v, suspects %v", v.Pass, v.Suspects)
+		}
+	})
+	knob := func(turn float64) (*xover.Design, *sim.System) {
+		src := fmt.Sprintf(`[tone]
+source = "1 kohm"
+load = "470 kohm"
+network = ["series R1", "mark a", "P1 from a to c wiper w", "C1 from a to w", "C2 from w to c", "R2 from c to 0", "R3 from w to out"]
+[parts]
+R1 = "10 kohm"
+R2 = "1 kohm"
+R3 = "1 kohm"
+C1 = "22 nF"
+C2 = "220 nF"
+P1 = { value = "100 kohm", taper = "linear" }
+[control.bass]
+part = "P1"
+at = %g
+`, turn)
+		d, _, err := xover.Parse("knob", []byte(src))
+		if err != nil {
+			t.Fatal(err)
+		}
+		sys, err := sim.New(d, nil)
+		if err != nil {
+			t.Fatal(err)
+		}
+		return d, sys
+	}
+	t.Run("turn", func(t *testing.T) {
+		_, sys := knob(0.4)
+		other, _ := knob(0.5)
+		check(t, sys, other, []float64{20, 50, 100, 200, 500, 1000, 2000, 5000, 10000}, "P1", audioio.WrongTurn, 0.5)
+	})
+}
+
+// load2 is a design with its two ways under each other's names: the same networks, in the other order.
+func load2(t *testing.T, d *xover.Design, first, second string) *sim.System {
+	t.Helper()
+	other := *d
+	other.Ways = []xover.Way{d.Ways[1], d.Ways[0]}
+	other.Ways[0].Name, other.Ways[1].Name = first, second
+	sys, err := sim.New(&other, nil)
+	if err != nil {
+		t.Fatal(err)
+	}
+	return sys
+}
+
 // What does not belong together is refused with a sentence.
 func TestVerifyRefuses(t *testing.T) {
 	d, sys := load(t, harbour)
@@ -245,14 +353,128 @@ func TestVerifyRefuses(t *testing.T) {
 	}
 }
 
-// Silence proves nothing: it fails, and no number in the answer is wrong.
-func TestSilenceFails(t *testing.T) {
+// Silence proves nothing. If the reference is silent it is refused; if a way is, it fails.
+func TestSilence(t *testing.T) {
 	d, sys := load(t, harbour)
 	file, rec := renderTones(t, d, sys, audioio.Settings{})
-	clear(file.b[len(file.b)-rec.LengthSamples*9:]) // 3 channels of 24 bits
-	v, err := audioio.Verify(context.Background(), sys, rec, bytes.NewReader(file.b), audioio.Limits{})
-	if err == nil && v.Pass {
-		t.Error("silence passes")
+	frame := 9 // bytes: 3 channels of 24 bits
+	data := file.b[len(file.b)-rec.LengthSamples*frame:]
+	way := slices.Clone(file.b)
+	for i := 0; i < rec.LengthSamples; i++ {
+		clear(way[len(way)-len(data)+i*frame+6:][:3])
+	}
+	v := verify(t, sys, &tape{b: way}, rec)
+	if v.Pass || v.WorstGain == nil || !math.IsInf(v.WorstGain.GainErrorDB(), -1) {
+		t.Errorf("a silent way: pass %v, worst %+v", v.Pass, v.WorstGain)
+	}
+	clear(data)
+	got, err := audioio.Verify(context.Background(), sys, rec, bytes.NewReader(file.b), audioio.Limits{})
+	if got != nil || err == nil || !strings.Contains(err.Error(), "the reference") {
+		t.Errorf("a silent reference: %v, %v", got, err)
+	}
+}
+
+// A resonance builds up to more than any steady tone shows, here a lossless trap that a tone comes near to; the level
+// is chosen by what comes, so that nothing clips.
+func TestBuildUpDoesNotClip(t *testing.T) {
+	src := `[drive]
+source = "0.05 ohm"
+[parts]
+L9 = "1 mH"
+C9 = "10 uF"
+C3 = "5 uF"
+[driver.d]
+impedance = "6 ohm"
+[[way]]
+name = "high"
+driver = "d"
+network = ["shunt L9 + C9", "series C3"]
+`
+	d, _, err := xover.Parse("trap", []byte(src))
+	if err != nil {
+		t.Fatal(err)
+	}
+	sys, err := sim.New(d, nil)
+	if err != nil {
+		t.Fatal(err)
+	}
+	file, rec := renderTones(t, d, sys, audioio.Settings{})
+	if v := verify(t, sys, file, rec); len(v.Warnings) > 0 {
+		t.Errorf("warnings %q", v.Warnings)
+	}
+}
+
+// A file that was clipped or cut says so.
+func TestDoubtfulFiles(t *testing.T) {
+	d, sys := load(t, harbour)
+	file, rec := renderTones(t, d, sys, audioio.Settings{Wav: wavfile.Settings{Encoding: wavfile.Float32}})
+	change := func(do func([]float64)) *audioio.Verification {
+		r, err := wavfile.NewReader(bytes.NewReader(file.b))
+		if err != nil {
+			t.Fatal(err)
+		}
+		var out tape
+		w, err := wavfile.NewWriter(&out, r.Format(), wavfile.Settings{})
+		if err != nil {
+			t.Fatal(err)
+		}
+		all := make([]float64, rec.LengthSamples*r.Format().NumChannels)
+		if n, err := r.ReadFrames(all); n != rec.LengthSamples || err != nil {
+			t.Fatal(n, err)
+		}
+		do(all)
+		if err := w.WriteFrames(all); err != nil {
+			t.Fatal(err)
+		}
+		if err := w.Close(); err != nil {
+			t.Fatal(err)
+		}
+		return verify(t, sys, &out, rec)
+	}
+	v := change(func(x []float64) {
+		for i := range x {
+			x[i] *= 1.5
+		}
+	})
+	if v.Pass || len(v.Warnings) == 0 || !strings.Contains(v.Warnings[0], "it was clipped") {
+		t.Errorf("clipped: pass %v, warnings %q", v.Pass, v.Warnings)
+	}
+	v = change(func(x []float64) { copy(x, x[3*12000:]) }) // a quarter of a second cut off at the beginning
+	if v.Pass || len(v.Warnings) != 1 || !strings.Contains(v.Warnings[0], "the file was cut, shifted or changed") {
+		t.Errorf("cut: pass %v, warnings %q", v.Pass, v.Warnings)
+	}
+}
+
+// Slow poles do not keep a rendering waiting: 100 µF into 1 MΩ takes 100 s to die away.
+func TestSlowPoles(t *testing.T) {
+	src := `[tone]
+source = "1 kohm"
+load = "1 Mohm"
+network = ["series C1", "mark out"]
+[parts]
+C1 = "100 uF"
+`
+	d, _, err := xover.Parse("slow", []byte(src))
+	if err != nil {
+		t.Fatal(err)
+	}
+	sys, err := sim.New(d, nil)
+	if err != nil {
+		t.Fatal(err)
+	}
+	noise, err := signal.NewPink(48000, 1, rand.NewPCG(3, 4), signal.NoiseSettings{Peak: 1})
+	if err != nil {
+		t.Fatal(err)
+	}
+	in := audioio.Input{Kind: audioio.Noise, Source: noise, Rate: 48000, Volts: 4, BandHz: [2]float64{20, 20000}}
+	rec, err := audioio.RenderBroadband(context.Background(), sys, in, &tape{}, audioio.Settings{})
+	if err != nil {
+		t.Fatal(err)
+	}
+	// The high-pass's impulse response is δ(t) - e^(-t/τ)/τ: the sum of its magnitudes is 2. What the terminals show is
+	// less, for the source has a thousandth of the load.
+	if top := 1 / rec.Peak; math.Abs(top-2) > 0.01 {
+		t.Errorf("the largest peak gain is %g, want 2", top)
 	}
 }
 

@@ -14,20 +14,36 @@ func (m *Matched) PeakGain() []float64 {
 	}
 	u := make([]float64, block)
 	u[0] = 1
-	for left := m.memory(); left > 0; left -= block {
+	slowest := m.slowest()
+	memory := latency + taps + block // for as long as this at least, also where all is forgotten at once
+	if slowest > 0 {
+		const forgotten = -12 * math.Ln10 // all but 1e-12
+		memory += int(min(forgotten/math.Log(slowest), longestProbe))
+	}
+	last := make([]float64, len(m.outputs)) // the largest of the last block
+	for left := memory; left > 0; left -= block {
 		probe.Process(dst, u)
 		u[0] = 0
 		for k, y := range dst {
+			last[k] = 0
 			for _, v := range y {
 				peak[k] += math.Abs(v)
+				last[k] = max(last[k], math.Abs(v))
 			}
 		}
+	}
+	// What is not waited for dies away no slower than the slowest section.
+	for k := range peak {
+		peak[k] += last[k] / (1 - slowest)
 	}
 	return peak
 }
 
-// memory is the number of samples in which the slowest section forgets all but 1e-12.
-func (m *Matched) memory() int {
+// longestProbe is how many samples of an impulse response are added up one by one.
+const longestProbe = 1 << 18
+
+// slowest is by how much a sample of the slowest section shrinks from one to the next, below 1.
+func (m *Matched) slowest() float64 {
 	slowest := 0.0
 	for _, s := range m.sections {
 		// The larger root of z² - a1 z - a2.
@@ -38,6 +54,5 @@ func (m *Matched) memory() int {
 		}
 		slowest = max(slowest, size)
 	}
-	const forgotten = -12 * math.Ln10
-	return latency + taps + int(forgotten/math.Log(slowest))
+	return min(slowest, 1-0x1p-50)
 }

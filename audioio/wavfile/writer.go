@@ -206,6 +206,15 @@ func (w *Writer) WriteChannels(src [][]float64) error {
 // Frames returns how many frames have been written.
 func (w *Writer) Frames() int64 { return w.frames }
 
+// Admit tells before anything is written whether that many frames will fit into the file.
+func (w *Writer) Admit(frames int64) error {
+	if frames > w.maxFrames {
+		return fmt.Errorf("wav: write: %.0f s would be longer than the 4 GB that a WAV file can hold, here %.0f s; make it shorter, or write several",
+			float64(frames)/float64(w.format.SampleRate), float64(w.maxFrames)/float64(w.format.SampleRate))
+	}
+	return nil
+}
+
 // Clipped returns how many samples lay outside ±1 and were clipped. Float
 // encodings hold such samples as they are, so for them it is 0.
 func (w *Writer) Clipped() int64 { return w.clipped }

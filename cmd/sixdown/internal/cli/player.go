@@ -30,8 +30,7 @@ const noiseCrest = 4
 
 // player makes what the options ask for.
 func (o *signalOptions) player(d *xover.Design, sys *sim.System) (*player, error) {
-	sine := sys.Level() * math.Sqrt2 // V, peak of a sine at the drive level
-	in := audioio.Input{Rate: o.rate, Volts: sine, BandHz: audible}
+	in := audioio.Input{Rate: o.rate, Volts: audioio.PeakVolts(sys), BandHz: audible}
 	var err error
 	switch o.signal {
 	case "tones":
