@@ -42,6 +42,9 @@ func (n *Netlist) check(outs []Output) error {
 			}
 			continue
 		}
+		if b.Kind == Resistor && b.Loss != 0 {
+			return fmt.Errorf("circuit: %s: a resistor has a series resistance of %g Ω; add it to its value", b.Name, b.Loss)
+		}
 		if !(b.Value >= 0) || math.IsInf(b.Value, 1) {
 			return fmt.Errorf("circuit: %s: value is %g; give a positive number", b.Name, b.Value)
 		}

@@ -12,7 +12,7 @@
 // the pivot, which the star-mesh form sums from the branches that meet at the node instead of
 // finding it by subtraction. No digits are lost where a very large admittance (a coil far below the
 // crossover) meets a very small one, and at a real, positive s, where DC and infinite frequency are
-// taken as limits, the elimination contains no subtraction at all.
+// taken as limits, the elimination contains no subtraction at all unless coils are coupled.
 //
 // Where digits may cancel all the same, at the pivot of a purely reactive node or among coupled coils, the sums
 // are watched, and a frequency at which one cancels is solved again in doubled precision.

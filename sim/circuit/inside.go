@@ -1,6 +1,9 @@
 package circuit
 
-import "math"
+import (
+	"math"
+	"math/cmplx"
+)
 
 // This file answers for the inside of the network: any node, any part. It keeps the node voltages of the
 // whole grid, which Solve does not; the first question after a change of value solves once more.
@@ -109,6 +112,9 @@ func (s *Sweep) ImpedanceGradient(dst []complex128, branch int) error {
 	}
 	return s.each(dst, func(i int) complex128 {
 		z := s.zin[i]
+		if cmplx.IsInf(z) {
+			return 0 // nothing flows, and z moves from one infinity to another
+		}
 		// For one volt at Amp, ∂Yin is -I²·∂z: the input's adjoint network is the network itself.
 		return z * z * s.powerSlope(branch, i) / (s.amp[i] * s.amp[i])
 	})
@@ -155,7 +161,8 @@ func (s *Sweep) impedanceAt(branch, i int) complex128 {
 	return complex(r, -1/(w*v))
 }
 
-// chainCurrent is the current of a group, from its from to its to.
+// chainCurrent is the current of a group, from its from to its to. A lossless trap that resonates exactly carries what
+// the slow road's limit gives it.
 func (s *Sweep) chainCurrent(group, i int) complex128 {
 	g := &s.c.f.groups[group]
 	dv := s.across[group][i]
@@ -163,8 +170,14 @@ func (s *Sweep) chainCurrent(group, i int) complex128 {
 		return dv / g.port.Impedance(complex(0, s.omega(i)))
 	}
 	var z complex128
+	size := 0.0
 	for _, l := range g.members {
-		z += s.impedanceAt(l.branch, i)
+		x := s.impedanceAt(l.branch, i)
+		z += x
+		size += cmplx.Abs(x)
+	}
+	if z == 0 {
+		z = complex(size*resonantShort, 0)
 	}
 	return dv / z
 }

@@ -7,7 +7,7 @@ import "fmt"
 type step struct {
 	node     int
 	near     []int
-	reactive bool // no loss reaches it, so that its pivot can vanish
+	reactive bool // nothing damps it, so that its pivot can nearly vanish
 }
 
 // reach finds which folded nodes the amplifier drives. A node that hangs in the air is an error; a node
@@ -66,12 +66,12 @@ func (f *folded) reach(n *Netlist, outs []Output) (driven []bool, err error) {
 	return driven, nil
 }
 
-// order chooses the order of elimination: least degree first, and among those a node that ohmic loss
-// reaches before one that is purely reactive. The pivot of a node with loss can never vanish, that of a
-// purely reactive one does where its branches resonate, which says nothing about the circuit.
+// order chooses the order of elimination: a node that a resistor or a load damps before one that is all but purely
+// reactive, and among those least degree first. A damped node's pivot cannot vanish; that of a
+// reactive one nearly does where its branches resonate, which says nothing about the circuit: it is watched.
 func (f *folded) order(n *Netlist, driven []bool) []step {
 	touch := make([]map[int]bool, n.Nodes)
-	lossy := make([]bool, n.Nodes)
+	damp := make([]bool, n.Nodes)
 	var nodes []int
 	for k := range touch {
 		if driven[k] && k != Amp && f.used[k] {
@@ -79,7 +79,7 @@ func (f *folded) order(n *Netlist, driven []bool) []step {
 			nodes = append(nodes, k)
 		}
 	}
-	join := func(a, b int, loss bool) {
+	join := func(a, b int, damping bool) {
 		a, b = f.alive(a, driven), f.alive(b, driven)
 		if a == b {
 			return
@@ -87,22 +87,21 @@ func (f *folded) order(n *Netlist, driven []bool) []step {
 		for _, e := range [2][2]int{{a, b}, {b, a}} {
 			if touch[e[0]] != nil {
 				touch[e[0]][e[1]] = true
-				lossy[e[0]] = lossy[e[0]] || loss
+				damp[e[0]] = damp[e[0]] || damping
 			}
 		}
 	}
 	for i := range f.groups {
 		g := &f.groups[i]
-		join(g.from, g.to, f.lossy(n, g))
+		join(g.from, g.to, f.damped(n, g))
 	}
 	for _, w := range f.windings {
 		for i, a := range w.coils {
-			loss := n.Branches[a.branch].Loss > 0
-			join(a.from, a.to, loss)
+			join(a.from, a.to, false)
 			for _, b := range w.coils[i+1:] {
 				for _, p := range [2]int{a.from, a.to} {
-					join(p, b.from, loss)
-					join(p, b.to, loss)
+					join(p, b.from, false)
+					join(p, b.to, false)
 				}
 			}
 		}
@@ -112,8 +111,8 @@ func (f *folded) order(n *Netlist, driven []bool) []step {
 	for len(nodes) > 0 {
 		best := 0
 		better := func(a, b int) bool {
-			if lossy[a] != lossy[b] {
-				return lossy[a]
+			if damp[a] != damp[b] {
+				return damp[a]
 			}
 			return len(touch[a]) < len(touch[b])
 		}
@@ -126,7 +125,7 @@ func (f *folded) order(n *Netlist, driven []bool) []step {
 		k := nodes[best]
 		nodes = append(nodes[:best], nodes[best+1:]...)
 		place[k] = len(steps) + 1
-		st := step{node: k, reactive: !lossy[k]}
+		st := step{node: k, reactive: !damp[k]}
 		for j := range n.Nodes {
 			if touch[k][j] {
 				st.near = append(st.near, j)
@@ -134,7 +133,7 @@ func (f *folded) order(n *Netlist, driven []bool) []step {
 					continue
 				}
 				delete(touch[j], k)
-				lossy[j] = lossy[j] || lossy[k]
+				damp[j] = damp[j] || damp[k]
 				for i := range touch[k] {
 					if i != j {
 						touch[j][i] = true
@@ -158,17 +157,20 @@ func (f *folded) alive(k int, driven []bool) int {
 	return k
 }
 
-// tooWeak is a resistance in Ω beside which a resonance can be all but lossless: such a one does not make a node
-// lossy.
-const tooWeak = 1e5
+// Resistances in Ω, in series or across, that leave a resonance all but lossless do not damp a node; nor do the losses of
+// coils and capacitors.
+const (
+	tooSmall = 0.1
+	tooLarge = 1e5
+)
 
-// lossy tells if the group turns so much power into heat that its nodes' pivots cannot vanish.
-func (f *folded) lossy(n *Netlist, g *group) bool {
+// damped tells if the group turns so much power into heat that its nodes' pivots cannot vanish.
+func (f *folded) damped(n *Netlist, g *group) bool {
 	if g.port != nil {
 		return true
 	}
 	for _, l := range g.members {
-		if b := &n.Branches[l.branch]; b.Kind == Resistor && b.Value < tooWeak || b.Loss > 0 {
+		if b := &n.Branches[l.branch]; b.Kind == Resistor && b.Value > tooSmall && b.Value < tooLarge {
 			return true
 		}
 	}

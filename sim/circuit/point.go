@@ -69,6 +69,9 @@ func (pt *pointScratch) add(a, b int, y cdoubled) {
 	}
 }
 
+// resonantShort is what is left of the reactances of a lossless trap that resonates exactly, as a resistance.
+const resonantShort = 0x1p-60
+
 // cellAt is the admittance of a cell at s. Where a lossless trap resonates exactly it is an all but perfect
 // conductor, so that the network answers with its limit.
 func cellAt(k *cell, t [3]float64, s complex128) cdoubled {
@@ -79,7 +82,7 @@ func cellAt(k *cell, t [3]float64, s complex128) cdoubled {
 		return x
 	}
 	if x.zero() {
-		x = doubledOf(complex((direct.modulus()+inverse.modulus())*0x1p-60, 0))
+		x = doubledOf(complex((direct.modulus()+inverse.modulus())*resonantShort, 0))
 	}
 	return x.inv()
 }
@@ -264,6 +267,14 @@ func (pt *pointScratch) adjoint(from, to int, g, kappa complex128) {
 	}
 }
 
+// zin is the input impedance, infinite where no current flows.
+func (pt *pointScratch) zin() complex128 {
+	if pt.yin == 0 {
+		return cmplx.Inf()
+	}
+	return 1 / pt.yin
+}
+
 // ampGain is V_amp/V_open behind a source of rs Ω.
 func (pt *pointScratch) ampGain(rs float64) complex128 {
 	if rs == 0 {
@@ -301,10 +312,7 @@ func (c *Circuit) point(s complex128, limit bool) (*Point, error) {
 	if err := pt.solve(c, s, tri, wind, limit); err != nil {
 		return nil, err
 	}
-	a := &Point{Amp: pt.ampGain(c.net.Source), Zin: cmplx.Inf()}
-	if pt.yin != 0 {
-		a.Zin = 1 / pt.yin
-	}
+	a := &Point{Amp: pt.ampGain(c.net.Source), Zin: pt.zin()}
 	for _, o := range c.p.adj {
 		a.Gain = append(a.Gain, a.Amp*pt.between(o.from, o.to))
 	}
@@ -314,7 +322,7 @@ func (c *Circuit) point(s complex128, limit bool) (*Point, error) {
 // The limits at DC and at infinite frequency are taken at a real, positive s so far out that no time
 // constant of a network that can be built, 1e-15 s to 1e4 s, is felt: what is left of a gain that
 // vanishes there is below limitTiny, of an impedance below limitTiny Ω, and an infinite one is above its
-// reciprocal. At a real s every admittance is positive and the elimination loses no digits.
+// reciprocal. At a real s every admittance but a mutual one is positive, and the elimination loses no digits.
 const (
 	limitDC       = 1e-22 // rad/s
 	limitInfinity = 1e34  // rad/s

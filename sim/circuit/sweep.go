@@ -3,6 +3,7 @@ package circuit
 import (
 	"fmt"
 	"math"
+	"math/cmplx"
 )
 
 // A Sweep evaluates a circuit over a grid of frequencies. It holds its own copy of the parts' values, which
@@ -116,7 +117,7 @@ func (c *cell) triple(branches []Branch, vals, loss []float64) [3]float64 {
 		case c.tank:
 			t[2] += 1 / v
 		case k == Resistor:
-			t[0] += v + loss[m]
+			t[0] += v
 		case k == Inductor:
 			t[0] += loss[m]
 			t[1] += v
@@ -158,8 +159,8 @@ func (s *Sweep) SetLoss(branch int, ohm float64) error {
 	if b.Loss == 0 || b.Kind == Resistor || b.Kind == Port {
 		return fmt.Errorf("circuit: %s: has no series resistance to set; compile it with one", b.Name)
 	}
-	if !(ohm >= 0) || math.IsInf(ohm, 1) {
-		return fmt.Errorf("circuit: %s: series resistance is %g Ω; give zero or a positive number", b.Name, ohm)
+	if !(ohm > 0) || math.IsInf(ohm, 1) {
+		return fmt.Errorf("circuit: %s: series resistance is %g Ω; give a positive number, or compile it without", b.Name, ohm)
 	}
 	s.loss[branch] = ohm
 	s.renew(branch)
@@ -220,6 +221,9 @@ func (s *Sweep) finish(b int) error {
 	bad := false
 	for l := range zin {
 		zin[l] = complex(s.zinv.re[l], s.zinv.im[l])
+		if y.re[l] == 0 && y.im[l] == 0 {
+			zin[l] = cmplx.Inf()
+		}
 		amp[l] = complex(s.g.re[l], s.g.im[l])
 		s.bad[l] = !(s.watch[l] > lost) || !(y.re[l]*y.re[l]+y.im[l]*y.im[l] <= math.MaxFloat64)
 		bad = bad || s.bad[l]
@@ -256,9 +260,6 @@ func (s *Sweep) finish(b int) error {
 	return nil
 }
 
-// outVolts is the voltage of output o in lane l, per volt at Amp.
-func (s *Sweep) outVolts(o, l int) complex128 { return s.lane(s.c.p.outs[o], l) }
-
 // lane is a voltage in lane l.
 func (s *Sweep) lane(v across, l int) complex128 {
 	switch {
@@ -281,7 +282,7 @@ func (s *Sweep) mend(i int) error {
 		s.gain[o*len(s.freqs)+i] = g * pt.between(s.c.p.adj[o].from, s.c.p.adj[o].to)
 	}
 	s.amp[i] = g
-	s.zin[i] = 1 / pt.yin
+	s.zin[i] = pt.zin()
 	return nil
 }
 
@@ -298,8 +299,8 @@ func finite(z complex128) bool {
 	return modulus(z) <= math.MaxFloat64 && modulus(complex(imag(z), real(z))) <= math.MaxFloat64
 }
 
-// Gain copies the gains V_out/V_open of an output, as of the last Solve or Gradient; len(dst) must be the
-// number of frequencies.
+// Gain copies the gains V_out/V_open of an output, as of the last Solve or Gradient, or of the last question about the
+// inside of the network (inside.go), which solves too; len(dst) must be the number of frequencies.
 func (s *Sweep) Gain(dst []complex128, out int) {
 	n := len(s.freqs)
 	s.copyTo(dst, s.gain[out*n:(out+1)*n])
