@@ -10,8 +10,8 @@ import (
 type Summary struct {
 	Band [2]float64 // Hz, what was looked at
 
-	MinImpedance   float64 // Ω, the lowest |Zin| in Band
-	MinImpedanceAt float64 // Hz
+	MinImpedance   float64 // Ω, the lowest |Zin| in Band; infinite if no current flows at all
+	MinImpedanceAt float64 // Hz; 0 then
 	MinEPDR        float64 // Ω, the lowest EPDR in Band
 	MinEPDRAt      float64 // Hz
 
@@ -56,7 +56,8 @@ const gridPerOctave = 48
 const halfPower = 3.0102999566398120
 
 // Summary looks over band, from and to in Hz; a zero band is 20 Hz to 20 kHz. Frequencies that it gives are
-// refined from a grid of 48 points an octave to the last few digits, so that they do not depend on it.
+// refined from a grid of 48 points an octave, crossings to the last few digits, minima to some 1e-8, so that they
+// do not depend on it.
 func (s *System) Summary(band [2]float64) (*Summary, error) {
 	if band == [2]float64{} {
 		band = [2]float64{20, 20e3}
@@ -109,9 +110,12 @@ func logGrid(band [2]float64) []float64 {
 func (s *System) lowest(r *Response, size func(complex128) float64) (value, at float64, err error) {
 	best := 0
 	for i, z := range r.Zin {
-		if size(z) < size(r.Zin[best]) {
+		if size(z) < size(r.Zin[best]) || cmplx.IsInf(r.Zin[best]) {
 			best = i
 		}
+	}
+	if cmplx.IsInf(r.Zin[best]) {
+		return math.Inf(1), 0, nil
 	}
 	lo, hi := r.Freqs[max(best-1, 0)], r.Freqs[min(best+1, len(r.Freqs)-1)]
 	at, err = minimum(lo, hi, func(f float64) (float64, error) {

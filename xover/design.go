@@ -82,8 +82,7 @@ type Part struct {
 	Pos   Position   // of its key
 }
 
-// A Driver is one [driver.NAME] table. A number not stated is 0 where 0 is impossible, else NaN is not
-// used: the Has fields tell.
+// A Driver is one [driver.NAME] table. A number not stated is 0; where 0 is a possible value, a Has field tells.
 type Driver struct {
 	Name string
 
