@@ -214,13 +214,13 @@ func (d *demonstration) render(ctx context.Context, design *xover.Design, sys *s
 	if err != nil {
 		return err
 	}
-	d.say("%s", indent(renderText(rec, d.path(demoTones))))
+	d.say("%s", indent(renderText(design, rec, &o, d.path(demoTones))))
 	d.say("\n   And something to listen to:\n   $ sixdown render %s --signal noise --out %s\n\n", path, d.path(demoNoise))
 	o = d.signal(demoNoise)
 	if rec, err = renderTo(ctx, d.s, design, sys, &o, d.path(demoNoise)); err != nil {
 		return err
 	}
-	d.say("%s", indent(renderText(rec, d.path(demoNoise))))
+	d.say("%s", indent(renderText(design, rec, &o, d.path(demoNoise))))
 	return nil
 }
 
@@ -271,6 +271,10 @@ func (d *demonstration) next() string {
   Another alignment:               sixdown size --shape butterworth --order 3 --at 3kHz --load 6ohm
   For your own drivers:            sixdown start --help
 %[1]s is meant to be opened in an editor and changed.
+
+If you came here by go run, make the program first: go build -o sixdown ./cmd/sixdown
+and write ./sixdown for sixdown. On Windows: go build -o sixdown.exe ./cmd/sixdown
+and .\sixdown.exe
 `, path)
 }
 

@@ -7,7 +7,6 @@ import (
 	"os"
 	"path/filepath"
 	"slices"
-	"strings"
 
 	"github.com/spf13/cobra"
 
@@ -44,7 +43,7 @@ func (o *signalOptions) addTo(cmd *cobra.Command) {
 	f.IntVar(&o.rate, "rate", 48000, "samples a second, in Hz; a WAV file keeps its own")
 	f.StringVar(&o.bits, "bits", "24", "16, 24 or 32, or float for 32-bit floating point")
 	f.StringVar(&o.colour, "colour", "pink", "of noise: pink or white")
-	f.Uint64Var(&o.seed, "seed", 1, "of noise and dither: the same seed gives the same file")
+	f.Uint64Var(&o.seed, "seed", 1, "of noise, and of dither in 16 bits: the same seed gives the same file")
 	f.IntVar(&o.channel, "channel", 0, "of a WAV file: 1, 2, …; 0 mixes all of them")
 	f.Var(&quantityList{unit: quantity.Hertz, values: &o.at}, "at", "tones at these frequencies, as in `\"1 kHz,2 kHz\"`, instead of third-octaves and targets")
 }
@@ -101,6 +100,7 @@ error is told. Full scale is chosen so that no channel clips.`,
 		ValidArgsFunction: designFiles,
 		RunE: func(cmd *cobra.Command, args []string) error {
 			o.path = args[0]
+			o.warnIdle(s, cmd)
 			return runRender(cmd.Context(), s, &o)
 		},
 	}
@@ -130,35 +130,16 @@ func runRender(ctx context.Context, s *streams, o *renderOptions) error {
 			Cautions []string `json:"cautions"`
 			*audioio.Recording
 			Notes []string `json:"notes"`
-		}{filepath.Join(o.out, soundFile), filepath.Join(o.out, scheduleFile), caution.Sound(), rec, append([]string{}, sys.FitNotes()...)})
+		}{filepath.Join(o.out, soundFile), filepath.Join(o.out, scheduleFile), soundCautions(d), rec, append([]string{}, sys.FitNotes()...)})
 	}
-	return s.answer(renderText(rec, o.out) + noteLines(sys.FitNotes()) + "\n" + caution.Text(caution.Sound()))
-}
-
-// renderText says what was written.
-func renderText(rec *audioio.Recording, dir string) string {
-	var b strings.Builder
-	fmt.Fprintf(&b, "%s: %s, %.1f s, %d Hz, %d bits\n", filepath.Join(dir, soundFile),
-		rec.Signal, float64(rec.LengthSamples)/float64(rec.Rate), rec.Rate, rec.Bits)
-	fmt.Fprintf(&b, "  channel 1  the amplifier's terminals\n")
-	for i, w := range rec.Ways {
-		fmt.Fprintf(&b, "  channel %d  %s\n", i+2, w)
-	}
-	fmt.Fprintf(&b, "  full scale is %s peak\n", quantity.Round(rec.VoltsPerFullScale, quantity.Volt, 4))
-	switch {
-	case rec.Signal == audioio.Tones:
-		fmt.Fprintf(&b, "  %d tones from %s to %s, each settled before it is measured\n", len(rec.Tones),
-			quantity.Round(rec.Tones[0].FrequencyHz, quantity.Hertz, 3),
-			quantity.Round(rec.Tones[len(rec.Tones)-1].FrequencyHz, quantity.Hertz, 3))
-	default:
-		fmt.Fprintf(&b, "  the model is within %.4f dB and %.4f° of the network where a gain is above -50 dB\n", rec.FitDB, rec.FitDeg)
-	}
-	fmt.Fprintf(&b, "%s: the schedule\n", filepath.Join(dir, scheduleFile))
-	return b.String()
+	return s.answer(renderText(d, rec, &o.signalOptions, o.out) + noteLines(sys.FitNotes()) + "\n" + caution.Text(soundCautions(d)))
 }
 
 // renderTo renders into a folder. Both files are written beside and renamed, the sound first.
 func renderTo(ctx context.Context, s *streams, d *xover.Design, sys *sim.System, o *signalOptions, dir string) (*audioio.Recording, error) {
+	if err := o.check(); err != nil {
+		return nil, err
+	}
 	wav, err := o.wav()
 	if err != nil {
 		return nil, err
