@@ -23,8 +23,7 @@ type Diffraction struct {
 const (
 	finestStep = 2e-6   // s; at 20 kHz the edges' part comes out 1 % low
 	mostTaps   = 8192   // enough for paths 5.6 m longer than the direct one; beyond, the step grows
-	pieceSize  = 5e-3   // m; pieces are this long or a little shorter
-	mostPieces = 500    // of an edge
+	pieceSize  = 0.05   // length of a piece over its distance from the driver, at most
 	farPieces  = 8      // of an edge, for what goes from edge to edge
 	nearest    = 0.5e-3 // m, from an edge: no point of a piston is taken to be nearer
 )
@@ -65,7 +64,7 @@ func (b *Baffle) Diffraction(at Point, radius float64, ear Point, soundSpeed flo
 	d.patch = patch * radius
 	for i := range b.edges {
 		e := &b.edges[i]
-		l := newListening(e, ear, b.index)
+		l := newListening(e, at, radius, ear, b.index)
 		for _, p := range points {
 			along, in := e.local(Point{at[0] + radius*p[0], at[1] + radius*p[1], 0})
 			d.illuminate(l, along, max(nearest, in), 1/float64(len(points)))
@@ -87,7 +86,7 @@ func (b *Baffle) layOut(d *Diffraction, at, ear Point) {
 		out, in = max(out, corner.Distance(at)), max(in, corner.Distance(ear))
 	}
 	d.first = -d.radius / d.speed
-	span := (out+b.across+in+pieceSize-d.reach)/d.speed - d.first
+	span := (out+b.across+in-d.reach)/d.speed - d.first
 	d.step = max(finestStep, span/mostTaps)
 	d.taps = make([]float64, int(span/d.step)+3)
 }
@@ -118,14 +117,27 @@ type listening struct {
 	blend  float64 // how far from the first angle to the second
 }
 
-// newListening cuts up e for an ear.
-func newListening(e *edge, ear Point, index float64) *listening {
-	n := min(mostPieces, int(math.Ceil(e.length/pieceSize)))
-	l := &listening{index: index, nodes: make([]float64, n+1), bend: make([]float64, n+1), to: make([]float64, n+1)}
+// newListening cuts up e for a driver at at and an ear. The pieces are the shorter the nearer they are to the
+// driver and to where the path over the edge is shortest: there most of the strength is in little of the edge
+// where the ear is near the limit of its shadow.
+func newListening(e *edge, at Point, radius float64, ear Point, index float64) *listening {
+	source, near := e.local(at)
 	along, in := e.local(ear)
 	off := max(nearest, math.Hypot(in, ear[2]))
+	middle := max(0, min(e.length, (source*off+along*near)/(near+off)))
+	scale := max(nearest, near-radius, near/2)
+	before, after := math.Asinh(middle/scale), math.Asinh((e.length-middle)/scale)
+	m, n := int(math.Ceil(2*before/pieceSize)), int(math.Ceil(2*after/pieceSize))
+	l := &listening{index: index, nodes: make([]float64, m+n+1), bend: make([]float64, m+n+1), to: make([]float64, m+n+1)}
 	for i := range l.nodes {
-		z := e.length * float64(i) / float64(n)
+		z := middle
+		if i < m {
+			t := float64(m-i) / float64(m)
+			z -= scale * math.Sinh(before*t*t)
+		} else if i > m {
+			t := float64(i-m) / float64(n)
+			z += scale * math.Sinh(after*t*t)
+		}
 		l.nodes[i], l.bend[i], l.to[i] = z, math.Asinh((z-along)/off), math.Hypot(z-along, off)
 	}
 	// The ear's angle around the edge from the front, through the air. Behind the baffle the wave goes along the
