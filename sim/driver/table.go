@@ -55,8 +55,8 @@ func (e *TableError) Error() string {
 // The text may be UTF-8, UTF-16 or Latin-1, with a byte-order mark or without, and its lines end in LF, CR LF or CR.
 // Columns are parted by semicolons, else by commas, else by spaces and tabs; what follows the third is not looked at.
 // Numbers have a decimal point, or a decimal comma in all rows if commas do not part columns; where a comma could be
-// either, or part thousands, the table is refused. Lines that begin with a letter or with one of * # ; " ' ! % / [ are
-// comments, as is any line that is no row of numbers before the first row.
+// either, or part thousands, the table is refused. Lines that begin with a letter or with one of * # ; " ' ! % / [, or
+// hold neither letters nor digits, are comments, as is any line that is no row of numbers before the first row.
 //
 // Rows are put in rising order. Those that repeat a frequency are averaged, and a row at 0 Hz is passed over, with a
 // note. At least three rows must be left.
@@ -108,7 +108,7 @@ func (p *tableParser) file(src []byte) error {
 	}
 	for no, line := range lines(text) {
 		p.line = no
-		if line == "" || strings.ContainsRune("*#;\"'!%/[", rune(line[0])) {
+		if line == "" || strings.ContainsRune("*#;\"'!%/[", rune(line[0])) || !strings.ContainsFunc(line, isLetterOrDigit) {
 			continue
 		}
 		fields := p.split(line)
@@ -129,6 +129,8 @@ func (p *tableParser) file(src []byte) error {
 	}
 	return nil
 }
+
+func isLetterOrDigit(r rune) bool { return unicode.IsLetter(r) || unicode.IsDigit(r) }
 
 // split parts a line into fields.
 func (p *tableParser) split(line string) []string {

@@ -4,6 +4,8 @@ import (
 	"fmt"
 	"math"
 	"math/cmplx"
+	"os"
+	"path/filepath"
 	"slices"
 	"strings"
 	"testing"
@@ -216,25 +218,36 @@ func TestTablesAllocateNothing(t *testing.T) {
 	}
 }
 
-// FuzzTable: whatever the file holds, it is refused with an error, or the load and radiator made of it are
+// FuzzTable: whatever the file holds, it is refused with an error, or the load and radiators made of it are
 // finite everywhere.
 func FuzzTable(f *testing.F) {
+	files, err := filepath.Glob("testdata/tables/*.*")
+	if err != nil || len(files) < 30 {
+		f.Fatalf("%d seeds, error %v", len(files), err)
+	}
+	for _, name := range files {
+		seed, err := os.ReadFile(name)
+		if err != nil {
+			f.Fatal(err)
+		}
+		f.Add(seed)
+	}
 	for _, seed := range []string{
-		"20 8 0\n30 9 10\n", "* c\r\n20,8,0\r\n", "20;8;0\n", "\uFEFF20\t8\t0", "20,5 8,1 0\n", "1e9 1e-300 1e7\n",
-		"0 0 0\n", "20 500 0\n20.0001 -500 0\n21 500 0\n", "nan\n", "\xff\xfe", "20 8\n30 9\n", "5e-324 1 1\n1 1 1\n",
+		"1e9 1e-300 1e7\n1 2 3\n4 5 6", "20 500 0\n20.0001 -500 0\n21 500 0\n", "nan\n", "\xff\xfe", "\xfe\xff\xd8\x00", "5e-324 1 1\n1 1 1\n2 2 2",
+		",\n;\n,,\n1,,\n", "1,000,000\n1;1,1\n", "2\x000\x00 \x001\x00", "1e-300 0\n2e-300 1\n1e9 2",
 	} {
 		f.Add([]byte(seed))
 	}
 	f.Fuzz(func(t *testing.T, src []byte) {
 		table, err := ReadTable("f", strings.NewReader(string(src)))
 		if err != nil {
-			if te, ok := err.(*TableError); !ok || table != nil || te.Line > len(src)+1 {
+			if te, ok := err.(*TableError); !ok || table != nil || te.Line > len(src)+1 || te.Mend == "" {
 				t.Fatalf("error %T %v with table %v", err, err, table)
 			}
 			return
 		}
-		if len(table.Rows) == 0 {
-			t.Fatal("a table without rows")
+		if len(table.Rows) < leastRows {
+			t.Fatalf("a table of %d rows", len(table.Rows))
 		}
 		for i, r := range table.Rows[1:] {
 			if !(r.Frequency > table.Rows[i].Frequency) {
@@ -249,7 +262,14 @@ func FuzzTable(f *testing.F) {
 				}
 			}
 		}
+		var radiators []Radiator
 		if r, err := NewResponseTable(table); err == nil {
+			radiators = append(radiators, r)
+		}
+		if r, err := NewMinimumResponse(table); err == nil {
+			radiators = append(radiators, r)
+		}
+		for _, r := range radiators {
 			for _, f := range freqs {
 				if v := r.Pressure(f); cmplx.IsNaN(v) || cmplx.IsInf(v) {
 					t.Fatalf("pressure is %g at %g Hz", v, f)
