@@ -12,6 +12,9 @@ import (
 const (
 	maxRecordingBytes = 4 << 20
 	maxWays           = 63
+	minBand           = 1 // Hz
+	maxFitDB          = 0.1
+	maxFitDeg         = 1.0
 )
 
 // ReadRecording reads the description that lies beside a recording.
@@ -64,13 +67,17 @@ func (rec *Recording) plausible() error {
 	if rec.LengthSamples < 1 || rec.LengthSamples > math.MaxInt32 {
 		return fmt.Errorf("length_samples is %d; give 1 to %d", rec.LengthSamples, math.MaxInt32)
 	}
-	for _, x := range [...]struct {
-		name string
-		v    float64
-	}{{"volts_per_full_scale", rec.VoltsPerFullScale}, {"fit_error_db", rec.FitDB + 1}, {"fit_error_deg", rec.FitDeg + 1}} {
-		if !(x.v > 0) || math.IsInf(x.v, 1) {
-			return fmt.Errorf("%s is out of range; render the design again", x.name)
+	if v := rec.VoltsPerFullScale; !(v > 0) || math.IsInf(v, 1) {
+		return fmt.Errorf("volts_per_full_scale is %g; give a positive number", v)
+	}
+	if rec.Signal == Sweep || rec.Signal == Noise {
+		if b := rec.BandHz; !(b[0] >= minBand && b[1] > b[0] && b[1] <= float64(rec.Rate)) {
+			return fmt.Errorf("band_hz is %g to %g Hz; give a band from %d Hz or higher to below the rate", b[0], b[1], minBand)
 		}
+	}
+	// A recording may not widen the limits that it is held to.
+	if !(rec.FitDB >= 0 && rec.FitDB <= maxFitDB && rec.FitDeg >= 0 && rec.FitDeg <= maxFitDeg) {
+		return fmt.Errorf("fit_error_db is %g and fit_error_deg %g; above %g dB or %g° a recording proves nothing: render the design again", rec.FitDB, rec.FitDeg, maxFitDB, maxFitDeg)
 	}
 	return nil
 }

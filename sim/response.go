@@ -15,7 +15,7 @@ type Response struct {
 	Freqs    []float64     // Hz
 	Ways     []WayResponse // in the order of the design; one, called out, for a tone network
 	Sum      []complex128  // Pa rms at the ear, for the drive's level; nil unless every way has an acoustic output
-	SumDelay []float64     // s, group delay of Sum, the flight over the listening distance taken out; nil with Sum
+	SumDelay []float64     // s, group delay of Sum, the flight over the listening distance taken out; NaN at a null of Sum; nil with Sum
 	Amp      []complex128  // voltage at the amplifier's terminals over open-circuit voltage
 	Zin      []complex128  // Ω, what the amplifier sees after its own source resistance
 	Warnings []string      // what these answers invent, a sentence each

@@ -116,7 +116,10 @@ func (q *solved) hear(r *Response, airs []air, lo, hi int) {
 			below += q.source[i][down] * airs[i].factor(q.grid[down])
 			above += q.source[i][up] * airs[i].factor(q.grid[up])
 		}
-		r.SumDelay[k] = -cmplx.Phase(above*cmplx.Conj(below)) / (2 * math.Pi * (q.grid[up] - q.grid[down]))
+		turn := cmplx.Phase(above * cmplx.Conj(below))
+		if r.SumDelay[k] = -turn / (2 * math.Pi * (q.grid[up] - q.grid[down])); r.Sum[k] == 0 || math.Abs(turn) > math.Pi/2 {
+			r.SumDelay[k] = math.NaN() // at a null the phase jumps, and has no slope
+		}
 	}
 }
 

@@ -149,6 +149,22 @@ func TestSumSummary(t *testing.T) {
 	}
 }
 
+// At an exact null the sum has no phase, and so no group delay.
+func TestNoDelayAtANull(t *testing.T) {
+	const fc = 2000
+	s, err := New(twoWay(linkwitzRiley4, fc, 8, true), nil)
+	if err != nil {
+		t.Fatal(err)
+	}
+	r, err := s.Predict([]float64{fc, fc * 1.1})
+	if err != nil {
+		t.Fatal(err)
+	}
+	if !math.IsNaN(r.SumDelay[0]) || math.IsNaN(r.SumDelay[1]) {
+		t.Errorf("delays %g, want none at the null and one beside it", r.SumDelay)
+	}
+}
+
 // A null at the crossover is a dip, not an end of the range: a Linkwitz-Riley pair with one way reversed cancels at
 // the crossover and is flat far from it (Linkwitz 1976).
 func TestDipIsNoEnd(t *testing.T) {

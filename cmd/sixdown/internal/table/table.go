@@ -19,10 +19,17 @@ type Column struct {
 type Table struct {
 	columns []Column
 	rows    [][]string
+	widths  []int // of each column; what Row widens
 }
 
 // New makes an empty table with these columns, of which there must be at least one. It keeps the slice.
-func New(columns ...Column) *Table { return &Table{columns: columns} }
+func New(columns ...Column) *Table {
+	t := &Table{columns: columns, widths: make([]int, len(columns))}
+	for i, c := range columns {
+		t.widths[i] = max(utf8.RuneCountInString(c.Name), utf8.RuneCountInString(c.Unit))
+	}
+	return t
+}
 
 // Row adds a row, a cell for each column. It keeps the slice; a row of another length is a slip of the
 // programmer's, and panics.
@@ -31,6 +38,9 @@ func (t *Table) Row(cells ...string) {
 		panic("table: a row has another number of cells than there are columns")
 	}
 	t.rows = append(t.rows, cells)
+	for i, c := range cells {
+		t.widths[i] = max(t.widths[i], utf8.RuneCountInString(c))
+	}
 }
 
 // The gaps between columns and between groups.
@@ -87,13 +97,7 @@ func (t *Table) blocks(width int) [][]span {
 	return blocks
 }
 
-func (t *Table) columnWidth(i int) int {
-	w := max(utf8.RuneCountInString(t.columns[i].Name), utf8.RuneCountInString(t.columns[i].Unit))
-	for _, row := range t.rows {
-		w = max(w, utf8.RuneCountInString(row[i]))
-	}
-	return w
-}
+func (t *Table) columnWidth(i int) int { return t.widths[i] }
 
 // spanWidth is the width of a group: of its columns, or of its title if that is wider.
 func (t *Table) spanWidth(s span) int {
