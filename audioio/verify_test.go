@@ -553,6 +553,27 @@ func FuzzReadRecording(f *testing.F) {
 	})
 }
 
+// A description may not say that its recording is worse than any is: the limits would be worth nothing.
+func TestRecordingKeepsItsLimits(t *testing.T) {
+	for _, c := range []struct{ change, want string }{
+		{`"band_hz":[1e-300,20000]`, "band_hz is"},
+		{`"band_hz":[20,10]`, "band_hz is"},
+		{`"fit_error_db":1e300`, "fit_error_db is"},
+		{`"fit_error_deg":2`, "fit_error_db is"},
+		{`"volts_per_full_scale":0`, "volts_per_full_scale is"},
+		{`"length_samples":-1`, "length_samples is"},
+		{`"rate":1`, "rate is"},
+		{`"ways":[]`, "it names 0 ways"},
+	} {
+		// The last of two keys counts.
+		src := `{"signal":"sweep","ways":["low"],"rate":48000,"volts_per_full_scale":4,"length_samples":480000,"band_hz":[20,20000],` + c.change + `}`
+		rec, err := audioio.ReadRecording(strings.NewReader(src))
+		if rec != nil || err == nil || !strings.Contains(err.Error(), c.want) {
+			t.Errorf("%s: %v, want %q", c.change, err, c.want)
+		}
+	}
+}
+
 // A mix is the mean of a file's channels, or one of them.
 func TestMix(t *testing.T) {
 	var file tape

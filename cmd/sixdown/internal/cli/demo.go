@@ -97,8 +97,8 @@ func (d *demonstration) run(ctx context.Context) error {
 		func() error { return d.textbook(design) },
 		func() error { return d.predict(design, sys) },
 		func() error { return d.render(ctx, design, sys) },
-		func() error { return d.verify(ctx, sys) },
-		func() error { return d.mistake(ctx, design) },
+		func() error { return d.verify(ctx, design, sys) },
+		func() error { return d.mistake(ctx) },
 	} {
 		if err := step(); err != nil {
 			return err
@@ -108,22 +108,27 @@ func (d *demonstration) run(ctx context.Context) error {
 	return d.err
 }
 
-// prepare makes the folder and writes the design, unless there is one that the user has changed.
+// prepare makes the folder and writes the design.
 func (d *demonstration) prepare() error {
 	if err := os.MkdirAll(d.dir, 0o777); err != nil {
 		return machineFault(d.dir, err, "name a folder that can be made, with --out")
 	}
-	path := d.path(demo.HarbourFile)
+	return d.writeDesign(demo.HarbourFile, demo.Harbour)
+}
+
+// writeDesign writes a design file, unless there is one that the user has changed.
+func (d *demonstration) writeDesign(name, text string) error {
+	path := d.path(name)
 	old, err := os.ReadFile(path)
 	switch {
-	case err == nil && !bytes.Equal(old, []byte(demo.Harbour)):
+	case err == nil && !bytes.Equal(old, []byte(text)):
 		return usageFault(path, "it has been changed since demo wrote it", "give another folder with --out, or delete this file to have the original back")
 	case err == nil:
 		return nil
 	case !errors.Is(err, fs.ErrNotExist):
 		return machineFault(path, err, "give another folder with --out")
 	}
-	return writeWhole(path, demo.Harbour)
+	return writeWhole(path, text)
 }
 
 func (d *demonstration) load(name string) (*xover.Design, *sim.System, error) {
@@ -151,7 +156,7 @@ func (d *demonstration) textbook(design *xover.Design) error {
 	if err != nil {
 		return err
 	}
-	if err := writeWhole(d.path(textbookFile), text); err != nil {
+	if err := d.writeDesign(textbookFile, text); err != nil {
 		return err
 	}
 	book, sys, err := d.load(textbookFile)
@@ -224,7 +229,7 @@ func (d *demonstration) render(ctx context.Context, design *xover.Design, sys *s
 	return nil
 }
 
-func (d *demonstration) verify(ctx context.Context, sys *sim.System) error {
+func (d *demonstration) verify(ctx context.Context, design *xover.Design, sys *sim.System) error {
 	d.begin("Verify: measure the file, and hold it against the prediction",
 		fmt.Sprintf("verify %s --from %s", d.path(demo.HarbourFile), d.path(demoTones)))
 	v, err := verifyFrom(ctx, d.s, sys, d.path(demoTones), audioio.Limits{})
@@ -232,10 +237,10 @@ func (d *demonstration) verify(ctx context.Context, sys *sim.System) error {
 		return err
 	}
 	path := d.path("verify.txt")
-	if err := writeWhole(path, verifyText(v)); err != nil {
+	if err := writeWhole(path, verifyText(design, v)); err != nil {
 		return err
 	}
-	d.say("%s\n   Tone by tone in %s.\n", indent(verdict(v)), path)
+	d.say("%s\n   Tone by tone in %s.\n", indent(verdict(design, v)), path)
 	if !v.Pass {
 		return errCheckFailed
 	}
@@ -243,12 +248,12 @@ func (d *demonstration) verify(ctx context.Context, sys *sim.System) error {
 }
 
 // mistake verifies the same file against a design in which one part is off, as if it had been built wrong.
-func (d *demonstration) mistake(ctx context.Context, design *xover.Design) error {
+func (d *demonstration) mistake(ctx context.Context) error {
 	path := d.path(demo.HarbourFile)
 	const change = "C3=5.1uF"
 	d.begin("And if a wrong part were in it?", fmt.Sprintf("verify %s --from %s --set %s", path, d.path(demoTones), change))
 	o := designOptions{path: path, set: []string{change}}
-	_, sys, err := o.loadSystem(d.s)
+	design, sys, err := o.loadSystem(d.s)
 	if err != nil {
 		return err
 	}
@@ -256,7 +261,7 @@ func (d *demonstration) mistake(ctx context.Context, design *xover.Design) error
 	if err != nil {
 		return err
 	}
-	d.say("%s", indent(verdict(v)))
+	d.say("%s", indent(verdict(design, v)))
 	if v.Pass {
 		return errCheckFailed
 	}

@@ -17,9 +17,10 @@ import (
 
 // A player sends one kind of signal through the network.
 type player struct {
-	path   string // of the file that is read; "": none
-	close  func()
-	render func(ctx context.Context, w io.WriteSeeker, set audioio.Settings) (*audioio.Recording, error)
+	path     string // of the file that is read; "": none
+	close    func()
+	warnings func() []string // about the file, complete when it has been read; nil: none
+	render   func(ctx context.Context, w io.WriteSeeker, set audioio.Settings) (*audioio.Recording, error)
 }
 
 // The band in which a sweep or noise can be measured, in Hz.
@@ -77,23 +78,35 @@ func (o *signalOptions) noise() (signal.Source, error) {
 }
 
 // filePlayer plays a WAV file, at its own rate; a sample of 1 is the peak of a sine at the drive level.
-func (o *signalOptions) filePlayer(sys *sim.System, in audioio.Input) (*player, error) {
+func (o *signalOptions) filePlayer(sys *sim.System, in audioio.Input) (p *player, err error) {
 	f, err := os.Open(o.signal)
 	if err != nil {
 		return nil, usageFault("--signal", fmt.Sprintf("%q is no kind of signal, and no file that can be read", o.signal), "give tones, sweep, noise or the name of a WAV file")
 	}
+	defer func() {
+		if err != nil {
+			f.Close()
+		}
+	}()
+	if info, e := f.Stat(); e == nil && info.IsDir() {
+		return nil, usageFault("--signal", fmt.Sprintf("%q is a folder", o.signal), "name a WAV file")
+	}
 	r, err := wavfile.NewReader(f)
 	if err != nil {
-		f.Close()
 		return nil, fmt.Errorf("%s: %w", o.signal, err)
 	}
 	mix, err := audioio.NewMix(r, o.channel)
 	if err != nil {
-		f.Close()
 		return nil, err
 	}
 	in.Kind, in.Source, in.Rate, in.BandHz = audioio.Music, mix, r.Format().SampleRate, [2]float64{}
-	p := broadband(sys, in)
-	p.path, p.close = o.signal, func() { f.Close() }
-	return p, nil
+	return &player{path: o.signal, close: func() { f.Close() }, render: func(ctx context.Context, w io.WriteSeeker, set audioio.Settings) (*audioio.Recording, error) {
+		// A file of floating point may go above full scale; what comes out must not be clipped for it.
+		peak, err := mix.Peak(ctx)
+		if err != nil {
+			return nil, fmt.Errorf("%s: %w", o.signal, err)
+		}
+		in.Peak = peak
+		return audioio.RenderBroadband(ctx, sys, in, w, set)
+	}, warnings: r.Warnings}, nil
 }

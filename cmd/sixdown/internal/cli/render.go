@@ -2,7 +2,9 @@ package cli
 
 import (
 	"context"
+	"errors"
 	"fmt"
+	"io/fs"
 	"math/rand/v2"
 	"os"
 	"path/filepath"
@@ -136,7 +138,7 @@ func runRender(ctx context.Context, s *streams, o *renderOptions) error {
 }
 
 // renderTo renders into a folder. Both files are written beside and renamed, the sound first.
-func renderTo(ctx context.Context, s *streams, d *xover.Design, sys *sim.System, o *signalOptions, dir string) (*audioio.Recording, error) {
+func renderTo(ctx context.Context, s *streams, d *xover.Design, sys *sim.System, o *signalOptions, dir string) (rec *audioio.Recording, err error) {
 	if err := o.check(); err != nil {
 		return nil, err
 	}
@@ -154,18 +156,30 @@ func renderTo(ctx context.Context, s *streams, d *xover.Design, sys *sim.System,
 		return nil, err
 	}
 	defer play.close()
+	_, absent := os.Stat(dir)
 	if err := os.MkdirAll(dir, 0o777); err != nil {
 		return nil, machineFault(dir, err, "name a folder that can be made")
 	}
+	defer func() {
+		if err != nil && absent != nil {
+			os.Remove(dir) // which leaves it if there is anything in it
+		}
+	}()
 	soundPath, planPath := filepath.Join(dir, soundFile), filepath.Join(dir, scheduleFile)
 	sound, err := createOutput(soundPath, play.path)
 	if err != nil {
 		return nil, err
 	}
 	defer sound.Abort()
-	rec, err := play.render(ctx, sound, set)
+	rec, err = play.render(ctx, sound, set)
 	if err != nil {
 		return nil, outputFault(soundPath, err)
+	}
+	if play.warnings != nil {
+		bar.done()
+		for _, w := range play.warnings() {
+			s.warn(play.path + ": " + w)
+		}
 	}
 	plan, err := createOutput(planPath)
 	if err != nil {
@@ -173,6 +187,10 @@ func renderTo(ctx context.Context, s *streams, d *xover.Design, sys *sim.System,
 	}
 	defer plan.Abort()
 	if err := rec.Write(plan); err != nil {
+		return nil, outputFault(planPath, err)
+	}
+	// Should the second name fail to be given, an old schedule must not lie beside the new sound.
+	if err := os.Remove(planPath); err != nil && !errors.Is(err, fs.ErrNotExist) {
 		return nil, outputFault(planPath, err)
 	}
 	if err := sound.Commit(); err != nil {

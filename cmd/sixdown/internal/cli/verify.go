@@ -14,6 +14,7 @@ import (
 	"sixdown/audioio"
 	"sixdown/cmd/sixdown/internal/table"
 	"sixdown/sim"
+	"sixdown/xover"
 	"sixdown/xover/quantity"
 )
 
@@ -46,6 +47,16 @@ it is worst and which single part, at another value, would explain it.`,
 		ValidArgsFunction: designFiles,
 		RunE: func(cmd *cobra.Command, args []string) error {
 			o.path = args[0]
+			if cmd.Flags().Changed("from") {
+				if o.from == "" {
+					return usageFault("--from", "it is empty", "name the folder that render wrote, or leave it out to render anew")
+				}
+				for _, name := range []string{"rate", "bits"} {
+					if cmd.Flags().Changed(name) {
+						return usageFault("--"+name, "it has no meaning beside --from", "leave it out: the file has its own")
+					}
+				}
+			}
 			if err := cmp.Or(checkLimit(cmd, "limit-gain", o.limitDB), checkLimit(cmd, "limit-phase", o.limitDeg)); err != nil {
 				return err
 			}
@@ -100,7 +111,7 @@ func runVerify(ctx context.Context, s *streams, o *verifyOptions) error {
 	case o.csv:
 		err = s.answerCSV(verifyRecords(v))
 	default:
-		err = s.answer(verifyText(v))
+		err = s.answer(verifyText(d, v))
 	}
 	if err == nil && !v.Pass {
 		err = errCheckFailed
@@ -160,6 +171,7 @@ type suspectAnswer struct {
 	Estimate  number `json:"estimate"`
 	Sigma     number `json:"sigma"`
 	Explained number `json:"explained"`
+	Passes    bool   `json:"passes"` // with it, the recording would pass
 }
 
 type verificationAnswer struct {
@@ -198,7 +210,7 @@ func verifyAnswer(v *audioio.Verification) verificationAnswer {
 		a.WorstPhaseDeg, a.WorstPhaseAt = &e, &worstAnswer{p.Way, number(p.Hz)}
 	}
 	for _, x := range v.Suspects {
-		a.Suspects = append(a.Suspects, suspectAnswer{x.Part, "value", number(x.Nominal), number(x.Estimate), number(x.Sigma), number(x.Explained)})
+		a.Suspects = append(a.Suspects, suspectAnswer{x.Part, string(x.Fault), number(x.Nominal), number(x.Estimate), number(x.Sigma), number(x.Explained), x.Passes})
 	}
 	return a
 }
@@ -217,7 +229,7 @@ func verifyRecords(v *audioio.Verification) [][]string {
 const longTable = 40
 
 // verifyText is the answer for people: a table a way, and the verdict.
-func verifyText(v *audioio.Verification) string {
+func verifyText(d *xover.Design, v *audioio.Verification) string {
 	var b strings.Builder
 	for first := 0; first < len(v.Points); {
 		last := first
@@ -228,7 +240,7 @@ func verifyText(v *audioio.Verification) string {
 		b.WriteByte('\n')
 		first = last
 	}
-	b.WriteString(verdict(v))
+	b.WriteString(verdict(d, v))
 	return b.String()
 }
 
@@ -254,7 +266,7 @@ func pointsTable(points []audioio.Point) *table.Table {
 }
 
 // verdict is the summary of a verification.
-func verdict(v *audioio.Verification) string {
+func verdict(d *xover.Design, v *audioio.Verification) string {
 	var b strings.Builder
 	counted := 0
 	for i := range v.Points {
@@ -279,11 +291,43 @@ func verdict(v *audioio.Verification) string {
 		return b.String()
 	}
 	b.WriteString("FAILS: the recording is not of this design\n")
-	for _, x := range v.Suspects {
-		fmt.Fprintf(&b, "  suspect: %s at %s its value would explain %.1f %% of it\n", x.Part, times(x.Estimate/x.Nominal), 100*x.Explained)
+	b.WriteString(suspectText(d, v.Suspects))
+	return b.String()
+}
+
+// suspectText says what would explain a recording that fails, or that no one thing does.
+func suspectText(d *xover.Design, suspects []audioio.Suspect) string {
+	if len(suspects) == 0 {
+		return "  no single part explains it: look for several wrong parts, a wrong connection, or drivers other than the design's\n"
+	}
+	var b strings.Builder
+	for _, x := range suspects {
+		if !x.Passes {
+			fmt.Fprintf(&b, "  no single part explains it all; nearest, for %.0f %%:\n", 100*x.Explained)
+		}
+		fmt.Fprintf(&b, "  suspect: %s\n", accusation(d, x))
 	}
 	return b.String()
 }
 
-// times writes a ratio of values.
-func times(ratio float64) string { return fmt.Sprintf("%.4g times", ratio) }
+// accusation is what would explain the recording.
+func accusation(d *xover.Design, x audioio.Suspect) string {
+	unit := quantity.Ohm
+	if p := d.Part(x.Part); p != nil && x.Fault == audioio.WrongValue {
+		unit = p.Kind.Unit()
+	}
+	fits := func(digits int) string {
+		return fmt.Sprintf("%s fits, the design says %s", quantity.Round(x.Estimate, unit, digits), quantity.Round(x.Nominal, unit, digits))
+	}
+	switch x.Fault {
+	case audioio.WrongLoss:
+		return fmt.Sprintf("%s: a series resistance of %s", x.Part, fits(3))
+	case audioio.WrongTurn:
+		return fmt.Sprintf("%s: %.4f of its track before the wiper fits, the design says %.4f", x.Part, x.Estimate, x.Nominal)
+	case audioio.WrongPolar:
+		return x.Part + " is connected the other way round"
+	case audioio.SwappedSides:
+		return "the channels of " + x.Part + " are exchanged"
+	}
+	return fmt.Sprintf("%s: %s", x.Part, fits(4))
+}
