@@ -5,6 +5,7 @@ import (
 	"fmt"
 	"io"
 	"slices"
+	"strings"
 
 	"sixdown/sim/circuit"
 	"sixdown/sim/field"
@@ -77,9 +78,22 @@ func New(d *xover.Design, open func(name string) (io.ReadCloser, error)) (*Syste
 	}
 	s.net, s.branches = f.net, f.branches
 	if s.circuit, err = circuit.Compile(&s.net, s.outs); err != nil {
-		return nil, err
+		return nil, s.blameControl(d, err)
 	}
 	return s, nil
+}
+
+// blameControl adds to an error of the circuit which control has turned a potentiometer into a short, if one has: the
+// circuit knows only the part.
+func (s *System) blameControl(d *xover.Design, err error) error {
+	for _, c := range d.Controls {
+		for _, b := range s.branches[c.Part] {
+			if br := &s.net.Branches[b]; br.Value == 0 && strings.Contains(err.Error(), br.Name+":") {
+				return fmt.Errorf("control %q at %g: %w; turn it away from its end, or put a resistor in series", c.Name, c.At, err)
+			}
+		}
+	}
+	return err
 }
 
 func orDefault(v, def float64) float64 {

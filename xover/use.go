@@ -121,6 +121,10 @@ func (p *parser) checkCouplings(networks [][]Step, used map[string]Position) {
 	}
 }
 
+// leastPassive is what must be left of a coil's inductance when the coils coupled to it are shorted, as a fraction: below
+// it the arithmetic of a simulation cannot tell the network from one that makes energy.
+const leastPassive = 1e-12
+
 // passive tells whether the matrix of coupling coefficients, with ones on its diagonal, is positive
 // definite, which is what makes the stored energy ½ iᵀ L i positive for all currents. It tries the Cholesky
 // factorisation (G. H. Golub and C. F. Van Loan, Matrix Computations, 4th ed., 2013, section 4.2).
@@ -144,7 +148,7 @@ func passive(n int, index map[string]int, couplings []Step) bool {
 				m[i][j] = sum / m[j][j]
 				continue
 			}
-			if !(sum > 0) {
+			if !(sum > leastPassive) {
 				return false
 			}
 			m[j][j] = math.Sqrt(sum)

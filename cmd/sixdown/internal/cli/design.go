@@ -180,5 +180,8 @@ func reason(err error) string {
 	if e, ok := errors.AsType[*fs.PathError](err); ok {
 		return e.Err.Error()
 	}
+	if e, ok := errors.AsType[*os.LinkError](err); ok { // a rename: on Windows, over a file that a program holds open
+		return "it cannot be replaced: " + e.Err.Error()
+	}
 	return err.Error()
 }

@@ -25,7 +25,7 @@ func createOutput(path string, inputs ...string) (*atomicfile.File, error) {
 func outputFault(path string, err error) error {
 	var disk interface{ Timeout() bool } // what the operating system's errors have
 	if errors.As(err, &disk) {
-		return machineFault(path, err, "make room on the disk, or give another folder")
+		return machineFault(path, err, "make room on the disk, close the program that has it open, or give another folder")
 	}
 	return err
 }
