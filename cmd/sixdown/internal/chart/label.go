@@ -153,7 +153,11 @@ func (l *labels) crossings(box rect) int {
 // passes reports whether a polyline runs through a box.
 func passes(points []point, box rect) bool {
 	for i := 1; i < len(points); i++ {
-		if _, _, ok := clipSegment(points[i-1], points[i], box); ok {
+		a, b := points[i-1], points[i]
+		if max(a.x, b.x) < box.x || min(a.x, b.x) > box.right() {
+			continue // most are, and this is soon seen
+		}
+		if _, _, ok := clipSegment(a, b, box); ok {
 			return true
 		}
 	}
@@ -165,8 +169,10 @@ func span(parts [][]point, from, to float64) (top, bottom float64, ok bool) {
 	top, bottom = math.Inf(1), math.Inf(-1)
 	for _, p := range parts {
 		for i := 1; i < len(p); i++ {
-			a, b, in := clipSegment(p[i-1], p[i], rect{from, -1e6, to - from, 2e6})
-			if in {
+			if max(p[i-1].x, p[i].x) < from || min(p[i-1].x, p[i].x) > to {
+				continue
+			}
+			if a, b, in := clipSegment(p[i-1], p[i], rect{from, -1e6, to - from, 2e6}); in {
 				top, bottom = min(top, a.y, b.y), max(bottom, a.y, b.y)
 			}
 		}

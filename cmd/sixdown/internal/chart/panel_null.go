@@ -15,7 +15,7 @@ const nullRange = 60
 // at the crossing, the better the two are in step there. It needs a sum and a crossing.
 func Null(s *Subject) Panel {
 	f := s.Response.Freqs
-	p := &plotPanel{high: 240, half: true, plot: plot{title: s.named("Reversed"), note: "the hole shows how well the ways are in step", x: frequencyAxis(ends([]*Subject{s}))}}
+	p := &plotPanel{high: 196, half: true, plot: plot{title: s.named("Reversed"), note: "the hole shows how well the ways are in step", x: frequencyAxis(ends([]*Subject{s}))}}
 	normal := sumLevels(s)
 	bottom := topOf(normal) - 20
 	for k := range s.Crossing {

@@ -23,7 +23,7 @@ type phasorPanel struct {
 	crossing Crossing
 }
 
-func (p *phasorPanel) height() float64 { return 240 }
+func (p *phasorPanel) height() float64 { return 196 }
 func (p *phasorPanel) narrow() bool    { return true }
 
 func (p *phasorPanel) draw(s *scene, room rect) {
@@ -50,7 +50,7 @@ func (p *phasorPanel) draw(s *scene, room rect) {
 		left, right = min(left, real(v)), max(right, real(v))
 		low, high = min(low, imag(v)), max(high, imag(v))
 	}
-	const padX, padY = 36, 44
+	const padX, padY = 36, 36
 	scale := math.Inf(1)
 	if right > left {
 		scale = min(scale, (in.w-2*padX)/(right-left))

@@ -44,7 +44,7 @@ func Polar(m *PolarMap) (Panel, error) {
 
 type polarPanel struct{ *PolarMap }
 
-func (p *polarPanel) height() float64 { return 262 }
+func (p *polarPanel) height() float64 { return 196 }
 func (p *polarPanel) narrow() bool    { return false }
 
 func (p *polarPanel) draw(s *scene, room rect) {
@@ -134,7 +134,7 @@ func (p *polarCurves) half() bool {
 
 func (p *polarCurves) height() float64 {
 	if p.half() {
-		return 222
+		return 212
 	}
 	return 362
 }

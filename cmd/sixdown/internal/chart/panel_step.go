@@ -4,7 +4,7 @@ import "math"
 
 // StepResponse draws the answer to a step. Each subject must have its Step.
 func StepResponse(subjects []*Subject) Panel {
-	p := &plotPanel{high: 240, half: true, plot: plot{title: "Step", note: "relative to the peak"}}
+	p := &plotPanel{high: 178, half: true, plot: plot{title: "Step", note: "relative to the peak"}}
 	top, bottom := math.Inf(-1), math.Inf(1)
 	for k, s := range subjects {
 		ms := make([]float64, len(s.Step.Seconds))

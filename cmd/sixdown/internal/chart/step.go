@@ -16,7 +16,7 @@ const (
 	stepPeriod = 0.5     // s
 	stepSize   = 1 << 16 // samples in a period: one each 7.6 µs
 	stepBand   = 20e3    // Hz, where the Gaussian that rounds the edge is 3.01 dB down
-	stepTop    = 56e3    // Hz, where it is 24 dB down and the harmonics end
+	stepTop    = 64e3    // Hz, where it is 31 dB down and the harmonics end
 	stepFrom   = -0.5e-3 // s
 	stepTo     = 5e-3    // s
 )
