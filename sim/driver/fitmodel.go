@@ -104,10 +104,11 @@ func (m *model) impedance(v []float64, w float64, d []complex128) complex128 {
 
 // lossPair is a resistance v[0] ∥ an inductance v[1].
 func lossPair(v []float64, w float64, d []complex128) complex128 {
-	r, x := complex(v[0], 0), complex(0, w*v[1])
-	z := r * x / (r + x)
-	d[0] = z * x / (r + x)
-	d[1] = z * r / (r + x)
+	y := w * v[1] / v[0]
+	part := inverse(y)           // R/(R + jwL)
+	rest := complex(0, y) * part // jwL/(R + jwL)
+	z := complex(v[0], 0) * rest
+	d[0], d[1] = z*rest, z*part
 	return z
 }
 
@@ -118,14 +119,21 @@ func detuning(w, w0 float64) (x, dx complex128) {
 
 // tank is a resonance at v[0], R v[1], Q v[2].
 func tank(v []float64, w float64, d []complex128) complex128 {
-	x, dx := detuning(w, v[0])
-	q := complex(v[2], 0)
-	z := complex(v[1], 0) / (1 + q*x)
-	t := z / (1 + q*x)
-	d[0] = -t * q * dx
+	up, down := w/v[0], v[0]/w
+	y := v[2] * (up - down)
+	part := inverse(y)
+	z := complex(v[1], 0) * part
+	t := z * part
+	d[0] = t * complex(0, v[2]*(up+down))
 	d[1] = z
-	d[2] = -t * q * x
+	d[2] = t * complex(0, -y)
 	return z
+}
+
+// inverse returns 1/(1 + jy) at a fraction of what a complex division costs.
+func inverse(y float64) complex128 {
+	g := 1 / (1 + y*y)
+	return complex(g, -y*g)
 }
 
 // ventedBox is a driver's motional branch, a tank as above, with the box beside it: the compliance of its air, α

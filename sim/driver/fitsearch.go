@@ -92,16 +92,18 @@ func (s *search) equations(n int) {
 
 func dot(a, b []float64) float64 {
 	b = b[:len(a)]
-	var s0, s1 float64
-	for len(a) >= 2 && len(b) >= 2 {
+	var s0, s1, s2, s3 float64 // four sums, so that none waits for the one before
+	for len(a) >= 4 && len(b) >= 4 {
 		s0 += a[0] * b[0]
 		s1 += a[1] * b[1]
-		a, b = a[2:], b[2:]
+		s2 += a[2] * b[2]
+		s3 += a[3] * b[3]
+		a, b = a[4:], b[4:]
 	}
 	for i := range a {
 		s0 += a[i] * b[i]
 	}
-	return s0 + s1
+	return (s0 + s1) + (s2 + s3)
 }
 
 // fit searches from m, which it keeps.
@@ -220,7 +222,7 @@ func (s *search) bounds(m *model) (lo, hi []float64) {
 		set(0.3, 1000)
 	}
 	for range m.extras {
-		resonance(0.3)
+		resonance(0.5) // below, it resonates no more
 	}
 	return lo, hi
 }

@@ -159,21 +159,22 @@ func coilStart(coil Coil, z func(w float64) complex128, w float64) []float64 {
 // grid of frequencies and Qs is tried as a template. ok is false if none would.
 func (s *search) missing(f fitted) (h hump, ok bool) {
 	n := len(s.points)
-	miss, z := make([]complex128, n), make([]complex128, n)
+	miss, y := make([]complex128, n), make([]complex128, n)
 	v, d := make([]float64, f.size()), make([]complex128, f.size())
 	f.values(v)
 	for i, p := range s.points {
-		z[i] = f.impedance(v, p.w, d)
-		miss[i] = cmplx.Log(p.z / z[i])
+		z := f.impedance(v, p.w, d)
+		miss[i], y[i] = cmplx.Log(p.z/z), 1/z
 	}
 	best := 0.0
-	const step = 0.06 // a twelfth of an octave, some
-	for w := s.band[0]; w <= s.band[1]; w *= 1 + step {
+	span := math.Log(s.band[1] / s.band[0])
+	steps := math.Min(math.Ceil(span/0.06), 400) // a twelfth of an octave apart, some
+	for k := range int(steps) + 1 {
+		w := s.band[0] * math.Exp(span*float64(k)/math.Max(steps, 1))
 		for _, q := range [...]float64{1, 3, 8, 25} {
 			var along, square float64
 			for i, p := range s.points {
-				x, _ := detuning(p.w, w)
-				t := 1 / ((1 + complex(q, 0)*x) * z[i])
+				t := inverse(q*(p.w/w-w/p.w)) * y[i]
 				along += p.weight * (real(t)*real(miss[i]) + imag(t)*imag(miss[i]))
 				square += p.weight * (real(t)*real(t) + imag(t)*imag(t))
 			}
