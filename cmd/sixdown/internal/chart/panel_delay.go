@@ -17,10 +17,15 @@ func GroupDelay(subjects []*Subject, note string) Panel {
 		p.series = append(p.series, series{name: s.named("sum"), x: s.Response.Freqs, y: ms, pen: styles(k, len(subjects), total, -1, totalWidth), bold: true})
 	}
 	from, to := least(all...), most(all...)
+	if math.IsInf(from, 1) {
+		from, to = 0, 1 // there is no delay anywhere
+	}
 	if from > 0 && to > 20*from {
 		// A thousandth of the longest delay is of no account, however small the least one is.
 		p.y = logAxis(roundDown(max(from, to/2000)), roundUp(to), false, func(v float64) string { return number(v, 3) })
-		p.y.ticks[len(p.y.ticks)-1].text += " ms"
+		if n := len(p.y.ticks); n > 0 {
+			p.y.ticks[n-1].text += " ms"
+		}
 		return p
 	}
 	if !(to-from > 1e-3) {

@@ -1,30 +1,57 @@
 package chart
 
-import "sixdown/sim"
+import (
+	"math"
 
-// Impedance draws what the amplifier sees: the magnitude of the impedance with the resistor that would heat it as
-// much (EPDR), and below, in a panel of its own, the phase.
+	"sixdown/sim"
+)
+
+// Impedance draws what the amplifier sees: the magnitude of the impedance with the resistor that would heat an output
+// stage as much (EPDR), which a tone network has none of; and below, in a panel of its own, the phase.
 func Impedance(subjects []*Subject, note string) []Panel {
 	lo, hi := ends(subjects)
 	size := &plotPanel{high: 190, plot: plot{title: "Input impedance", note: note, x: frequencyAxis(lo, hi)}}
 	angle := &plotPanel{high: 122, plot: plot{title: "Phase of the input impedance", x: frequencyAxis(lo, hi), y: phaseAxis(90)}}
 	var all [][]float64
 	for k, s := range subjects {
-		f, z, epdr := s.Response.Freqs, sim.Magnitudes(s.Response.Zin), sim.EPDRs(s.Response.Zin)
-		all = append(all, z, epdr)
-		size.series = append(size.series,
-			series{name: s.named("EPDR"), x: f, y: epdr, pen: styles(k, len(subjects), way2, 1, wayWidth)},
-			series{name: s.named("|Z|"), x: f, y: z, pen: styles(k, len(subjects), total, -1, totalWidth), bold: true})
+		f, z := s.Response.Freqs, sim.Magnitudes(s.Response.Zin)
+		all = append(all, z)
+		if !s.tone() {
+			epdr := sim.EPDRs(s.Response.Zin)
+			all = append(all, epdr)
+			size.series = append(size.series, series{name: s.named("EPDR"), x: f, y: epdr, pen: styles(k, len(subjects), way2, 1, wayWidth)})
+			if k == 0 {
+				size.callouts = append(size.callouts, lowest(s.named("EPDR"), f, epdr, way2))
+			}
+		}
+		size.series = append(size.series, series{name: s.named("|Z|"), x: f, y: z, pen: styles(k, len(subjects), total, -1, totalWidth), bold: true})
 		angle.series = append(angle.series, series{name: s.Name, x: f, y: sim.PhasesDeg(s.Response.Zin), pen: styles(k, len(subjects), total, -1, totalWidth)})
 		if k == 0 {
-			size.callouts = append(size.callouts, lowest(s.named("EPDR"), f, epdr, way2), lowest(s.named("|Z|"), f, z, total))
+			size.callouts = append(size.callouts, lowest(s.named("|Z|"), f, z, total))
 		}
 	}
-	size.y = logAxis(roundDown(least(all...)*0.98), roundUp(min(most(all...), 1000*least(all...))), false, func(v float64) string { return number(v, 3) })
+	// An axis in equal ratios needs ends above 0; a short, and a load that no current flows into, are outside it.
+	from := max(least(all...), 1e-3)
+	to := min(max(most(all...), from), 1e4*from)
+	if math.IsInf(from, 1) {
+		from, to = 1, 10
+	}
+	size.y = logAxis(roundDown(0.98*from), roundUp(to), false, ohms)
 	if n := len(size.y.ticks); n > 0 {
 		size.y.ticks[n-1].text += " Ω"
 	}
 	return []Panel{size, angle}
+}
+
+// ohms writes a resistance at an axis: 20, 50k.
+func ohms(v float64) string {
+	switch {
+	case v >= 1e6:
+		return number(v/1e6, 3) + "M"
+	case v >= 1e4:
+		return number(v/1e3, 3) + "k"
+	}
+	return number(v, 3)
 }
 
 // lowest is a remark at the lowest point of a curve in Ω.
@@ -35,5 +62,16 @@ func lowest(name string, f, ohm []float64, i ink) callout {
 			low = k
 		}
 	}
-	return callout{f[low], ohm[low], name + " " + decimals(ohm[low], 2) + " Ω at " + hertz(f[low]), i}
+	return callout{f[low], ohm[low], name + " " + threeFigures(ohm[low]) + " Ω at " + hertz(f[low]), i}
+}
+
+// threeFigures writes a resistance with three figures, zeros at the end too.
+func threeFigures(v float64) string {
+	switch {
+	case v < 10:
+		return decimals(v, 2)
+	case v < 100:
+		return decimals(v, 1)
+	}
+	return number(v, 3)
 }

@@ -8,21 +8,21 @@ import (
 	"sixdown/sim"
 )
 
-// nullRange is how many dB below the top the deepest hole is shown.
+// nullRange is how many dB below the top the deepest null is shown.
 const nullRange = 60
 
-// Null draws the sum as it is, and for each crossing with the ways on one side of it reversed: the deeper the hole
+// Null draws the sum as it is, and for each crossing with the ways on one side of it reversed: the deeper the null
 // at the crossing, the better the two are in step there. It needs a sum and a crossing.
 func Null(s *Subject) Panel {
 	f := s.Response.Freqs
-	p := &plotPanel{high: 196, half: true, plot: plot{title: s.named("Reversed"), note: "the hole shows how well the ways are in step", x: frequencyAxis(ends([]*Subject{s}))}}
+	p := &plotPanel{high: 196, half: true, plot: plot{title: s.named("Reversed"), note: "the deeper the null, the better in step", x: frequencyAxis(ends([]*Subject{s}))}}
 	normal := sumLevels(s)
 	bottom := topOf(normal) - 20
 	for k := range s.Crossing {
 		reversed, names, colour := s.reversed(k)
 		levels := sim.SPLs(reversed)
 		p.series = append(p.series, series{x: f, y: levels, pen: pen{wayInk(colour), wayWidth, dashes(max(1, colour))}})
-		at, depth := hole(f, reversed, s.Response.Sum, s.Crossing[k].Frequency)
+		at, depth := deepest(f, reversed, s.Response.Sum, s.Crossing[k].Frequency)
 		level := max(depth+interpolated(f, normal, at), topOf(normal)-nullRange)
 		bottom = min(bottom, level)
 		p.callouts = append(p.callouts, callout{at, level, strings.Join(names, ", ") + " reversed: " + decimals(depth, 1) + " dB at " + hertz(at), wayInk(colour)})
@@ -57,10 +57,10 @@ func (s *Subject) reversed(k int) (sum []complex128, names []string, first int) 
 	return sum, names, max(first, 0)
 }
 
-// hole finds where, within an octave of a crossing, the reversed sum is lowest relative to the normal one, and how
-// deep in dB that is. Between grid points the ratio of the two is taken to move straight, so that a hole that falls
+// deepest finds where, within an octave of a crossing, the reversed sum is lowest relative to the normal one, and how
+// deep in dB that is. Between grid points the ratio of the two is taken to move straight, so that a null that falls
 // between two of them is not missed.
-func hole(f []float64, reversed, normal []complex128, crossing float64) (at, depth float64) {
+func deepest(f []float64, reversed, normal []complex128, crossing float64) (at, depth float64) {
 	at, depth = crossing, math.Inf(1)
 	for i := 1; i < len(f); i++ {
 		if f[i] < crossing/2 || f[i-1] > crossing*2 {

@@ -6,7 +6,7 @@ import (
 	"sixdown/sim"
 )
 
-// Phase draws the phase of the sum and of each way where it is heard: within LevelRange/2 dB of the sum.
+// Phase draws the phase of the sum and of each way where it is heard: within levelRange/2 dB of the sum.
 func Phase(subjects []*Subject, note string) Panel {
 	lo, hi := ends(subjects)
 	p := &plotPanel{high: 174, plot: plot{title: "Phase", note: note, x: frequencyAxis(lo, hi), y: phaseAxis(180)}}
@@ -16,7 +16,7 @@ func Phase(subjects []*Subject, note string) Panel {
 			phase := sim.PhasesDeg(s.output(i))
 			if s.sounds() {
 				for j, l := range s.levels(i) {
-					if !(l > sim.SPL(s.Response.Sum[j])-LevelRange/2) {
+					if !(l > sim.SPL(s.Response.Sum[j])-levelRange/2) {
 						phase[j] = math.NaN()
 					}
 				}

@@ -6,8 +6,8 @@ import (
 	"sixdown/sim"
 )
 
-// LevelRange is how many dB the response panel goes down from its top.
-const LevelRange = 50
+// levelRange is how many dB the response panel goes down from its top.
+const levelRange = 50
 
 // Response draws the level of each way, what it should be, and the sum; without a sum, the gains. note says what
 // the levels are for.
@@ -40,7 +40,7 @@ func Response(subjects []*Subject, note string) Panel {
 		}
 	}
 	top = topOf([]float64{top})
-	bottom = min(max(top-LevelRange, 5*math.Floor((bottom-1)/5)), top-10)
+	bottom = min(max(top-levelRange, 5*math.Floor((bottom-1)/5)), top-10)
 	p.y = linearAxis(bottom, top, 6, " dB", false)
 	for v := top; v > bottom; v -= 5 {
 		p.y.minor = append(p.y.minor, v)
@@ -49,7 +49,13 @@ func Response(subjects []*Subject, note string) Panel {
 }
 
 // topOf returns where a level axis ends above levels in dB: on a multiple of 5, with a little room.
-func topOf(levels []float64) float64 { return 5 * math.Ceil((most(levels)+2)/5) }
+// It is 0 where nothing sounds.
+func topOf(levels []float64) float64 {
+	if m := most(levels); !math.IsInf(m, 0) {
+		return 5 * math.Ceil((m+2)/5)
+	}
+	return 0
+}
 
 // sumLevels returns the level of the sum in dB SPL.
 func sumLevels(s *Subject) []float64 { return sim.SPLs(s.Response.Sum) }

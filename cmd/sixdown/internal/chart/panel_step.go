@@ -26,6 +26,9 @@ func StepResponse(subjects []*Subject) Panel {
 		}
 	}
 	p.x = linearAxis(1000*stepFrom, 1000*stepTo, 6, " ms", false)
+	if !(top > bottom) {
+		top, bottom = 1, 0 // nothing is heard
+	}
 	room := 0.05 * (top - bottom)
 	p.y = linearAxis(bottom-room, top+room, 5, "", true)
 	return p

@@ -9,28 +9,28 @@ import (
 	"sixdown/sim"
 )
 
-// TestHole: two ways that are equally loud at their crossing, and φ apart in phase, sum to 2·cos(φ/2) of one and, one
-// reversed, to 2·sin(φ/2), so the reversed sum is lower by 20·lg tan(φ/2): derived by hand. The hole lies at the
+// TestNull: two ways that are equally loud at their crossing, and φ apart in phase, sum to 2·cos(φ/2) of one and, one
+// reversed, to 2·sin(φ/2), so the reversed sum is lower by 20·lg tan(φ/2): derived by hand. The null lies at the
 // crossing, where a fourth-order pair is symmetrical.
-func TestHole(t *testing.T) {
+func TestNull(t *testing.T) {
 	for _, phi := range []float64{10, 30, 60, 85} {
 		s := twoWay(t, grid(700), phi)
 		reversed, names, first := s.reversed(0)
 		if len(names) != 1 || names[0] != "high" || first != 1 {
 			t.Fatalf("%q are reversed", names)
 		}
-		at, depth := hole(s.Response.Freqs, reversed, s.Response.Sum, 2000)
+		at, depth := deepest(s.Response.Freqs, reversed, s.Response.Sum, 2000)
 		want := 20 * math.Log10(math.Tan(phi/2*math.Pi/180))
 		// The ratio is taken straight over steps of 1 %, over which it bends by some 1e-3 of itself.
 		if math.Abs(depth-want) > 0.01*math.Abs(want)+0.02 || math.Abs(at/2000-1) > 0.005 {
-			t.Errorf("%g° apart: a hole of %.3f dB at %.1f Hz, want %.3f at 2000", phi, depth, at, want)
+			t.Errorf("%g° apart: a null of %.3f dB at %.1f Hz, want %.3f at 2000", phi, depth, at, want)
 		}
 	}
 	s := twoWay(t, grid(700), 0)
 	reversed, _, _ := s.reversed(0)
-	// In step the hole has no bottom; between the points of the grid it still reaches far down.
-	if _, depth := hole(s.Response.Freqs, reversed, s.Response.Sum, 2000); depth > -80 {
-		t.Errorf("in step the hole is %.1f dB deep", depth)
+	// In step the null has no bottom; between the points of the grid it still reaches far down.
+	if _, depth := deepest(s.Response.Freqs, reversed, s.Response.Sum, 2000); depth > -80 {
+		t.Errorf("in step the null is %.1f dB deep", depth)
 	}
 }
 

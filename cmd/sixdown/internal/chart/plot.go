@@ -94,7 +94,8 @@ func (p *plot) draw(s *scene, room rect) {
 	}
 	var rest []series
 	for _, c := range p.series {
-		if c.name == "" || labels.name(p.curve(in, c), c, p.hint(in, c)) {
+		parts := p.curve(in, c)
+		if c.name == "" || len(parts) == 0 || labels.name(parts, c, p.hint(in, c)) {
 			continue
 		}
 		rest = append(rest, c)

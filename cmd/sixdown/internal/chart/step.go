@@ -66,6 +66,9 @@ func StepOf(r *sim.Response) (*Step, error) {
 		return step, nil
 	}
 	peak := max(most(step.Sum), -least(step.Sum))
+	if !(peak > 0) {
+		return step, nil // it is silent
+	}
 	for _, c := range append([][]float64{step.Sum}, step.Ways...) {
 		for i := range c {
 			c[i] /= peak

@@ -16,6 +16,7 @@ type Subject struct {
 	Targets  [][]float64
 	Crossing []Crossing // rising
 	Step     *Step      // for StepResponse
+	Gains    bool       // gains are drawn though there is a sum, since the other subject has none
 }
 
 // A Crossing is where the lead passes from one way to another, with what each way gives there.
@@ -24,8 +25,11 @@ type Crossing struct {
 	Parts []complex128 // Pa, in the order of Response.Ways
 }
 
-// sounds reports whether there is a sum at the ear.
-func (s *Subject) sounds() bool { return s.Response.Sum != nil }
+// tone reports whether it is a tone network.
+func (s *Subject) tone() bool { return len(s.Response.Ways) == 1 && s.Response.Ways[0].Driver == "" }
+
+// sounds reports whether there is a sum at the ear to be drawn.
+func (s *Subject) sounds() bool { return s.Response.Sum != nil && !s.Gains }
 
 // levels returns what way i gives in dB: SPL at the ear if there is a sum, else its gain.
 func (s *Subject) levels(i int) []float64 {
@@ -55,7 +59,7 @@ func (s *Subject) named(name string) string {
 
 // wayInk returns the ink of way i: that of the sum for the one output of a tone network.
 func (s *Subject) wayInk(i int) ink {
-	if s.Response.Ways[i].Driver == "" {
+	if s.tone() {
 		return total
 	}
 	return wayInk(i)
@@ -97,7 +101,7 @@ func (s *Subject) leads(i int) float64 {
 	return math.Exp(sum / n)
 }
 
-// span returns the first and the last frequency of the first subject.
+// ends returns the first and the last frequency of the first subject.
 func ends(subjects []*Subject) (lo, hi float64) {
 	f := subjects[0].Response.Freqs
 	return f[0], f[len(f)-1]

@@ -22,6 +22,8 @@ type chartOptions struct {
 	panels []string
 	theme  string
 	width  int
+
+	changes string // what of the second design is not as its file says; "": nothing
 }
 
 // The widest picture that may be asked for, in pixels.
@@ -79,7 +81,7 @@ func (o *chartOptions) wants(panel string) bool {
 	return len(o.panels) == 0 || slices.Contains(o.panels, panel)
 }
 
-// drawing is how finely curves in a picture are computed: their holes are narrow.
+// drawing is how finely curves in a picture are computed: their nulls are narrow.
 const drawingPerOctave = 96
 
 // draw writes a page about one or two predictions to the file. inputs must not be overwritten by it.
@@ -123,8 +125,13 @@ func (o *chartOptions) draw(s *streams, ps []*prediction, grid *gridOptions, inp
 func (o *chartOptions) page(s *streams, ps []*prediction, grid *gridOptions) (*chart.Page, error) {
 	page := &chart.Page{Title: ps[0].Title}
 	var subjects []*chart.Subject
+	sums, crosses := true, true
+	for _, p := range ps {
+		sums = sums && p.Sum != nil
+		crosses = crosses && len(p.summary.Crossings) > 0
+	}
 	for k, p := range ps {
-		subject, err := o.subject(p, grid)
+		subject, err := o.subject(p, sums, grid)
 		if err != nil {
 			return nil, err
 		}
@@ -138,13 +145,11 @@ func (o *chartOptions) page(s *streams, ps []*prediction, grid *gridOptions) (*c
 	}
 	if len(ps) > 1 {
 		page.Title = "A: " + orUntitled(ps[0].Title) + "   B: " + orUntitled(ps[1].Title)
+		if o.changes != "" {
+			page.Title += " with " + o.changes
+		}
 	}
 	first := ps[0]
-	sums, crosses := true, true
-	for _, p := range ps {
-		sums = sums && p.Sum != nil
-		crosses = crosses && len(p.summary.Crossings) > 0
-	}
 	levels, phases := "gain across the drivers, dB re open circuit", "of the gain"
 	switch {
 	case sums:
@@ -208,15 +213,16 @@ func (o *chartOptions) page(s *streams, ps []*prediction, grid *gridOptions) (*c
 	return page, nil
 }
 
-// subject computes what a picture needs beyond the table.
-func (o *chartOptions) subject(p *prediction, grid *gridOptions) (*chart.Subject, error) {
+// subject computes what a picture needs beyond the table: about the sum, or, where one of two designs has none, about
+// the gains.
+func (o *chartOptions) subject(p *prediction, sum bool, grid *gridOptions) (*chart.Subject, error) {
 	fine := gridOptions{from: grid.from, to: grid.to, perOctave: max(grid.perOctave, drawingPerOctave)}
 	r, err := p.system.Predict(fine.even())
 	if err != nil {
 		return nil, err
 	}
-	s := &chart.Subject{Response: r}
-	if s.Targets, err = targetLevels(p, r); err != nil {
+	s := &chart.Subject{Response: r, Gains: !sum}
+	if s.Targets, err = targetLevels(p, r, sum); err != nil {
 		return nil, err
 	}
 	var at []float64
@@ -241,6 +247,9 @@ func (o *chartOptions) subject(p *prediction, grid *gridOptions) (*chart.Subject
 		if err != nil {
 			return nil, err
 		}
+		if !sum {
+			long.Sum = nil
+		}
 		if s.Step, err = chart.StepOf(long); err != nil {
 			return nil, err
 		}
@@ -250,15 +259,18 @@ func (o *chartOptions) subject(p *prediction, grid *gridOptions) (*chart.Subject
 
 // targetLevels returns the levels in dB that the design's targets ask of each way over r: the product of the way's
 // alignments, about the mean level of the sum or, without a sum, about 0 dB.
-func targetLevels(p *prediction, r *sim.Response) ([][]float64, error) {
+func targetLevels(p *prediction, r *sim.Response, sum bool) ([][]float64, error) {
 	mean := 0.0
-	if p.summary.Sum != nil {
+	if sum && p.summary.Sum != nil {
 		mean = p.summary.Sum.MeanSPL
+	}
+	if math.IsNaN(mean) || math.IsInf(mean, 0) {
+		return nil, nil // there is no level that targets could be about
 	}
 	levels := make([][]float64, len(r.Ways))
 	for i := range p.design.Ways {
 		way := &p.design.Ways[i]
-		if len(way.Targets) == 0 || r.Sum == nil && p.summary.Sum != nil {
+		if len(way.Targets) == 0 {
 			continue
 		}
 		levels[i] = make([]float64, len(r.Freqs))
@@ -305,7 +317,7 @@ func (p *prediction) keyNumbers() string {
 	for _, c := range s.Crossings {
 		said = append(said, fmt.Sprintf("%s to %s at %s, %s each", c.Low, c.High, roughly(c.Frequency), fixed(c.LevelDB, 1)+" dB"))
 	}
-	if q := s.Sum; q != nil {
+	if q := s.Sum; q != nil && !math.IsNaN(q.RippleDB) && !math.IsInf(q.RippleDB, 0) {
 		said = append(said, fmt.Sprintf("ripple %s dB from %s to %s", fixed(q.RippleDB, 1), hertz(q.Band[0]), hertz(q.Band[1])))
 	}
 	if !math.IsInf(s.MinImpedance, 0) {

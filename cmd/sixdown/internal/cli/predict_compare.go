@@ -8,6 +8,7 @@ import (
 
 	"github.com/spf13/cobra"
 
+	"sixdown/cmd/sixdown/internal/caution"
 	"sixdown/cmd/sixdown/internal/table"
 	"sixdown/sim"
 )
@@ -16,6 +17,7 @@ import (
 type comparison struct {
 	a, b     *prediction
 	from, to string // the files' names
+	changes  string // what of B is not as its file says; "": nothing
 }
 
 // The JSON document of predict with two designs.
@@ -75,7 +77,7 @@ func runCompare(s *streams, o *predictOptions) error {
 		slices.Sort(freqs)
 		freqs = slices.Compact(freqs)
 	}
-	c := &comparison{from: o.against, to: o.design.path}
+	c := &comparison{from: o.against, to: o.design.path, changes: strings.Join(slices.Concat(o.design.set, o.design.turn), ", ")}
 	if c.a, err = predictAt(s, da, sa, freqs); err != nil {
 		return err
 	}
@@ -83,6 +85,7 @@ func runCompare(s *streams, o *predictOptions) error {
 		return err
 	}
 	if o.chart.path != "" {
+		o.chart.changes = c.changes
 		if err := o.chart.draw(s, []*prediction{c.a, c.b}, &o.grid, o.against, o.design.path); err != nil {
 			return err
 		}
@@ -136,7 +139,11 @@ func less(b, a []float64) []float64 {
 // text returns the comparison for people: a table, then what is looked for first in each.
 func (c *comparison) text() string {
 	var b strings.Builder
-	fmt.Fprintf(&b, "A  %s\nB  %s\n\n", titled(c.a, c.from), titled(c.b, c.to))
+	fmt.Fprintf(&b, "A  %s\nB  %s", titled(c.a, c.from), titled(c.b, c.to))
+	if c.changes != "" {
+		fmt.Fprintf(&b, " with %s", c.changes)
+	}
+	b.WriteString("\n\n")
 	b.WriteString(c.table().Text(pageWidth))
 	for _, p := range []struct {
 		name string
@@ -149,6 +156,9 @@ func (c *comparison) text() string {
 	}
 	if at, most, ok := c.furthest(); ok {
 		fmt.Fprintf(&b, "\nB less A  the sums differ most at %s, by %s dB, of the frequencies above\n", hertz(at), signed(most))
+	}
+	if c.a.design.Tone != nil || c.b.design.Tone != nil {
+		b.WriteString("\n" + caution.Text(caution.Valves()))
 	}
 	return b.String()
 }
