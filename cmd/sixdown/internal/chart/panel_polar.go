@@ -54,18 +54,20 @@ func (p *polarPanel) draw(s *scene, room rect) {
 	for i, f := range p.Freqs {
 		logs[i] = math.Log(f)
 	}
-	// What is far below the lowest colour would pull the contours of a null into beads between the grid's points.
-	levels := make([][]float64, len(p.LevelDB))
+	// The map is painted from the highest level down, each colour over what is lower, so that no dark ground shines
+	// through at the edges of the light areas. What is far below the lowest colour would pull the contours of a null into
+	// beads between the grid's points.
+	below := make([][]float64, len(p.LevelDB))
 	for i, row := range p.LevelDB {
 		for _, l := range row {
-			levels[i] = append(levels[i], max(l, heatLevel(-1)))
+			below[i] = append(below[i], -max(l, heatLevel(-1)))
 		}
 	}
-	f := &field{logs, p.AngleDeg, levels}
-	whole := [][]point{{{p.Freqs[0], in.y.lo}, {in.x.hi, in.y.lo}, {in.x.hi, in.y.hi}, {p.Freqs[0], in.y.hi}}}
-	in.areas = append(in.areas, area{whole, heat0})
-	for k := 1; k < heatSteps; k++ {
-		loops := f.above(heatLevel(k) - heatStep/2.0)
+	f := &field{logs, p.AngleDeg, below}
+	whole := [][]point{{{in.x.lo, in.y.lo}, {in.x.hi, in.y.lo}, {in.x.hi, in.y.hi}, {in.x.lo, in.y.hi}}}
+	in.areas = append(in.areas, area{whole, heat0 + heatSteps - 1})
+	for k := heatSteps - 2; k >= 0; k-- {
+		loops := f.above(-(heatLevel(k) + heatStep/2.0))
 		for _, l := range loops {
 			for i := range l {
 				l[i].x = math.Exp(l[i].x)
