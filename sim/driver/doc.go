@@ -5,6 +5,10 @@
 // Flat, a Sheet (a data sheet with its sensitivity), either of them with a Breakup, or a ResponseTable. Any load
 // may go with any radiator.
 //
+// FitImpedance finds the equivalent circuit of an ImpedanceTable, a Fit, and with it Re, fs and the Qs: a chain of the
+// coil's losses, the motional branch with its box, and further resonances. A table stands for itself in the frequency
+// domain and is represented by its Fit in the time domain.
+//
 // The time dependence is e^{+jωt}; s is a complex frequency in rad/s, f a frequency in Hz. Tables are read
 // by ReadTable; they are the only file format this package knows. Where the driver stands and where the
 // ear is belongs to package field.

@@ -3,6 +3,7 @@ package driver
 import (
 	"math"
 	"math/cmplx"
+	"slices"
 
 	"gonum.org/v1/gonum/mat"
 )
@@ -150,7 +151,11 @@ func (s *search) weigh() {
 const (
 	mostSteps  = 40
 	mostExtras = 3
-	worthwhile = 10 // by how much a score must drop for an element to be worth having: very strong evidence, say R. E. Kass and A. E. Raftery, "Bayes Factors", J. Amer. Statist. Assoc. 90, 773–795, 1995
+	faintest   = 1e-3 // of the lowest |Z|: a resonance below is beyond what is measured
+
+	// By how much a score must drop for an element to be worth having: very strong evidence, say R. E. Kass and A. E.
+	// Raftery, "Bayes Factors", J. Amer. Statist. Assoc. 90, 773–795, 1995.
+	worthwhile = 10
 )
 
 // choose grows a model: the body first, then the coil, then one resonance after another as long as the
@@ -169,7 +174,27 @@ func (s *search) choose(coil Coil) fitted {
 		}
 		best = next
 	}
-	return best
+	return s.prune(best, coil)
+}
+
+// prune takes out broad resonances that were put in while the coil was still wrong, if another coil does without.
+func (s *search) prune(f fitted, coil Coil) fitted {
+	for k := 0; k < f.extras; {
+		at := f.extrasAt() + 3*k
+		if f.p[at+2] > 0 { // Q above 1
+			k++
+			continue
+		}
+		m := f.clone()
+		m.extras--
+		m.p = slices.Delete(m.p, at, at+3)
+		if g := s.chooseCoil(s.fit(m, mostSteps), coil); s.score(g) < s.score(f)+worthwhile {
+			f = g
+		} else {
+			k++
+		}
+	}
+	return f
 }
 
 // affords reports whether the points can bear a model of so many unknowns: half as many as there are numbers.
@@ -208,10 +233,18 @@ func (s *search) grow(f fitted, coil Coil) (fitted, bool) {
 		return f, false
 	}
 	apart := s.fit(m, mostSteps)
+	if r := math.Exp(apart.p[len(apart.p)-2]); r < faintest*s.ohm {
+		return f, false
+	}
 	next := s.chooseCoil(apart, coil)
 	if f.body == single && f.extras == 0 {
 		if box := s.fit(s.boxed(apart), 2*mostSteps); isBox(box) {
-			if box = s.chooseCoil(box, coil); isBox(box) && s.score(box) < s.score(next) {
+			// Two resonances of a driver's size can hardly be anything else, so the box has the benefit of the doubt.
+			doubt := 0.0
+			if k := apart.bodyAt() + 1; math.Min(apart.p[k], apart.p[k+3]) > apart.p[0]-math.Ln2 { // both R above Re/2
+				doubt = worthwhile
+			}
+			if box = s.chooseCoil(box, coil); isBox(box) && s.score(box) < s.score(next)+doubt {
 				next = box
 			}
 		}
@@ -220,14 +253,15 @@ func (s *search) grow(f fitted, coil Coil) (fitted, bool) {
 }
 
 // isBox reports whether a vented model's values are those of a box in use. Alignments from the tables of Thiele and
-// of Small lie well within: fb from half to twice fs, α from 0.3 to 10, QL from 3. Outside, the second resonance is the
-// surround's, or something else's.
+// of Small lie well within: fb from half to twice fs, α from 0.3 to 10, QL from 3. Nor is a box with a vent tuned
+// above the bass (common practice, no source). Outside, the second resonance is the surround's, or something else's.
 func isBox(f fitted) bool {
 	v := make([]float64, f.size())
 	f.values(v)
 	v = v[f.bodyAt():]
+	const bass = 2 * math.Pi * 250 // rad/s
 	tuned := v[3] / v[0]
-	return 0.3 < tuned && tuned < 3 && 0.1 < v[4] && v[4] < 30 && v[5] > 1
+	return v[3] < bass && 0.3 < tuned && tuned < 3 && 0.1 < v[4] && v[4] < 30 && v[5] > 1
 }
 
 // result puts a fit into the trade's terms.

@@ -207,22 +207,23 @@ func (s *search) bounds(m *model) (lo, hi []float64) {
 		set(1e-5*ohm, 1e4*ohm)
 		lo, hi = append(lo, -3), append(hi, 7) // n from 0.047 to 0.999
 	}
-	resonance := func(leastQ float64) {
+	resonance := func(leastQ, mostQ float64) {
 		set(w0/4, w1*2)
 		set(1e-4*ohm, 1e4*ohm)
-		set(leastQ, 1000)
+		set(leastQ, mostQ)
 	}
 	switch m.body {
 	case single, vented:
-		resonance(0.05)
+		resonance(0.05, 1000)
 	}
 	if m.body == vented {
 		set(w0/4, w1*2)
 		set(0.01, 1000)
 		set(0.3, 1000)
 	}
+	sharpest := math.Max(2*float64(len(s.points)-1)/math.Log(w1/w0), 1)
 	for range m.extras {
-		resonance(0.5) // below, it resonates no more
+		resonance(0.5, sharpest) // below, it resonates no more; above, it would be less than half a row wide
 	}
 	return lo, hi
 }
