@@ -59,11 +59,9 @@ const halfPower = 3.0102999566398120
 // refined from a grid of 48 points an octave, crossings to the last few digits, minima to some 1e-8, so that they
 // do not depend on it.
 func (s *System) Summary(band [2]float64) (*Summary, error) {
-	if band == [2]float64{} {
-		band = [2]float64{20, 20e3}
-	}
-	if !(band[0] > 0 && band[1] > band[0]) || math.IsInf(band[1], 1) {
-		return nil, fmt.Errorf("summary: the band is %g Hz to %g Hz; give two rising positive frequencies", band[0], band[1])
+	band, err := summaryBand(band)
+	if err != nil {
+		return nil, err
 	}
 	r, err := s.Predict(logGrid(band))
 	if err != nil {
@@ -91,6 +89,17 @@ func (s *System) Summary(band [2]float64) (*Summary, error) {
 		}
 	}
 	return sum, nil
+}
+
+// summaryBand returns the band that a zero one stands for, and checks any other.
+func summaryBand(band [2]float64) ([2]float64, error) {
+	if band == [2]float64{} {
+		band = [2]float64{20, 20e3}
+	}
+	if !(band[0] > 0 && band[1] > band[0]) || math.IsInf(band[1], 1) {
+		return band, fmt.Errorf("summary: the band is %g Hz to %g Hz; give two rising positive frequencies", band[0], band[1])
+	}
+	return band, nil
 }
 
 // logGrid returns frequencies from band[0] to band[1], equally spaced in log frequency, gridPerOctave or a
