@@ -32,7 +32,8 @@ func newPredictCmd(s *streams) *cobra.Command {
   flight time over the listening distance;
 - the load: what the amplifier sees after its own source resistance, and the
   resistor that would heat the amplifier's output stage as much (EPDR);
-- in short, where the ways cross, how even the sum is, and where the load is lowest.
+- in short, where the ways cross and how well they are in step there, how even the
+  sum is, and where the load is lowest.
 
 Without --at or a grid, the table is in third-octaves with the design's targets
 among them; JSON and CSV are in 24 points an octave from 20 Hz to 20 kHz.
@@ -77,12 +78,13 @@ maps.`,
 // A prediction is the answer of predict.
 type prediction struct {
 	*sim.Response
-	design   *xover.Design
-	system   *sim.System
-	summary  *sim.Summary
-	level    float64 // V rms, what SPL is for
-	distance float64 // m
-	warnings []string
+	design    *xover.Design
+	system    *sim.System
+	summary   *sim.Summary
+	alignment []sim.Alignment // of the summary's crossings; nil without a sum
+	level     float64         // V rms, what SPL is for
+	distance  float64         // m
+	warnings  []string
 }
 
 func runPredict(s *streams, o *predictOptions) error {
@@ -130,6 +132,9 @@ func predictAt(s *streams, d *xover.Design, sys *sim.System, freqs []float64) (*
 		return nil, err
 	}
 	if p.summary, err = sys.Summary([2]float64{}); err != nil {
+		return nil, err
+	}
+	if p.alignment, err = sys.Alignment(p.summary.Band); err != nil {
 		return nil, err
 	}
 	for _, w := range slices.Concat(lowHighPasses(d), p.Response.Warnings, p.summary.Warnings) {

@@ -41,6 +41,7 @@ type (
 		MinImpedance lowestDocument       `json:"min_impedance"`
 		MinEPDR      lowestDocument       `json:"min_epdr"`
 		Crossings    []crossingDocument   `json:"crossings"`
+		Alignment    []alignmentDocument  `json:"alignment"` // of the crossings; null without a sum
 		Sum          *sumSummaryDocument  `json:"sum"`
 		Tone         *toneSummaryDocument `json:"tone"`
 	}
@@ -83,7 +84,7 @@ func (p *prediction) document() predictDocument {
 			EPDROhm:      numbers(sim.EPDRs(p.Zin)),
 		},
 		Drivers:  driverDocuments(p.system.Fits()),
-		Summary:  summarize(p.summary),
+		Summary:  summarize(p.summary, p.alignment),
 		Warnings: append([]string{}, p.warnings...), // [] and not null where there are none
 	}
 	for _, w := range p.Ways {
@@ -105,12 +106,13 @@ func (p *prediction) document() predictDocument {
 	return doc
 }
 
-func summarize(s *sim.Summary) summaryDocument {
+func summarize(s *sim.Summary, as []sim.Alignment) summaryDocument {
 	doc := summaryDocument{
 		BandHz:       numbers(s.Band[:]),
 		MinImpedance: lowestDocument{number(s.MinImpedance), number(s.MinImpedanceAt)},
 		MinEPDR:      lowestDocument{number(s.MinEPDR), number(s.MinEPDRAt)},
 		Crossings:    []crossingDocument{},
+		Alignment:    alignmentDocuments(as),
 	}
 	for _, c := range s.Crossings {
 		doc.Crossings = append(doc.Crossings, crossingDocument{c.Low, c.High, number(c.Frequency), number(c.LevelDB), number(c.PhaseDeg)})

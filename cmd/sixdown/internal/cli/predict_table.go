@@ -94,7 +94,7 @@ func angle(z complex128) string {
 func (p *prediction) summaryText() string {
 	s := p.summary
 	var b strings.Builder
-	for _, c := range s.Crossings {
+	for k, c := range s.Crossings {
 		level := decibels(c.LevelDB) + " each"
 		switch {
 		case math.IsInf(c.LevelDB, 0):
@@ -103,6 +103,12 @@ func (p *prediction) summaryText() string {
 			level += ", relative to the sum"
 		}
 		fmt.Fprintf(&b, "crossing  %s to %s at %s: %s; %s\n", c.Low, c.High, hertz(c.Frequency), level, relativePhase(c))
+		switch {
+		case p.alignment == nil && math.Abs(c.PhaseDeg) > 120: // beyond which the two are less than either alone
+			b.WriteString("          they are nearly opposed: try the other polarity\n")
+		case p.alignment != nil:
+			b.WriteString(alignmentText(&p.alignment[k]))
+		}
 	}
 	switch q := s.Sum; {
 	case q == nil:
@@ -157,17 +163,13 @@ func (p *prediction) flatDrivers() []string {
 
 // relativePhase says which of two ways is ahead at their crossing.
 func relativePhase(c sim.Crossing) string {
-	text := fmt.Sprintf("%s leads by %s", c.High, degrees(c.PhaseDeg))
 	switch {
 	case fixed(c.PhaseDeg, 1) == "0.0":
 		return "in phase"
 	case c.PhaseDeg < 0:
-		text = fmt.Sprintf("%s lags by %s", c.High, degrees(-c.PhaseDeg))
+		return fmt.Sprintf("%s lags by %s", c.High, degrees(-c.PhaseDeg))
 	}
-	if math.Abs(c.PhaseDeg) > 120 { // beyond which the two are less than either alone
-		text += ", nearly opposed: try the other polarity"
-	}
-	return text
+	return fmt.Sprintf("%s leads by %s", c.High, degrees(c.PhaseDeg))
 }
 
 func orBeyond(f float64, otherwise string) string {
