@@ -88,8 +88,12 @@ type Driver struct {
 
 	Resistance    float64 // Ω: the driver is a plain resistance; 0: not stated
 	ImpedanceFile string  // table of Hz, Ω, degrees; "": not stated
-	ResponseFile  string  // table of Hz, dB SPL, degrees; "": not stated
+	ResponseFile  string  // table of Hz, dB SPL, degrees; with Horizontal or Vertical the one at 0°; "": not stated
 	MinimumPhase  bool    // phase = "minimum": the response's phase follows from its magnitude
+
+	// Responses at angles, rising, in (-180°, 180°], the one at 0° in at least one of them; nil: not stated.
+	Horizontal []AngledFile // positive: to the right
+	Vertical   []AngledFile // positive: up
 
 	At     [3]float64 // m: acoustic centre, right, up, toward the listener
 	Mic    [3]float64 // m: where the response was measured from, if HasMic
@@ -112,6 +116,12 @@ type Driver struct {
 	Breakup        []Peak // resonances of the diaphragm, on what the data sheet says
 
 	Pos Position
+}
+
+// An AngledFile is a response measured away from the axis.
+type AngledFile struct {
+	AngleDeg float64
+	File     string // table of Hz, dB SPL, degrees
 }
 
 // A Peak is a resonance of a diaphragm that bends, as it shows on the axis.

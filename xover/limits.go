@@ -11,6 +11,7 @@ const (
 	MaxWays       = 16      // [[way]] tables
 	MaxControls   = 64      // [control.NAME] tables
 	MaxPeaks      = 16      // peaks of a driver's breakup
+	MaxAngles     = 180     // response files of a driver in one plane
 	MaxTargets    = 8       // targets of a way
 	MaxSteps      = 500     // steps of a network
 	MaxExpression = 100     // parts in one step

@@ -14,6 +14,7 @@ func (p *parser) driver(name string, r *tableReader) {
 	d := Driver{Name: name, Pos: p.pos(r.table.at)}
 	hasImpedance := p.driverImpedance(&d, r)
 	r.text("response", &d.ResponseFile)
+	p.driverResponses(&d, r)
 	phase, _ := r.word("phase", "measured", "minimum")
 	d.MinimumPhase = phase == "minimum"
 	r.quantities("at", quantity.Metre, anySign, d.At[:], `at = ["0 mm", "-90 mm", "-22 mm"]`)
@@ -56,7 +57,7 @@ func (p *parser) driver(name string, r *tableReader) {
 			r.missing("fs", "the box changes the driver's resonance; give fs, qms and qes")
 		}
 	}
-	if d.ResponseFile == "" {
+	if d.ResponseFile == "" && r.table.index["responses"] == nil {
 		for _, key := range []string{"phase", "mic"} {
 			if e := r.table.index[key]; e != nil {
 				p.warn(p.pos(e.at), fmt.Sprintf("%s has %s and no response", r.label, key), "give the response file, or take it out")
