@@ -31,7 +31,7 @@ const (
 	lobeNull  = -6.0 // dB
 )
 
-// A fan is the air from every way to ears at steps of fanStep in the vertical plane. From it follows the air to an ear
+// A fan is the air from every driver to ears at steps of fanStep in the vertical plane. From it follows the air to an ear
 // anywhere between: the path is exact, and what diaphragm and edges do, which changes slowly with the angle, is
 // interpolated. Edges are too much work to be done again at each angle that a search tries: some milliseconds.
 type fan struct {
@@ -54,7 +54,7 @@ func (s *System) newFan() (*fan, error) {
 type rose struct {
 	s     *System
 	f     float64        // Hz
-	front [][]complex128 // by source, by the fan's angle: what it gives for a path of 1
+	front [][]complex128 // by unit, by the fan's angle: what the unit gives for a path of 1
 }
 
 func (fn *fan) at(f float64) (*rose, error) {
@@ -62,7 +62,7 @@ func (fn *fan) at(f float64) (*rose, error) {
 	if err != nil {
 		return nil, err
 	}
-	r := &rose{s: fn.s, f: f, front: make([][]complex128, len(q.source))}
+	r := &rose{s: fn.s, f: f, front: make([][]complex128, len(fn.s.units))}
 	for i := range r.front {
 		r.front[i] = make([]complex128, len(fn.airs))
 		for k, as := range fn.airs {
@@ -78,7 +78,7 @@ func (r *rose) size(deg float64) float64 {
 	l.Angle.VerticalDeg = deg
 	sum := complex128(0)
 	for i, front := range r.front {
-		sum += lagrange(front, (deg+lobeReach)/fanStep) * r.s.ways[i].speaker.path(l).At(r.f)
+		sum += lagrange(front, (deg+lobeReach)/fanStep) * r.s.units[i].speaker.path(l).At(r.f)
 	}
 	return cmplx.Abs(sum)
 }

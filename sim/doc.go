@@ -6,5 +6,6 @@
 // sees. Summary gives the few numbers that a builder looks for first.
 //
 // Quantities are SI and rms; the time dependence is e^{+jωt}. A way's gain is the voltage across its
-// driver's terminals over the amplifier's open-circuit voltage, its wiring polarity included.
+// driver's terminals over the amplifier's open-circuit voltage, its wiring polarity included; of drivers in series, the
+// voltage across them all. Each driver has its own share of it, and its own place.
 package sim

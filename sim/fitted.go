@@ -27,13 +27,13 @@ type fitter interface {
 func (s *System) Fits() []DriverFit {
 	var fits []DriverFit
 	seen := map[*speaker]bool{}
-	for _, w := range s.ways {
-		t, ok := w.speaker.load.(fitter)
-		if !ok || seen[w.speaker] {
+	for _, u := range s.units {
+		t, ok := u.speaker.load.(fitter)
+		if !ok || seen[u.speaker] {
 			continue
 		}
-		seen[w.speaker] = true
-		fits = append(fits, DriverFit{w.speaker.name, t.Name(), t.Fit()})
+		seen[u.speaker] = true
+		fits = append(fits, DriverFit{u.speaker.name, t.Name(), t.Fit()})
 	}
 	return fits
 }
@@ -60,9 +60,9 @@ func (s *System) FitNotes() []string {
 // that sound files are of. It differs from Netlist by the fits' errors alone, and not at all without tables.
 func (s *System) FittedNetlist() *circuit.Netlist {
 	n := s.Netlist()
-	for _, w := range s.ways {
-		if t, ok := w.speaker.load.(fitter); ok {
-			n.Branches[w.branch].Port = port{t.Fit()}
+	for _, u := range s.units {
+		if t, ok := u.speaker.load.(fitter); ok {
+			n.Branches[u.branch].Port = port{t.Fit()}
 		}
 	}
 	return n

@@ -126,7 +126,7 @@ func TestFlattenValues(t *testing.T) {
 	if !slices.Equal(n.Couplings, want) {
 		t.Errorf("couplings: got %v, want %v", n.Couplings, want)
 	}
-	if got := n.Branches[s.DriverBranch(1)].Name; got != "tweeter" {
+	if got := n.Branches[s.DriverBranches(1)[0]].Name; got != "tweeter" {
 		t.Errorf("the second way's driver branch is called %q", got)
 	}
 	if !slices.Equal(s.Names(), []string{"low", "high"}) {

@@ -65,7 +65,7 @@ func (s *System) Field(freqs []float64, angles []field.Angle) ([]*Response, erro
 	chunks := (len(freqs) + chunk - 1) / chunk
 	return rs, share(len(angles)*chunks, func(task int) error {
 		i, c := task/chunks, task%chunks
-		q.hear(rs[i], airs[i], c*len(freqs)/chunks, (c+1)*len(freqs)/chunks)
+		s.hear(rs[i], q, airs[i], c*len(freqs)/chunks, (c+1)*len(freqs)/chunks)
 		return nil
 	})
 }
@@ -89,8 +89,18 @@ func share(n int, do func(task int) error) error {
 	return cmp.Or(errs...)
 }
 
-// Sounds reports whether the driver of way i has an acoustic output.
-func (s *System) Sounds(i int) bool { return s.tone == nil && s.ways[i].speaker.radiator != nil }
+// Sounds reports whether the driver of way i has an acoustic output; of several, each of them.
+func (s *System) Sounds(i int) bool {
+	if s.tone != nil {
+		return false
+	}
+	for _, u := range s.unitsOf(i) {
+		if u.speaker.radiator == nil {
+			return false
+		}
+	}
+	return true
+}
 
 // Sums reports whether every way has one, so that there is a sum.
 func (s *System) Sums() bool {
@@ -109,11 +119,18 @@ func (s *System) Pressures(dst []complex128, i int, freqs []float64) {
 	if len(dst) != len(freqs) {
 		panic("sim: Pressures: dst and freqs differ in length")
 	}
-	radiator, air := s.ways[i].speaker.radiator, &s.straight[i]
-	level := complex(s.level, 0)
-	for k, f := range freqs {
-		dst[k] = level * radiator.Pressure(f) * air.factor(f)
+	clear(dst)
+	for u := s.ways[i].first; u < s.ways[i].past; u++ {
+		for k, f := range freqs {
+			dst[k] += s.pressure(u, f) * s.straight[u].factor(f)
+		}
 	}
+}
+
+// pressure returns what unit u gives to the air at f in Hz, in Pa rms, for a gain of 1 of its way at the drive's level.
+func (s *System) pressure(u int, f float64) complex128 {
+	unit := &s.units[u]
+	return complex(s.level, 0) * unit.share(complex(0, 2*math.Pi*f)) * unit.speaker.radiator.Pressure(f)
 }
 
 // rangeWarnings names the tables that freqs go beyond.
@@ -124,8 +141,8 @@ func (s *System) rangeWarnings(freqs []float64) []string {
 	}
 	var ws []string
 	seen := map[string]bool{}
-	for _, w := range s.ways {
-		for _, t := range w.speaker.tables {
+	for _, u := range s.units {
+		for _, t := range u.speaker.tables {
 			if seen[t.Name()] {
 				continue
 			}
@@ -150,8 +167,8 @@ func (s *System) angleWarnings(angle field.Angle) []string {
 	}
 	var ws []string
 	seen := map[string]bool{}
-	for _, w := range s.ways {
-		if sp := w.speaker; sp.measured && !seen[sp.name] {
+	for _, u := range s.units {
+		if sp := u.speaker; sp.measured && !seen[sp.name] {
 			seen[sp.name] = true
 			ws = append(ws, fmt.Sprintf("driver %q: its response was measured at one angle and is taken to be the same at all others, which is invented", sp.name))
 		}

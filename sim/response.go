@@ -24,9 +24,9 @@ type Response struct {
 // A WayResponse is one way of a Response.
 type WayResponse struct {
 	Name   string
-	Driver string       // "" for a tone network
-	H      []complex128 // voltage across the driver's terminals over open-circuit voltage, wiring polarity included
-	P      []complex128 // Pa rms at the ear, for the drive's level; nil if the driver has no acoustic output
+	Driver string       // its name; of several, their arrangement, "upper | lower"; "" for a tone network
+	H      []complex128 // voltage across the driver's terminals, or across all of several, over open-circuit voltage, wiring polarity included
+	P      []complex128 // Pa rms at the ear, for the drive's level; nil if a driver has no acoustic output
 }
 
 // DB returns 20·lg|z|, the level of z in dB re 1. For 0 it is -Inf, which is no number for JSON.

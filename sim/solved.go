@@ -15,7 +15,7 @@ type solved struct {
 	n        int
 	amp, zin []complex128
 	gain     [][]complex128 // by way, over the grid
-	source   [][]complex128 // by way, gain times what the driver gives to the air, in Pa; nil: nothing
+	source   [][]complex128 // by unit, gain times what it gives to the air, in Pa; nil: nothing, or its way has no pressure
 }
 
 // solve answers for the circuit and the drivers.
@@ -31,11 +31,13 @@ func (s *System) solve(freqs []float64) (*solved, error) {
 		}
 	}
 	q.amp, q.zin = make([]complex128, len(q.grid)), make([]complex128, len(q.grid))
-	q.gain, q.source = make([][]complex128, len(s.names)), make([][]complex128, len(s.names))
-	for i := range s.names {
+	q.gain, q.source = make([][]complex128, len(s.names)), make([][]complex128, len(s.units))
+	for i := range q.gain {
 		q.gain[i] = make([]complex128, len(q.grid))
-		if s.Sounds(i) {
-			q.source[i] = make([]complex128, len(q.grid))
+	}
+	for u := range q.source {
+		if s.Sounds(s.units[u].way) {
+			q.source[u] = make([]complex128, len(q.grid))
 		}
 	}
 	if n == 0 {
@@ -61,11 +63,14 @@ func (s *System) solvePart(q *solved, lo, hi int) error {
 	sweep.InputImpedance(q.zin[lo:hi])
 	for i, gain := range q.gain {
 		sweep.Gain(gain[lo:hi], i)
-		if source := q.source[i]; source != nil {
-			radiator := s.ways[i].speaker.radiator
-			for k := lo; k < hi; k++ {
-				source[k] = gain[k] * complex(s.level, 0) * radiator.Pressure(q.grid[k])
-			}
+	}
+	for u, source := range q.source {
+		if source == nil {
+			continue
+		}
+		gain := q.gain[s.units[u].way]
+		for k := lo; k < hi; k++ {
+			source[k] = gain[k] * s.pressure(u, q.grid[k])
 		}
 	}
 	return nil
@@ -78,7 +83,7 @@ func (s *System) newResponse(q *solved, angle field.Angle) *Response {
 	for i, name := range s.names {
 		w := WayResponse{Name: name, H: q.gain[i][:n:n]}
 		if s.tone == nil {
-			w.Driver = s.ways[i].speaker.name
+			w.Driver = s.ways[i].drivers
 		}
 		if s.Sounds(i) {
 			w.P = make([]complex128, n)
@@ -95,14 +100,14 @@ func (s *System) newResponse(q *solved, angle field.Angle) *Response {
 }
 
 // hear fills r's pressures, sum and delay from lo up to hi.
-func (q *solved) hear(r *Response, airs []air, lo, hi int) {
-	for i := range r.Ways {
-		source := q.source[i]
+func (s *System) hear(r *Response, q *solved, airs []air, lo, hi int) {
+	for u, source := range q.source {
 		if source == nil {
 			continue
 		}
+		p := r.Ways[s.units[u].way].P
 		for k := lo; k < hi; k++ {
-			r.Ways[i].P[k] = source[k] * airs[i].factor(q.grid[k])
+			p[k] += source[k] * airs[u].factor(q.grid[k])
 		}
 	}
 	if r.Sum == nil {
@@ -113,8 +118,10 @@ func (q *solved) hear(r *Response, airs []air, lo, hi int) {
 		down, up := k+q.n, k+2*q.n
 		for i := range r.Ways {
 			r.Sum[k] += r.Ways[i].P[k]
-			below += q.source[i][down] * airs[i].factor(q.grid[down])
-			above += q.source[i][up] * airs[i].factor(q.grid[up])
+		}
+		for u, source := range q.source {
+			below += source[down] * airs[u].factor(q.grid[down])
+			above += source[up] * airs[u].factor(q.grid[up])
 		}
 		turn := cmplx.Phase(above * cmplx.Conj(below))
 		if r.SumDelay[k] = -turn / (2 * math.Pi * (q.grid[up] - q.grid[down])); r.Sum[k] == 0 || math.Abs(turn) > math.Pi/2 {
@@ -123,7 +130,7 @@ func (q *solved) hear(r *Response, airs []air, lo, hi int) {
 	}
 }
 
-// airs returns the air from each way's driver to the ear, turned by angle.
+// airs returns the air from each unit to the ear, turned by angle.
 func (s *System) airs(angle field.Angle) ([]air, error) {
 	if angle == (field.Angle{}) {
 		return s.straight, nil
@@ -133,12 +140,12 @@ func (s *System) airs(angle field.Angle) ([]air, error) {
 	if ear := l.Ear(); !(ear.Distance(field.Point{}) < math.Inf(1)) {
 		return nil, fmt.Errorf("predict: an angle is %g, %g degrees; give finite ones", angle.HorizontalDeg, angle.VerticalDeg)
 	}
-	as := make([]air, len(s.ways))
-	for i := range s.ways {
-		if !s.Sounds(i) {
+	as := make([]air, len(s.units))
+	for i, u := range s.units {
+		if !s.Sounds(u.way) {
 			continue
 		}
-		sp := s.ways[i].speaker
+		sp := u.speaker
 		if sp.at.Distance(l.Ear()) == 0 {
 			return nil, fmt.Errorf("driver %q: it stands where the ear is at %g, %g degrees; move one of them", sp.name, angle.HorizontalDeg, angle.VerticalDeg)
 		}

@@ -23,17 +23,18 @@ type System struct {
 	circuit  *circuit.Circuit
 	outs     []circuit.Output
 	names    []string
-	ways     []way // empty for a tone network
+	ways     []way  // empty for a tone network
+	units    []unit // those of the first way, then of the next
 	branches map[string][]int
 	listener field.Listener
-	straight []air // by way, to the ear where the design has it; of no meaning for a way that makes no sound
+	straight []air // by unit, to the ear where the design has it; of no meaning for one that makes no sound
 	warnings []string
 }
 
 // A way is where one output goes.
 type way struct {
-	speaker *speaker
-	branch  int // of the driver
+	drivers     string // as the design has it, "upper | lower"
+	first, past int    // its units
 }
 
 // Defaults for a Design that was put together in code and leaves these at 0; Parse gives the same.
@@ -127,7 +128,7 @@ func (s *System) addTone(d *xover.Design, f *flattener) error {
 	return nil
 }
 
-// addWays lays out the ways of a loudspeaker, a driver at the end of each.
+// addWays lays out the ways of a loudspeaker, drivers at the end of each.
 func (s *System) addWays(d *xover.Design, f *flattener, open opener) error {
 	f.net.Source = d.Drive.Source
 	s.listener = field.Listener{
@@ -142,7 +143,7 @@ func (s *System) addWays(d *xover.Design, f *flattener, open opener) error {
 	speakers := map[string]*speaker{}
 	for i := range d.Drivers {
 		name := d.Drivers[i].Name
-		if !slices.ContainsFunc(d.Ways, func(w xover.Way) bool { return w.Driver == name }) {
+		if !slices.ContainsFunc(d.Ways, func(w xover.Way) bool { return slices.Contains(w.DriverNames(), name) }) {
 			continue // Parse warns of it
 		}
 		sp, err := newSpeaker(&d.Drivers[i], s.listener, baffle, open)
@@ -160,26 +161,32 @@ func (s *System) addWays(d *xover.Design, f *flattener, open opener) error {
 		}
 	}
 	for i, w := range d.Ways {
-		sp := speakers[w.Driver]
-		if sp == nil {
-			return fmt.Errorf("way %q: driver %q is not defined; define it under [driver.%s]", w.Name, w.Driver, w.Driver)
-		}
 		from, to, err := f.place(ladders[i])
 		if err != nil {
 			return err
 		}
-		b := f.add("", circuit.Branch{Name: sp.name, Kind: circuit.Port, From: from, To: to, Port: port{sp.load}})
-		s.ways = append(s.ways, way{speaker: sp, branch: b})
-		s.names = append(s.names, w.Name)
-		var a air
-		if sp.radiator != nil {
-			a = sp.to(s.listener)
+		drivers := w.Drivers
+		if drivers == nil {
+			drivers = &xover.Expr{Part: w.Driver}
 		}
-		s.straight = append(s.straight, a)
+		j := &joiner{flattener: f, way: &w, index: i, speakers: speakers}
+		if err := j.lay(&combo{}, drivers, from, to, nil); err != nil {
+			return err
+		}
+		s.ways = append(s.ways, way{drivers.String(), len(s.units), len(s.units) + len(j.units)})
+		s.units = append(s.units, j.units...)
+		s.names = append(s.names, w.Name)
 		if w.Reversed {
 			from, to = to, from
 		}
 		s.outs = append(s.outs, circuit.Output{From: from, To: to})
+	}
+	for _, u := range s.units {
+		var a air
+		if u.speaker.radiator != nil {
+			a = u.speaker.to(s.listener)
+		}
+		s.straight = append(s.straight, a)
 	}
 	s.warnSilent()
 	return nil
@@ -188,11 +195,11 @@ func (s *System) addWays(d *xover.Design, f *flattener, open opener) error {
 // warnSilent says why there is no sum, if some drivers have an acoustic output and others have none.
 func (s *System) warnSilent() {
 	var silent, sounding []string
-	for _, w := range s.ways {
-		if w.speaker.radiator == nil {
-			silent = append(silent, w.speaker.name)
+	for _, u := range s.units {
+		if u.speaker.radiator == nil {
+			silent = append(silent, u.speaker.name)
 		} else {
-			sounding = append(sounding, w.speaker.name)
+			sounding = append(sounding, u.speaker.name)
 		}
 	}
 	if len(silent) > 0 && len(sounding) > 0 {
@@ -223,8 +230,9 @@ func (s *System) Netlist() *circuit.Netlist {
 // Circuit returns the compiled circuit, whose outputs are Outputs.
 func (s *System) Circuit() *circuit.Circuit { return s.circuit }
 
-// Outputs returns the voltages that Names names: one per way across its driver's terminals, from minus to plus where the way
-// is wired in reverse, so that a gain has the wiring polarity in it; for a tone network its one output.
+// Outputs returns the voltages that Names names: one per way across its driver, or across all of several, from minus to
+// plus where the way is wired in reverse, so that a gain has the wiring polarity in it; for a tone network its one
+// output.
 func (s *System) Outputs() []circuit.Output { return slices.Clone(s.outs) }
 
 // Names returns the names of the ways in the order of the design; "out" for a tone network.
@@ -234,5 +242,14 @@ func (s *System) Names() []string { return slices.Clone(s.names) }
 // potentiometer with a wiper, the one up to the wiper first.
 func (s *System) PartBranches(part string) []int { return slices.Clone(s.branches[part]) }
 
-// DriverBranch returns the index of the branch of way's driver; way indexes Names, and a tone network has none.
-func (s *System) DriverBranch(way int) int { return s.ways[way].branch }
+// DriverBranches returns the indices of the branches of way's drivers, in the order in which they are written; way
+// indexes Names, and a tone network has none.
+func (s *System) DriverBranches(way int) []int {
+	var branches []int
+	for _, u := range s.unitsOf(way) {
+		branches = append(branches, u.branch)
+	}
+	return branches
+}
+
+func (s *System) unitsOf(way int) []unit { return s.units[s.ways[way].first:s.ways[way].past] }

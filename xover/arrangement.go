@@ -222,7 +222,7 @@ func (c *cursor) usePart(t token) bool {
 func (c *cursor) expression() (*Expr, bool) {
 	start := c.peek()
 	parts := 0
-	x, ok := c.sum(0, &parts)
+	x, ok := c.sum(0, func(t token) bool { parts++; return c.usePart(t) })
 	if ok && parts > MaxExpression {
 		c.failAt(start, fmt.Sprintf("the step has more than %d parts", MaxExpression), "write it in several steps")
 		return nil, false
@@ -230,9 +230,10 @@ func (c *cursor) expression() (*Expr, bool) {
 	return x, ok
 }
 
-func (c *cursor) sum(depth int, parts *int) (*Expr, bool) {
+// sum reads operands joined by + and |. use checks that a token names what may be one.
+func (c *cursor) sum(depth int, use func(token) bool) (*Expr, bool) {
 	return c.joined("+", InSeries, func() (*Expr, bool) {
-		return c.joined("|", InParallel, func() (*Expr, bool) { return c.primary(depth, parts) })
+		return c.joined("|", InParallel, func() (*Expr, bool) { return c.primary(depth, use) })
 	})
 }
 
@@ -253,20 +254,19 @@ func (c *cursor) joined(sign string, op ExprOp, operand func() (*Expr, bool)) (*
 	return &Expr{Op: op, Args: args, Pos: pos}, true
 }
 
-// primary reads a part or brackets.
-func (c *cursor) primary(depth int, parts *int) (*Expr, bool) {
+// primary reads a name or brackets.
+func (c *cursor) primary(depth int, use func(token) bool) (*Expr, bool) {
 	t := c.peek()
 	if t.text != "(" {
-		*parts++
 		c.take()
-		return &Expr{Op: Leaf, Part: t.text, Pos: c.place(t)}, c.usePart(t)
+		return &Expr{Op: Leaf, Part: t.text, Pos: c.place(t)}, use(t)
 	}
 	if depth >= MaxNesting {
 		c.failAt(t, fmt.Sprintf("brackets are nested more than %d deep", MaxNesting), "take some of them out")
 		return nil, false
 	}
 	c.take()
-	x, ok := c.sum(depth+1, parts)
+	x, ok := c.sum(depth+1, use)
 	if !ok {
 		return nil, false
 	}

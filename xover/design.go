@@ -149,11 +149,12 @@ type Box struct {
 	QL     float64 // leakage Q of a vented box; default 7 (common practice, no source)
 }
 
-// A Way is one branch of the loudspeaker: a network that ends in a driver.
+// A Way is one branch of the loudspeaker: a network that ends in a driver, or in several that are joined.
 type Way struct {
 	Name     string
-	Driver   string
-	Reversed bool // polarity = "reversed"
+	Driver   string // its name; of several, their arrangement, "upper | lower"
+	Drivers  *Expr  // of several: the arrangement, its leaves the drivers' names; nil: the one called Driver
+	Reversed bool   // polarity = "reversed"
 	Targets  []Target
 	Network  []Step
 	Pos      Position
@@ -230,15 +231,15 @@ type ExprOp uint8
 
 // The joints of an Expr.
 const (
-	Leaf       ExprOp = iota // the part itself
+	Leaf       ExprOp = iota // the part itself, or the driver
 	InSeries                 // Args in series, from the first node to the second
 	InParallel               // Args side by side
 )
 
-// An Expr is a part, or parts in series or in parallel.
+// An Expr is a part, or parts in series or in parallel; of a way's Drivers, the parts are drivers.
 type Expr struct {
 	Op   ExprOp
-	Part string  // of a Leaf
+	Part string  // of a Leaf: its name
 	Args []*Expr // of InSeries and InParallel, two or more
 	Pos  Position
 }

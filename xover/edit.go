@@ -124,6 +124,7 @@ func withoutPositions(d *Design) *Design {
 	}
 	for i := range c.Ways {
 		c.Ways[i].Pos = Position{}
+		c.Ways[i].Drivers = c.Ways[i].Drivers.withoutPositions()
 		c.Ways[i].Network = stepsWithoutPositions(c.Ways[i].Network)
 	}
 	if d.Tone != nil {

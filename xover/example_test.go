@@ -43,7 +43,7 @@ network = ["series C1"]
 	fmt.Println(err)
 	// Output:
 	// small.toml:3:1: [drive] has no key "levle"; did you mean "level"?
-	// small.toml:7:10: way "high" has the driver "tweeter", which is not defined; add a table [driver.tweeter]
+	// small.toml:7:11: way "high" has the driver "tweeter", which is not defined; add a table [driver.tweeter]
 	// small.toml:8:20: "C1" is used and not defined; [parts] defines none
 }
 

@@ -60,8 +60,10 @@ func checkDesign(t *testing.T, d *Design) {
 		}
 	}
 	for _, w := range d.Ways {
-		if d.Driver(w.Driver) == nil {
-			t.Errorf("way %q has no driver", w.Name)
+		for _, name := range w.DriverNames() {
+			if d.Driver(name) == nil {
+				t.Errorf("way %q has no driver %q", w.Name, name)
+			}
 		}
 		for _, s := range w.Network {
 			if s.Expr != nil {

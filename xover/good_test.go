@@ -3,6 +3,7 @@ package xover
 import (
 	"path/filepath"
 	"reflect"
+	"slices"
 	"testing"
 )
 
@@ -218,5 +219,49 @@ func TestWindows(t *testing.T) {
 	_, _, err = Parse("", src)
 	if want := "1:16: this is not TOML: expected newline but got U+0078 'x'; " + syntaxMend; err == nil || err.Error() != want {
 		t.Errorf("got %v, want %s", err, want)
+	}
+}
+
+// TestSeveralDrivers reads ways that end in more than one driver.
+func TestSeveralDrivers(t *testing.T) {
+	w := parseGood(t, "testdata/good/d_appolito.toml").Ways
+	if want := inParallel(leaf("upper"), leaf("lower")); !reflect.DeepEqual(w[0].Drivers.withoutPositions(), want) || w[0].Driver != "upper | lower" {
+		t.Errorf("got %q and %v, want %v", w[0].Driver, w[0].Drivers, want)
+	}
+	if pos, want := w[0].Drivers.Args[1].Pos, (Position{53, 20}); pos != want {
+		t.Errorf("lower stands at %v, want %v", pos, want)
+	}
+	if w[1].Driver != "tweeter" || w[1].Drivers != nil {
+		t.Errorf("got %q and %v, want a tweeter alone", w[1].Driver, w[1].Drivers)
+	}
+
+	src := ""
+	for _, name := range []string{"a", "b", "c", "d", "e"} {
+		src += "[driver." + name + "]\nre = \"6 ohm\"\n"
+	}
+	for _, tt := range []struct {
+		text, canonical string
+		want            *Expr
+		names           []string
+	}{
+		{"a", "a", nil, []string{"a"}},
+		{" ( a ) ", "a", nil, []string{"a"}},
+		{"a+b", "a + b", inSeries(leaf("a"), leaf("b")), []string{"a", "b"}},
+		{"b + a|c", "b + a | c", inSeries(leaf("b"), inParallel(leaf("a"), leaf("c"))), []string{"b", "a", "c"}},
+		{"(a + b) | (c + d)", "(a + b) | (c + d)", inParallel(inSeries(leaf("a"), leaf("b")), inSeries(leaf("c"), leaf("d"))), []string{"a", "b", "c", "d"}},
+	} {
+		way := src + "[[way]]\nname = \"w\"\nnetwork = []\ndriver = \"" + tt.text + "\"\n"
+		d, warnings, err := Parse("f", []byte(way))
+		if err != nil {
+			t.Errorf("%q: %v", tt.text, err)
+			continue
+		}
+		got := &d.Ways[0]
+		if got.Driver != tt.canonical || !reflect.DeepEqual(got.Drivers.withoutPositions(), tt.want) || !slices.Equal(got.DriverNames(), tt.names) {
+			t.Errorf("%q: got %q, %v, names %q; want %q, %v, %q", tt.text, got.Driver, got.Drivers, got.DriverNames(), tt.canonical, tt.want, tt.names)
+		}
+		if want := 5 - len(tt.names); len(warnings) != want { // of the drivers that no way has
+			t.Errorf("%q: %d warnings, want %d", tt.text, len(warnings), want)
+		}
 	}
 }

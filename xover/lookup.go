@@ -31,6 +31,16 @@ func (d *Design) Way(name string) *Way {
 	return nil
 }
 
+// DriverNames returns the names of the way's drivers, in the order in which they are written.
+func (w *Way) DriverNames() []string {
+	if w.Drivers == nil {
+		return []string{w.Driver}
+	}
+	var names []string
+	w.Drivers.leaves(func(x *Expr) { names = append(names, x.Part) })
+	return names
+}
+
 // Control returns the control of that name, or nil. It points into d.Controls.
 func (d *Design) Control(name string) *Control {
 	if i := slices.IndexFunc(d.Controls, func(c Control) bool { return c.Name == name }); i >= 0 {

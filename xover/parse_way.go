@@ -20,7 +20,7 @@ func (p *parser) way(r *tableReader) {
 	if !r.text("driver", &w.Driver) {
 		r.missing("driver", `give the name of a [driver.NAME] table, such as driver = "woofer"`)
 	} else if w.Driver != "" {
-		p.wayDriver(&w, r)
+		p.wayDrivers(&w, r)
 	}
 	polarity, _ := r.word("polarity", "normal", "reversed")
 	w.Reversed = polarity == "reversed"
@@ -40,28 +40,6 @@ func (p *parser) wayName(w *Way, r *tableReader) {
 	}
 	if slices.ContainsFunc(p.design.Ways, func(other Way) bool { return other.Name == w.Name }) {
 		p.fail(at, fmt.Sprintf("two ways are called %q", w.Name), "give each a name of its own")
-	}
-}
-
-func (p *parser) wayDriver(w *Way, r *tableReader) {
-	at := p.pos(r.table.index["driver"].value.at)
-	if p.design.Driver(w.Driver) == nil && !p.lost["driver"] {
-		var names []string
-		for _, d := range p.design.Drivers {
-			names = append(names, d.Name)
-		}
-		mend := fmt.Sprintf("add a table [driver.%s]", shortened(w.Driver))
-		if len(names) > 0 {
-			mend = didYouMean(w.Driver, names, "the drivers are "+listed(names))
-		}
-		p.fail(at, fmt.Sprintf("%s has the driver %q, which is not defined", r.label, shortened(w.Driver)), mend)
-	}
-	for _, other := range p.design.Ways {
-		if other.Driver == w.Driver {
-			p.fail(at, fmt.Sprintf("%s has the driver %q, which way %q has already", r.label, shortened(w.Driver), shortened(other.Name)),
-				"give each way a driver of its own; two of a kind are two [driver.NAME] tables")
-			return
-		}
 	}
 }
 

@@ -14,7 +14,9 @@ func (p *parser) checkUse() {
 	drivers := map[string]bool{}
 	networks := make([][]Step, 0, len(p.design.Ways)+1)
 	for _, way := range p.design.Ways {
-		drivers[way.Driver] = true
+		for _, name := range way.DriverNames() {
+			drivers[name] = true
+		}
 		networks = append(networks, way.Network)
 	}
 	if p.design.Tone != nil {

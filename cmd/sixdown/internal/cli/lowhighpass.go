@@ -23,13 +23,15 @@ func lowHighPass(driver string, highPass, resonance float64) string {
 func lowHighPasses(d *xover.Design) []string {
 	var cautions []string
 	for _, w := range d.Ways {
-		x := d.Driver(w.Driver)
-		for _, t := range w.Targets {
-			if !t.HighPass || x.Box.Kind != xover.OpenBox && !takenOver(d, t.Frequency) {
-				continue
-			}
-			if c := lowHighPass(x.Name, t.Frequency, resonance(x)); c != "" {
-				cautions = append(cautions, fmt.Sprintf("way %q: %s", w.Name, c))
+		for _, name := range w.DriverNames() {
+			x := d.Driver(name)
+			for _, t := range w.Targets {
+				if !t.HighPass || x.Box.Kind != xover.OpenBox && !takenOver(d, t.Frequency) {
+					continue
+				}
+				if c := lowHighPass(name, t.Frequency, resonance(x)); c != "" {
+					cautions = append(cautions, fmt.Sprintf("way %q: %s", w.Name, c))
+				}
 			}
 		}
 	}

@@ -3,7 +3,6 @@ package cli
 import (
 	"fmt"
 	"math"
-	"slices"
 	"strings"
 
 	"sixdown/cmd/sixdown/internal/caution"
@@ -153,9 +152,10 @@ func (p *prediction) summaryText() string {
 func (p *prediction) flatDrivers() []string {
 	var names []string
 	for _, w := range p.design.Ways {
-		x := p.design.Driver(w.Driver)
-		if x.HasSensitivity && x.ResponseFile == "" && x.Fs == 0 && !slices.Contains(names, x.Name) {
-			names = append(names, x.Name)
+		for _, name := range w.DriverNames() {
+			if x := p.design.Driver(name); x.HasSensitivity && x.ResponseFile == "" && x.Fs == 0 {
+				names = append(names, name)
+			}
 		}
 	}
 	return names
