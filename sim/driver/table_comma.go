@@ -1,7 +1,6 @@
 package driver
 
 import (
-	"regexp"
 	"strings"
 	"unicode"
 )
@@ -24,12 +23,31 @@ type commaUse struct {
 	bareSecond  bool // the second column of some row has no decimal comma
 }
 
-// thousands matches a number in which a comma may part thousands. thousandsOf matches the beginning of a row whose
-// first comma surely does, since nobody writes 20 as 020.
-var (
-	thousands   = regexp.MustCompile(`^[+-]?[1-9][0-9]{0,2},[0-9]{3}$`)
-	thousandsOf = regexp.MustCompile(`^[1-9][0-9]{0,2},0[0-9]{2}(,|$)`)
-)
+// isGrouped reports whether the comma of a number may part thousands, as in 1,020.
+func isGrouped(number string) bool {
+	i := strings.IndexByte(number, ',')
+	return i > 0 && len(number) == i+4 && groups(strings.TrimLeft(number, "+-"))
+}
+
+// beginsGrouped reports whether the first comma of a row surely parts thousands: nobody writes 20 as 020.
+func beginsGrouped(row string) bool {
+	i := strings.IndexByte(row, ',')
+	return i > 0 && len(row) >= i+4 && row[i+1] == '0' && (len(row) == i+4 || row[i+4] == ',') && groups(row)
+}
+
+// groups reports whether text begins with one to three digits, a comma and three digits.
+func groups(text string) bool {
+	i := strings.IndexByte(text, ',')
+	if i < 1 || i > 3 || len(text) < i+4 || text[0] == '0' {
+		return false
+	}
+	for k := range i + 4 {
+		if k != i && (text[k] < '0' || text[k] > '9') {
+			return false
+		}
+	}
+	return true
+}
 
 // findCommas looks at all rows and settles whether commas are decimal commas.
 func (p *tableParser) findCommas(text string) error {
@@ -103,7 +121,7 @@ func (u *commaUse) row(no int, line string) (ok bool) {
 		inner := strings.Trim(part, ",")
 		spaced = spaced || inner != part
 		tight = tight || strings.Contains(inner, ",")
-		grouped = grouped || thousands.MatchString(inner)
+		grouped = grouped || isGrouped(inner)
 	}
 	switch {
 	case semicolons && spaced:
@@ -115,7 +133,7 @@ func (u *commaUse) row(no int, line string) (ok bool) {
 			if commas > 1 || strings.Contains(part, ".") {
 				return false
 			}
-			u.notThousand = u.notThousand || commas == 1 && !thousands.MatchString(part)
+			u.notThousand = u.notThousand || commas == 1 && !isGrouped(part)
 			u.bareSecond = u.bareSecond || i == 1 && commas == 0
 		}
 	default:
@@ -131,7 +149,7 @@ func (u *commaUse) row(no int, line string) (ok bool) {
 		}
 		// "1,020, 6.1, -3" after "980, 6.1, -3". Fewer than three columns are missing, and that is said elsewhere.
 		odd := columns > u.columns || columns < u.columns && columns > 2
-		return !odd && !thousandsOf.MatchString(line) && !(spaced && grouped)
+		return !odd && !beginsGrouped(line) && !(spaced && grouped)
 	}
 	return true
 }
