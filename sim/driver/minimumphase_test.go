@@ -179,3 +179,37 @@ func TestNoisyLevel(t *testing.T) {
 		}
 	}
 }
+
+func TestMinimumResponseAllocatesNothing(t *testing.T) {
+	r := mustMinimum(t, levelFile(grid(20, 20e3, 200), highPass(100, 1)))
+	var sum complex128
+	if n := testing.AllocsPerRun(100, func() { sum += r.Pressure(1) + r.Pressure(777) + r.Pressure(1e6) }); n != 0 {
+		t.Errorf("%v allocations", n)
+	}
+	if cmplx.IsNaN(sum) {
+		t.Error("the sum is not a number")
+	}
+}
+
+func BenchmarkMinimumResponse(b *testing.B) {
+	table := mustTable(b, levelFile(grid(20, 20e3, 200), highPass(100, 1)))
+	b.Run("made", func(b *testing.B) {
+		b.ReportAllocs()
+		for b.Loop() {
+			if _, err := NewMinimumResponse(table); err != nil {
+				b.Fatal(err)
+			}
+		}
+	})
+	r := mustMinimum(b, levelFile(grid(20, 20e3, 200), highPass(100, 1)))
+	b.Run("asked", func(b *testing.B) {
+		b.ReportAllocs()
+		var sum complex128
+		for b.Loop() {
+			sum += r.Pressure(1234)
+		}
+		if cmplx.IsNaN(sum) {
+			b.Fatal("the sum is not a number")
+		}
+	})
+}
