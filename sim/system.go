@@ -169,6 +169,9 @@ func (s *System) addWays(d *xover.Design, f *flattener, open opener) error {
 		if drivers == nil {
 			drivers = &xover.Expr{Part: w.Driver}
 		}
+		if !whole(drivers) {
+			return fmt.Errorf("way %q: its drivers are joined by what is no expression; use those of package xover", w.Name)
+		}
 		j := &joiner{flattener: f, way: &w, index: i, speakers: speakers}
 		if err := j.lay(&combo{}, drivers, from, to, nil); err != nil {
 			return err

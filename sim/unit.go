@@ -2,6 +2,7 @@ package sim
 
 import (
 	"fmt"
+	"slices"
 
 	"sixdown/sim/circuit"
 	"sixdown/sim/driver"
@@ -64,11 +65,16 @@ type joiner struct {
 	units    []unit // those laid
 }
 
-// lay lays what e says from node a to node b, makes c of it, and a unit of each driver. shares leads to c.
-func (j *joiner) lay(c *combo, e *xover.Expr, a, b int, shares []divider) error {
-	if e == nil || e.Op > xover.InParallel || e.Op != xover.Leaf && len(e.Args) == 0 {
-		return fmt.Errorf("way %q: its drivers are joined by what is no expression; use those of package xover", j.way.Name)
+// whole reports whether e is what package xover calls an expression: with an operation, and something to do it with.
+func whole(e *xover.Expr) bool {
+	if e == nil || e.Op == xover.Leaf {
+		return e != nil
 	}
+	return e.Op <= xover.InParallel && len(e.Args) > 0 && !slices.ContainsFunc(e.Args, func(x *xover.Expr) bool { return !whole(x) })
+}
+
+// lay lays what e, which must be whole, says from node a to node b, makes c of it, and a unit of each driver. shares leads to c.
+func (j *joiner) lay(c *combo, e *xover.Expr, a, b int, shares []divider) error {
 	c.op = e.Op
 	if e.Op == xover.Leaf {
 		sp := j.speakers[e.Part]

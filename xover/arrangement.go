@@ -279,9 +279,11 @@ func (c *cursor) primary(depth int, use func(token) bool) (*Expr, bool) {
 
 // leaves calls visit for each part of an expression.
 func (x *Expr) leaves(visit func(*Expr)) {
+	if x == nil {
+		return
+	}
 	if x.Op == Leaf {
 		visit(x)
-		return
 	}
 	for _, arg := range x.Args {
 		arg.leaves(visit)
