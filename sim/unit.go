@@ -73,7 +73,8 @@ func whole(e *xover.Expr) bool {
 	return e.Op <= xover.InParallel && len(e.Args) > 0 && !slices.ContainsFunc(e.Args, func(x *xover.Expr) bool { return !whole(x) })
 }
 
-// lay lays what e, which must be whole, says from node a to node b, makes c of it, and a unit of each driver. shares leads to c.
+// lay lays what e, which must be whole, says from node a to node b, makes c of it, and a unit of each driver. shares
+// leads to c.
 func (j *joiner) lay(c *combo, e *xover.Expr, a, b int, shares []divider) error {
 	c.op = e.Op
 	if e.Op == xover.Leaf {

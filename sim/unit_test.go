@@ -189,7 +189,10 @@ func TestMidsAboutATweeter(t *testing.T) {
 	s = mustNew(t, d)
 	freqs := []float64{300, 1000, 2000, 3500}
 	for _, deg := range []float64{3, 15, 40, 80} {
-		rs := mustField(t, s, freqs, field.Angle{VerticalDeg: deg}, field.Angle{VerticalDeg: -deg})
+		rs, err := s.Field(freqs, []field.Angle{{VerticalDeg: deg}, {VerticalDeg: -deg}})
+		if err != nil {
+			t.Fatal(err)
+		}
 		for k, f := range freqs {
 			nearC(t, fmt.Sprintf("%g Hz, %g° below", f, deg), rs[1].Sum[k], rs[0].Sum[k], 1e-11)
 		}
