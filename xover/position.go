@@ -31,6 +31,9 @@ func newLocator(src []byte) *locator {
 // nearest end.
 func (l *locator) position(offset int) Position {
 	offset = min(max(offset, 0), len(l.src))
+	for offset > 0 && offset < len(l.src) && !utf8.RuneStart(l.src[offset]) { // inside a character: where it begins
+		offset--
+	}
 	line := sort.SearchInts(l.lines, offset+1) // lines that begin at or before offset
 	from, column := l.lines[line-1], 1
 	if line == l.lastPos.Line && offset >= l.last {

@@ -11,10 +11,13 @@ import (
 	"unicode/utf8"
 )
 
-// MaxTableBytes is the size of the largest table that ReadTable takes. A 1/96-octave table is some 30 kB.
-const MaxTableBytes = 16 << 20
+// MaxTableBytes is the size of the largest table that ReadTable takes. A 1/96-octave table is some 30 kB, one of 65 536
+// lines evenly spaced 2 MB.
+const MaxTableBytes = 4 << 20
 
 const (
+	maxRows   = 100_000
+	maxLine   = 4096 // bytes
 	closest   = 1e-6 // the least relative distance of two frequencies that count as different
 	leastRows = 3
 )
@@ -108,6 +111,12 @@ func (p *tableParser) file(src []byte) error {
 	}
 	for no, line := range lines(text) {
 		p.line = no
+		if len(line) > maxLine {
+			return p.errorf("give a table with a row of two or three numbers a line", "the line is longer than %d characters", maxLine)
+		}
+		if len(p.rows) >= maxRows {
+			return p.errorf("thin it out", "the table has more than %d rows", maxRows)
+		}
 		if line == "" || strings.ContainsRune("*#;\"'!%/[", rune(line[0])) || !strings.ContainsFunc(line, isLetterOrDigit) {
 			continue
 		}

@@ -138,7 +138,9 @@ func TestReadTableErrors(t *testing.T) {
 		"UTF-32":                   {"\xff\xfe\x00\x002\x00\x00\x00", binary},
 		"binary":                   {"20 8 0\n\x00\x01\n", binary},
 		"unprintable in a message": {"20 8 0\n1 \x1b[31mred 0\n", `w.zma:2: column 2 is "\x1b[31mred", which is no number; give a number such as 6.25`},
-		"too large":                {strings.Repeat("20 8 0\n", MaxTableBytes/7+1), "w.zma: the file is larger than 16 MiB; give a table of measured rows, which is far smaller"},
+		"too large":                {strings.Repeat("20 8 0\n", MaxTableBytes/7+1), "w.zma: the file is larger than 4 MiB; give a table of measured rows, which is far smaller"},
+		"too many rows":            {strings.Repeat("20 8 0\n", maxRows+1), "w.zma:100001: the table has more than 100000 rows; thin it out"},
+		"long line":                {"20 8 0\n30 8 0" + strings.Repeat(" 1", maxLine/2) + "\n", "w.zma:2: the line is longer than 4096 characters; give a table with a row of two or three numbers a line"},
 	} {
 		table, err := ReadTable("w.zma", strings.NewReader(tt.src))
 		if err == nil || err.Error() != tt.want {
