@@ -3,6 +3,7 @@ package sim
 import (
 	"math"
 
+	"sixdown/sim/driver"
 	"sixdown/sim/field"
 )
 
@@ -12,6 +13,7 @@ type air struct {
 	edges    *field.Diffraction // nil: no baffle in the model
 	ka       float64            // of the diaphragm, for each Hz, if there are no edges; 0: a point
 	sinTheta float64            // of the ear from the speaker's axis
+	toward   *driver.Toward     // the ear; nil: not measured at angles
 }
 
 // to returns the air between the speaker and a listener's ear, which must not be where the speaker is. What a
@@ -20,6 +22,9 @@ func (sp *speaker) to(l field.Listener) air {
 	a := air{path: sp.path(l)}
 	ear := l.Ear()
 	switch {
+	case sp.around != nil:
+		b := sp.bearing(ear)
+		a.toward = sp.around.Toward(b.OffDeg, b.AroundDeg)
 	case sp.baffle != nil:
 		a.edges = sp.baffle.Diffraction(sp.at, sp.radius, ear, l.SoundSpeed)
 	case sp.radius > 0:
@@ -37,6 +42,8 @@ func (sp *speaker) to(l field.Listener) air {
 func (a *air) factor(f float64) complex128 {
 	p := a.path.At(f)
 	switch {
+	case a.toward != nil:
+		p *= a.toward.At(f)
 	case a.edges != nil:
 		p *= a.edges.At(f)
 	case a.ka > 0:

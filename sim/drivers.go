@@ -40,9 +40,11 @@ type speaker struct {
 	radiator driver.Radiator // nil: it has no acoustic output
 	at       field.Point     // acoustic centre
 	path     func(field.Listener) field.Path
-	measured bool          // its response is a measurement, which has diaphragm and cabinet in it
-	radius   float64       // m, of the diaphragm, if it is not in the response already; 0: a point
-	baffle   *field.Baffle // nil: its edges are not in the model, or in the response already
+	around   *driver.Directivity                 // nil: not measured at angles
+	bearing  func(ear field.Point) field.Bearing // of the ear from the axis on which around was measured
+	measured bool                                // its response is a measurement, which has diaphragm and cabinet in it
+	radius   float64                             // m, of the diaphragm, if it is not in the response already; 0: a point
+	baffle   *field.Baffle                       // nil: its edges are not in the model, or in the response already
 	tables   []table
 	notes    []string
 }
@@ -138,7 +140,7 @@ func (sp *speaker) setRadiator(d *xover.Driver, sheet driver.DataSheet, l field.
 	sp.path = func(l field.Listener) field.Path { return l.FromOneMetre(at) }
 	switch {
 	case d.ResponseFile != "":
-		return sp.setMeasured(d, open)
+		return sp.setMeasured(d, l, open)
 	case !d.HasSensitivity:
 		return nil
 	case sheet.Fs == 0:
@@ -153,7 +155,7 @@ func (sp *speaker) setRadiator(d *xover.Driver, sheet driver.DataSheet, l field.
 
 // setMeasured makes a measured response the radiator. It was measured at mic: where nothing is said of that, 1 m in
 // front of the origin, or for minimum phase, which knows no common origin, 1 m straight ahead of the driver.
-func (sp *speaker) setMeasured(d *xover.Driver, open opener) error {
+func (sp *speaker) setMeasured(d *xover.Driver, l field.Listener, open opener) error {
 	sp.measured = true
 	at, mic := field.Point(d.At), field.Point{0, 0, 1}
 	if d.MinimumPhase {
@@ -181,7 +183,7 @@ func (sp *speaker) setMeasured(d *xover.Driver, open opener) error {
 			p.Gain *= at.Distance(mic)
 			return p
 		}
-		return nil
+		return sp.setAround(d, t, mic, l.SoundSpeed, open)
 	}
 	r, err := driver.NewResponseTable(t)
 	if err != nil {
@@ -190,7 +192,7 @@ func (sp *speaker) setMeasured(d *xover.Driver, open opener) error {
 	sp.radiator = r
 	sp.tables = append(sp.tables, r)
 	sp.path = func(l field.Listener) field.Path { return l.FromMicrophone(at, mic) }
-	return nil
+	return sp.setAround(d, t, mic, l.SoundSpeed, open)
 }
 
 // setBreakup puts the peaks of the diaphragm's resonances on the response.

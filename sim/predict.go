@@ -160,17 +160,23 @@ func (s *System) rangeWarnings(freqs []float64) []string {
 	return ws
 }
 
-// angleWarnings names the drivers whose responses say nothing of the ear's angle.
+// angleWarnings names the drivers whose responses do not say all of the ear's angle.
 func (s *System) angleWarnings(angle field.Angle) []string {
-	if angle == (field.Angle{}) {
-		return nil
-	}
+	l := s.listener
+	l.Angle = angle
 	var ws []string
 	seen := map[string]bool{}
 	for _, u := range s.units {
-		if sp := u.speaker; sp.measured && !seen[sp.name] {
-			seen[sp.name] = true
+		sp := u.speaker
+		if !sp.measured || seen[sp.name] {
+			continue
+		}
+		seen[sp.name] = true
+		if sp.around == nil && angle != (field.Angle{}) {
 			ws = append(ws, fmt.Sprintf("driver %q: its response was measured at one angle and is taken to be the same at all others, which is invented", sp.name))
+		}
+		for _, what := range sp.invented(l.Ear()) {
+			ws = append(ws, fmt.Sprintf("driver %q: %s, which is invented", sp.name, what))
 		}
 	}
 	return ws

@@ -17,7 +17,10 @@ type ResponseTable struct {
 
 // NewResponseTable makes a radiator of a table with a phase in every row and values in dB SPL between -500
 // and 500. The error is a *TableError.
-func NewResponseTable(t *Table) (*ResponseTable, error) {
+func NewResponseTable(t *Table) (*ResponseTable, error) { return newResponseTable(t, flight) }
+
+// newResponseTable is NewResponseTable with a way to find the flight time in s that is to be taken out, and a note on it.
+func newResponseTable(t *Table, flight func(*Table) (float64, []string)) (*ResponseTable, error) {
 	if !t.HasPhase {
 		return nil, &TableError{File: t.Name, What: "the response has no phase column", Mend: "give three columns: Hz, dB, degrees; or let it be minimum phase with phase = \"minimum\""}
 	}

@@ -10,8 +10,8 @@ type Angle struct {
 	VerticalDeg   float64 // positive: up, toward +y
 }
 
-// turned returns p turned by the angle.
-func (a Angle) turned(p Point) Point {
+// Turned returns p turned by the angle about the origin.
+func (a Angle) Turned(p Point) Point {
 	sin, cos := sincosDeg(a.VerticalDeg)
 	y, z := p[1]*cos+p[2]*sin, p[2]*cos-p[1]*sin
 	sin, cos = sincosDeg(a.HorizontalDeg)

@@ -22,7 +22,7 @@ type Listener struct {
 }
 
 // Ear returns where the ear is.
-func (l Listener) Ear() Point { return l.Angle.turned(Point{0, l.Height, l.Distance}) }
+func (l Listener) Ear() Point { return l.Angle.Turned(Point{0, l.Height, l.Distance}) }
 
 // A Path is what becomes of a driver's pressure on the way to the ear.
 type Path struct {
