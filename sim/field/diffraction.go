@@ -21,8 +21,8 @@ type Diffraction struct {
 }
 
 const (
-	finestStep = 2e-6   // s; at 20 kHz the edges' part comes out 1 % low
-	mostTaps   = 8192   // enough for paths 5.6 m longer than the direct one; beyond, the step grows
+	finestStep = 5e-6   // s
+	mostTaps   = 4096   // enough for paths 7 m longer than the direct one; beyond, the step grows
 	pieceSize  = 0.05   // length of a piece over its distance from the driver, at most
 	farPieces  = 8      // of an edge, for what goes from edge to edge
 	nearest    = 0.5e-3 // m, from an edge: no point of a piston is taken to be nearer
@@ -75,6 +75,11 @@ func (b *Baffle) Diffraction(at Point, radius float64, ear Point, soundSpeed flo
 		once += h
 	}
 	b.again(d, at, ear, 0.5-d.direct-once)
+	last := len(d.taps)
+	for last > 0 && d.taps[last-1] == 0 { // the room was made for the worst case
+		last--
+	}
+	d.taps = d.taps[:last]
 	return d
 }
 
@@ -238,10 +243,11 @@ func (e *edge) passOn(d *Diffraction, here, ear Point, share, out, size float64)
 func (d *Diffraction) At(f float64) complex128 {
 	w := 2 * math.Pi * f
 	direct := d.direct * Piston(w/d.speed*d.radius, d.sinTheta)
-	// What lies between taps was put on both neighbours, so they are the samples of a curve of straight lines,
-	// which this smooths it to; far above the taps' rate that leaves nothing.
-	smooth := sinc(w * d.step / 2)
-	weight := smooth * smooth * Piston(w/d.speed*d.patch, 1)
+	// What lies between taps was put on both neighbours, which on the average weakens it by sinc². That is made up
+	// for up to x⁴, which is 0.3 % at 20 kHz; far above, where the taps say nothing, it stays below 1.2.
+	x := w * d.step / 2
+	smooth := sinc(x)
+	weight := smooth * smooth * (1 + x*x*2/3) * Piston(w/d.speed*d.patch, 1)
 	return complex(direct, 0) + complex(weight, 0)*polynomial(d.taps, cmplx.Rect(1, -w*d.step))*cmplx.Rect(1, -w*d.first)
 }
 
