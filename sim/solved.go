@@ -79,7 +79,7 @@ func (s *System) solvePart(q *solved, lo, hi int) error {
 // newResponse returns a Response without the sound, which hear puts in.
 func (s *System) newResponse(q *solved, angle field.Angle) *Response {
 	n := q.n
-	r := &Response{Title: s.title, Angle: angle, Freqs: q.grid[:n:n], Amp: q.amp[:n:n], Zin: q.zin[:n:n]}
+	r := &Response{Title: s.title, Angle: s.also(angle), Freqs: q.grid[:n:n], Amp: q.amp[:n:n], Zin: q.zin[:n:n]}
 	for i, name := range s.names {
 		w := WayResponse{Name: name, H: q.gain[i][:n:n]}
 		if s.tone == nil {
@@ -94,7 +94,7 @@ func (s *System) newResponse(q *solved, angle field.Angle) *Response {
 		r.Sum, r.SumDelay = make([]complex128, n), make([]float64, n)
 	}
 	if n > 0 {
-		r.Warnings = append(s.rangeWarnings(r.Freqs), s.angleWarnings(angle)...)
+		r.Warnings = append(s.rangeWarnings(r.Freqs), s.angleWarnings(s.also(angle))...)
 	}
 	return r
 }
@@ -135,6 +135,7 @@ func (s *System) airs(angle field.Angle) ([]air, error) {
 	if angle == (field.Angle{}) {
 		return s.straight, nil
 	}
+	angle = s.also(angle)
 	l := s.listener
 	l.Angle = angle
 	if ear := l.Ear(); !(ear.Distance(field.Point{}) < math.Inf(1)) {

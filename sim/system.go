@@ -27,7 +27,8 @@ type System struct {
 	units    []unit // those of the first way, then of the next
 	branches map[string][]int
 	listener field.Listener
-	straight []air // by unit, to the ear where the design has it; of no meaning for one that makes no sound
+	turned   field.Angle // of the ear, from where the design has it
+	straight []air       // by unit, to the ear, turned by turned; of no meaning for one that makes no sound
 	warnings []string
 }
 
