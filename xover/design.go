@@ -42,7 +42,8 @@ type Air struct {
 	Density    float64 // kg/m³; default 1.20
 }
 
-// Baffle is the front of the cabinet, centred on the origin.
+// Baffle is the front of the cabinet, in the plane z = 0 and centred on the origin. Its edges count for drivers
+// without a response file; a measurement has them in it.
 type Baffle struct{ Width, Height float64 } // m
 
 // Kind is what a Part is.
@@ -108,7 +109,7 @@ type Driver struct {
 	Qes            float64 // electrical Q at Fs; 0: not stated
 	Vas            float64 // m³, compliance as a volume; 0: not stated
 	Sd             float64 // m², diaphragm area; 0: not stated
-	Diameter       float64 // m, effective diaphragm diameter; 0: not stated
+	Diameter       float64 // m, effective diaphragm diameter, for its directivity without a response file; 0: not stated
 	Sensitivity    float64 // dB SPL at 2.83 V rms, 1 m, if HasSensitivity
 	HasSensitivity bool
 	Xmax           float64 // m, peak; 0: not stated
