@@ -16,6 +16,7 @@ type predictOptions struct {
 	grid    gridOptions
 	form    answerForm
 	chart   chartOptions
+	around  aroundOptions
 }
 
 func newPredictCmd(s *streams) *cobra.Command {
@@ -42,6 +43,11 @@ With two designs, A and B, both are set side by side with their difference; --se
 and --turn then change B alone, so that one file named twice shows what a change
 does.
 
+With --angle the ear is turned about the cabinet's origin, for all of these. --polar
+and --around print other tables: the sum at every 10 degrees of a plane, and the
+means over many angles of ANSI/CTA-2034-A with the directivity indexes, and whether
+the drivers' directivity is measured (responses) or from the model.
+
 With --chart the answer is drawn too, over the grid's span: the response with each
 way and its target, phase, group delay, the load, the phasors at each crossing, the
 sum with one side reversed, the step response, which needs frequencies up to
@@ -65,6 +71,9 @@ maps.`,
 			if err := o.chart.check(cmd); err != nil {
 				return err
 			}
+			if err := o.around.check(o.against, o.chart.path); err != nil {
+				return err
+			}
 			return runPredict(s, &o)
 		},
 	}
@@ -72,6 +81,7 @@ maps.`,
 	o.design.addTo(cmd)
 	o.form.addTo(cmd)
 	o.chart.addTo(cmd)
+	o.around.addTo(cmd)
 	return cmd
 }
 
@@ -94,11 +104,18 @@ func runPredict(s *streams, o *predictOptions) error {
 	if o.against != "" {
 		return runCompare(s, o)
 	}
-	d, sys, err := o.design.loadSystem(s)
+	d, sys, err := o.around.turned(o.design.loadSystem(s))
 	if err != nil {
 		return err
 	}
-	p, err := predictAt(s, d, sys, o.grid.frequencies(d, !o.form.json && !o.form.csv))
+	freqs := o.grid.frequencies(d, !o.form.json && !o.form.csv)
+	switch o.around.table() {
+	case "--polar":
+		return runPolar(s, o, sys, freqs)
+	case "--around":
+		return runCurves(s, o, sys, freqs)
+	}
+	p, err := predictAt(s, d, sys, freqs)
 	if err != nil {
 		return err
 	}

@@ -62,11 +62,11 @@ func twoDesignFiles(cmd *cobra.Command, args []string, word string) ([]string, c
 // runCompare predicts the design of o as B, and the other file, as it is, as A.
 func runCompare(s *streams, o *predictOptions) error {
 	plain := designOptions{path: o.against}
-	da, sa, err := plain.loadSystem(s)
+	da, sa, err := o.around.turned(plain.loadSystem(s))
 	if err != nil {
 		return err
 	}
-	db, sb, err := o.design.loadSystem(s)
+	db, sb, err := o.around.turned(o.design.loadSystem(s))
 	if err != nil {
 		return err
 	}

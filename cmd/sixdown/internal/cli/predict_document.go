@@ -4,12 +4,14 @@ import (
 	"math"
 
 	"sixdown/sim"
+	"sixdown/sim/field"
 )
 
 // The JSON document of predict. Keys say units; lists are as long as frequency_hz, or null.
 type (
 	predictDocument struct {
 		Title       string           `json:"title"`
+		Angle       *angleDocument   `json:"angle,omitempty"` // of the ear, where it is turned
 		FrequencyHz []number         `json:"frequency_hz"`
 		Ways        []wayDocument    `json:"ways"`
 		Sum         sumDocument      `json:"sum"`
@@ -86,6 +88,9 @@ func (p *prediction) document() predictDocument {
 		Drivers:  driverDocuments(p.system.Fits()),
 		Summary:  summarize(p.summary, p.alignment),
 		Warnings: append([]string{}, p.warnings...), // [] and not null where there are none
+	}
+	if p.Angle != (field.Angle{}) {
+		doc.Angle = &angleDocument{number(p.Angle.HorizontalDeg), number(p.Angle.VerticalDeg)}
 	}
 	for _, w := range p.Ways {
 		way := wayDocument{Name: w.Name, GainDB: numbers(sim.DBs(w.H)), PhaseDeg: phases(w.H)}

@@ -22,6 +22,9 @@ func (p *prediction) text() string {
 	if p.Sum != nil {
 		fmt.Fprintf(&b, "SPL at %[1]s m for %[2]s V; delay without the flight over %[1]s m\n", figures(p.distance, 4), figures(p.level, 4))
 	}
+	if a := angleText(p.Angle); a != "" {
+		fmt.Fprintf(&b, "The ear is turned %s\n", a)
+	}
 	if b.Len() > 0 {
 		b.WriteByte('\n')
 	}
