@@ -128,6 +128,10 @@ func directions() []direction {
 // zone returns the part of the sphere that a direction stands for: of the zone within 5° of its angle from the axis, a
 // quarter, since four directions share it; the caps before and behind are whole. All add up to 1. The zone's area on a
 // unit sphere is 2π(cos θ₁ - cos θ₂), Archimedes.
+//
+// The weights that the standard prints are not these: as far as remembered they are 0.0047 at 10° and 0.0196 at 90°,
+// against 0.0038 and 0.0218 here. By them the sound power of a cardioid comes out 0.1 dB higher and that of a dipole
+// 0.3 dB higher, away from the exact -4.77 dB re the axis, which these weights meet within 0.01 dB.
 func (d direction) zone() float64 {
 	const half = 5 * math.Pi / 180
 	switch d.deg {

@@ -10,6 +10,8 @@
 // coil's losses, the motional branch with its box, and further resonances. A table stands for itself in the frequency
 // domain and is represented by its Fit in the time domain.
 //
+// A Directivity is what a driver measured at angles radiates there over on its axis.
+//
 // The time dependence is e^{+jωt}; s is a complex frequency in rad/s, f a frequency in Hz. Tables are read
 // by ReadTable; they are the only file format this package knows. Where the driver stands and where the
 // ear is belongs to package field.
