@@ -31,6 +31,9 @@ func polarPanels(s *streams, p *prediction, name string, grid *gridOptions) ([]c
 		{"Vertical", func(deg float64) field.Angle { return field.Angle{VerticalDeg: deg} }},
 	} {
 		m := &chart.PolarMap{Title: plane.title, Note: "dB re straight ahead", Freqs: freqs}
+		if p.Angle != (field.Angle{}) {
+			m.Note = "dB re the ear, " + angleText(p.Angle) + "; angles from there"
+		}
 		if name != "" {
 			m.Title += " " + name
 		}
