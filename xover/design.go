@@ -193,12 +193,30 @@ type Tune struct {
 	Level        float64    // dB SPL, if HasLevel; else free
 	HasLevel     bool
 	MinImpedance float64 // Ω; 0: no limit
+	Tilt         float64 // dB per octave that the sum should rise by, 0 dB at 1 kHz; default 0
+	CurveFile    string  // table of Hz, dB: the shape that the sum should have, besides Tilt; "": flat
+	Weights      Weights
+	Angles       []EarAngle // where else the sum should be even
 }
+
+// Weights are what the terms of the tuner's objective count for. All 0 is as 1, 1, 0, 1, the default.
+type Weights struct {
+	Sum    float64 // the sum at the ear
+	Ways   float64 // each way's nearness to its target
+	Phase  float64 // the phase between neighbouring ways around their crossing
+	Angles float64 // the sum at each of Tune.Angles
+}
+
+// An EarAngle is a place of the ear away from where the design has it, turned about the origin.
+type EarAngle struct{ HorizontalDeg, VerticalDeg float64 } // positive: to the right, up
 
 // Spread is what the tolerance analysis assumes.
 type Spread struct {
 	TolR, TolL, TolC, TolP float64 // fractions, for parts that state none; defaults 0.05, and 0.2 for potentiometers
 	LimitDB                float64 // dB; default 1
+	Normal                 bool    // deviations are normal, with the tolerance at 3 sigma; default: uniform within the tolerance
+	AboutLevel             bool    // the limit is about the level that is aimed at; default: about the nominal sum
+	MatchDB                float64 // dB, within which a left and a right loudspeaker should be; 0: not stated
 }
 
 // StepOp is what a Step of the arrangement does.
