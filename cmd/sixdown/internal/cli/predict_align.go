@@ -6,6 +6,7 @@ import (
 	"strings"
 
 	"sixdown/sim"
+	"sixdown/xover"
 )
 
 // The JSON of the phase alignment, one for each crossing of the summary; null where there is no sum.
@@ -91,36 +92,76 @@ type stepping string
 const (
 	inStep     stepping = "in step"
 	quadrature stepping = "in quadrature, as odd orders are"
+	undecided  stepping = "in quadrature, which is right for odd orders and wrong for even ones"
 	outOfStep  stepping = "out of step"
 	opposed    stepping = "opposed"
 )
 
-func steppingOf(a *sim.Alignment) stepping {
+// steppingOf judges a crossing by what the ways there aim at, a quarter turn being as it should be for odd orders alone.
+func steppingOf(a *sim.Alignment, aim parity) stepping {
 	switch {
 	case a.MeanDeg <= 45:
 		return inStep
-	case math.Abs(a.MeanDeg-90) < 15 && a.WorstDeg-a.LeastDeg < 30:
+	case math.Abs(a.MeanDeg-90) < 15 && a.WorstDeg-a.LeastDeg < 30 && aim == odd:
 		return quadrature
+	case math.Abs(a.MeanDeg-90) < 15 && a.WorstDeg-a.LeastDeg < 30 && aim == unstated:
+		return undecided
 	case a.MeanDeg > 120:
 		return opposed
 	}
 	return outOfStep
 }
 
+// A parity is what orders the ways at a crossing aim at.
+type parity uint8
+
+const (
+	unstated parity = iota
+	odd
+	even
+)
+
+// aimAt returns the parity of the targets nearest to a crossing: the low-pass of the way below it and the high-pass of the one
+// above. Where the two differ it is even, since nothing is then as odd orders are.
+func aimAt(d *xover.Design, c sim.Crossing) parity {
+	aim := unstated
+	for _, w := range d.Ways {
+		if w.Name != c.Low && w.Name != c.High {
+			continue
+		}
+		var nearest *xover.Target
+		off := func(t *xover.Target) float64 { return math.Abs(math.Log(t.Frequency / c.Frequency)) }
+		for i := range w.Targets {
+			if t := &w.Targets[i]; t.HighPass == (w.Name == c.High) && (nearest == nil || off(t) < off(nearest)) {
+				nearest = t
+			}
+		}
+		switch {
+		case nearest == nil:
+		case nearest.Order%2 == 0:
+			aim = even
+		case aim == unstated:
+			aim = odd
+		}
+	}
+	return aim
+}
+
 // alignmentText says how well two ways are in step and, where they are not, what to do.
-func alignmentText(a *sim.Alignment) string {
+func alignmentText(a *sim.Alignment, aim parity) string {
 	const indent = "          "
-	found := steppingOf(a)
+	found := steppingOf(a, aim)
 	apart := apartText(a.LeastDeg, a.WorstDeg) + " from " + hertzToHertz(a.Band)
 	if fixed(a.LeastDeg, 0) != fixed(a.WorstDeg, 0) {
 		apart += ", mean " + wholeDegrees(a.MeanDeg)
 	}
 	null := "reversed, " + holeText(a.Null)
-	if a.ReversedIsBetter && found != quadrature {
+	quarterTurn := found == quadrature || found == undecided
+	if a.ReversedIsBetter && !quarterTurn {
 		null = holeText(a.AsWired) + ", relative to " + strings.Join(fewer(a), " and ") + " reversed"
 	}
 	text := folded(indent, fmt.Sprintf("%s: %s; %s; %s", found, apart, null, lobeText(&a.Lobe)))
-	if found == inStep || found == quadrature {
+	if found == inStep || quarterTurn {
 		return text
 	}
 	return text + folded(indent, remedy(a))

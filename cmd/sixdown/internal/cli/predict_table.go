@@ -109,7 +109,7 @@ func (p *prediction) summaryText() string {
 		case p.alignment == nil && math.Abs(c.PhaseDeg) > 120: // beyond which the two are less than either alone
 			b.WriteString("          they are nearly opposed: try the other polarity\n")
 		case p.alignment != nil:
-			b.WriteString(alignmentText(&p.alignment[k]))
+			b.WriteString(alignmentText(&p.alignment[k], aimAt(p.design, c)))
 		}
 	}
 	switch q := s.Sum; {
