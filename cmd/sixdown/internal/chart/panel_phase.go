@@ -6,14 +6,22 @@ import (
 	"sixdown/sim"
 )
 
-// Phase draws the phase of the sum and of each way where it is heard: within levelRange/2 dB of the sum.
+// Phase draws the phase of the sum and of each way where it is heard: within levelRange/2 dB of the sum. The flight that
+// the first subject's tables hold is taken out of all, which the note then says.
 func Phase(subjects []*Subject, note string) Panel {
 	lo, hi := ends(subjects)
 	p := &plotPanel{high: 174, plot: plot{title: "Phase", note: note, x: frequencyAxis(lo, hi), y: phaseAxis(180)}}
+	late := 0.0
+	if subjects[0].sounds() {
+		late = flight(subjects[0].Response)
+	}
+	if late > 0 {
+		p.note += ", and less " + number(1000*late, 3) + " ms that measurements hold"
+	}
 	for k, s := range subjects {
 		f := s.Response.Freqs
 		for i, w := range s.Response.Ways {
-			phase := sim.PhasesDeg(s.output(i))
+			phase := sim.PhasesDeg(withoutFlight(s.output(i), f, late))
 			if s.sounds() {
 				for j, l := range s.levels(i) {
 					if !(l > sim.SPL(s.Response.Sum[j])-levelRange/2) {
@@ -25,7 +33,7 @@ func Phase(subjects []*Subject, note string) Panel {
 			p.series = append(p.series, series{name: s.named(w.Name), x: x, y: y, pen: styles(k, len(subjects), s.wayInk(i), i, wayWidth), near: s.leads(i)})
 		}
 		if s.sounds() {
-			x, y := turned(f, sim.PhasesDeg(s.Response.Sum))
+			x, y := turned(f, sim.PhasesDeg(withoutFlight(s.Response.Sum, f, late)))
 			p.series = append(p.series, series{name: s.named("sum"), x: x, y: y, pen: styles(k, len(subjects), total, -1, totalWidth), bold: true})
 		}
 	}

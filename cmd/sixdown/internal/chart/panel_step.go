@@ -6,11 +6,13 @@ import "math"
 func StepResponse(subjects []*Subject) Panel {
 	p := &plotPanel{high: 178, half: true, plot: plot{title: "Step", note: "relative to the peak"}}
 	top, bottom := math.Inf(-1), math.Inf(1)
+	from, to := math.Inf(1), math.Inf(-1)
 	for k, s := range subjects {
 		ms := make([]float64, len(s.Step.Seconds))
 		for i, t := range s.Step.Seconds {
 			ms[i] = 1000 * t
 		}
+		from, to = min(from, ms[0]), max(to, ms[len(ms)-1])
 		for i, c := range s.Step.Ways {
 			if len(subjects) > 1 && s.Step.Sum != nil {
 				break // two sums are enough to compare
@@ -25,7 +27,7 @@ func StepResponse(subjects []*Subject) Panel {
 			p.note = "volts for 1 V"
 		}
 	}
-	p.x = linearAxis(1000*stepFrom, 1000*stepTo, 6, " ms", false)
+	p.x = linearAxis(from, to, 6, " ms", false)
 	if !(top > bottom) {
 		top, bottom = 1, 0 // nothing is heard
 	}

@@ -17,7 +17,7 @@ const (
 	stepSize   = 1 << 16 // samples in a period: one each 7.6 µs
 	stepBand   = 20e3    // Hz, where the Gaussian that rounds the edge is 3.01 dB down
 	stepTop    = 64e3    // Hz, where it is 31 dB down and the harmonics end
-	stepFrom   = -0.5e-3 // s
+	stepFrom   = -0.5e-3 // s, from when what measurements hold of flight is over
 	stepTo     = 5e-3    // s
 )
 
@@ -47,7 +47,8 @@ func StepOf(r *sim.Response) (*Step, error) {
 	fft := fourier.NewFFT(stepSize)
 	step := &Step{}
 	const dt = stepPeriod / stepSize
-	first, last := int(math.Ceil(stepFrom/dt)), int(math.Floor(stepTo/dt))
+	late := flight(r)
+	first, last := int(math.Ceil((late+stepFrom)/dt)), int(math.Floor((late+stepTo)/dt))
 	for i := first; i <= last; i++ {
 		step.Seconds = append(step.Seconds, float64(i)*dt)
 	}
