@@ -203,6 +203,19 @@ func (s *Sweep) GainGradient(dst []complex128, out, branch int) {
 	s.copyTo(dst, s.gradOf(out, branch)[:len(s.freqs)])
 }
 
+// AddGainGradient adds what GainGradient copies, times a factor, to dst.
+func (s *Sweep) AddGainGradient(dst []complex128, out, branch int, factor float64) {
+	if s.grad == nil {
+		panic("circuit: AddGainGradient before Gradient")
+	}
+	if len(dst) != len(s.freqs) {
+		panic("circuit: len(dst) is not the number of frequencies")
+	}
+	for i, g := range s.gradOf(out, branch)[:len(dst)] {
+		dst[i] += complex(factor*real(g), factor*imag(g))
+	}
+}
+
 // wiggle is the derivative of a cell's immittance by a parameter at s = jω, with the sign of weight.
 func (s *Sweep) wiggle(i int, w float64) complex128 {
 	p := s.c.p

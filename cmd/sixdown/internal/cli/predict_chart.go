@@ -12,8 +12,6 @@ import (
 
 	"sixdown/cmd/sixdown/internal/chart"
 	"sixdown/sim"
-	"sixdown/xover"
-	"sixdown/xover/align"
 )
 
 // chartOptions say what picture is wanted and where it goes.
@@ -273,41 +271,15 @@ func targetLevels(p *prediction, r *sim.Response, sum bool) ([][]float64, error)
 		if len(way.Targets) == 0 {
 			continue
 		}
-		levels[i] = make([]float64, len(r.Freqs))
-		for k := range levels[i] {
-			levels[i][k] = mean
+		var err error
+		if levels[i], err = sim.TargetDB(way.Targets, r.Freqs); err != nil {
+			return nil, err
 		}
-		for _, t := range way.Targets {
-			a, err := targetAlignment(t)
-			if err != nil {
-				return nil, err
-			}
-			for k, f := range r.Freqs {
-				s := complex(0, f/t.Frequency)
-				if t.HighPass {
-					levels[i][k] += sim.DB(a.HighPass(s))
-				} else {
-					levels[i][k] += sim.DB(a.LowPass(s))
-				}
-			}
+		for k := range levels[i] {
+			levels[i][k] += mean
 		}
 	}
 	return levels, nil
-}
-
-// targetAlignment returns the alignment that a target names.
-func targetAlignment(t xover.Target) (*align.Alignment, error) {
-	shape, err := align.ParseShape(t.Shape)
-	if err != nil {
-		return nil, err
-	}
-	spec := align.Spec{Shape: shape, Order: t.Order, RippleDB: t.RippleDB}
-	if t.Reference != "" {
-		if spec.Reference, err = align.ParseReference(t.Reference); err != nil {
-			return nil, err
-		}
-	}
-	return align.New(spec)
 }
 
 // keyNumbers is the caption of a picture: what a builder looks for first, in one line.

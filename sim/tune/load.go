@@ -1,0 +1,128 @@
+package tune
+
+import (
+	"math"
+	"math/cmplx"
+)
+
+// A dip is a minimum of |Zin| over the grid.
+type dip struct {
+	at    int       // index of loads
+	ln    float64   // ln |Zin|
+	slope []float64 // its derivative by each variable
+}
+
+// near is how much above the limit a dip is still watched: a step of the search may bring it below.
+const near = 2.0
+
+// lowest returns ln of the least |Zin| over the grid at the present place, and +Inf where it is not limited.
+func (e *evaluator) lowest() (float64, error) {
+	if e.load == nil {
+		return math.Inf(1), nil
+	}
+	if err := e.load.Solve(); err != nil {
+		return 0, err
+	}
+	e.load.InputImpedance(e.zin)
+	least := math.Inf(1)
+	for _, z := range e.zin {
+		least = min(least, cmplx.Abs(z))
+	}
+	return math.Log(least), nil
+}
+
+// dips returns the minima of |Zin| that are near the limit or below it, at the present place, for which lowest has been
+// called.
+func (e *evaluator) dips(limit float64) ([]dip, error) {
+	var ds []dip
+	for k, z := range e.zin {
+		a := cmplx.Abs(z)
+		if a > near*limit || k > 0 && cmplx.Abs(e.zin[k-1]) < a || k+1 < len(e.zin) && cmplx.Abs(e.zin[k+1]) <= a {
+			continue
+		}
+		ds = append(ds, dip{at: k, ln: math.Log(a), slope: make([]float64, len(e.x))})
+	}
+	if len(ds) == 0 {
+		return nil, nil
+	}
+	for v, branches := range e.p.branches {
+		value := math.Exp(e.x[v])
+		for _, b := range branches {
+			if err := e.load.ImpedanceGradient(e.zgrad, b); err != nil {
+				return nil, err
+			}
+			for i := range ds {
+				k := ds[i].at
+				ds[i].slope[v] += value * real(e.zgrad[k]/e.zin[k])
+			}
+		}
+	}
+	return ds, nil
+}
+
+// leastImpedance returns the least |Zin| in Ω from 20 Hz to 20 kHz and the frequency in Hz at which it is, refined between the
+// points of a grid, for values by variable.
+func (p *Problem) leastImpedance(x []float64) (ohm, at float64, err error) {
+	grid := logGrid(loadFrom, loadTo, loadGrid)
+	z, err := p.impedance(x, grid)
+	if err != nil {
+		return 0, 0, err
+	}
+	ohm = math.Inf(1)
+	for k := range grid {
+		if z[k] < ohm {
+			ohm, at = z[k], grid[k]
+		}
+	}
+	for k := range grid {
+		lower := k > 0 && z[k-1] < z[k] || k+1 < len(grid) && z[k+1] < z[k]
+		if lower || z[k] > 1.1*ohm { // what lies between two points is not a tenth lower
+			continue
+		}
+		lo, hi := grid[max(k-1, 0)], grid[min(k+1, len(grid)-1)]
+		// Finer grids in turn: each is as cheap as one question, since the circuit must be prepared for it.
+		for hi/lo-1 > 1e-9 {
+			fine := logGrid(lo, hi, 16/math.Log2(hi/lo))
+			zf, err := p.impedance(x, fine)
+			if err != nil {
+				return 0, 0, err
+			}
+			best := 0
+			for i := range zf {
+				if zf[i] < zf[best] {
+					best = i
+				}
+			}
+			if zf[best] < ohm {
+				ohm, at = zf[best], fine[best]
+			}
+			lo, hi = fine[max(best-1, 0)], fine[min(best+1, len(fine)-1)]
+		}
+	}
+	return ohm, at, nil
+}
+
+// impedance returns |Zin| in Ω over freqs.
+func (p *Problem) impedance(x, freqs []float64) ([]float64, error) {
+	s, err := p.newSweep(freqs)
+	if err != nil {
+		return nil, err
+	}
+	for v, lnValue := range x {
+		for _, b := range p.branches[v] {
+			if err := s.SetValue(b, math.Exp(lnValue)); err != nil {
+				return nil, err
+			}
+		}
+	}
+	if err := s.Solve(); err != nil {
+		return nil, err
+	}
+	z := make([]complex128, len(freqs))
+	s.InputImpedance(z)
+	out := make([]float64, len(z))
+	for i := range z {
+		out[i] = cmplx.Abs(z[i])
+	}
+	return out, nil
+}

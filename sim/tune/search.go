@@ -1,0 +1,321 @@
+package tune
+
+import (
+	"cmp"
+	"context"
+	"errors"
+	"math"
+	"runtime"
+	"slices"
+	"sync"
+	"sync/atomic"
+)
+
+// Search is how Run looks. The zero value is a good one.
+type Search struct {
+	Starts   int                       // places to begin at; 0: as many as a few tenths of a second allow, by the number of parts
+	Seed     uint64                    // of the places
+	Workers  int                       // goroutines; 0: as many as there are cores. It changes no digit of the result
+	Progress func(done, best float64) // if not nil, called now and then, from one goroutine at a time: share of the work, and objective so far
+}
+
+// Status says how a search ended.
+type Status uint8
+
+// How a search ends.
+const (
+	Converged   Status = iota // no small change of values is better
+	Interrupted               // the context was cancelled: the best so far
+	Limited                   // the number of steps ran out
+)
+
+// A Result is what Run found.
+type Result struct {
+	Values      []float64 // Ω, H or F, by variable
+	Before      Score     // of the design's own values, even where they are beyond their bounds
+	After       Score     // of Values
+	Binding     []Binding // what keeps Values from going further
+	Unmet       bool      // the limit on the impedance cannot be met; Values come as near as was found
+	Starts      int
+	Evaluations int // of the objective
+	Status      Status
+}
+
+// A Binding is a bound or a limit that the optimum lies at.
+type Binding struct {
+	Part  string  // "": the least impedance
+	Upper bool    // the greatest value, not the least
+	Limit float64 // Ω, H or F
+	At    float64 // Hz, of the least impedance
+}
+
+// The rounds of a search: all places take a few steps, the better ones more, the best go all the way.
+var rounds = [...]struct {
+	steps int // of each descent
+	keep  int // as one in so many of the last round
+	least int // at least so many
+}{{8, 1, 1}, {10, 4, 8}, {25, 3, 5}, {400, 2, 3}}
+
+// Run looks for the values of the least objective within the bounds and the limit on the impedance. ctx stops it; the best
+// so far is then the result, with Status Interrupted and no error. The same Search gives the same Result.
+func (p *Problem) Run(ctx context.Context, s Search) (*Result, error) {
+	before, err := p.Score(p.designValues())
+	if err != nil {
+		return nil, err
+	}
+	if s.Starts <= 0 {
+		s.Starts = 72
+	}
+	places := p.scatter(s.Starts, s.Seed)
+	r := &runner{p: p, ctx: ctx, search: s}
+	r.workers = min(cmp.Or(s.Workers, runtime.GOMAXPROCS(0)), len(places))
+	found, err := r.all(places)
+	if err != nil {
+		return nil, err
+	}
+	res := &Result{Before: before, Starts: s.Starts, Status: r.status}
+	best := found[0]
+	e, err := p.newEvaluator()
+	if err != nil {
+		return nil, err
+	}
+	x := best.x
+	if p.limit > 0 && r.status != Interrupted {
+		if x, err = r.keepLimit(e, best.x); err != nil {
+			return nil, err
+		}
+	}
+	res.Values = p.values(x)
+	if res.After, err = e.score(x); err != nil {
+		return nil, err
+	}
+	res.Evaluations = int(r.calls.Load()) + e.calls
+	res.Unmet = res.After.MinImpedance < p.limit*(1-1e-9)
+	res.Binding = p.binding(res)
+	return res, nil
+}
+
+// designValues returns what the design has, by variable, bounds or not.
+func (p *Problem) designValues() []float64 {
+	values := make([]float64, len(p.vars))
+	for v := range values {
+		values[v] = p.leader(p.design.Part(p.vars[v].Part)).Value
+	}
+	return values
+}
+
+// values returns what x are the logarithms of; at a bound, the bound to the last digit.
+func (p *Problem) values(x []float64) []float64 {
+	values := make([]float64, len(x))
+	for v := range x {
+		q := &p.vars[v]
+		switch {
+		case x[v] <= math.Log(q.Low):
+			values[v] = q.Low
+		case x[v] >= math.Log(q.High):
+			values[v] = q.High
+		default:
+			values[v] = math.Exp(x[v])
+		}
+	}
+	return values
+}
+
+// binding returns the bounds and limits that the result lies at.
+func (p *Problem) binding(res *Result) []Binding {
+	var bs []Binding
+	for v, value := range res.Values {
+		switch q := &p.vars[v]; {
+		case value <= q.Low*(1+1e-9):
+			bs = append(bs, Binding{Part: q.Part, Limit: q.Low})
+		case value >= q.High*(1-1e-9):
+			bs = append(bs, Binding{Part: q.Part, Upper: true, Limit: q.High})
+		}
+	}
+	if p.limit > 0 && res.After.MinImpedance < p.limit*(1+1e-4) {
+		bs = append(bs, Binding{Limit: p.limit, At: res.After.MinImpedanceAt})
+	}
+	return bs
+}
+
+// A place is where a descent has come to.
+type place struct {
+	x         []float64
+	f, missed float64
+	over      bool
+	lost      bool // the circuit has no answer there
+}
+
+// worse orders places: first by the limit, then by the objective.
+func (a *place) compare(b *place) int {
+	const met = 1e-7 // of the limit's logarithm
+	if a.lost != b.lost {
+		if a.lost {
+			return 1
+		}
+		return -1
+	}
+	if am, bm := a.missed > met, b.missed > met; am || bm {
+		if c := cmp.Compare(max(a.missed, met), max(b.missed, met)); c != 0 {
+			return c
+		}
+	}
+	return cmp.Compare(a.f, b.f)
+}
+
+// A runner is one Run.
+type runner struct {
+	p       *Problem
+	ctx     context.Context
+	search  Search
+	workers int
+	status  Status
+	calls   atomic.Int64
+
+	mu   sync.Mutex // for what follows
+	done int
+	best float64
+}
+
+// all goes through the rounds and returns the places reached, the best first.
+func (r *runner) all(starts [][]float64) ([]place, error) {
+	places := make([]place, len(starts))
+	for i, x := range starts {
+		places[i] = place{x: x, f: math.Inf(1)}
+	}
+	total := 0
+	count := len(starts)
+	for _, round := range rounds {
+		count = min(count, max(count/round.keep, round.least))
+		total += count
+	}
+	r.best = math.Inf(1)
+	for _, round := range rounds {
+		places = distinct(places)
+		places = places[:min(len(places), max(len(places)/round.keep, round.least))]
+		if err := r.round(places, round.steps, total); err != nil {
+			return nil, err
+		}
+		slices.SortStableFunc(places, func(a, b place) int { return a.compare(&b) })
+		if r.ctx.Err() != nil {
+			r.status = Interrupted
+			break
+		}
+		if places[0].f < exact && places[0].missed == 0 {
+			break // nothing can be better
+		}
+	}
+	if places[0].lost || math.IsInf(places[0].f, 1) {
+		if err := r.ctx.Err(); err != nil {
+			return nil, err
+		}
+		return nil, errors.New("tune: the network has no answer for any values that were tried; check that it has no coil and capacitor without loss side by side")
+	}
+	if r.status == Converged && !places[0].over {
+		r.status = Limited
+	}
+	return places, nil
+}
+
+// distinct drops places that another one has come to as well; they are sorted, the best first.
+func distinct(places []place) []place {
+	var kept []place
+	for _, a := range places {
+		near := slices.ContainsFunc(kept, func(b place) bool {
+			far := 0.0
+			for v := range a.x {
+				far = max(far, math.Abs(a.x[v]-b.x[v]))
+			}
+			return far < 1e-3
+		})
+		if !near {
+			kept = append(kept, a)
+		}
+	}
+	return kept
+}
+
+// round lets each place take steps further down. The result does not depend on how the places are shared out.
+func (r *runner) round(places []place, steps, total int) error {
+	var next atomic.Int64
+	errs := make([]error, r.workers)
+	var wg sync.WaitGroup
+	for w := range r.workers {
+		wg.Go(func() {
+			e, err := r.p.newEvaluator()
+			if err != nil {
+				errs[w] = err
+				return
+			}
+			d := r.p.newDescent(e)
+			for i := int(next.Add(1)) - 1; i < len(places) && r.ctx.Err() == nil; i = int(next.Add(1)) - 1 {
+				r.descend(d, &places[i], steps)
+				r.tell(&places[i], total)
+			}
+			r.calls.Add(int64(e.calls))
+		})
+	}
+	wg.Wait()
+	return errors.Join(errs...)
+}
+
+// descend takes a place further down, unless the context is cancelled on the way: then as far as it has come.
+func (r *runner) descend(d *descent, at *place, steps int) {
+	if at.over || at.lost {
+		return
+	}
+	if err := d.begin(at.x); err != nil {
+		at.lost = true
+		return
+	}
+	for done := 0; done < steps && !d.over && r.ctx.Err() == nil; done += 5 {
+		if err := d.run(min(5, steps-done)); err != nil {
+			break
+		}
+	}
+	at.x = slices.Clone(d.x)
+	at.f, at.missed, at.over = d.f, d.missed, d.over
+}
+
+// tell reports progress.
+func (r *runner) tell(at *place, total int) {
+	r.mu.Lock()
+	defer r.mu.Unlock()
+	r.done++
+	if !at.lost && at.missed == 0 {
+		r.best = min(r.best, at.f)
+	}
+	if r.search.Progress != nil {
+		r.search.Progress(float64(r.done)/float64(total), r.best)
+	}
+}
+
+// keepLimit goes down from x once more, with the limit raised by as much as |Zin| falls short of it between the grid's
+// points, until it holds everywhere.
+func (r *runner) keepLimit(e *evaluator, x []float64) ([]float64, error) {
+	d := r.p.newDescent(e)
+	raise := 1.0
+	for range 12 {
+		d.limit = r.p.limit * raise
+		if err := d.begin(x); err != nil {
+			return nil, err
+		}
+		if err := d.run(60); err != nil {
+			return nil, err
+		}
+		x = slices.Clone(d.x)
+		ohm, _, err := r.p.leastImpedance(x)
+		if err != nil {
+			return nil, err
+		}
+		short := r.p.limit / ohm
+		if short <= 1+1e-9 && (raise == 1 || short > 1-1e-6) {
+			return x, nil
+		}
+		if short > 1.05 {
+			return x, nil // it cannot be met
+		}
+		raise *= short * (1 + 2e-10)
+	}
+	return x, nil
+}
