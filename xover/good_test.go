@@ -75,7 +75,7 @@ func TestHarbour(t *testing.T) {
 				Targets: []Target{{HighPass: true, Shape: "linkwitz-riley", Order: 4, Frequency: 2200}},
 				Network: []Step{series(leaf("C3")), shunt(leaf("L2"))}},
 		},
-		Tune:   Tune{Band: [2]float64{200, 20e3}, Level: 87, HasLevel: true, MinImpedance: 3.2},
+		Tune:   Tune{Band: [2]float64{200, 20e3}, Level: 87, HasLevel: true, MinImpedance: 3.2, Weights: Weights{Sum: 1, Ways: 1, Angles: 1}},
 		Spread: Spread{TolR: 0.05, TolL: 0.05, TolC: 0.05, TolP: 0.2, LimitDB: 1},
 	}
 	d := parseGood(t, "testdata/good/harbour.toml")
@@ -263,5 +263,40 @@ func TestSeveralDrivers(t *testing.T) {
 		if want := 5 - len(tt.names); len(warnings) != want { // of the drivers that no way has
 			t.Errorf("%q: %d warnings, want %d", tt.text, len(warnings), want)
 		}
+	}
+}
+
+func TestTuneAndSpreadKeys(t *testing.T) {
+	d, _, err := Parse("keys.toml", []byte(`[tune]
+tilt = "-0.5 dB"
+curve = "house.txt"
+weights = { ways = 0.5, phase = 0.2 }
+angles = ["h=30", "h=-15, v=10", "v=-20"]
+[spread]
+distribution = "normal"
+about = "level"
+match = "0.5 dB"
+[parts]
+C1 = "4.7 uF"
+[driver.d]
+impedance = "8 ohm"
+[[way]]
+name = "high"
+driver = "d"
+network = ["series C1"]
+`))
+	if err != nil {
+		t.Fatal(err)
+	}
+	tune := Tune{
+		Band: [2]float64{200, 20e3}, Tilt: -0.5, CurveFile: "house.txt", Weights: Weights{Sum: 1, Ways: 0.5, Phase: 0.2, Angles: 1},
+		Angles: []EarAngle{{HorizontalDeg: 30}, {-15, 10}, {VerticalDeg: -20}},
+	}
+	if !reflect.DeepEqual(d.Tune, tune) {
+		t.Errorf("[tune] is %+v, want %+v", d.Tune, tune)
+	}
+	spread := Spread{TolR: 0.05, TolL: 0.05, TolC: 0.05, TolP: 0.2, LimitDB: 1, Normal: true, AboutLevel: true, MatchDB: 0.5}
+	if d.Spread != spread {
+		t.Errorf("[spread] is %+v, want %+v", d.Spread, spread)
 	}
 }

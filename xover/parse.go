@@ -81,7 +81,7 @@ func defaults() *Design {
 		Drive:  Drive{Level: 2.83, RatedLoad: 8},
 		Listen: Listen{Distance: 1},
 		Air:    Air{SoundSpeed: 343, Density: 1.20},
-		Tune:   Tune{Band: [2]float64{200, 20e3}},
+		Tune:   Tune{Band: [2]float64{200, 20e3}, Weights: Weights{Sum: 1, Ways: 1, Angles: 1}},
 		Spread: Spread{TolR: 0.05, TolL: 0.05, TolC: 0.05, TolP: 0.2, LimitDB: 1},
 	}
 }
@@ -267,32 +267,6 @@ func (p *parser) baffle(r *tableReader) {
 		r.missing("height", `give it, such as height = "380 mm"`)
 	}
 	p.design.Baffle = b
-}
-
-func (p *parser) tune(r *tableReader) {
-	t := &p.design.Tune
-	band := t.Band
-	if r.quantities("band", quantity.Hertz, positive, band[:], `band = ["200 Hz", "20 kHz"]`) {
-		if band[0] < band[1] {
-			t.Band = band
-		} else {
-			r.fail(r.pos(r.table.index["band"].value.at), "band does not rise", "write the lower frequency first")
-		}
-	}
-	t.HasLevel = r.quantity("level", quantity.Decibel, anySign, &t.Level)
-	r.quantity("min_impedance", quantity.Ohm, positive, &t.MinImpedance)
-}
-
-func (p *parser) spread(r *tableReader) {
-	s := &p.design.Spread
-	r.inTable("tol", `tol = { R = "5 %", L = "5 %", C = "5 %" }`, func(r *tableReader) {
-		r.label = "[spread] tol"
-		r.quantity("R", quantity.Percent, notNegative, &s.TolR)
-		r.quantity("L", quantity.Percent, notNegative, &s.TolL)
-		r.quantity("C", quantity.Percent, notNegative, &s.TolC)
-		r.quantity("P", quantity.Percent, notNegative, &s.TolP)
-	})
-	r.quantity("limit", quantity.Decibel, positive, &s.LimitDB)
 }
 
 // failQuantity reports an error of the quantity room.

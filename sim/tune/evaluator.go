@@ -15,20 +15,20 @@ type evaluator struct {
 	load  *circuit.Sweep // over the grid on which |Zin| is limited; nil: it is not
 	loads []float64      // Hz, that grid
 
-	x     []float64        // ln of the values
-	gain  [][]complex128   // by way
-	slope [][]complex128   // by way: ∂gain/∂ln value of one variable
-	sum   [][]complex128   // by ear, Pa
-	resid []float64        // weighted, the level taken out
-	root  []float64        // square root of the weight, by residual
-	jac   [][]float64      // by variable: ∂resid/∂x
-	dsum  [][]complex128   // by ear
-	mean  []float64        // by level
-	total []float64        // weight by level
-	pairs []phasePair      // what counts of the phase, set by setPairs
-	zin   []complex128     // over loads
-	zgrad []complex128     // over loads
-	calls int              // how often the objective has been computed
+	x     []float64      // ln of the values
+	gain  [][]complex128 // by way
+	slope [][]complex128 // by way: ∂gain/∂ln value of one variable
+	sum   [][]complex128 // by ear, Pa
+	resid []float64      // weighted, the level taken out
+	root  []float64      // square root of the weight, by residual
+	jac   [][]float64    // by variable: ∂resid/∂x
+	dsum  [][]complex128 // by ear
+	mean  []float64      // by level
+	total []float64      // weight by level
+	pairs []phasePair    // what counts of the phase, set by setPairs
+	zin   []complex128   // over loads
+	zgrad []complex128   // over loads
+	calls int            // how often the objective has been computed
 }
 
 // A phasePair is two neighbouring ways and where the phase between them counts.

@@ -84,9 +84,9 @@ func New(d *xover.Design, sys *sim.System, open func(name string) (io.ReadCloser
 	if err := p.listen(); err != nil {
 		return nil, err
 	}
-	aim, err := aimOf(&d.Tune, p.freqs, open)
+	aim, err := sim.Aim(&d.Tune, p.freqs, open)
 	if err != nil {
-		return nil, err
+		return nil, fmt.Errorf("tune: %w", err)
 	}
 	return p, p.setTerms(aim)
 }

@@ -13,9 +13,9 @@ import (
 
 // Search is how Run looks. The zero value is a good one.
 type Search struct {
-	Starts   int                       // places to begin at; 0: as many as a few tenths of a second allow, by the number of parts
-	Seed     uint64                    // of the places
-	Workers  int                       // goroutines; 0: as many as there are cores. It changes no digit of the result
+	Starts   int                      // places to begin at; 0: as many as a few tenths of a second allow, by the number of parts
+	Seed     uint64                   // of the places
+	Workers  int                      // goroutines; 0: as many as there are cores. It changes no digit of the result
 	Progress func(done, best float64) // if not nil, called now and then, from one goroutine at a time: share of the work, and objective so far
 }
 

@@ -3,7 +3,6 @@ package cli
 import (
 	"fmt"
 	"slices"
-	"strconv"
 	"strings"
 
 	"github.com/spf13/cobra"
@@ -69,20 +68,11 @@ func (o *aroundOptions) readAngle() error {
 	if o.angleText == "" {
 		return nil
 	}
-	seen := ""
-	for _, one := range strings.Split(o.angleText, ",") {
-		axis, number, _ := strings.Cut(strings.TrimSpace(one), "=")
-		deg, err := strconv.ParseFloat(number, 64)
-		if (axis != "h" && axis != "v") || strings.Contains(seen, axis) || err != nil || strings.Trim(number, "+-.0123456789") != "" || !(deg >= -180 && deg <= 180) {
-			return usageFault("--angle", fmt.Sprintf("%q is no angle", o.angleText), "write degrees from -180 to 180 without a unit, as in --angle h=30,v=-10, right and up; either may be left out")
-		}
-		seen += axis
-		if axis == "h" {
-			o.angle.HorizontalDeg = deg
-		} else {
-			o.angle.VerticalDeg = deg
-		}
+	a, ok := xover.ParseEarAngle(o.angleText)
+	if !ok {
+		return usageFault("--angle", fmt.Sprintf("%q is no angle", o.angleText), "write degrees from -180 to 180 without a unit, as in --angle h=30,v=-10, right and up; either may be left out")
 	}
+	o.angle = field.Angle(a)
 	return nil
 }
 
