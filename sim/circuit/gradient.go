@@ -216,6 +216,24 @@ func (s *Sweep) AddGainGradient(dst []complex128, out, branch int, factor float6
 	}
 }
 
+// AddLossGradient adds ∂(V_out/V_open)/∂(series resistance of an inductor), in 1/Ω, times a factor, to dst, as of the last
+// Gradient. With Z = R + jωL, it is that by L over jω. Of other branches it adds nothing.
+func (s *Sweep) AddLossGradient(dst []complex128, out, branch int, factor float64) {
+	if s.grad == nil {
+		panic("circuit: AddLossGradient before Gradient")
+	}
+	if len(dst) != len(s.freqs) {
+		panic("circuit: len(dst) is not the number of frequencies")
+	}
+	if s.c.net.Branches[branch].Kind != Inductor {
+		return
+	}
+	for i, g := range s.gradOf(out, branch)[:len(dst)] {
+		c := factor / s.omega(i)
+		dst[i] += complex(c*imag(g), -c*real(g))
+	}
+}
+
 // wiggle is the derivative of a cell's immittance by a parameter at s = jω, with the sign of weight.
 func (s *Sweep) wiggle(i int, w float64) complex128 {
 	p := s.c.p

@@ -55,7 +55,7 @@ band = ["500 Hz", "2 kHz"]
 `
 
 // coilDB is the gain in dB of a coil of x times that value, at f in Hz: -10·lg(1 + (x·f/1 kHz)²).
-func coilDB(x, f float64) float64 { return -10 * math.Log10(1 + x*f*x*f/1e6) }
+func coilDB(x, f float64) float64 { return -10 * math.Log10(1+x*f*x*f/1e6) }
 
 // The level falls as the coil grows, so the level's quantiles are the level at the coil's.
 func TestFirstOrderQuantilesAreExact(t *testing.T) {

@@ -18,7 +18,8 @@ type descent struct {
 	damping float64
 	growth  float64
 	penalty float64
-	over    bool // no step leads further down
+	over    bool   // no step leads further down
+	frozen  []bool // by variable: it does not move
 
 	hess, damped, slope []float64
 	conds               []condition
@@ -37,7 +38,7 @@ func (p *Problem) newDescent(e *evaluator) *descent {
 	n := len(p.vars)
 	d := &descent{
 		e: e, q: newQuadratic(n), limit: p.limit,
-		x: make([]float64, n), trial: make([]float64, n),
+		x: make([]float64, n), trial: make([]float64, n), frozen: make([]bool, n),
 		hess: make([]float64, n*n), damped: make([]float64, n*n), slope: make([]float64, n),
 	}
 	for v := range n {
@@ -79,12 +80,25 @@ func (d *descent) arrive() error {
 		}
 		d.slope[i] = dot(d.e.jac[i], d.e.resid)
 	}
+	for v, frozen := range d.frozen {
+		if frozen {
+			for j := range n {
+				d.hess[v*n+j], d.hess[j*n+v] = 0, 0
+			}
+			d.hess[v*n+v], d.slope[v] = 1, 0
+		}
+	}
 	d.conds = d.conds[:2*n]
 	if d.limit == 0 {
 		return nil
 	}
 	dips, err := d.e.dips(d.limit)
 	for _, p := range dips {
+		for v, frozen := range d.frozen {
+			if frozen {
+				p.slope[v] = 0
+			}
+		}
 		d.conds = append(d.conds, condition{a: p.slope, b: math.Log(d.limit) - p.ln})
 	}
 	return err
@@ -116,8 +130,8 @@ func (d *descent) run(steps int) error {
 func (d *descent) step() error {
 	n := len(d.x)
 	for v := range n {
-		d.conds[2*v].b = math.Log(d.e.p.vars[v].Low) - d.x[v]
-		d.conds[2*v+1].b = d.x[v] - math.Log(d.e.p.vars[v].High)
+		d.conds[2*v].b = min(math.Log(d.e.p.vars[v].Low)-d.x[v], 0)
+		d.conds[2*v+1].b = min(d.x[v]-math.Log(d.e.p.vars[v].High), 0)
 	}
 	if !d.aim() {
 		d.worse()
@@ -129,6 +143,9 @@ func (d *descent) step() error {
 		most = max(most, math.Abs(move[v]))
 		// Rounding must not lead out of the bounds.
 		d.trial[v] = min(max(d.x[v]+move[v], math.Log(d.e.p.vars[v].Low)), math.Log(d.e.p.vars[v].High))
+		if d.frozen[v] {
+			d.trial[v] = d.x[v]
+		}
 	}
 	promised := 0.0
 	for i := range n {

@@ -15,6 +15,7 @@ type evaluator struct {
 	load  *circuit.Sweep // over the grid on which |Zin| is limited; nil: it is not
 	loads []float64      // Hz, that grid
 
+	coils windings       // resistance that moves with a coil's value; nil: it stays as the design states it
 	x     []float64      // ln of the values
 	gain  [][]complex128 // by way
 	slope [][]complex128 // by way: ∂gain/∂ln value of one variable
@@ -42,10 +43,12 @@ const (
 	pascalRef  = 20e-6             // Pa
 )
 
-func (p *Problem) newEvaluator() (*evaluator, error) {
-	e := &evaluator{p: p}
+func (p *Problem) newEvaluator() (*evaluator, error) { return p.newEvaluatorWith(nil) }
+
+func (p *Problem) newEvaluatorWith(coils windings) (*evaluator, error) {
+	e := &evaluator{p: p, coils: coils}
 	var err error
-	if e.sweep, err = p.newSweep(p.freqs); err != nil {
+	if e.sweep, err = p.newSweep(p.freqs, coils); err != nil {
 		return nil, err
 	}
 	n, ways := len(p.freqs), p.outputs()
@@ -82,7 +85,7 @@ func (p *Problem) newEvaluator() (*evaluator, error) {
 	}
 	if p.limit > 0 {
 		e.loads = logGrid(loadFrom, loadTo, perOctave)
-		if e.load, err = p.newSweep(e.loads); err != nil {
+		if e.load, err = p.newSweep(e.loads, coils); err != nil {
 			return nil, err
 		}
 		e.zin, e.zgrad = make([]complex128, len(e.loads)), make([]complex128, len(e.loads))
@@ -96,14 +99,12 @@ func (e *evaluator) set(x []float64) error {
 		if e.x[v] == lnValue && e.calls > 0 {
 			continue
 		}
-		for _, b := range e.p.branches[v] {
-			for _, s := range []*circuit.Sweep{e.sweep, e.load} {
-				if s == nil {
-					continue
-				}
-				if err := s.SetValue(b, math.Exp(lnValue)); err != nil {
-					return err
-				}
+		for _, s := range []*circuit.Sweep{e.sweep, e.load} {
+			if s == nil {
+				continue
+			}
+			if err := e.p.move(s, e.coils, v, lnValue); err != nil {
+				return err
 			}
 		}
 		e.x[v] = lnValue
@@ -116,11 +117,32 @@ func (e *evaluator) objective(x []float64) (float64, error) {
 	if err := e.set(x); err != nil {
 		return 0, err
 	}
+	return e.objectiveHere()
+}
+
+// objectiveHere is objective at the present place.
+func (e *evaluator) objectiveHere() (float64, error) {
 	if err := e.sweep.Solve(); err != nil {
 		return 0, err
 	}
 	e.calls++
 	return e.residuals(), nil
+}
+
+// setOhm gives the coils of variable v another resistance than the windings say, until they are next moved.
+func (e *evaluator) setOhm(v int, ohm float64) error {
+	for _, s := range []*circuit.Sweep{e.sweep, e.load} {
+		if s == nil {
+			continue
+		}
+		for _, b := range e.p.branches[v] {
+			if err := s.SetLoss(b, ohm); err != nil {
+				return err
+			}
+		}
+	}
+	e.x[v] = math.NaN() // so that set moves it
+	return nil
 }
 
 // derivatives is objective, with jac as there.
@@ -221,10 +243,14 @@ func (e *evaluator) heard(t *term, k int) complex128 {
 func (e *evaluator) column(v int) {
 	p, col := e.p, e.jac[v]
 	value := math.Exp(e.x[v])
+	ohm := e.coils.slope(v, e.x[v])
 	for w, slope := range e.slope {
 		clear(slope)
 		for _, b := range p.branches[v] {
 			e.sweep.AddGainGradient(slope, w, b, value)
+			if ohm > 0 {
+				e.sweep.AddLossGradient(slope, w, b, ohm)
+			}
 		}
 	}
 	for i := range p.ears {

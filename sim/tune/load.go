@@ -46,14 +46,15 @@ func (e *evaluator) dips(limit float64) ([]dip, error) {
 		return nil, nil
 	}
 	for v, branches := range e.p.branches {
-		value := math.Exp(e.x[v])
+		value, ohm := math.Exp(e.x[v]), e.coils.slope(v, e.x[v])
 		for _, b := range branches {
 			if err := e.load.ImpedanceGradient(e.zgrad, b); err != nil {
 				return nil, err
 			}
 			for i := range ds {
 				k := ds[i].at
-				ds[i].slope[v] += value * real(e.zgrad[k]/e.zin[k])
+				d := e.zgrad[k] / e.zin[k]
+				ds[i].slope[v] += value*real(d) + ohm*imag(d)/(2*math.Pi*e.loads[k]) // as of AddLossGradient
 			}
 		}
 	}
@@ -62,9 +63,9 @@ func (e *evaluator) dips(limit float64) ([]dip, error) {
 
 // leastImpedance returns the least |Zin| in Ω from 20 Hz to 20 kHz and the frequency in Hz at which it is, refined between the
 // points of a grid, for values by variable.
-func (p *Problem) leastImpedance(x []float64) (ohm, at float64, err error) {
+func (p *Problem) leastImpedance(x []float64, coils windings) (ohm, at float64, err error) {
 	grid := logGrid(loadFrom, loadTo, loadGrid)
-	z, err := p.impedance(x, grid)
+	z, err := p.impedance(x, coils, grid)
 	if err != nil {
 		return 0, 0, err
 	}
@@ -83,7 +84,7 @@ func (p *Problem) leastImpedance(x []float64) (ohm, at float64, err error) {
 		// Finer grids in turn: each is as cheap as one question, since the circuit must be prepared for it.
 		for hi/lo-1 > 1e-9 {
 			fine := logGrid(lo, hi, 16/math.Log2(hi/lo))
-			zf, err := p.impedance(x, fine)
+			zf, err := p.impedance(x, coils, fine)
 			if err != nil {
 				return 0, 0, err
 			}
@@ -103,16 +104,14 @@ func (p *Problem) leastImpedance(x []float64) (ohm, at float64, err error) {
 }
 
 // impedance returns |Zin| in Ω over freqs.
-func (p *Problem) impedance(x, freqs []float64) ([]float64, error) {
-	s, err := p.newSweep(freqs)
+func (p *Problem) impedance(x []float64, coils windings, freqs []float64) ([]float64, error) {
+	s, err := p.newSweep(freqs, coils)
 	if err != nil {
 		return nil, err
 	}
 	for v, lnValue := range x {
-		for _, b := range p.branches[v] {
-			if err := s.SetValue(b, math.Exp(lnValue)); err != nil {
-				return nil, err
-			}
+		if err := p.move(s, coils, v, lnValue); err != nil {
+			return nil, err
 		}
 	}
 	if err := s.Solve(); err != nil {

@@ -238,11 +238,41 @@ func (p *Problem) Start() []float64 {
 // outputs is how many ways there are.
 func (p *Problem) outputs() int { return len(p.sys.Names()) }
 
-// newSweep prepares the circuit over freqs.
-func (p *Problem) newSweep(freqs []float64) (*circuit.Sweep, error) {
-	s, err := p.sys.Circuit().NewSweep(freqs)
+// newSweep prepares the circuit over freqs. With coils, every coil that has a winding is compiled with a resistance.
+func (p *Problem) newSweep(freqs []float64, coils windings) (*circuit.Sweep, error) {
+	c := p.sys.Circuit()
+	if coils != nil {
+		net := p.sys.Netlist()
+		for v := range coils {
+			for _, b := range p.branches[v] {
+				if coils[v] != nil && net.Branches[b].Loss == 0 {
+					net.Branches[b].Loss = leastOhm
+				}
+			}
+		}
+		var err error
+		if c, err = circuit.Compile(net, p.sys.Outputs()); err != nil {
+			return nil, fmt.Errorf("tune: %w", err)
+		}
+	}
+	s, err := c.NewSweep(freqs)
 	if err != nil {
 		return nil, fmt.Errorf("tune: %w", err)
 	}
 	return s, nil
+}
+
+// move gives variable v of a sweep the value of which x is the logarithm.
+func (p *Problem) move(s *circuit.Sweep, coils windings, v int, x float64) error {
+	for _, b := range p.branches[v] {
+		if err := s.SetValue(b, math.Exp(x)); err != nil {
+			return err
+		}
+		if ohm := coils.ohm(v, x); ohm > 0 {
+			if err := s.SetLoss(b, ohm); err != nil {
+				return err
+			}
+		}
+	}
+	return nil
 }

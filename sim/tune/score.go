@@ -84,6 +84,6 @@ func (e *evaluator) score(x []float64) (Score, error) {
 		s.PhaseRMSDeg = math.Sqrt(square / float64(points))
 	}
 	var err error
-	s.MinImpedance, s.MinImpedanceAt, err = e.p.leastImpedance(x)
+	s.MinImpedance, s.MinImpedanceAt, err = e.p.leastImpedance(x, e.coils)
 	return s, err
 }

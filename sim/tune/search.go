@@ -304,7 +304,7 @@ func (r *runner) keepLimit(e *evaluator, x []float64) ([]float64, error) {
 			return nil, err
 		}
 		x = slices.Clone(d.x)
-		ohm, _, err := r.p.leastImpedance(x)
+		ohm, _, err := r.p.leastImpedance(x, nil)
 		if err != nil {
 			return nil, err
 		}
