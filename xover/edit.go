@@ -43,6 +43,36 @@ func Edit(src []byte, values map[string]float64) ([]byte, error) {
 	return proved(src, splices, want)
 }
 
+// EditDCR returns a copy of the design file src in which each coil named in ohms has that winding resistance, in Ω; where the
+// file gives none it is added. Like Edit it changes these alone and proves it.
+func EditDCR(src []byte, ohms map[string]float64) ([]byte, error) {
+	f, err := parseFile("", src)
+	if err != nil {
+		return nil, err
+	}
+	want := f.design
+	var splices []splice
+	for _, name := range sortedKeys(ohms) {
+		part := want.Part(name)
+		if part == nil || part.Kind != Inductor {
+			return nil, &Error{What: fmt.Sprintf("%q is no coil", name), Mend: "name one of [parts]"}
+		}
+		if what, mend := valueFault(ohms[name], quantity.Ohm, notNegative); what != "" {
+			return nil, &Error{What: name + ": dcr: " + what, Mend: mend}
+		}
+		if part.DCR == ohms[name] {
+			continue
+		}
+		part.DCR = ohms[name]
+		place, ok := f.dcr[name]
+		if !ok { // the short form
+			place = dcrPlace{f.parts[name], "{ value = " + string(src[f.parts[name].from:f.parts[name].to]) + ", dcr = ", " }"}
+		}
+		splices = append(splices, splice{place.span, place.before + strconv.Quote(quantity.Format(part.DCR, quantity.Ohm)) + place.after})
+	}
+	return proved(src, splices, want)
+}
+
 // EditControl returns a copy of the design file src in which each control named in at is turned so far, 0
 // to 1. Like Edit it changes these numbers alone and proves it.
 func EditControl(src []byte, at map[string]float64) ([]byte, error) {

@@ -110,3 +110,47 @@ func turned(src []byte, control string, at float64) error {
 	}
 	return err
 }
+
+func TestEditDCR(t *testing.T) {
+	const src = `[parts]
+L1 = "0.5 mH" # short
+L2 = { value = "1 mH", dcr = "0.3 ohm" } # stated
+L3 = { value = "2 mH", hold = true }
+L4 = { same = "L1" }
+[parts.L5]
+value = "3 mH" # a table of its own
+[driver.d]
+impedance = "8 ohm"
+[[way]]
+name = "low"
+driver = "d"
+network = ["series L1", "series L2", "series L3", "series L4", "series L5"]
+`
+	const want = `[parts]
+L1 = { value = "0.5 mH", dcr = "0.25 ohm" } # short
+L2 = { value = "1 mH", dcr = "0.35 ohm" } # stated
+L3 = { value = "2 mH", dcr = "0.45 ohm", hold = true }
+L4 = { same = "L1", dcr = "0.25 ohm" }
+[parts.L5]
+value = "3 mH"
+dcr = "0.5 ohm" # a table of its own
+[driver.d]
+impedance = "8 ohm"
+[[way]]
+name = "low"
+driver = "d"
+network = ["series L1", "series L2", "series L3", "series L4", "series L5"]
+`
+	got, err := EditDCR([]byte(src), map[string]float64{"L1": 0.25, "L2": 0.35, "L3": 0.45, "L4": 0.25, "L5": 0.5})
+	if err != nil {
+		t.Fatal(err)
+	}
+	if string(got) != want {
+		t.Errorf("got\n%s", got)
+	}
+	for _, bad := range []map[string]float64{{"L9": 1}, {"L1": -1}, {"L1": math.NaN()}} {
+		if got, err := EditDCR([]byte(src), bad); err == nil || got != nil {
+			t.Errorf("%v: no error", bad)
+		}
+	}
+}

@@ -29,12 +29,19 @@ func Parse(name string, src []byte) (*Design, []Warning, error) {
 type file struct {
 	design   *Design
 	warnings []Warning
-	parts    map[string]span // of the literal that gives a part's value
-	controls map[string]span // of the number that gives a control's setting
+	parts    map[string]span     // of the literal that gives a part's value
+	dcr      map[string]dcrPlace // where a part's winding resistance is written, or could be
+	controls map[string]span     // of the number that gives a control's setting
 }
 
 // A span is a piece of the source, from its first byte to the one behind it.
 type span struct{ from, to int }
+
+// A dcrPlace is what to put a resistance in place of, and what goes before and after it.
+type dcrPlace struct {
+	span
+	before, after string
+}
 
 // A parser reads one design file.
 type parser struct {
@@ -58,7 +65,7 @@ func parseFile(name string, src []byte) (*file, error) {
 	p := &parser{
 		diagnostics: diagnostics{file: name},
 		design:      defaults(),
-		file:        &file{parts: map[string]span{}, controls: map[string]span{}},
+		file:        &file{parts: map[string]span{}, dcr: map[string]dcrPlace{}, controls: map[string]span{}},
 		partAt:      map[string]int{},
 		faulty:      map[string]bool{},
 		lost:        map[string]bool{},

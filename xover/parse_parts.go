@@ -99,6 +99,31 @@ func (p *parser) partValue(part *Part, n *node) {
 	p.file.parts[part.Name] = span{n.at + p.offset, n.end + p.offset}
 }
 
+// dcrPlace notes where the long form of a part has its dcr, or could have it.
+func (p *parser) dcrPlace(part *Part, r *tableReader) {
+	literal := func(key string) *node {
+		if e := r.table.index[key]; e != nil && e.value.kind == textNode {
+			return e.value
+		}
+		return nil
+	}
+	if n := literal("dcr"); n != nil {
+		p.file.dcr[part.Name] = dcrPlace{span{n.at + p.offset, n.end + p.offset}, "", ""}
+		return
+	}
+	n := literal("value")
+	if n == nil {
+		n = literal("same")
+	}
+	if n != nil {
+		before := "\ndcr = "
+		if r.table.inline {
+			before = ", dcr = "
+		}
+		p.file.dcr[part.Name] = dcrPlace{span{n.end + p.offset, n.end + p.offset}, before, ""}
+	}
+}
+
 // shortName tells a name such as R1, L12 or C3, whose letter says what the part is.
 func shortName(name string) bool {
 	if len(name) < 2 || !slices.Contains([]byte("RLCP"), name[0]) {
@@ -146,6 +171,7 @@ func (p *parser) partTable(part *Part, r *tableReader) {
 		}
 		return true
 	}
+	p.dcrPlace(part, r)
 	if only("dcr", Inductor) {
 		r.quantity("dcr", quantity.Ohm, notNegative, &part.DCR)
 	}

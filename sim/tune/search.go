@@ -132,7 +132,7 @@ func (p *Problem) binding(res *Result) []Binding {
 			bs = append(bs, Binding{Part: q.Part, Upper: true, Limit: q.High})
 		}
 	}
-	if p.limit > 0 && res.After.MinImpedance < p.limit*(1+1e-4) {
+	if p.limit > 0 && !res.Unmet && res.After.MinImpedance < p.limit*(1+1e-4) {
 		bs = append(bs, Binding{Limit: p.limit, At: res.After.MinImpedanceAt})
 	}
 	return bs

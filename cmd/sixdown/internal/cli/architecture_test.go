@@ -23,7 +23,7 @@ func rooms() map[string][]string {
 	return map[string][]string{
 		"sixdown/xover":            {"sixdown/xover/quantity", toml},
 		"sixdown/xover/quantity":   {},
-		"sixdown/xover/preferred":  {"sixdown/xover/quantity"},
+		"sixdown/xover/preferred":  {"sixdown/xover/quantity", toml},
 		"sixdown/xover/align":      {},
 		"sixdown/xover/ladder":     {"sixdown/xover/align"},
 		"sixdown/sim/circuit":      {gonum, "golang.org/x/sys/cpu"},

@@ -16,6 +16,10 @@ func commandGroups(s *streams) []commandGroup {
 			newSizeCmd(s),
 			newPredictCmd(s),
 		}},
+		{"Make it better:", []*cobra.Command{
+			newTuneCmd(s),
+			newSpreadCmd(s),
+		}},
 		{"Hear and check:", []*cobra.Command{
 			newRenderCmd(s),
 			newVerifyCmd(s),

@@ -37,6 +37,11 @@ func (o *designOptions) load(s *streams) (*xover.Design, error) {
 	if err != nil {
 		return nil, err
 	}
+	return o.parse(s, name, src)
+}
+
+// parse is load of a design that has been read.
+func (o *designOptions) parse(s *streams, name string, src []byte) (*xover.Design, error) {
 	d, warnings, err := xover.Parse(name, src)
 	if err != nil {
 		return nil, err
@@ -47,17 +52,30 @@ func (o *designOptions) load(s *streams) (*xover.Design, error) {
 	return d, o.change(d)
 }
 
+// folder is where the files are that the design names.
+func (o *designOptions) folder() string {
+	if o.path == "-" {
+		return ""
+	}
+	return filepath.Dir(o.path)
+}
+
 // loadSystem is load, and makes a System of the design. Its driver tables are looked for beside the file.
 func (o *designOptions) loadSystem(s *streams) (*xover.Design, *sim.System, error) {
-	d, err := o.load(s)
+	name, src, err := readDesign(s, o.path)
 	if err != nil {
 		return nil, nil, err
 	}
-	dir := ""
-	if o.path != "-" {
-		dir = filepath.Dir(o.path)
+	return o.systemOf(s, name, src)
+}
+
+// systemOf is loadSystem of a design that has been read.
+func (o *designOptions) systemOf(s *streams, name string, src []byte) (*xover.Design, *sim.System, error) {
+	d, err := o.parse(s, name, src)
+	if err != nil {
+		return nil, nil, err
 	}
-	sys, err := sim.New(d, tablesIn(dir))
+	sys, err := sim.New(d, tablesIn(o.folder()))
 	if err != nil {
 		return nil, nil, err
 	}

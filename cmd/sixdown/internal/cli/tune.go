@@ -1,0 +1,277 @@
+package cli
+
+import (
+	"context"
+	"errors"
+	"fmt"
+	"math"
+	"os"
+	"path/filepath"
+	"time"
+
+	"github.com/spf13/cobra"
+
+	"sixdown/sim/tune"
+	"sixdown/xover"
+	"sixdown/xover/preferred"
+	"sixdown/xover/quantity"
+)
+
+// tuneOptions are what tune is asked.
+type tuneOptions struct {
+	design  designOptions
+	form    answerForm
+	stock   string
+	pairs   bool
+	out     string
+	inPlace bool
+	explain bool
+	starts  int
+	seed    uint64
+}
+
+func newTuneCmd(s *streams) *cobra.Command {
+	var o tuneOptions
+	cmd := &cobra.Command{
+		Use:   "tune DESIGN [--stock E24|FILE] [--out FILE | --in-place]",
+		Short: "Move the values until it meets its targets, in parts that can be bought",
+		Long: `Tune moves the values of the parts until the sum at the ear is even over the band of
+[tune] and each way follows its target there, where that is above -20 dB. What it
+lowers is the mean square of the sum about its level plus that of each way about its
+target, in dB². Parts with hold = true stay; same = "L1" follows another; range = [a, b]
+bounds a value, else 0.1-100 ohm, 0.1-470 uF and 0.02-15 mH do. min_impedance in
+[tune] is a hard limit on the load from 20 Hz to 20 kHz: give one that suits the
+amplifier, since an even sum can be had from networks that short it.
+
+Further keys of [tune]: level, tilt (dB per octave), curve (a table of Hz and dB),
+weights = { sum, ways, phase, angles }, and angles = ["h=30", "v=-10"], other places of the
+ear at which the sum should be even.
+
+With --stock it then looks for the best set that can be bought: of a series of preferred
+values, or of a list (CSV or TOML: kind, value, tol, dcr, price, count, name). A coil
+has the resistance that the list gives or, without one, that of the design's coil if it
+were wound of the same wire.
+
+Without --out and --in-place nothing is written. Interrupted, it keeps the best so far.`,
+		Example: `  sixdown tune harbour.toml --stock E12 --out tuned.toml
+  sixdown tune harbour.toml --stock shelf.csv --explain
+  sixdown predict harbour.toml tuned.toml`,
+		Args:              oneDesign,
+		ValidArgsFunction: designFiles,
+		RunE: func(cmd *cobra.Command, args []string) error {
+			o.design.path = args[0]
+			return runTune(cmd.Context(), s, &o)
+		},
+	}
+	f := cmd.Flags()
+	f.StringVar(&o.stock, "stock", "", "buy the parts: `E24` or another series, or the file of a list")
+	f.BoolVar(&o.pairs, "pairs", false, "with --stock: two parts in series or in parallel may make one")
+	f.StringVar(&o.out, "out", "", "write the design with the new values to this `file`")
+	f.BoolVar(&o.inPlace, "in-place", false, "write the new values into the design itself")
+	f.BoolVar(&o.explain, "explain", false, "say what changed, and what each change does")
+	f.IntVar(&o.starts, "starts", 0, "places to begin at; without it, as many as usually suffice")
+	f.Uint64Var(&o.seed, "seed", 1, "of these places")
+	o.design.addTo(cmd)
+	o.form.addJSON(cmd)
+	return cmd
+}
+
+// A tuning is the answer of tune.
+type tuning struct {
+	design  *xover.Design
+	problem *tune.Problem
+	vars    []tune.Variable
+	result  *tune.Result
+	worths  []tune.Worth
+	bought  *tune.Bought // nil without --stock
+	explain *tune.Explanation
+	stock   string
+	seconds float64
+	written string // the file; "": none
+}
+
+func (o *tuneOptions) check() error {
+	switch {
+	case o.out != "" && o.inPlace:
+		return usageFault("command line", "both --out and --in-place are given", "give one of them")
+	case o.inPlace && o.design.path == "-":
+		return usageFault("--in-place", "the design is standard input", "give --out FILE")
+	case o.pairs && o.stock == "":
+		return usageFault("--pairs", "there is nothing to pair without --stock", "give --stock too")
+	case o.starts < 0 || o.starts > 100000:
+		return usageFault("--starts", fmt.Sprintf("%d places", o.starts), "give 1 to 100000, or leave it out")
+	}
+	return nil
+}
+
+func runTune(ctx context.Context, s *streams, o *tuneOptions) error {
+	if err := o.check(); err != nil {
+		return err
+	}
+	source, err := readSource(o.stock)
+	if err != nil {
+		return err
+	}
+	// The text is read once, so that what is written back is what was tuned, from standard input too.
+	name, src, err := readDesign(s, o.design.path)
+	if err != nil {
+		return err
+	}
+	d, sys, err := o.design.systemOf(s, name, src)
+	if err != nil {
+		return err
+	}
+	t := &tuning{design: d, stock: o.stock}
+	if t.problem, err = tune.New(d, sys, tablesIn(o.design.folder())); err != nil {
+		return err
+	}
+	t.vars = t.problem.Variables()
+	for _, v := range t.vars {
+		if v.Moved {
+			unit := v.Kind.Unit()
+			s.warn(fmt.Sprintf("%s is beyond %s to %s, and the search begins at the nearer of these", v.Part, quantity.Format(v.Low, unit), quantity.Format(v.High, unit)))
+		}
+	}
+	began := time.Now()
+	if err := t.work(ctx, s, o, source); err != nil {
+		return err
+	}
+	t.seconds = time.Since(began).Seconds()
+	t.warnOfLoad(s)
+	if err := t.write(o, src); err != nil {
+		return err
+	}
+	if o.form.json {
+		return s.answerJSON(t.document())
+	}
+	return s.answer(t.text())
+}
+
+// work does all the searching. An interrupt ends each search with the best so far.
+func (t *tuning) work(ctx context.Context, s *streams, o *tuneOptions, source tune.Source) error {
+	bar := newProgress(s, "tuning")
+	var err error
+	t.result, err = t.problem.Run(ctx, tune.Search{Starts: o.starts, Seed: o.seed, Progress: func(done, _ float64) { bar.at(done) }})
+	bar.done()
+	if err != nil {
+		return err
+	}
+	if t.worths, err = t.problem.Worths(t.result.Values); err != nil {
+		return err
+	}
+	if source != nil {
+		bar := newProgress(s, "buying")
+		t.bought, err = t.problem.Buy(ctx, t.result.Values, source, tune.BuySettings{Pairs: o.pairs, Progress: func(done, _ float64) { bar.at(done) }})
+		bar.done()
+		if err != nil {
+			return err
+		}
+	}
+	if o.explain {
+		t.explain, err = t.problem.Explain(t.problem.Start(), t.chosen())
+	}
+	return err
+}
+
+// chosen returns the values that would be written: those that can be bought if that was asked for.
+func (t *tuning) chosen() []float64 {
+	if t.bought != nil {
+		return t.bought.Values
+	}
+	return t.result.Values
+}
+
+// warnOfLoad warns of a network that an amplifier may not stand.
+func (t *tuning) warnOfLoad(s *streams) {
+	after := t.result.After
+	if t.bought != nil {
+		after = t.bought.Score
+	}
+	switch {
+	case t.result.Unmet || t.bought != nil && t.bought.Unmet:
+		s.warn(fmt.Sprintf("min_impedance %s cannot be held: the load is %s at least; lower the limit, widen a range, or give other parts", quantity.Format(t.design.Tune.MinImpedance, quantity.Ohm), ohms(after.MinImpedance)+" ohm"))
+	case t.design.Tune.MinImpedance == 0 && after.MinImpedance < min(lowLoad*t.design.Drive.RatedLoad, t.result.Before.MinImpedance):
+		s.warn(fmt.Sprintf("the load falls to %s ohm at %s, which amplifiers may not stand; give [tune] min_impedance a value that yours does", ohms(after.MinImpedance), hertz(after.MinImpedanceAt)))
+	}
+}
+
+// lowLoad is how much of the rated load the impedance may fall to: 80 %, IEC 60268-5, 16.1, on the rated impedance.
+const lowLoad = 0.8
+
+// write writes the design with the values chosen, if that was asked for.
+func (t *tuning) write(o *tuneOptions, src []byte) error {
+	path := o.out
+	if o.inPlace {
+		path = o.design.path
+	}
+	if path == "" {
+		return nil
+	}
+	values, ohmsOf := map[string]float64{}, map[string]float64{}
+	for v, value := range t.chosen() {
+		values[t.vars[v].Part] = value
+		if t.bought != nil && t.bought.Ohms[v] > 0 {
+			for _, name := range append([]string{t.vars[v].Part}, t.vars[v].Followers...) {
+				ohmsOf[name] = t.bought.Ohms[v]
+			}
+		}
+	}
+	edited, err := xover.Edit(src, values)
+	if err != nil {
+		return err
+	}
+	if edited, err = xover.EditDCR(edited, ohmsOf); err != nil {
+		return err
+	}
+	inputs := []string{}
+	if !o.inPlace && o.design.path != "-" {
+		inputs = append(inputs, o.design.path)
+	}
+	out, err := createOutput(path, inputs...)
+	if err != nil {
+		return err
+	}
+	defer out.Abort()
+	if _, err := out.Write(edited); err != nil {
+		return outputFault(path, err)
+	}
+	if err := out.Commit(); err != nil {
+		return outputFault(path, err)
+	}
+	t.written = path
+	return nil
+}
+
+// readSource returns where parts are bought: nil for "".
+func readSource(stock string) (tune.Source, error) {
+	if stock == "" {
+		return nil, nil
+	}
+	if series, err := preferred.ParseSeries(stock); err == nil {
+		return preferred.Shop{Series: series}, nil
+	}
+	f, err := os.Open(stock)
+	if err != nil {
+		if errors.Is(err, os.ErrNotExist) && filepath.Ext(stock) == "" {
+			return nil, usageFault("--stock", fmt.Sprintf("%q is neither a series nor a file", stock), "give E6, E12, E24, E48, E96, E192 or the name of a list")
+		}
+		return nil, inputFault(stock, err)
+	}
+	defer f.Close() // it was only read
+	list, err := preferred.ReadStock(stock, f)
+	if err != nil {
+		return nil, err
+	}
+	return list, nil
+}
+
+// improvement returns how many per cent lower the objective is.
+func improvement(before, after float64) float64 {
+	if !(before > 0) {
+		return 0
+	}
+	return 100 * (1 - after/before)
+}
+
+// rms is the square root of an objective, a mean of squares in dB².
+func rms(objective float64) float64 { return math.Sqrt(objective) }

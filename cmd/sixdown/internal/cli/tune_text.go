@@ -1,0 +1,389 @@
+package cli
+
+import (
+	"fmt"
+	"math"
+	"strings"
+
+	"sixdown/cmd/sixdown/internal/table"
+	"sixdown/sim/tune"
+	"sixdown/xover/preferred"
+	"sixdown/xover/quantity"
+)
+
+// The JSON of tune.
+type (
+	scoreDocument struct {
+		Objective    number `json:"objective"` // dB²
+		SumRMSDB     number `json:"sum_rms_db"`
+		WayRMSDB     number `json:"way_rms_db"`
+		PhaseRMSDeg  number `json:"phase_rms_deg"`
+		MinImpedance number `json:"min_impedance_ohm"`
+		MinAt        number `json:"min_impedance_hz"`
+		LevelDB      number `json:"level_db"`
+	}
+	adviceDocument struct {
+		Part    string `json:"part"`
+		Say     string `json:"say"`
+		CostsDB number `json:"costs_db2"` // what leaving it out adds to the objective
+	}
+	bindingDocument struct {
+		Part  string `json:"part"`  // "" for the least impedance
+		Bound string `json:"bound"` // least or greatest
+		Limit number `json:"limit"`
+		AtHz  number `json:"at_hz"`
+	}
+	itemDocument struct {
+		Parts    []string `json:"parts"`
+		Values   []number `json:"values"` // two of a pair
+		Joined   string   `json:"joined"` // series or parallel; "" for one
+		Names    []string `json:"names"`
+		Quantity int      `json:"quantity"` // of each
+		Price    number   `json:"price"`
+	}
+	changeDocument struct {
+		Part   string `json:"part"`
+		Before number `json:"before"`
+		After  number `json:"after"`
+		Way    string `json:"way"`
+		FromHz number `json:"from_hz"`
+		ToHz   number `json:"to_hz"`
+		DB     number `json:"db"`
+		Costs  number `json:"undoing_costs_db2"`
+	}
+	tuneDocument struct {
+		Before      scoreDocument     `json:"before"`
+		After       scoreDocument     `json:"after"`
+		Stock       *scoreDocument    `json:"stock"`
+		Rounded     *scoreDocument    `json:"rounded"`
+		Parts       map[string]number `json:"parts"`
+		StockParts  map[string]number `json:"stock_parts"`
+		StockDCR    map[string]number `json:"stock_dcr_ohm"`
+		Shopping    []itemDocument    `json:"shopping"`
+		Price       *number           `json:"price"`
+		Proved      *bool             `json:"stock_proved"`
+		Advice      []adviceDocument  `json:"advice"`
+		Binding     []bindingDocument `json:"binding"`
+		Changes     []changeDocument  `json:"changes"`
+		Status      string            `json:"status"`
+		Met         bool              `json:"min_impedance_met"`
+		Evaluations int               `json:"evaluations"`
+		Seconds     number            `json:"seconds"`
+	}
+)
+
+func scored(s tune.Score) scoreDocument {
+	return scoreDocument{number(s.Objective), number(s.SumRMSDB), number(s.WayRMSDB), number(s.PhaseRMSDeg), number(s.MinImpedance), number(s.MinImpedanceAt), number(s.LevelDB)}
+}
+
+func statusText(s tune.Status) string {
+	switch s {
+	case tune.Interrupted:
+		return "interrupted"
+	case tune.Limited:
+		return "stopped at the limit of steps"
+	}
+	return "converged"
+}
+
+// byPart returns values by the names of the parts, followers among them.
+func (t *tuning) byPart(values []float64) map[string]number {
+	m := map[string]number{}
+	for v, value := range values {
+		for _, name := range append([]string{t.vars[v].Part}, t.vars[v].Followers...) {
+			m[name] = number(value)
+		}
+	}
+	return m
+}
+
+func (t *tuning) document() tuneDocument {
+	r := t.result
+	doc := tuneDocument{
+		Before: scored(r.Before), After: scored(r.After), Parts: t.byPart(r.Values), Advice: []adviceDocument{}, Binding: []bindingDocument{},
+		Status: statusText(r.Status), Met: !r.Unmet, Evaluations: r.Evaluations, Seconds: number(t.seconds),
+	}
+	for _, w := range t.worths {
+		doc.Advice = append(doc.Advice, adviceDocument{w.Part, worthText(&w), number(w.Costs)})
+	}
+	for _, b := range r.Binding {
+		bound := "least"
+		if b.Upper {
+			bound = "greatest"
+		}
+		doc.Binding = append(doc.Binding, bindingDocument{b.Part, bound, number(b.Limit), number(b.At)})
+	}
+	if b := t.bought; b != nil {
+		stock, rounded, price := scored(b.Score), scored(b.Rounded), number(b.Price)
+		doc.Stock, doc.Rounded, doc.Price, doc.Proved, doc.StockParts = &stock, &rounded, &price, &b.Proved, t.byPart(b.Values)
+		doc.StockDCR = map[string]number{}
+		for v, ohm := range b.Ohms {
+			if ohm > 0 {
+				doc.StockDCR[t.vars[v].Part] = number(ohm)
+			}
+		}
+		doc.Met = doc.Met && !b.Unmet
+		for v, c := range b.Choices {
+			item := itemDocument{Parts: append([]string{c.Part}, t.vars[v].Followers...), Quantity: c.Parts, Values: []number{}, Names: []string{}}
+			for _, it := range c.Items {
+				item.Values, item.Names = append(item.Values, number(it.Value)), append(item.Names, it.Name)
+				if it.Price >= 0 {
+					item.Price += number(it.Price * float64(c.Parts))
+				}
+			}
+			item.Joined = joined(&c)
+			doc.Shopping = append(doc.Shopping, item)
+		}
+	}
+	if t.explain != nil {
+		for _, c := range t.explain.Changes {
+			doc.Changes = append(doc.Changes, changeDocument{c.Part, number(c.Before), number(c.After), c.Way, number(c.From), number(c.To), number(c.DB), number(c.Costs)})
+		}
+	}
+	return doc
+}
+
+// joined says how a pair is connected; "" for one part.
+func joined(c *tune.Choice) string {
+	switch {
+	case len(c.Items) < 2:
+		return ""
+	case c.Parallel:
+		return "parallel"
+	}
+	return "series"
+}
+
+// worthText says what leaving a part out would do.
+func worthText(w *tune.Worth) string {
+	how := "short it"
+	if w.Open {
+		how = "leave it open"
+	}
+	switch {
+	case math.IsInf(w.Without, 1):
+		return "it must be there"
+	case w.Useless:
+		return fmt.Sprintf("contributes nothing; leave it out (%s)", how)
+	}
+	return fmt.Sprintf("without it (%s) the error rises to %s", how, decibels(rms(w.Without)))
+}
+
+// text is the answer for people.
+func (t *tuning) text() string {
+	var b strings.Builder
+	r := t.result
+	b.WriteString(t.scoresText())
+	b.WriteByte('\n')
+	b.WriteString(t.partsText())
+	if r.Status == tune.Interrupted {
+		b.WriteString("interrupted: this is the best so far\n")
+	}
+	for _, bind := range r.Binding {
+		b.WriteString(folded("binds     ", t.bindingText(bind)))
+	}
+	if t.bought != nil {
+		b.WriteString(t.boughtText())
+	}
+	useless := 0
+	for _, w := range t.worths {
+		if w.Useless {
+			useless++
+			b.WriteString(folded("advice    ", w.Part+" "+worthText(&w)))
+		}
+	}
+	if useless > 1 {
+		b.WriteString("          each by itself: tune again after leaving one out\n")
+	}
+	if t.explain != nil {
+		b.WriteByte('\n')
+		b.WriteString(t.explainText())
+	}
+	if t.written != "" {
+		b.WriteString("written   " + t.written + "\n")
+	} else {
+		b.WriteString("nothing is written; --out FILE or --in-place does\n")
+	}
+	return b.String()
+}
+
+// scoresText sets the scores side by side.
+func (t *tuning) scoresText() string {
+	columns := []table.Column{{Name: ""}, {Name: "before"}, {Name: "tuned"}}
+	scores := []tune.Score{t.result.Before, t.result.After}
+	if t.bought != nil {
+		columns = append(columns, table.Column{Name: "bought"}, table.Column{Name: "rounded"})
+		scores = append(scores, t.bought.Score, t.bought.Rounded)
+	}
+	columns[0].Left = true
+	tab := table.New(columns...)
+	row := func(name string, cell func(s tune.Score) string) {
+		cells := []string{name}
+		for _, s := range scores {
+			cells = append(cells, cell(s))
+		}
+		tab.Row(cells...)
+	}
+	row("objective, dB²", func(s tune.Score) string { return objectiveText(s.Objective) })
+	row("sum, dB rms", func(s tune.Score) string { return fixed(s.SumRMSDB, 3) })
+	row("ways, dB rms", func(s tune.Score) string { return fixed(s.WayRMSDB, 3) })
+	row("phase, ° rms", func(s tune.Score) string { return fixed(s.PhaseRMSDeg, 1) })
+	row("lowest |Z|, Ω", func(s tune.Score) string { return fixed(s.MinImpedance, 2) })
+	row("there, Hz", func(s tune.Score) string { return figures(s.MinImpedanceAt, 4) })
+	return tab.Text(pageWidth)
+}
+
+// objectiveText writes an objective; what is left of one by rounding is nothing.
+func objectiveText(f float64) string {
+	if f < 1e-9 {
+		return "0"
+	}
+	return figures(f, 4)
+}
+
+// partsText is the table of values.
+func (t *tuning) partsText() string {
+	columns := []table.Column{{Name: "part", Left: true}, {Name: "before"}, {Name: "tuned"}}
+	if t.bought != nil {
+		columns = append(columns, table.Column{Name: "bought"}, table.Column{Name: "off", Unit: "%"}, table.Column{Name: "dcr", Unit: "Ω"})
+	}
+	tab := table.New(columns...)
+	for v, q := range t.vars {
+		unit := q.Kind.Unit()
+		name := strings.Join(append([]string{q.Part}, q.Followers...), ", ")
+		cells := []string{name, quantity.Round(t.design.Part(q.Part).Value, unit, 4), quantity.Round(t.result.Values[v], unit, 4)}
+		if t.bought != nil {
+			dcr := ""
+			if t.bought.Ohms[v] > 0 {
+				dcr = figures(t.bought.Ohms[v], 3)
+			}
+			cells = append(cells, choiceText(&t.bought.Choices[v], unit), fixed(100*(t.bought.Values[v]/t.result.Values[v]-1), 1), dcr)
+		}
+		tab.Row(cells...)
+	}
+	return tab.Text(pageWidth)
+}
+
+// choiceText says what a part is bought as: "10 µF | 4.7 µF" for two side by side.
+func choiceText(c *tune.Choice, unit quantity.Unit) string {
+	var values []string
+	for _, it := range c.Items {
+		values = append(values, quantity.Round(it.Value, unit, 4))
+	}
+	sign := " + "
+	if c.Parallel {
+		sign = " | "
+	}
+	return strings.Join(values, sign)
+}
+
+func (t *tuning) bindingText(b tune.Binding) string {
+	if b.Part == "" {
+		return fmt.Sprintf("the least impedance, %s, at %s", quantity.Format(b.Limit, quantity.Ohm), hertz(b.At))
+	}
+	unit := t.design.Part(b.Part).Kind.Unit()
+	which := "least"
+	if b.Upper {
+		which = "greatest"
+	}
+	return fmt.Sprintf("%s is at its %s value, %s", b.Part, which, quantity.Format(b.Limit, unit))
+}
+
+// boughtText says how good the set is, and what to buy.
+func (t *tuning) boughtText() string {
+	b := t.bought
+	text := fmt.Sprintf("the set's error is %s against %s of the ideal values", decibels(rms(b.Score.Objective)), decibels(rms(t.result.After.Objective)))
+	if gain := improvement(b.Rounded.Objective, b.Score.Objective); gain > 0.5 {
+		text += fmt.Sprintf("; its objective is %s %% below that of the nearest values", figures(gain, 3))
+	}
+	if b.Proved {
+		text += "; no other set is better, as far as re-tuning tells"
+	} else {
+		text += fmt.Sprintf("; the search stopped after %d places, so that a better one may exist", b.Nodes)
+	}
+	out := folded("bought    ", text)
+	type line struct {
+		item  preferred.Item
+		count int
+		parts []string
+	}
+	var lines []*line
+	for v, c := range b.Choices {
+		names := append([]string{c.Part}, t.vars[v].Followers...)
+		for _, it := range c.Items {
+			var found *line
+			for _, l := range lines {
+				if l.item == it {
+					found = l
+				}
+			}
+			if found == nil {
+				found = &line{item: it}
+				lines = append(lines, found)
+			}
+			found.count += c.Parts
+			found.parts = append(found.parts, names...)
+		}
+	}
+	if b.Price > 0 {
+		for _, l := range lines {
+			name := l.item.Name
+			if name != "" {
+				name += ", "
+			}
+			unit := t.design.Part(l.parts[0]).Kind.Unit()
+			price := ""
+			if l.item.Price >= 0 {
+				price = fmt.Sprintf(", %s each", fixed(l.item.Price, 2))
+			}
+			out += folded("          ", fmt.Sprintf("%d × %s%s%s for %s", l.count, name, quantity.Round(l.item.Value, unit, 4), price, strings.Join(l.parts, ", ")))
+		}
+		out += fmt.Sprintf("          in all %s, as far as prices are stated\n", fixed(b.Price, 2))
+	}
+	return out
+}
+
+// explainText says what changed and what it did.
+func (t *tuning) explainText() string {
+	var b strings.Builder
+	for _, c := range t.explain.Changes {
+		unit := t.design.Part(c.Part).Kind.Unit()
+		raises, by := "raises", c.DB
+		if by < 0 {
+			raises, by = "lowers", -by
+		}
+		text := fmt.Sprintf("from %s to %s", quantity.Round(c.Before, unit, 3), quantity.Round(c.After, unit, 3))
+		if c.Way != "" {
+			text += fmt.Sprintf(" %s %s by %s from %s to %s", raises, c.Way, decibels(by), roughly(c.From), roughly(c.To))
+		}
+		switch {
+		case c.Costs > 0.005*t.result.Before.Objective:
+			text += fmt.Sprintf("; undone alone, the error would be %s", decibels(rms(c.Costs+t.chosenScore().Objective)))
+		default:
+			text += "; undone alone, it would hardly matter"
+		}
+		b.WriteString(folded(fmt.Sprintf("%-10s", c.Part), text))
+	}
+	for _, o := range t.explain.Octaves {
+		if math.Abs(o.Before-o.After) < 0.1 {
+			continue
+		}
+		what := o.Way
+		if what == "" {
+			what = "the sum"
+		}
+		better := "nearer"
+		if o.After > o.Before {
+			better = "farther off"
+		}
+		fmt.Fprintf(&b, "%s from %s to %s: off by %s before, %s now, %s\n", what, roughly(o.From), roughly(o.To), decibels(o.Before), decibels(o.After), better)
+	}
+	return b.String()
+}
+
+func (t *tuning) chosenScore() tune.Score {
+	if t.bought != nil {
+		return t.bought.Score
+	}
+	return t.result.After
+}
