@@ -41,3 +41,23 @@ func (p *Problem) scatter(count int, seed uint64) [][]float64 {
 	}
 	return places
 }
+
+// kick is the factor by which a value is moved at most.
+const kick = 2.5
+
+// kicked returns so many places about each of places, drawn by lot.
+func (p *Problem) kicked(places []place, count int, seed uint64) []place {
+	random := rand.New(rand.NewPCG(seed, 0x41c5)) // any second word
+	var all []place
+	for range count {
+		for i := range places {
+			x := make([]float64, len(p.vars))
+			for v := range x {
+				moved := places[i].x[v] + (2*random.Float64()-1)*math.Log(kick)
+				x[v] = min(max(moved, math.Log(p.vars[v].Low)), math.Log(p.vars[v].High))
+			}
+			all = append(all, place{x: x, f: math.Inf(1)})
+		}
+	}
+	return all
+}

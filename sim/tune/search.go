@@ -13,7 +13,7 @@ import (
 
 // Search is how Run looks. The zero value is a good one.
 type Search struct {
-	Starts   int                      // places to begin at; 0: as many as a few tenths of a second allow, by the number of parts
+	Starts   int                      // places to begin at; 0: 180, a few tenths of a second of work
 	Seed     uint64                   // of the places
 	Workers  int                      // goroutines; 0: as many as there are cores. It changes no digit of the result
 	Progress func(done, best float64) // if not nil, called now and then, from one goroutine at a time: share of the work, and objective so far
@@ -49,12 +49,17 @@ type Binding struct {
 	At    float64 // Hz, of the least impedance
 }
 
-// The rounds of a search: all places take a few steps, the better ones more, the best go all the way.
+// defaultStarts is how many places a search begins at: a few tenths of a second of work.
+const defaultStarts = 180
+
+// The rounds of a search: all places take a few steps, the better ones more; the best are kicked, to look into what lies near them;
+// and the best of all go all the way.
 var rounds = [...]struct {
 	steps int // of each descent
 	keep  int // as one in so many of the last round
 	least int // at least so many
-}{{8, 1, 1}, {10, 4, 8}, {25, 3, 5}, {400, 2, 3}}
+	kicks int // before it, so many new places about each
+}{{8, 1, 1, 0}, {12, 3, 12, 0}, {12, 10, 6, 9}, {12, 10, 6, 9}, {400, 8, 4, 0}}
 
 // Run looks for the values of the least objective within the bounds and the limit on the impedance. ctx stops it; the best
 // so far is then the result, with Status Interrupted and no error. The same Search gives the same Result.
@@ -64,7 +69,7 @@ func (p *Problem) Run(ctx context.Context, s Search) (*Result, error) {
 		return nil, err
 	}
 	if s.Starts <= 0 {
-		s.Starts = 72
+		s.Starts = defaultStarts
 	}
 	places := p.scatter(s.Starts, s.Seed)
 	r := &runner{p: p, ctx: ctx, search: s}
@@ -186,13 +191,14 @@ func (r *runner) all(starts [][]float64) ([]place, error) {
 	total := 0
 	count := len(starts)
 	for _, round := range rounds {
-		count = min(count, max(count/round.keep, round.least))
+		count = min(count, max(count/round.keep, round.least)) * (1 + round.kicks)
 		total += count
 	}
 	r.best = math.Inf(1)
 	for _, round := range rounds {
 		places = distinct(places)
 		places = places[:min(len(places), max(len(places)/round.keep, round.least))]
+		places = append(places, r.p.kicked(places, round.kicks, r.search.Seed)...)
 		if err := r.round(places, round.steps, total); err != nil {
 			return nil, err
 		}

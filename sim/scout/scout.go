@@ -1,0 +1,235 @@
+package scout
+
+import (
+	"cmp"
+	"context"
+	"errors"
+	"fmt"
+	"io"
+	"math"
+	"math/cmplx"
+	"runtime"
+	"slices"
+	"sync"
+	"sync/atomic"
+
+	"sixdown/sim"
+	"sixdown/sim/tune"
+	"sixdown/xover"
+)
+
+// Settings are how Scout looks. The zero value is a good one.
+type Settings struct {
+	Starts   int // of each arrangement's tuning; 0: 24
+	Seed     uint64
+	Workers  int // goroutines; 0: as many as there are cores. It changes no digit of the result
+	Progress func(done float64)
+}
+
+// A Find is an arrangement, tuned.
+type Find struct {
+	Name         string        // what it is, in words
+	Design       *xover.Design // its values tuned
+	Points       []float64     // Hz
+	ErrorDB      float64       // rms of all that the tuner's objective is the sum of
+	Score        tune.Score
+	Parts        int
+	Reversed     []bool
+	Frontier     bool    // no other is at least as good in error, parts and least impedance, and better in one of them
+	ExcursionMM  float64 // greatest peak excursion of a high-passed driver at the rated power; 0: not known
+	ExcursionFor string  // whose
+}
+
+// A Report is what Scout found.
+type Report struct {
+	Finds   []Find   // all that were tuned and stay within the drivers' limits, by error
+	Limits  []string // what bounds the crossover points, a sentence each
+	Tuned   int
+	Dropped int // tuned, and beyond a driver's excursion or the limit on the impedance
+	Partial bool
+}
+
+// LeastLoad is the least impedance in Ω that is asked for where the design states none: 80 % of 4 Ω, by IEC 60268-5, 16.1.
+const LeastLoad = 3.2
+
+// Scout looks at the arrangements for the drivers of d, whose ways must be in order from the lowest. open opens driver tables. ctx
+// stops it early: the report is then of what was tuned, Partial.
+func Scout(ctx context.Context, d *xover.Design, open func(name string) (io.ReadCloser, error), s Settings) (*Report, error) {
+	if len(d.Ways) < 2 || len(d.Ways) > 3 {
+		return nil, fmt.Errorf("scout: the design has %d ways; give one with two or three, the lowest first", len(d.Ways))
+	}
+	base := *d
+	if base.Tune.MinImpedance == 0 {
+		base.Tune.MinImpedance = LeastLoad
+	}
+	sys, err := sim.New(&base, open)
+	if err != nil {
+		return nil, err
+	}
+	if !sys.Sums() {
+		return nil, errors.New("scout: not every driver has an acoustic output; give each a response or a sensitivity")
+	}
+	loud := loudness(sys, &base)
+	all, limits := plans(&base, loud)
+	if len(all) == 0 {
+		return &Report{Limits: limits}, nil
+	}
+	r := &Report{Limits: limits}
+	finds := make([]*Find, len(all))
+	errs := make([]error, len(all))
+	var next, done atomic.Int64
+	var telling sync.Mutex
+	var wg sync.WaitGroup
+	for range min(cmp.Or(s.Workers, runtime.GOMAXPROCS(0)), len(all)) {
+		wg.Go(func() {
+			for i := int(next.Add(1)) - 1; i < len(all) && ctx.Err() == nil; i = int(next.Add(1)) - 1 {
+				finds[i], errs[i] = all[i].tuned(ctx, &base, sys, loud, open, &s)
+				if n := done.Add(1); s.Progress != nil {
+					telling.Lock()
+					s.Progress(float64(n) / float64(len(all)))
+					telling.Unlock()
+				}
+			}
+		})
+	}
+	wg.Wait()
+	r.Partial = ctx.Err() != nil
+	for i, f := range finds {
+		switch {
+		case errs[i] != nil && !errors.Is(errs[i], context.Canceled):
+			return nil, errs[i]
+		case f == nil:
+			continue
+		}
+		r.Tuned++
+		if !stands(&base, f) {
+			r.Dropped++
+			continue
+		}
+		r.Finds = append(r.Finds, *f)
+	}
+	if r.Partial && r.Tuned == 0 {
+		return nil, ctx.Err()
+	}
+	slices.SortStableFunc(r.Finds, func(a, b Find) int { return cmp.Compare(a.ErrorDB, b.ErrorDB) })
+	mark(r.Finds)
+	return r, nil
+}
+
+// tuned tunes the plan.
+func (p *plan) tuned(ctx context.Context, base *xover.Design, sys *sim.System, loud []float64, open func(string) (io.ReadCloser, error), s *Settings) (*Find, error) {
+	d, err := p.build(base, sys, loud)
+	if err != nil {
+		return nil, fmt.Errorf("scout: %s: %w", p, err)
+	}
+	own, err := sim.New(d, open)
+	if err != nil {
+		return nil, fmt.Errorf("scout: %s: %w", p, err)
+	}
+	problem, err := tune.New(d, own, open)
+	if err != nil {
+		return nil, err
+	}
+	res, err := problem.Run(ctx, tune.Search{Starts: cmp.Or(s.Starts, 24), Seed: s.Seed, Workers: 1})
+	if err != nil {
+		return nil, err
+	}
+	for v, q := range problem.Variables() {
+		d.Part(q.Part).Value = fourFigures(res.Values[v])
+		if part := d.Part(q.Part); part.Kind == xover.Inductor {
+			part.DCR = fourFigures(part.DCR)
+		}
+	}
+	f := &Find{
+		Name: p.String(), Design: d, Points: p.points, Score: res.After, Parts: len(d.Parts),
+		ErrorDB: math.Sqrt(res.After.Objective / float64(1+len(d.Ways))),
+	}
+	for _, w := range d.Ways {
+		f.Reversed = append(f.Reversed, w.Reversed)
+	}
+	if final, err := sim.New(d, open); err != nil {
+		return nil, err
+	} else if err := f.excursion(final); err != nil {
+		return nil, err
+	}
+	return f, nil
+}
+
+// fourFigures rounds a value to four figures.
+func fourFigures(v float64) float64 {
+	if !(v > 0) {
+		return v
+	}
+	scale := math.Pow(10, 3-math.Floor(math.Log10(v)))
+	return math.Round(v*scale) / scale
+}
+
+// stands reports whether a find holds the limit on the impedance and the drivers' excursion.
+func stands(d *xover.Design, f *Find) bool {
+	if f.Score.MinImpedance < d.Tune.MinImpedance*(1-1e-6) {
+		return false
+	}
+	if f.ExcursionFor == "" {
+		return true
+	}
+	return f.ExcursionMM/1000 <= d.Driver(f.ExcursionFor).Xmax
+}
+
+// excursion finds how far the drivers with a high-pass move at the rated power, where the design states it and they state xmax and
+// an area: a diaphragm of area S that moves by x peak gives the pressure ρ·S·ω²·x/(2√2·π·r) rms at r in front of a wall (the
+// simple source on a plane; e.g. L. L. Beranek, "Acoustics", 1954).
+func (f *Find) excursion(sys *sim.System) error {
+	d := f.Design
+	if d.Drive.RatedPower == 0 {
+		return nil
+	}
+	drive := math.Sqrt(d.Drive.RatedPower*cmp.Or(d.Drive.RatedLoad, 8)) / sys.Level()
+	freqs := make([]float64, 73)
+	for k := range freqs {
+		freqs[k] = 100 * math.Pow(100, float64(k)/72)
+	}
+	r, err := sys.Predict(freqs)
+	if err != nil {
+		return err
+	}
+	distance := cmp.Or(d.Listen.Distance, 1)
+	density := cmp.Or(d.Air.Density, 1.2)
+	worst := 0.0
+	for i, w := range d.Ways[1:] {
+		x := d.Driver(w.Driver)
+		if x == nil || x.Xmax == 0 {
+			continue
+		}
+		area := cmp.Or(x.Sd, math.Pi*x.Diameter*x.Diameter/4)
+		if area == 0 {
+			continue
+		}
+		for k, freq := range freqs {
+			omega := 2 * math.Pi * freq
+			moves := cmplx.Abs(r.Ways[i+1].P[k]) * drive * 2 * math.Sqrt2 * math.Pi * distance / (density * area * omega * omega)
+			if moves/x.Xmax > worst {
+				worst = moves / x.Xmax
+				f.ExcursionMM, f.ExcursionFor = 1000*moves, x.Name
+			}
+		}
+	}
+	return nil
+}
+
+// mark marks the frontier.
+func mark(finds []Find) {
+	for i := range finds {
+		a := &finds[i]
+		a.Frontier = true
+		for j := range finds {
+			b := &finds[j]
+			if i == j || b.ErrorDB > a.ErrorDB || b.Parts > a.Parts || b.Score.MinImpedance < a.Score.MinImpedance {
+				continue
+			}
+			if b.ErrorDB < a.ErrorDB || b.Parts < a.Parts || b.Score.MinImpedance > a.Score.MinImpedance || j < i {
+				a.Frontier = false
+				break
+			}
+		}
+	}
+}
