@@ -110,14 +110,27 @@ func (s *Sweep) ImpedanceGradient(dst []complex128, branch int) error {
 	if err := s.c.branch(branch); err != nil {
 		return err
 	}
-	return s.each(dst, func(i int) complex128 {
-		z := s.zin[i]
-		if cmplx.IsInf(z) {
-			return 0 // nothing flows, and z moves from one infinity to another
-		}
-		// For one volt at Amp, ∂Yin is -I²·∂z: the input's adjoint network is the network itself.
-		return z * z * s.powerSlope(branch, i) / (s.amp[i] * s.amp[i])
-	})
+	return s.each(dst, func(i int) complex128 { return s.impedanceSlope(branch, i) })
+}
+
+// ImpedanceGradientAt is what ImpedanceGradient stores at frequency i alone.
+func (s *Sweep) ImpedanceGradientAt(branch, i int) (complex128, error) {
+	if err := s.c.branch(branch); err != nil {
+		return 0, err
+	}
+	if err := s.look(); err != nil {
+		return 0, err
+	}
+	return s.impedanceSlope(branch, i), nil
+}
+
+func (s *Sweep) impedanceSlope(branch, i int) complex128 {
+	z := s.zin[i]
+	if cmplx.IsInf(z) {
+		return 0 // nothing flows, and z moves from one infinity to another
+	}
+	// For one volt at Amp, ∂Yin is -I²·∂z: the input's adjoint network is the network itself.
+	return z * z * s.powerSlope(branch, i) / (s.amp[i] * s.amp[i])
 }
 
 func (s *Sweep) each(dst []complex128, at func(i int) complex128) error {

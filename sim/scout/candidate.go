@@ -10,6 +10,7 @@ import (
 	"sixdown/xover"
 	"sixdown/xover/align"
 	"sixdown/xover/ladder"
+	"sixdown/xover/quantity"
 )
 
 // A plan is one arrangement, not yet sized.
@@ -30,7 +31,7 @@ func (p *plan) String() string {
 		if i > 0 {
 			text += " and "
 		}
-		text += fmt.Sprintf("%.3g kHz", f/1000)
+		text += quantity.Round(f, quantity.Hertz, 3)
 	}
 	text += fmt.Sprintf(" %s %d, low order %d, high order %d", p.target.Shape, p.target.Order, p.low, p.high)
 	if p.zobel {
@@ -67,21 +68,22 @@ type refusal struct {
 	reasons   []string
 }
 
-// span returns the crossover points that the drivers of ways i and i+1 leave open, in Hz, for a high-pass of that order, and
+// span returns the crossover points that the drivers of ways i and i+1 leave open, in Hz, for a target of that order, and
 // what bounds them. All three rules are common practice, no source: a driver's high-pass lies above twice its resonance, more for
-// low orders; its low-pass lies below where its diaphragm beams, ka = 2; and the two are no farther apart than a wavelength.
+// low orders; its low-pass lies below where its diaphragm is a wavelength across; and the two are no farther apart than a
+// wavelength.
 func span(d *xover.Design, ways []xover.Way, i, order int) refusal {
 	r := refusal{low: 80, high: 8000}
 	atLeast := func(f float64, why string) {
 		if f > r.low {
 			r.low = f
-			r.reasons = append(r.reasons, fmt.Sprintf("above %.3g Hz: %s", f, why))
+			r.reasons = append(r.reasons, "above "+quantity.Round(f, quantity.Hertz, 3)+": "+why)
 		}
 	}
 	atMost := func(f float64, why string) {
 		if f < r.high {
 			r.high = f
-			r.reasons = append(r.reasons, fmt.Sprintf("below %.3g Hz: %s", f, why))
+			r.reasons = append(r.reasons, "below "+quantity.Round(f, quantity.Hertz, 3)+": "+why)
 		}
 	}
 	times := map[int]float64{1: 4, 2: 3, 3: 2.5}[order]
@@ -100,7 +102,7 @@ func span(d *xover.Design, ways []xover.Way, i, order int) refusal {
 	for _, name := range ways[i].DriverNames() {
 		x := d.Driver(name)
 		if x.Diameter > 0 {
-			atMost(2*sound/(math.Pi*x.Diameter), fmt.Sprintf("%s beams above that", name))
+			atMost(sound/x.Diameter, fmt.Sprintf("%s is a wavelength across there and beams above", name))
 		}
 		for _, other := range ways[i+1].DriverNames() {
 			y := d.Driver(other)
@@ -124,7 +126,7 @@ func plans(d *xover.Design, loud []float64) (all []plan, limits []string) {
 		for _, o := range t.orders {
 			spans := make([][]float64, n-1)
 			for i := range spans {
-				r := span(d, d.Ways, i, o[1])
+				r := span(d, d.Ways, i, t.order)
 				for _, why := range r.reasons {
 					text := fmt.Sprintf("%s to %s crosses %s", d.Ways[i].Name, d.Ways[i+1].Name, why)
 					if !seen[text] {

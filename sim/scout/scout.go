@@ -122,27 +122,24 @@ func (p *plan) tuned(ctx context.Context, base *xover.Design, sys *sim.System, l
 	if err != nil {
 		return nil, fmt.Errorf("scout: %s: %w", p, err)
 	}
-	own, err := sim.New(d, open)
+	search := tune.Search{Starts: cmp.Or(s.Starts, 24), Seed: s.Seed, Workers: 1}
+	score, err := settle(ctx, d, open, search)
 	if err != nil {
 		return nil, fmt.Errorf("scout: %s: %w", p, err)
 	}
-	problem, err := tune.New(d, own, open)
-	if err != nil {
-		return nil, err
-	}
-	res, err := problem.Run(ctx, tune.Search{Starts: cmp.Or(s.Starts, 24), Seed: s.Seed, Workers: 1})
-	if err != nil {
-		return nil, err
-	}
-	for v, q := range problem.Variables() {
-		d.Part(q.Part).Value = fourFigures(res.Values[v])
-		if part := d.Part(q.Part); part.Kind == xover.Inductor {
-			part.DCR = fourFigures(part.DCR)
+	// The coils are other ones now: with the resistances of these, once more from here.
+	for i := range d.Parts {
+		if part := &d.Parts[i]; part.Kind == xover.Inductor {
+			part.DCR = fourFigures(coilOhms * math.Pow(part.Value, 0.6))
 		}
 	}
+	search.Starts = 1
+	if score, err = settle(ctx, d, open, search); err != nil {
+		return nil, fmt.Errorf("scout: %s: %w", p, err)
+	}
 	f := &Find{
-		Name: p.String(), Design: d, Points: p.points, Score: res.After, Parts: len(d.Parts),
-		ErrorDB: math.Sqrt(res.After.Objective / float64(1+len(d.Ways))),
+		Name: p.String(), Design: d, Points: p.points, Score: score, Parts: len(d.Parts),
+		ErrorDB: math.Sqrt(score.Objective / float64(1+len(d.Ways))),
 	}
 	for _, w := range d.Ways {
 		f.Reversed = append(f.Reversed, w.Reversed)
@@ -153,6 +150,28 @@ func (p *plan) tuned(ctx context.Context, base *xover.Design, sys *sim.System, l
 		return nil, err
 	}
 	return f, nil
+}
+
+// settle tunes d in place, to four figures, and returns its score then.
+func settle(ctx context.Context, d *xover.Design, open func(string) (io.ReadCloser, error), search tune.Search) (tune.Score, error) {
+	sys, err := sim.New(d, open)
+	if err != nil {
+		return tune.Score{}, err
+	}
+	problem, err := tune.New(d, sys, open)
+	if err != nil {
+		return tune.Score{}, err
+	}
+	res, err := problem.Run(ctx, search)
+	if err != nil {
+		return tune.Score{}, err
+	}
+	values := make([]float64, len(res.Values))
+	for v, q := range problem.Variables() {
+		values[v] = fourFigures(res.Values[v])
+		d.Part(q.Part).Value = values[v]
+	}
+	return problem.Score(values)
 }
 
 // fourFigures rounds a value to four figures.
@@ -166,7 +185,7 @@ func fourFigures(v float64) float64 {
 
 // stands reports whether a find holds the limit on the impedance and the drivers' excursion.
 func stands(d *xover.Design, f *Find) bool {
-	if f.Score.MinImpedance < d.Tune.MinImpedance*(1-1e-6) {
+	if f.Score.MinImpedance < d.Tune.MinImpedance*0.999 { // values have four figures
 		return false
 	}
 	if f.ExcursionFor == "" {

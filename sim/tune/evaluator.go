@@ -2,7 +2,6 @@ package tune
 
 import (
 	"math"
-	"math/cmplx"
 
 	"sixdown/sim/circuit"
 )
@@ -15,21 +14,21 @@ type evaluator struct {
 	load  *circuit.Sweep // over the grid on which |Zin| is limited; nil: it is not
 	loads []float64      // Hz, that grid
 
-	coils windings       // resistance that moves with a coil's value; nil: it stays as the design states it
-	x     []float64      // ln of the values
-	gain  [][]complex128 // by way
-	slope [][]complex128 // by way: ∂gain/∂ln value of one variable
-	sum   [][]complex128 // by ear, Pa
-	resid []float64      // weighted, the level taken out
-	root  []float64      // square root of the weight, by residual
-	jac   [][]float64    // by variable: ∂resid/∂x
-	dsum  [][]complex128 // by ear
-	mean  []float64      // by level
-	total []float64      // weight by level
-	pairs []phasePair    // what counts of the phase, set by setPairs
-	zin   []complex128   // over loads
-	zgrad []complex128   // over loads
-	calls int            // how often the objective has been computed
+	coils       windings       // resistance that moves with a coil's value; nil: it stays as the design states it
+	x           []float64      // ln of the values
+	gain        [][]complex128 // by way
+	slope       [][]complex128 // by way: ∂gain/∂ln value of one variable
+	sum         [][]complex128 // by ear, Pa
+	resid       []float64      // weighted, the level taken out
+	root        []float64      // square root of the weight, by residual
+	jac         [][]float64    // by variable: ∂resid/∂x
+	dsum        [][]complex128 // by ear
+	inv, invSum [][]complex128 // 1/gain by way, 1/sum by ear; 0 where there is nothing
+	mean        []float64      // by level
+	total       []float64      // weight by level
+	pairs       []phasePair    // what counts of the phase, set by setPairs
+	zin         []complex128   // over loads
+	calls       int            // how often the objective has been computed
 }
 
 // A phasePair is two neighbouring ways and where the phase between them counts.
@@ -59,8 +58,8 @@ func (p *Problem) newEvaluatorWith(coils windings) (*evaluator, error) {
 		}
 		return all
 	}
-	e.gain, e.slope = lines(ways), lines(ways)
-	e.sum, e.dsum = lines(len(p.ears)), lines(len(p.ears))
+	e.gain, e.slope, e.inv = lines(ways), lines(ways), lines(ways)
+	e.sum, e.dsum, e.invSum = lines(len(p.ears)), lines(len(p.ears)), lines(len(p.ears))
 	rows, levels := 0, 1
 	for _, t := range p.terms {
 		rows += len(t.at)
@@ -88,7 +87,7 @@ func (p *Problem) newEvaluatorWith(coils windings) (*evaluator, error) {
 		if e.load, err = p.newSweep(e.loads, coils); err != nil {
 			return nil, err
 		}
-		e.zin, e.zgrad = make([]complex128, len(e.loads)), make([]complex128, len(e.loads))
+		e.zin = make([]complex128, len(e.loads))
 	}
 	return e, nil
 }
@@ -155,6 +154,12 @@ func (e *evaluator) derivatives(x []float64) (float64, error) {
 	}
 	e.calls++
 	f := e.residuals()
+	for w := range e.gain {
+		reciprocals(e.inv[w], e.gain[w])
+	}
+	for i := range e.sum {
+		reciprocals(e.invSum[i], e.sum[i])
+	}
 	for v := range e.jac {
 		e.column(v)
 	}
@@ -221,10 +226,7 @@ func (e *evaluator) addUp(dst []complex128, ear int, gains [][]complex128) {
 // level returns the level in dB of what a term is about, at grid point k.
 func (e *evaluator) level(t *term, k int) float64 {
 	z := e.heard(t, k)
-	if z == 0 {
-		return silent
-	}
-	return max(dbPerNeper*math.Log(cmplx.Abs(z)), silent)
+	return max(dbPerNeper/2*math.Log(real(z)*real(z)+imag(z)*imag(z)), silent)
 }
 
 // heard returns what a term is about at grid point k: re 20 µPa, or as a gain where there is no sound.
@@ -237,6 +239,16 @@ func (e *evaluator) heard(t *term, k int) complex128 {
 		return e.gain[t.way][k]
 	}
 	return press[t.way][k] * e.gain[t.way][k] / pascalRef
+}
+
+// reciprocals stores 1/z, and 0 for 0, at which no level has a derivative.
+func reciprocals(dst, z []complex128) {
+	for k, v := range z {
+		dst[k] = 0
+		if square := real(v)*real(v) + imag(v)*imag(v); square > 0 {
+			dst[k] = complex(real(v)/square, -imag(v)/square)
+		}
+	}
 }
 
 // column fills jac[v]: with z = |z|e^{jφ}, d ln|z| is the real part of dz/z and dφ the imaginary part.
@@ -260,18 +272,13 @@ func (e *evaluator) column(v int) {
 	clear(e.mean)
 	for i := range p.terms {
 		t := &p.terms[i]
+		dz, inv := e.dsum[t.ear], e.invSum[t.ear]
+		if t.way >= 0 {
+			dz, inv = e.slope[t.way], e.inv[t.way]
+		}
 		for _, k := range t.at {
-			z, dz := e.gain, e.slope
-			var d complex128
-			if t.way < 0 {
-				d = e.dsum[t.ear][k] / e.sum[t.ear][k]
-			} else {
-				d = dz[t.way][k] / z[t.way][k]
-			}
-			c := dbPerNeper * real(d)
-			if math.IsNaN(c) || math.IsInf(c, 0) {
-				c = 0 // at a null
-			}
+			d, u := dz[k], inv[k]
+			c := dbPerNeper * (real(d)*real(u) - imag(d)*imag(u))
 			col[row] = c
 			e.mean[t.level] += t.weight * c
 			row++

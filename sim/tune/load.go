@@ -48,12 +48,13 @@ func (e *evaluator) dips(limit float64) ([]dip, error) {
 	for v, branches := range e.p.branches {
 		value, ohm := math.Exp(e.x[v]), e.coils.slope(v, e.x[v])
 		for _, b := range branches {
-			if err := e.load.ImpedanceGradient(e.zgrad, b); err != nil {
-				return nil, err
-			}
 			for i := range ds {
 				k := ds[i].at
-				d := e.zgrad[k] / e.zin[k]
+				slope, err := e.load.ImpedanceGradientAt(b, k)
+				if err != nil {
+					return nil, err
+				}
+				d := slope / e.zin[k]
 				ds[i].slope[v] += value*real(d) + ohm*imag(d)/(2*math.Pi*e.loads[k]) // as of AddLossGradient
 			}
 		}

@@ -92,7 +92,7 @@ func (e *evaluator) phaseColumn(row int, col []float64) {
 	for i := range e.pairs {
 		q := &e.pairs[i]
 		for _, k := range q.at {
-			d := imag(e.slope[q.high][k]/e.gain[q.high][k] - e.slope[q.low][k]/e.gain[q.low][k])
+			d := imag(e.slope[q.high][k]*e.inv[q.high][k] - e.slope[q.low][k]*e.inv[q.low][k])
 			col[row] = e.root[row] * d * 180 / math.Pi
 			row++
 		}

@@ -38,6 +38,7 @@ type Variable struct {
 type Problem struct {
 	design   *xover.Design
 	sys      *sim.System
+	open     func(name string) (io.ReadCloser, error)
 	vars     []Variable
 	branches [][]int // of the netlist, by variable, those of its followers too
 
@@ -66,12 +67,12 @@ type term struct {
 }
 
 // New makes a Problem of a design and the System that was made of it. open opens the file that [tune] curve names; it
-// may be nil if there is none. New keeps d and sys. The error says what is missing and how to mend it.
+// may be nil if there is none. New keeps all three. The error says what is missing and how to mend it.
 func New(d *xover.Design, sys *sim.System, open func(name string) (io.ReadCloser, error)) (*Problem, error) {
 	if d.Tone != nil {
 		return nil, errors.New("tune: a tone network has no ways to tune; give a design with ways")
 	}
-	p := &Problem{design: d, sys: sys, limit: d.Tune.MinImpedance, fixed: d.Tune.HasLevel, level: d.Tune.Level}
+	p := &Problem{design: d, sys: sys, open: open, limit: d.Tune.MinImpedance, fixed: d.Tune.HasLevel, level: d.Tune.Level}
 	band := d.Tune.Band
 	if band == [2]float64{} {
 		band = [2]float64{200, 20e3}

@@ -17,6 +17,7 @@ func commandGroups(s *streams) []commandGroup {
 			newPredictCmd(s),
 		}},
 		{"Make it better:", []*cobra.Command{
+			newScoutCmd(s),
 			newTuneCmd(s),
 			newSpreadCmd(s),
 		}},

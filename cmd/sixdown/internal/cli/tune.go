@@ -26,6 +26,7 @@ type tuneOptions struct {
 	out     string
 	inPlace bool
 	explain bool
+	yield   bool
 	starts  int
 	seed    uint64
 }
@@ -69,6 +70,7 @@ Without --out and --in-place nothing is written. Interrupted, it keeps the best 
 	f.StringVar(&o.out, "out", "", "write the design with the new values to this `file`")
 	f.BoolVar(&o.inPlace, "in-place", false, "write the new values into the design itself")
 	f.BoolVar(&o.explain, "explain", false, "say what changed, and what each change does")
+	f.BoolVar(&o.yield, "yield", false, "move on to where more builds stay within the limit of [spread]; the objective may rise by half")
 	f.IntVar(&o.starts, "starts", 0, "places to begin at; without it, as many as usually suffice")
 	f.Uint64Var(&o.seed, "seed", 1, "of these places")
 	o.design.addTo(cmd)
@@ -83,7 +85,8 @@ type tuning struct {
 	vars    []tune.Variable
 	result  *tune.Result
 	worths  []tune.Worth
-	bought  *tune.Bought // nil without --stock
+	bought  *tune.Bought  // nil without --stock
+	centred *tune.Centred // nil without --yield
 	explain *tune.Explanation
 	stock   string
 	seconds float64
@@ -96,6 +99,8 @@ func (o *tuneOptions) check() error {
 		return usageFault("command line", "both --out and --in-place are given", "give one of them")
 	case o.inPlace && o.design.path == "-":
 		return usageFault("--in-place", "the design is standard input", "give --out FILE")
+	case o.yield && o.stock != "":
+		return usageFault("--yield", "it moves values to where no stock has them", "leave out --stock, or buy by the error alone")
 	case o.pairs && o.stock == "":
 		return usageFault("--pairs", "there is nothing to pair without --stock", "give --stock too")
 	case o.starts < 0 || o.starts > 100000:
@@ -167,6 +172,14 @@ func (t *tuning) work(ctx context.Context, s *streams, o *tuneOptions, source tu
 			return err
 		}
 	}
+	if o.yield {
+		bar := newProgress(s, "centring")
+		t.centred, err = t.problem.Centre(ctx, t.result.Values, tune.CentreSettings{Seed: o.seed, Progress: bar.at})
+		bar.done()
+		if err != nil {
+			return err
+		}
+	}
 	if o.explain {
 		t.explain, err = t.problem.Explain(t.problem.Start(), t.chosen())
 	}
@@ -175,18 +188,18 @@ func (t *tuning) work(ctx context.Context, s *streams, o *tuneOptions, source tu
 
 // chosen returns the values that would be written: those that can be bought if that was asked for.
 func (t *tuning) chosen() []float64 {
-	if t.bought != nil {
+	switch {
+	case t.bought != nil:
 		return t.bought.Values
+	case t.centred != nil:
+		return t.centred.Values
 	}
 	return t.result.Values
 }
 
 // warnOfLoad warns of a network that an amplifier may not stand.
 func (t *tuning) warnOfLoad(s *streams) {
-	after := t.result.After
-	if t.bought != nil {
-		after = t.bought.Score
-	}
+	after := t.chosenScore()
 	switch {
 	case t.result.Unmet || t.bought != nil && t.bought.Unmet:
 		s.warn(fmt.Sprintf("min_impedance %s cannot be held: the load is %s at least; lower the limit, widen a range, or give other parts", quantity.Format(t.design.Tune.MinImpedance, quantity.Ohm), ohms(after.MinImpedance)+" ohm"))
@@ -227,16 +240,8 @@ func (t *tuning) write(o *tuneOptions, src []byte) error {
 	if !o.inPlace && o.design.path != "-" {
 		inputs = append(inputs, o.design.path)
 	}
-	out, err := createOutput(path, inputs...)
-	if err != nil {
+	if err := writeOutput(path, edited, inputs...); err != nil {
 		return err
-	}
-	defer out.Abort()
-	if _, err := out.Write(edited); err != nil {
-		return outputFault(path, err)
-	}
-	if err := out.Commit(); err != nil {
-		return outputFault(path, err)
 	}
 	t.written = path
 	return nil

@@ -51,6 +51,13 @@ type (
 		DB     number `json:"db"`
 		Costs  number `json:"undoing_costs_db2"`
 	}
+	yieldDocument struct {
+		Before number            `json:"before"`
+		After  number            `json:"after"`
+		Sigma  number            `json:"sigma"`
+		Score  scoreDocument     `json:"score"`
+		Parts  map[string]number `json:"parts"`
+	}
 	tuneDocument struct {
 		Before      scoreDocument     `json:"before"`
 		After       scoreDocument     `json:"after"`
@@ -65,6 +72,7 @@ type (
 		Advice      []adviceDocument  `json:"advice"`
 		Binding     []bindingDocument `json:"binding"`
 		Changes     []changeDocument  `json:"changes"`
+		Yield       *yieldDocument    `json:"yield"`
 		Status      string            `json:"status"`
 		Met         bool              `json:"min_impedance_met"`
 		Evaluations int               `json:"evaluations"`
@@ -135,6 +143,9 @@ func (t *tuning) document() tuneDocument {
 			doc.Shopping = append(doc.Shopping, item)
 		}
 	}
+	if c := t.centred; c != nil {
+		doc.Yield = &yieldDocument{number(c.Before), number(c.After), number(c.Sigma), scored(c.Score), t.byPart(c.Values)}
+	}
 	if t.explain != nil {
 		for _, c := range t.explain.Changes {
 			doc.Changes = append(doc.Changes, changeDocument{c.Part, number(c.Before), number(c.After), c.Way, number(c.From), number(c.To), number(c.DB), number(c.Costs)})
@@ -185,6 +196,9 @@ func (t *tuning) text() string {
 	if t.bought != nil {
 		b.WriteString(t.boughtText())
 	}
+	if c := t.centred; c != nil {
+		b.WriteString(folded("yield     ", fmt.Sprintf("%s %% of builds pass when tuned, %s %% when centred (standard error %s points)", fixed(100*c.Before, 1), fixed(100*c.After, 1), fixed(100*c.Sigma, 1))))
+	}
 	useless := 0
 	for _, w := range t.worths {
 		if w.Useless {
@@ -214,6 +228,10 @@ func (t *tuning) scoresText() string {
 	if t.bought != nil {
 		columns = append(columns, table.Column{Name: "bought"}, table.Column{Name: "rounded"})
 		scores = append(scores, t.bought.Score, t.bought.Rounded)
+	}
+	if t.centred != nil {
+		columns = append(columns, table.Column{Name: "centred"})
+		scores = append(scores, t.centred.Score)
 	}
 	columns[0].Left = true
 	tab := table.New(columns...)
@@ -247,6 +265,9 @@ func (t *tuning) partsText() string {
 	if t.bought != nil {
 		columns = append(columns, table.Column{Name: "bought"}, table.Column{Name: "off", Unit: "%"}, table.Column{Name: "dcr", Unit: "Ω"})
 	}
+	if t.centred != nil {
+		columns = append(columns, table.Column{Name: "centred"})
+	}
 	tab := table.New(columns...)
 	for v, q := range t.vars {
 		unit := q.Kind.Unit()
@@ -258,6 +279,9 @@ func (t *tuning) partsText() string {
 				dcr = figures(t.bought.Ohms[v], 3)
 			}
 			cells = append(cells, choiceText(&t.bought.Choices[v], unit), fixed(100*(t.bought.Values[v]/t.result.Values[v]-1), 1), dcr)
+		}
+		if t.centred != nil {
+			cells = append(cells, quantity.Round(t.centred.Values[v], unit, 4))
 		}
 		tab.Row(cells...)
 	}
@@ -382,8 +406,11 @@ func (t *tuning) explainText() string {
 }
 
 func (t *tuning) chosenScore() tune.Score {
-	if t.bought != nil {
+	switch {
+	case t.bought != nil:
 		return t.bought.Score
+	case t.centred != nil:
+		return t.centred.Score
 	}
 	return t.result.After
 }
