@@ -21,6 +21,7 @@ type Worth struct {
 const (
 	uselessShare = 0.01
 	uselessDB2   = 1e-3
+	shorted      = 0.5 // of the least impedance with it, below which a short is none that could be meant
 )
 
 // missingPart returns the value of a part that is as good as not there, shorted or open, in Ω, H or F. The values are far beyond any
@@ -54,11 +55,15 @@ func (p *Problem) Worths(values []float64) ([]Worth, error) {
 		return nil, err
 	}
 	with := d.f
+	least, _, err := p.leastImpedance(x, nil)
+	if err != nil {
+		return nil, err
+	}
 	var all []Worth
 	for v := range p.vars {
 		w := Worth{Part: p.vars[v].Part, Without: math.Inf(1)}
 		d.frozen[v] = true
-		for _, open := range []bool{false, true} {
+		for _, open := range []bool{true, false} { // open first: of two that do as well it is the safer
 			y := slices.Clone(x)
 			y[v] = math.Log(missingPart(p.vars[v].Kind, open))
 			if d.begin(y) != nil {
@@ -67,9 +72,17 @@ func (p *Problem) Worths(values []float64) ([]Worth, error) {
 			if err := d.run(25); err != nil {
 				return nil, err
 			}
-			if d.missed < 1e-6 && d.f < w.Without {
-				w.Without, w.Open = d.f, open
+			if !(d.missed < 1e-6) || !(d.f < w.Without*(1-1e-9)) {
+				continue
 			}
+			// A short must not be one of the amplifier, which the sum does not show.
+			if !open {
+				ohm, _, err := p.leastImpedance(d.x, nil)
+				if err != nil || ohm < shorted*least {
+					continue
+				}
+			}
+			w.Without, w.Open = d.f, open
 		}
 		d.frozen[v] = false
 		w.Costs = w.Without - with

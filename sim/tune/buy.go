@@ -4,6 +4,7 @@ import (
 	"context"
 	"fmt"
 	"math"
+	"runtime"
 	"slices"
 
 	"sixdown/xover/preferred"
@@ -229,24 +230,31 @@ func (b *buyer) search(x []float64, rounded []int) error {
 	if _, err := b.try(rounded); err != nil {
 		return err
 	}
-	// The optimum with the coils' resistances as they would be.
-	if err := b.d.begin(clampTo(b.p, x)); err != nil {
+	tops, err := b.tops(x)
+	if err != nil {
 		return err
 	}
-	if err := b.d.run(60); err != nil {
-		return err
-	}
-	top := slices.Clone(b.d.x)
-	for v := range top {
-		b.bend = append(b.bend, b.d.hess[v*len(top)+v])
-	}
-	likely := b.likely(top, b.d.hess)
-	for _, choice := range likely {
-		if _, err := b.try(choice); err != nil {
+	var first []float64
+	for i, top := range tops {
+		if err := b.d.begin(top); err != nil {
+			return err
+		}
+		if i == 0 {
+			first = top
+			for v := range top {
+				b.bend = append(b.bend, b.d.hess[v*len(top)+v])
+			}
+		}
+		for _, choice := range b.likely(top, b.d.hess) {
+			if _, err := b.try(choice); err != nil {
+				return err
+			}
+		}
+		if err := b.climb(b.best); err != nil {
 			return err
 		}
 	}
-	for _, choice := range append(b.scattered(), b.best) {
+	for _, choice := range b.scattered() {
 		if err := b.climb(choice); err != nil {
 			return err
 		}
@@ -255,7 +263,28 @@ func (b *buyer) search(x []float64, rounded []int) error {
 	for v := range choice {
 		choice[v] = -1
 	}
-	return b.branch(choice, top)
+	return b.branch(choice, first)
+}
+
+// mostTops is how many optima with the coils' resistances as they would be are looked about in.
+const mostTops = 3
+
+// tops returns the best optima with the coils' resistances as they would be, the best first: a search of its own, since it may
+// well be that those of ideal coils are none.
+func (b *buyer) tops(x []float64) ([][]float64, error) {
+	starts := append([][]float64{clampTo(b.p, x)}, b.p.scatter(defaultStarts/2, 0)...)
+	r := &runner{p: b.p, coils: b.e.coils, ctx: b.ctx, workers: runtime.GOMAXPROCS(0)}
+	found, err := r.all(starts)
+	if err != nil {
+		return nil, err
+	}
+	var tops [][]float64
+	for _, at := range distinct(found) {
+		if len(tops) < mostTops && !at.lost {
+			tops = append(tops, at.x)
+		}
+	}
+	return tops, nil
 }
 
 // clampTo returns x within the bounds.

@@ -2,24 +2,15 @@ package tune
 
 import (
 	"context"
-	"fmt"
+	"maps"
 	"math"
 	"math/rand/v2"
-	"os"
+	"slices"
 	"testing"
 	"time"
 
 	"sixdown/xover/preferred"
 )
-
-func designFile(t testing.TB, path string) *Problem {
-	t.Helper()
-	src, err := os.ReadFile(path)
-	if err != nil {
-		t.Fatal(err)
-	}
-	return problem(t, string(src))
-}
 
 // twoWay is an invented two-way of six parts; limit is more lines of its [tune].
 func twoWay(limit string) string {
@@ -144,20 +135,103 @@ func TestBuyIsAsGoodAsEnumeration(t *testing.T) {
 	}
 }
 
-func TestBuyTimes(t *testing.T) {
-	for _, f := range []string{"../../cmd/sixdown/internal/demo/harbour.toml", "../../audioio/testdata/breakwater.toml"} {
-		p := designFile(t, f)
+// Over the ten problems: the set bought in E24 is never worse than the rounded optimum, and how much better it is.
+func TestBuyingIsBetterThanRounding(t *testing.T) {
+	if testing.Short() {
+		t.Skip("short")
+	}
+	all := problemsIn(t)
+	for _, name := range slices.Sorted(maps.Keys(all)) {
+		p := all[name]
 		r, err := p.Run(context.Background(), Search{})
 		if err != nil {
 			t.Fatal(err)
 		}
-		for _, s := range []preferred.Series{preferred.E6, preferred.E12, preferred.E24} {
-			t0 := time.Now()
-			b, err := p.Buy(context.Background(), r.Values, preferred.Shop{Series: s}, BuySettings{})
-			if err != nil {
-				t.Fatal(err)
-			}
-			t.Log(fmt.Sprintf("%s %s: ideal %.4f rounded %.4f bought %.4f nodes %d proved %t %v", f[len(f)-15:], s, r.After.Objective, b.Rounded.Objective, b.Score.Objective, b.Nodes, b.Proved, time.Since(t0)))
+		began := time.Now()
+		b, err := p.Buy(context.Background(), r.Values, preferred.Shop{Series: preferred.E24}, BuySettings{})
+		if err != nil {
+			t.Fatal(err)
 		}
+		holds := "holds"
+		if b.Rounded.MinImpedance < p.limit {
+			holds = "breaks the limit"
+		}
+		t.Logf("%-8s %2d parts: ideal %8.4f, rounded %8.4f (%s), bought %8.4f, %5.1f %% better; %4d places, proved %-5t %5.2f s", name, len(p.vars), r.After.Objective,
+			b.Rounded.Objective, holds, b.Score.Objective, 100*(1-b.Score.Objective/b.Rounded.Objective), b.Nodes, b.Proved, time.Since(began).Seconds())
+		if p.limit > 0 && b.Score.MinImpedance < p.limit*(1-1e-9) {
+			t.Errorf("%s: the set bought loads with %g ohm", name, b.Score.MinImpedance)
+		}
+		if holds == "holds" && b.Score.Objective > b.Rounded.Objective*(1+1e-12) {
+			t.Errorf("%s: bought %g is worse than rounded %g", name, b.Score.Objective, b.Rounded.Objective)
+		}
+		for v, value := range b.Values {
+			if near := preferred.E24.Nearest(value); near != value {
+				t.Errorf("%s: %s is %g, which is not in E24", name, p.vars[v].Part, value)
+			}
+		}
+	}
+}
+
+// A coil's resistance is the list's, or that of the same wire: R goes as L to the power 0.6, derived beside sameWire.
+func TestCoilsHaveTheirResistance(t *testing.T) {
+	p := problem(t, twoWay(""))
+	v := slices.IndexFunc(p.vars, func(q Variable) bool { return q.Part == "L1" }) // 0.9 mH, 0.4 ohm
+	for _, c := range []struct {
+		name   string
+		source Source
+		value  float64
+		want   float64
+	}{
+		{"same wire, same coil", preferred.Shop{Series: preferred.E24}, 0.9e-3, 0.4},
+		{"same wire, twice the inductance", preferred.Shop{Series: preferred.E24}, 1.8e-3, 0.4 * math.Pow(2, 0.6)},
+		{"a list", preferred.NewStock([]preferred.Item{{Kind: preferred.Inductor, Value: 1e-3, DCR: 0.2, Count: -1}, {Kind: preferred.Inductor, Value: 4e-3, DCR: 0.8, Count: -1}}), 2e-3, 0.4},
+		{"one coil in the list", preferred.NewStock([]preferred.Item{{Kind: preferred.Inductor, Value: 1e-3, DCR: 0.2, Count: -1}}), 2e-3, 0.2 * math.Pow(2, 0.6)},
+	} {
+		coils := p.windings(c.source)
+		if got := coils.ohm(v, math.Log(c.value)); math.Abs(got/c.want-1) > 1e-12 {
+			t.Errorf("%s: %g ohm, want %g", c.name, got, c.want)
+		}
+		const h = 1e-5
+		x := math.Log(c.value * 1.1)
+		slope := (coils.ohm(v, x+h) - coils.ohm(v, x-h)) / (2 * h)
+		if got := coils.slope(v, x); math.Abs(got/slope-1) > 1e-8 { // a central difference of an exponential: h²/6
+			t.Errorf("%s: slope %g, want %g", c.name, got, slope)
+		}
+	}
+}
+
+// Two capacitors that make up what no single one has.
+func TestPairsAreBought(t *testing.T) {
+	text := `[parts]
+L1 = "1.2732395447351628 mH"
+C1 = "4.973591971621729 uF"
+[driver.w]
+impedance = "8 ohm"
+[[way]]
+name = "low"
+driver = "w"
+target = ["low-pass linkwitz-riley 2 at 2 kHz"]
+network = ["series L1", "shunt C1"]
+`
+	p := problem(t, text)
+	stock := preferred.NewStock([]preferred.Item{
+		{Kind: preferred.Inductor, Value: 1.2732395447351628e-3, DCR: -1, Tol: -1, Price: 3, Count: 1},
+		{Kind: preferred.Capacitor, Value: 3e-6, DCR: -1, Tol: -1, Price: 2, Count: 1},
+		{Kind: preferred.Capacitor, Value: 1.973591971621729e-6, DCR: -1, Tol: -1, Price: 1, Count: 1},
+	})
+	b, err := p.Buy(context.Background(), p.Start(), stock, BuySettings{Pairs: true})
+	if err != nil {
+		t.Fatal(err)
+	}
+	c := b.Choices[1]
+	if b.Score.Objective > 1e-12 || len(c.Items) != 2 || !c.Parallel || b.Price != 6 || b.Values[1] < 4.97e-6 {
+		t.Errorf("bought %+v for %g, objective %g", c, b.Price, b.Score.Objective)
+	}
+	alone, err := p.Buy(context.Background(), p.Start(), stock, BuySettings{})
+	if err != nil {
+		t.Fatal(err)
+	}
+	if alone.Values[1] != 3e-6 {
+		t.Errorf("without pairs C1 is %g, want 3 uF, the nearer by ratio", alone.Values[1])
 	}
 }

@@ -171,6 +171,7 @@ func (a *place) compare(b *place) int {
 // A runner is one Run.
 type runner struct {
 	p       *Problem
+	coils   windings
 	ctx     context.Context
 	search  Search
 	workers int
@@ -248,7 +249,7 @@ func (r *runner) round(places []place, steps, total int) error {
 	var wg sync.WaitGroup
 	for w := range r.workers {
 		wg.Go(func() {
-			e, err := r.p.newEvaluator()
+			e, err := r.p.newEvaluatorWith(r.coils)
 			if err != nil {
 				errs[w] = err
 				return
