@@ -100,7 +100,7 @@ type bench struct {
 	press [][]complex128 // by way; nil: it makes no sound
 	gain  []complex128
 	sum   []complex128
-	level [][]float32 // dB by curve: the sum first, if there is one, then the ways
+	power [][]float32 // re (20 µPa)² or 1, by curve: the sum first, if there is one, then the ways
 }
 
 // curves is how many curves a bench measures.
@@ -125,9 +125,9 @@ func (p *Problem) newBench(freqs []float64) (*bench, error) {
 		}
 		b.press = append(b.press, press)
 	}
-	b.level = make([][]float32, p.curves())
-	for i := range b.level {
-		b.level[i] = make([]float32, len(freqs))
+	b.power = make([][]float32, p.curves())
+	for i := range b.power {
+		b.power[i] = make([]float32, len(freqs))
 	}
 	return b, nil
 }
@@ -145,18 +145,19 @@ func (b *bench) build(factors []float64) error {
 	return b.sweep.Solve()
 }
 
-// measure fills level from the present build.
+// measure fills power from the present build. Levels are taken of what is asked for in the end, since a logarithm costs as much
+// as a frequency.
 func (b *bench) measure() {
 	sums := b.p.sys.Sums()
 	clear(b.sum)
-	curve := b.level
+	curve := b.power
 	if sums {
-		curve = b.level[1:]
+		curve = b.power[1:]
 	}
 	for w, press := range b.press {
 		b.sweep.Gain(b.gain, w)
 		if press == nil {
-			decibels(curve[w], b.gain, 1)
+			powers(curve[w], b.gain, 1)
 			continue
 		}
 		for k, g := range b.gain {
@@ -164,21 +165,26 @@ func (b *bench) measure() {
 			b.gain[k] = g
 			b.sum[k] += g
 		}
-		decibels(curve[w], b.gain, pascalRef)
+		powers(curve[w], b.gain, pascalRef)
 	}
 	if sums {
-		decibels(b.level[0], b.sum, pascalRef)
+		powers(b.power[0], b.sum, pascalRef)
 	}
 }
 
 const pascalRef = 20e-6 // Pa
 
 // lowestDB stands for silence.
-const lowestDB = -400
+const lowestDB = -360
 
-func decibels(dst []float32, z []complex128, ref float64) {
+// powers stores |z/ref|².
+func powers(dst []float32, z []complex128, ref float64) {
+	scale := 1 / (ref * ref)
 	for k, v := range z {
-		re, im := real(v)/ref, imag(v)/ref
-		dst[k] = float32(max(10*math.Log10(re*re+im*im), lowestDB))
+		re, im := real(v), imag(v)
+		dst[k] = float32((re*re + im*im) * scale)
 	}
 }
+
+// decibels returns the level of a power.
+func decibels(power float32) float64 { return max(10*math.Log10(float64(power)), lowestDB) }

@@ -122,7 +122,9 @@ func (p *Problem) Run(ctx context.Context, s Settings) (*Result, error) {
 	curves := make([]Fan, p.curves())
 	lot.fans(curves, fans, s.Workers)
 	for i := range curves {
-		curves[i].Nominal = wide(nominal[i][:fans])
+		for _, power := range nominal[i][:fans] {
+			curves[i].Nominal = append(curves[i].Nominal, decibels(power))
+		}
 	}
 	names := p.sys.Names()
 	if p.sys.Sums() {
@@ -156,7 +158,7 @@ func (p *Problem) judgedCurves() int {
 	return p.curves()
 }
 
-// nominal returns the levels in dB of the curves as designed.
+// nominal returns the powers of the curves as designed.
 func (p *Problem) nominal(freqs []float64) ([][]float32, error) {
 	b, err := p.newBench(freqs)
 	if err != nil {
@@ -170,10 +172,10 @@ func (p *Problem) nominal(freqs []float64) ([][]float32, error) {
 		return nil, err
 	}
 	b.measure()
-	return b.level, nil
+	return b.power, nil
 }
 
-// wanted returns, for the curves that are judged, the level in dB that a build should stay near: the nominal one or, where the
+// wanted returns, for the curves that are judged, the power that a build should stay near: the nominal one or, where the
 // design asks for it, the sum's aim about its level.
 func (p *Problem) wanted(freqs []float64, nominal [][]float32, judged []int) ([][]float32, error) {
 	nominal = nominal[:p.judgedCurves()]
@@ -188,12 +190,12 @@ func (p *Problem) wanted(freqs []float64, nominal [][]float32, judged []int) ([]
 	if !p.design.Tune.HasLevel {
 		level = 0
 		for _, k := range judged {
-			level += (float64(nominal[0][k]) - aim[k]) / float64(len(judged))
+			level += (decibels(nominal[0][k]) - aim[k]) / float64(len(judged))
 		}
 	}
 	want := make([]float32, len(freqs))
 	for k := range want {
-		want[k] = float32(level + aim[k])
+		want[k] = float32(math.Pow(10, (level+aim[k])/10))
 	}
 	return [][]float32{want}, nil
 }
@@ -203,7 +205,7 @@ type lot struct {
 	p     *Problem
 	freqs []float64   // Hz
 	n     int         // how many
-	level [][]float32 // by curve: build by build, n levels in dB each
+	power [][]float32 // by curve: build by build, n powers each
 	made  int         // the first so many builds
 }
 
@@ -214,7 +216,7 @@ const batch = 64
 func (p *Problem) makeLot(ctx context.Context, s *Settings, freqs []float64) (*lot, error) {
 	l := &lot{p: p, freqs: freqs, n: len(freqs)}
 	for range p.curves() {
-		l.level = append(l.level, make([]float32, s.Samples*l.n))
+		l.power = append(l.power, make([]float32, s.Samples*l.n))
 	}
 	sampler := NewSampler(len(p.parts), s.Seed)
 	batches := (s.Samples + batch - 1) / batch
@@ -238,8 +240,8 @@ func (p *Problem) makeLot(ctx context.Context, s *Settings, freqs []float64) (*l
 						return
 					}
 					b.measure()
-					for c := range l.level {
-						copy(l.level[c][build*l.n:], b.level[c])
+					for c := range l.power {
+						copy(l.power[c][build*l.n:], b.power[c])
 					}
 				}
 				done[i] = true
@@ -286,28 +288,52 @@ func (l *lot) fans(curves []Fan, count, workers int) {
 	var wg sync.WaitGroup
 	for range workers {
 		wg.Go(func() {
-			column := make([]float32, l.made)
+			column, spare := make([]uint32, l.made), make([]uint32, l.made)
 			for task := int(next.Add(1)) - 1; task < count*len(curves); task = int(next.Add(1)) - 1 {
 				c, k := task/count, task%count
 				for i := range column {
-					column[i] = l.level[c][i*l.n+k]
+					column[i] = math.Float32bits(l.power[c][i*l.n+k])
 				}
-				slices.Sort(column)
+				sortBits(column, spare)
+				level := func(i int) float64 { return decibels(math.Float32frombits(column[i])) }
 				f := &curves[c]
-				f.P05[k], f.P25[k], f.P50[k] = quantile(column, 0.05), quantile(column, 0.25), quantile(column, 0.5)
-				f.P75[k], f.P95[k] = quantile(column, 0.75), quantile(column, 0.95)
+				f.P05[k], f.P25[k], f.P50[k] = quantile(l.made, level, 0.05), quantile(l.made, level, 0.25), quantile(l.made, level, 0.5)
+				f.P75[k], f.P95[k] = quantile(l.made, level, 0.75), quantile(l.made, level, 0.95)
 			}
 		})
 	}
 	wg.Wait()
 }
 
-// quantile returns the p-quantile of sorted values.
-func quantile[T float32 | float64](sorted []T, p float64) float64 {
-	at := p * float64(len(sorted)-1)
-	i := min(int(at), len(sorted)-2)
-	lo, hi := float64(sorted[i]), float64(sorted[i+1])
+// quantile returns the p-quantile of n values, of which value gives the one of each rank.
+func quantile(n int, value func(rank int) float64, p float64) float64 {
+	at := p * float64(n-1)
+	i := min(int(at), n-2)
+	lo, hi := value(i), value(i+1)
 	return lo + (at-float64(i))*(hi-lo)
+}
+
+// sortBits sorts the bits of floating-point numbers that are not negative, which rise as the numbers do: by their digits to
+// the base 2048, the lowest first. spare has the same length.
+func sortBits(bits, spare []uint32) {
+	for shift := 0; shift < 32; shift += 11 {
+		var first [2048]int
+		for _, b := range bits {
+			first[b>>shift&2047]++
+		}
+		sum := 0
+		for d, n := range first {
+			first[d] = sum
+			sum += n
+		}
+		for _, b := range bits {
+			d := b >> shift & 2047
+			spare[first[d]] = b
+			first[d]++
+		}
+		bits, spare = spare, bits
+	}
+	copy(spare, bits) // three passes end in the other
 }
 
 // yield returns the share of builds whose judged curves stay within limit of what is wanted, and where those that do not are
@@ -316,16 +342,16 @@ func (l *lot) yield(wanted [][]float32, judged []int, limit float64) (share, wor
 	pass := 0
 	fails := make([]int, l.n)
 	for i := range l.made {
-		far, at := float32(0), 0
+		far, at := float32(1), 0
 		for c, want := range wanted {
-			row := l.level[c][i*l.n : (i+1)*l.n]
+			row := l.power[c][i*l.n : (i+1)*l.n]
 			for _, k := range judged {
-				if d := max(row[k]-want[k], want[k]-row[k]); d > far {
+				if d := max(row[k]/want[k], want[k]/row[k]); d > far {
 					far, at = d, k
 				}
 			}
 		}
-		if float64(far) <= limit {
+		if decibels(far) <= limit {
 			pass++
 		} else {
 			fails[at]++
@@ -351,27 +377,19 @@ func (l *lot) match(judged []int, limit float64, seed uint64) *Match {
 	differences := make([]float64, half)
 	m := &Match{LimitDB: limit}
 	for i := range half {
-		far := float32(0)
+		far := float32(1)
 		for c := range l.p.judgedCurves() {
-			a, b := l.level[c][i*l.n:(i+1)*l.n], l.level[c][(half+partner[i])*l.n:(half+partner[i]+1)*l.n]
+			a, b := l.power[c][i*l.n:(i+1)*l.n], l.power[c][(half+partner[i])*l.n:(half+partner[i]+1)*l.n]
 			for _, k := range judged {
-				far = max(far, a[k]-b[k], b[k]-a[k])
+				far = max(far, a[k]/b[k], b[k]/a[k])
 			}
 		}
-		differences[i] = float64(far)
+		differences[i] = decibels(far)
 		if differences[i] <= limit {
 			m.Share += 1 / float64(half)
 		}
 	}
 	slices.Sort(differences)
-	m.P95DB = quantile(differences, 0.95)
+	m.P95DB = quantile(half, func(i int) float64 { return differences[i] }, 0.95)
 	return m
-}
-
-func wide(v []float32) []float64 {
-	out := make([]float64, len(v))
-	for i := range v {
-		out[i] = float64(v[i])
-	}
-	return out
 }
