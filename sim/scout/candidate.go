@@ -220,12 +220,6 @@ func loudness(sys *sim.System, d *xover.Design) []float64 {
 	return levels
 }
 
-// A wayLoad is what a way's ladder is sized for.
-type wayLoad struct {
-	ohm    float64 // |Z| at the crossover
-	re, le float64 // for a Zobel: of the impedance far above; le 0: none
-}
-
 // build makes a design of a plan: d with other parts and networks. loud are the levels of the ways in dB.
 func (p *plan) build(d *xover.Design, sys *sim.System, loud []float64) (*xover.Design, error) {
 	net := sys.Netlist()

@@ -123,8 +123,7 @@ func (p *plan) tuned(ctx context.Context, base *xover.Design, sys *sim.System, l
 		return nil, fmt.Errorf("scout: %s: %w", p, err)
 	}
 	search := tune.Search{Starts: cmp.Or(s.Starts, 24), Seed: s.Seed, Workers: 1}
-	score, err := settle(ctx, d, open, search)
-	if err != nil {
+	if _, err := settle(ctx, d, open, search); err != nil {
 		return nil, fmt.Errorf("scout: %s: %w", p, err)
 	}
 	// The coils are other ones now: with the resistances of these, once more from here.
@@ -134,7 +133,8 @@ func (p *plan) tuned(ctx context.Context, base *xover.Design, sys *sim.System, l
 		}
 	}
 	search.Starts = 1
-	if score, err = settle(ctx, d, open, search); err != nil {
+	score, err := settle(ctx, d, open, search)
+	if err != nil {
 		return nil, fmt.Errorf("scout: %s: %w", p, err)
 	}
 	f := &Find{

@@ -47,7 +47,6 @@ type Problem struct {
 	ears  []ear
 	fixed bool    // the level is given
 	level float64 // dB, then
-	pairs [][2]int
 	phase float64 // weight of each pair's phase
 	limit float64 // Ω, least |Zin|; 0: none
 }

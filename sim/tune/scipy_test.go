@@ -4,7 +4,6 @@ import (
 	"bytes"
 	"context"
 	"encoding/json"
-	"fmt"
 	"io"
 	"math"
 	"math/rand/v2"
@@ -312,6 +311,6 @@ func TestSciPyFindsNothingBetter(t *testing.T) {
 		if r.After.Objective > 1.01*a.Objective {
 			t.Errorf("%s: objective %.6g, scipy has %.6g", a.Name, r.After.Objective, a.Objective)
 		}
-		t.Log(fmt.Sprintf("%s: %.6f, scipy %.6f", a.Name, r.After.Objective, a.Objective))
+		t.Logf("%s: %.6f, scipy %.6f", a.Name, r.After.Objective, a.Objective)
 	}
 }

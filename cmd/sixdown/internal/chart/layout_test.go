@@ -19,11 +19,34 @@ func pages(t testing.TB) map[string]*Page {
 		"two-way out of phase": pageOf(t, b),
 		"three-way":            pageOf(t, threeWay(t, freqs)),
 		"two designs":          pageOf(t, &named, other),
+		"spread":               spreadPage(freqs),
 		"twice the same":       pageOf(t, &named, func() *Subject { c := named; c.Name = "B"; return &c }()),
 	}
 }
 
 // TestWritingIsClear: on every page no two texts run into each other, and all lie on the sheet with a margin.
+// spreadPage is a page of the panels for tolerances and for designs compared, of curves made up for it.
+func spreadPage(freqs []float64) *Page {
+	fan := func(name string, at float64) Fan {
+		f := Fan{Name: name, Freqs: freqs}
+		for _, hz := range freqs {
+			level, wide := 80-5*math.Abs(math.Log2(hz/at)), 0.1+1/(1+math.Abs(hz/2000-1))
+			f.Nominal = append(f.Nominal, level)
+			f.Low, f.InnerLow = append(f.Low, level-wide), append(f.InnerLow, level-wide/3)
+			f.InnerTop, f.Top = append(f.InnerTop, level+wide/3), append(f.Top, level+wide)
+		}
+		return f
+	}
+	fans := []Fan{fan("sum", 1000), fan("low", 300), fan("high", 5000)}
+	band := [2]float64{200, 20e3}
+	bars := []Bar{{"C1", 0.1, "+0.100 dB at 2.1 kHz"}, {"L1", 0.08, "-0.080 dB at 1.4 kHz"}, {"R1", 0.001, "+0.001 dB at 12 kHz"}}
+	marks := []Mark{{Across: 6, Up: 1.2}, {6, 0.8, "3"}, {7, 0.5, "2"}, {Across: 8, Up: 0.9}, {9, 0.3, "1"}}
+	return &Page{Title: "Spread", Panels: []Panel{
+		Fans(fans, true, 1, band, "half of them, and 90 %"), FanDeviation(&fans[0], 1, band),
+		Bars("Sensitivity", "dB for 1 %", " dB", bars), Frontier("Error", "and parts", " parts", " dB", marks, true),
+	}}
+}
+
 func TestWritingIsClear(t *testing.T) {
 	for name, p := range pages(t) {
 		for _, limit := range []float64{math.Inf(1), 1075} {

@@ -50,6 +50,13 @@ const (
 	way4Pale
 	way5Pale
 	way6Pale
+	totalTint // the same as a ground on which curves are drawn
+	way1Tint
+	way2Tint
+	way3Tint
+	way4Tint
+	way5Tint
+	way6Tint
 	heat0 // heatSteps of them follow, from the lowest level to the highest
 )
 
@@ -67,8 +74,19 @@ func (i ink) pale() ink {
 	return i
 }
 
-// paleness is how much of the paper is in a pale ink.
-const paleness = 0.45
+// tint returns the ink of the total or a way as a ground.
+func (i ink) tint() ink {
+	if i >= total && i <= way6 {
+		return i + totalTint - total
+	}
+	return i
+}
+
+// How much of the paper is in a pale ink, and in a tint.
+const (
+	paleness = 0.45
+	tintness = 0.78
+)
 
 type rgb = color.RGBA
 
@@ -81,10 +99,10 @@ func (t Theme) colour(i ink) rgb {
 	switch {
 	case i >= heat0:
 		return heat(int(i - heat0))
+	case i >= totalTint:
+		return mixed(t.colour(i-totalTint+total), t.colour(paper), tintness)
 	case i >= totalPale:
-		full, back := t.colour(i-totalPale+total), t.colour(paper)
-		mix := func(a, b uint8) uint8 { return uint8((1-paleness)*float64(a) + paleness*float64(b) + 0.5) }
-		return opaque(mix(full.R, back.R), mix(full.G, back.G), mix(full.B, back.B))
+		return mixed(t.colour(i-totalPale+total), t.colour(paper), paleness)
 	case t == Dark:
 		// The darkest colour of Okabe and Ito gives way to their sky blue, and that to their yellow.
 		return hex([...]uint32{0x14171b, 0x66707c, 0x2f363e, 0x22272d, 0xe8ebee, 0xa3adb8, 0xb4bcc6, 0xf5f7f9,
@@ -92,6 +110,12 @@ func (t Theme) colour(i ink) rgb {
 	}
 	return hex([...]uint32{0xffffff, 0x808a95, 0xd6dbe0, 0xebeef1, 0x1a1e23, 0x59626d, 0x4a525c, 0x0e1114,
 		0x0072b2, 0xd55e00, 0x009e73, 0xcc79a7, 0xe69f00, 0x56b4e9}[i])
+}
+
+// mixed returns full with that much of back in it.
+func mixed(full, back rgb, much float64) rgb {
+	mix := func(a, b uint8) uint8 { return uint8((1-much)*float64(a) + much*float64(b) + 0.5) }
+	return opaque(mix(full.R, back.R), mix(full.G, back.G), mix(full.B, back.B))
 }
 
 // dashes are the second cue by which ways are told apart. The first way is solid.

@@ -31,16 +31,7 @@ func (o *designOptions) addTo(cmd *cobra.Command) {
 	cmd.Flags().StringArrayVar(&o.turn, "turn", nil, "turn a control, 0 to 1, as in `treble=0.8` (may be repeated)")
 }
 
-// load reads the design, prints its warnings, and makes the changes that the options ask for.
-func (o *designOptions) load(s *streams) (*xover.Design, error) {
-	name, src, err := readDesign(s, o.path)
-	if err != nil {
-		return nil, err
-	}
-	return o.parse(s, name, src)
-}
-
-// parse is load of a design that has been read.
+// parse reads the design from its text, prints its warnings, and makes the changes that the options ask for.
 func (o *designOptions) parse(s *streams, name string, src []byte) (*xover.Design, error) {
 	d, warnings, err := xover.Parse(name, src)
 	if err != nil {
@@ -60,7 +51,7 @@ func (o *designOptions) folder() string {
 	return filepath.Dir(o.path)
 }
 
-// loadSystem is load, and makes a System of the design. Its driver tables are looked for beside the file.
+// loadSystem reads and parses the design and makes a System of it. Its driver tables are looked for beside the file.
 func (o *designOptions) loadSystem(s *streams) (*xover.Design, *sim.System, error) {
 	name, src, err := readDesign(s, o.path)
 	if err != nil {

@@ -1,10 +1,8 @@
 package cli
 
 import (
-	"bytes"
 	"fmt"
 	"math"
-	"path/filepath"
 	"slices"
 	"strings"
 
@@ -14,18 +12,13 @@ import (
 	"sixdown/sim"
 )
 
-// chartOptions say what picture is wanted and where it goes.
+// chartOptions say what picture is wanted of a prediction and where it goes.
 type chartOptions struct {
-	path   string // "": none
+	pictureOptions
 	panels []string
-	theme  string
-	width  int
 
 	changes string // what of the second design is not as its file says; "": nothing
 }
-
-// The widest picture that may be asked for, in pixels.
-const maxChartWidth = 8000
 
 // panelNames are the panels in the order in which a page shows them.
 func panelNames() []string {
@@ -33,35 +26,15 @@ func panelNames() []string {
 }
 
 func (o *chartOptions) addTo(cmd *cobra.Command) {
-	cmd.Flags().StringVar(&o.path, "chart", "", "draw the answer into this `file`: .svg, .png or .pdf")
+	o.pictureOptions.addTo(cmd)
 	cmd.Flags().StringSliceVar(&o.panels, "panels", nil, "draw only these `panels`: "+strings.Join(panelNames(), ","))
-	cmd.Flags().StringVar(&o.theme, "theme", "auto", "draw in the `theme` light or dark; auto lets the reader of an SVG choose")
-	cmd.Flags().IntVar(&o.width, "width", 1200, "draw that many `pixels` wide; a PDF is on A4")
-	for name, choices := range map[string][]string{"theme": {"auto", "light", "dark"}, "panels": panelNames()} {
-		if err := cmd.RegisterFlagCompletionFunc(name, cobra.FixedCompletions(choices, cobra.ShellCompDirectiveNoFileComp)); err != nil {
-			panic(err) // a slip: the flag is declared above
-		}
-	}
+	complete(cmd, "panels", panelNames())
 }
 
 // check judges the options before anything is computed.
 func (o *chartOptions) check(cmd *cobra.Command) error {
-	if o.path == "" {
-		for _, name := range []string{"panels", "theme", "width"} {
-			if cmd.Flags().Changed(name) {
-				return usageFault("--"+name, "it is about a picture, and none is asked for", "give --chart too, as in --chart harbour.svg")
-			}
-		}
-		return nil
-	}
-	if !slices.Contains([]string{".svg", ".png", ".pdf"}, o.format()) {
-		return usageFault("--chart "+o.path, "the name does not say what kind of picture it is", "end it in .svg, .png or .pdf")
-	}
-	if _, err := chart.ParseTheme(o.theme); err != nil {
-		return usageFault("--theme", fmt.Sprintf("there is no theme %q", o.theme), didYouMean(o.theme, []string{"auto", "light", "dark"}, "give auto, light or dark"))
-	}
-	if o.width < 100 || o.width > maxChartWidth {
-		return usageFault("--width", fmt.Sprintf("%d pixels cannot be drawn", o.width), fmt.Sprintf("give 100 to %d", maxChartWidth))
+	if err := o.pictureOptions.check(cmd, "panels"); err != nil || o.path == "" {
+		return err
 	}
 	for _, p := range o.panels {
 		if !slices.Contains(panelNames(), p) {
@@ -70,9 +43,6 @@ func (o *chartOptions) check(cmd *cobra.Command) error {
 	}
 	return nil
 }
-
-// format is the ending of the file's name, which says what kind of picture it is.
-func (o *chartOptions) format() string { return strings.ToLower(filepath.Ext(o.path)) }
 
 // wants reports whether a panel is to be drawn if there is something to draw.
 func (o *chartOptions) wants(panel string) bool {
@@ -88,34 +58,7 @@ func (o *chartOptions) draw(s *streams, ps []*prediction, grid *gridOptions, inp
 	if err != nil {
 		return err
 	}
-	var b bytes.Buffer
-	theme, err := chart.ParseTheme(o.theme)
-	if err != nil {
-		return err
-	}
-	switch o.format() {
-	case ".svg":
-		err = page.WriteSVG(&b, theme, o.width)
-	case ".png":
-		err = page.WritePNG(&b, theme, o.width)
-	default:
-		err = page.WritePDF(&b, theme)
-	}
-	if err != nil {
-		return err
-	}
-	f, err := createOutput(o.path, inputs...)
-	if err != nil {
-		return err
-	}
-	defer f.Abort() // after Commit it does nothing
-	if _, err := f.Write(b.Bytes()); err != nil {
-		return outputFault(o.path, err)
-	}
-	if err := f.Commit(); err != nil {
-		return outputFault(o.path, err)
-	}
-	return nil
+	return o.write(page, inputs...)
 }
 
 // page sets out the panels that are wanted and can be drawn. A panel that was asked for by name and cannot be is an

@@ -1,16 +1,20 @@
 package cli
 
 import (
+	"cmp"
 	"context"
 	"fmt"
 	"io"
 	"math"
 	"os"
 	"path/filepath"
+	"slices"
+	"strconv"
 	"strings"
 
 	"github.com/spf13/cobra"
 
+	"sixdown/cmd/sixdown/internal/chart"
 	"sixdown/cmd/sixdown/internal/table"
 	"sixdown/sim/scout"
 	"sixdown/xover"
@@ -18,10 +22,11 @@ import (
 
 // scoutOptions are what scout is asked.
 type scoutOptions struct {
-	design designOptions
-	form   answerForm
-	out    string
-	set    scout.Settings
+	design  designOptions
+	form    answerForm
+	out     string
+	set     scout.Settings
+	picture pictureOptions
 }
 
 func newScoutCmd(s *streams) *cobra.Command {
@@ -45,6 +50,9 @@ With --out it writes a design file for each of these, and copies the drivers' ta
 		ValidArgsFunction: designFiles,
 		RunE: func(cmd *cobra.Command, args []string) error {
 			o.design.path = args[0]
+			if err := o.picture.check(cmd); err != nil {
+				return err
+			}
 			return runScout(cmd.Context(), s, &o)
 		},
 	}
@@ -53,6 +61,7 @@ With --out it writes a design file for each of these, and copies the drivers' ta
 	f.IntVar(&o.set.Starts, "starts", 24, "places that each tuning begins at")
 	f.Uint64Var(&o.set.Seed, "seed", 1, "of these places")
 	o.form.addTo(cmd)
+	o.picture.addTo(cmd)
 	return cmd
 }
 
@@ -85,6 +94,11 @@ func runScout(ctx context.Context, s *streams, o *scoutOptions) error {
 	files := map[int]string{}
 	if o.out != "" {
 		if files, err = writeFinds(o, d, src, r); err != nil {
+			return err
+		}
+	}
+	if o.picture.path != "" && r.Tuned > r.Dropped {
+		if err := o.picture.write(scoutPage(d.Title, r), o.design.path); err != nil {
 			return err
 		}
 	}
@@ -271,4 +285,33 @@ func scoutText(r *scout.Report, files map[int]string) string {
 	}
 	b.WriteString("          spread, stress and your ears decide between them\n")
 	return b.String()
+}
+
+// scoutPage is the answer as a picture: error against parts, and against the least impedance.
+func scoutPage(title string, r *scout.Report) *chart.Page {
+	some := shown(r)
+	slices.SortStableFunc(some, func(a, b int) int { return cmp.Compare(r.Finds[a].Parts, r.Finds[b].Parts) })
+	var parts, loads []chart.Mark
+	for i := range r.Finds {
+		f := &r.Finds[i]
+		if !f.Frontier {
+			parts = append(parts, chart.Mark{Across: float64(f.Parts), Up: f.ErrorDB})
+			loads = append(loads, chart.Mark{Across: f.Score.MinImpedance, Up: f.ErrorDB})
+		}
+	}
+	order := shown(r)
+	for _, i := range some {
+		f := &r.Finds[i]
+		name := strconv.Itoa(1 + slices.Index(order, i))
+		parts = append(parts, chart.Mark{Across: float64(f.Parts), Up: f.ErrorDB, Name: name})
+		loads = append(loads, chart.Mark{Across: f.Score.MinImpedance, Up: f.ErrorDB, Name: name})
+	}
+	return &chart.Page{
+		Title:   title,
+		Caption: []string{fmt.Sprintf("%d arrangements tuned; %d that no other beats, numbered by error", r.Tuned, len(some))},
+		Panels: []chart.Panel{
+			chart.Frontier("Error and parts", "dB rms, and how many parts", " parts", " dB", parts, true),
+			chart.Frontier("Error and load", "dB rms, and the least impedance in ohm", " Ω", " dB", loads, false),
+		},
+	}
 }

@@ -9,6 +9,7 @@ import (
 
 	"github.com/spf13/cobra"
 
+	"sixdown/cmd/sixdown/internal/chart"
 	"sixdown/cmd/sixdown/internal/table"
 	"sixdown/sim/spread"
 	"sixdown/xover"
@@ -20,6 +21,7 @@ type spreadOptions struct {
 	form    answerForm
 	set     spread.Settings
 	tighten bool
+	picture pictureOptions
 }
 
 func newSpreadCmd(s *streams) *cobra.Command {
@@ -40,6 +42,9 @@ same seed gives the same answer.`,
 		ValidArgsFunction: designFiles,
 		RunE: func(cmd *cobra.Command, args []string) error {
 			o.design.path = args[0]
+			if err := o.picture.check(cmd); err != nil {
+				return err
+			}
 			return runSpread(cmd.Context(), s, &o)
 		},
 	}
@@ -50,6 +55,7 @@ same seed gives the same answer.`,
 	f.BoolVar(&o.tighten, "tighten", false, "say which one part, bought at half its tolerance, helps most")
 	o.design.addTo(cmd)
 	o.form.addTo(cmd)
+	o.picture.addTo(cmd)
 	return cmd
 }
 
@@ -96,6 +102,15 @@ func runSpread(ctx context.Context, s *streams, o *spreadOptions) error {
 		a.yield, a.tightened, err = p.Tighten(ctx, set, 0.5)
 		bar.done()
 		if err != nil && !errors.Is(err, context.Canceled) {
+			return err
+		}
+	}
+	if o.picture.path != "" {
+		inputs := []string{o.design.path}
+		if o.design.path == "-" {
+			inputs = nil
+		}
+		if err := o.picture.write(a.page(), inputs...); err != nil {
 			return err
 		}
 	}
@@ -260,6 +275,38 @@ func signed3(v float64) string {
 		return text
 	}
 	return "+" + fixed(v, 3)
+}
+
+// page is the answer as a picture.
+func (a *spreading) page() *chart.Page {
+	r := a.result
+	page := &chart.Page{Title: a.design.Title, Caption: []string{fmt.Sprintf("%s %% of %d builds stay within %s from %s to %s", fixed(100*r.Yield, 1), r.Samples, decibels(r.LimitDB), roughly(r.Band[0]), roughly(r.Band[1]))}}
+	var fans []chart.Fan
+	add := func(f *spread.Fan) {
+		fans = append(fans, chart.Fan{Name: f.Name, Freqs: r.Freqs, Nominal: f.Nominal, Low: f.P05, InnerLow: f.P25, InnerTop: f.P75, Top: f.P95})
+	}
+	if r.Sum != nil {
+		add(r.Sum)
+	}
+	for i := range r.Ways {
+		add(&r.Ways[i])
+	}
+	limit := r.LimitDB
+	if a.design.Spread.AboutLevel {
+		limit = 0 // it is not about the nominal sum
+	}
+	page.Panels = append(page.Panels, chart.Fans(fans, r.Sum != nil, limit, r.Band, "tints: half of the builds, and 90 % of them"))
+	if r.Sum != nil {
+		page.Panels = append(page.Panels, chart.FanDeviation(&fans[0], limit, r.Band))
+	}
+	var bars []chart.Bar
+	for i, x := range r.Sensitivities {
+		if i < mostParts {
+			bars = append(bars, chart.Bar{Name: x.Part, Value: math.Abs(x.DBPerPercent), Remark: signed3(x.DBPerPercent) + " dB at " + roughly(x.AtHz)})
+		}
+	}
+	page.Panels = append(page.Panels, chart.Bars("Sensitivity", "dB for 1 % more, and where it is greatest", " dB", bars))
+	return page
 }
 
 // fanTable is the fan of the sum, or of the ways where there is none, in about third-octaves.
