@@ -22,7 +22,8 @@ import (
 type Settings struct {
 	Starts   int // of each arrangement's tuning; 0: 24
 	Seed     uint64
-	Workers  int // goroutines; 0: as many as there are cores. It changes no digit of the result
+	Workers  int         // goroutines; 0: as many as there are cores. It changes no digit of the result
+	Prices   tune.Source // a list with prices; nil: costs are not looked at
 	Progress func(done float64)
 }
 
@@ -34,8 +35,9 @@ type Find struct {
 	ErrorDB      float64       // rms of all that the tuner's objective is the sum of
 	Score        tune.Score
 	Parts        int
+	Cost         float64 // of the nearest parts that Prices has; negative: not known
 	Reversed     []bool
-	Frontier     bool    // no other is at least as good in error, parts and least impedance, and better in one of them
+	Frontier     bool    // no other is at least as good in error, parts, cost and least impedance, and better in one of them
 	ExcursionMM  float64 // greatest peak excursion of a high-passed driver at the rated power; 0: not known
 	ExcursionFor string  // whose
 }
@@ -141,6 +143,7 @@ func (p *plan) tuned(ctx context.Context, base *xover.Design, sys *sim.System, l
 		Name: p.String(), Design: d, Points: p.points, Score: score, Parts: len(d.Parts),
 		ErrorDB: math.Sqrt(score.Objective / float64(1+len(d.Ways))),
 	}
+	f.Cost = cost(d, s.Prices)
 	for _, w := range d.Ways {
 		f.Reversed = append(f.Reversed, w.Reversed)
 	}
@@ -150,6 +153,28 @@ func (p *plan) tuned(ctx context.Context, base *xover.Design, sys *sim.System, l
 		return nil, err
 	}
 	return f, nil
+}
+
+// cost returns what the nearest parts of a list cost; negative if it is none, or has none of a kind with a price.
+func cost(d *xover.Design, prices tune.Source) float64 {
+	if prices == nil {
+		return -1
+	}
+	sum := 0.0
+	for i := range d.Parts {
+		part := &d.Parts[i]
+		off, price := math.Inf(1), -1.0
+		for _, it := range prices.Within(tune.KindOf(part.Kind), part.Value/2, part.Value*2) {
+			if o := math.Abs(math.Log(it.Value / part.Value)); it.Price >= 0 && o < off {
+				off, price = o, it.Price
+			}
+		}
+		if price < 0 {
+			return -1
+		}
+		sum += price
+	}
+	return sum
 }
 
 // settle tunes d in place, to four figures, and returns its score then.
@@ -242,10 +267,10 @@ func mark(finds []Find) {
 		a.Frontier = true
 		for j := range finds {
 			b := &finds[j]
-			if i == j || b.ErrorDB > a.ErrorDB || b.Parts > a.Parts || b.Score.MinImpedance < a.Score.MinImpedance {
+			if i == j || b.ErrorDB > a.ErrorDB || b.Parts > a.Parts || b.Cost > a.Cost || b.Score.MinImpedance < a.Score.MinImpedance {
 				continue
 			}
-			if b.ErrorDB < a.ErrorDB || b.Parts < a.Parts || b.Score.MinImpedance > a.Score.MinImpedance || j < i {
+			if b.ErrorDB < a.ErrorDB || b.Parts < a.Parts || b.Cost < a.Cost || b.Score.MinImpedance > a.Score.MinImpedance || j < i {
 				a.Frontier = false
 				break
 			}

@@ -93,7 +93,7 @@ func TestBuyIsAsGoodAsEnumeration(t *testing.T) {
 		for v := range p.vars {
 			for range 3 {
 				it := preferred.Item{
-					Kind: kindOf(p.vars[v].Kind), Value: r.Values[v] * math.Exp(random.NormFloat64()*0.3),
+					Kind: KindOf(p.vars[v].Kind), Value: r.Values[v] * math.Exp(random.NormFloat64()*0.3),
 					Tol: -1, DCR: -1, Price: 1 + float64(random.IntN(5)), Count: -1,
 				}
 				if it.Kind == preferred.Inductor && trial%2 == 0 {

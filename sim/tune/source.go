@@ -14,8 +14,8 @@ type Source interface {
 	Within(kind preferred.Kind, low, high float64) []preferred.Item
 }
 
-// kindOf is the item's kind of a variable's.
-func kindOf(k xover.Kind) preferred.Kind {
+// KindOf returns the kind of item that a kind of part is.
+func KindOf(k xover.Kind) preferred.Kind {
 	switch k {
 	case xover.Inductor:
 		return preferred.Inductor
@@ -71,14 +71,14 @@ func (p *Problem) market(source Source, coils windings, pairs bool) *market {
 			}
 			m.candidates[v] = append(m.candidates[v], c)
 		}
-		single := source.Within(kindOf(q.Kind), q.Low, q.High)
+		single := source.Within(KindOf(q.Kind), q.Low, q.High)
 		for _, it := range single {
 			if it.Count < 0 || it.Count >= parts {
 				add(it.Value, it.DCR, it.Price, [2]int{index(it), -1}, nil)
 			}
 		}
 		if pairs {
-			all := source.Within(kindOf(q.Kind), q.Low/1000, q.High*1000)
+			all := source.Within(KindOf(q.Kind), q.Low/1000, q.High*1000)
 			for _, pr := range preferred.Pairs(all, q.Low, q.High) {
 				add(pr.Value, pr.DCR, pr.Price, [2]int{index(all[pr.A]), index(all[pr.B])}, &pr)
 			}

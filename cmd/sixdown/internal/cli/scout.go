@@ -25,6 +25,7 @@ type scoutOptions struct {
 	design  designOptions
 	form    answerForm
 	out     string
+	stock   string
 	set     scout.Settings
 	picture pictureOptions
 }
@@ -41,8 +42,8 @@ leaves out points that the drivers do not stand (below twice a tweeter's resonan
 more for low orders, where a diaphragm beams, where drivers are a wavelength apart:
 common practice), tunes each arrangement, drops those that overdrive a driver's xmax at
 the rated power or load the amplifier with less than [tune] min_impedance (3.2 ohm if it
-states none), and shows those that no other beats in error, number of parts and lowest
-impedance at once.
+states none), and shows those that no other beats in error, number of parts, lowest
+impedance and, with the prices of a list, cost at once.
 
 With --out it writes a design file for each of these, and copies the drivers' tables.`,
 		Example:           "  sixdown scout harbour.toml --out scouted",
@@ -58,6 +59,7 @@ With --out it writes a design file for each of these, and copies the drivers' ta
 	}
 	f := cmd.Flags()
 	f.StringVar(&o.out, "out", "", "write a design for each of the best to this `folder`")
+	f.StringVar(&o.stock, "stock", "", "weigh the cost too, by the prices of this `list`")
 	f.IntVar(&o.set.Starts, "starts", 24, "places that each tuning begins at")
 	f.Uint64Var(&o.set.Seed, "seed", 1, "of these places")
 	o.form.addTo(cmd)
@@ -72,6 +74,11 @@ func runScout(ctx context.Context, s *streams, o *scoutOptions) error {
 	if o.set.Starts < 1 || o.set.Starts > 10000 {
 		return usageFault("--starts", fmt.Sprintf("%d places", o.set.Starts), "give 1 to 10000")
 	}
+	prices, err := readSource(o.stock)
+	if err != nil {
+		return err
+	}
+	o.set.Prices = prices
 	name, src, err := readDesign(s, o.design.path)
 	if err != nil {
 		return err
@@ -212,6 +219,7 @@ type (
 		SumRMSDB     number   `json:"sum_rms_db"`
 		PhaseRMSDeg  number   `json:"phase_rms_deg"`
 		Parts        int      `json:"parts"`
+		Cost         number   `json:"cost"` // null: not known
 		MinImpedance number   `json:"min_impedance_ohm"`
 		Reversed     []string `json:"reversed"`
 		ExcursionMM  number   `json:"excursion_mm"` // null: not known
@@ -228,13 +236,16 @@ type (
 func foundDocument(f *scout.Find, file string) findDocument {
 	doc := findDocument{
 		Name: f.Name, File: file, CrossoverHz: numbers(f.Points), ErrorDB: number(f.ErrorDB), SumRMSDB: number(f.Score.SumRMSDB),
-		PhaseRMSDeg: number(f.Score.PhaseRMSDeg), Parts: f.Parts, MinImpedance: number(f.Score.MinImpedance), Reversed: []string{},
+		PhaseRMSDeg: number(f.Score.PhaseRMSDeg), Parts: f.Parts, Cost: number(math.NaN()), MinImpedance: number(f.Score.MinImpedance), Reversed: []string{},
 		ExcursionMM: number(math.NaN()), Frontier: f.Frontier,
 	}
 	for i, w := range f.Design.Ways {
 		if f.Reversed[i] {
 			doc.Reversed = append(doc.Reversed, w.Name)
 		}
+	}
+	if f.Cost >= 0 {
+		doc.Cost = number(f.Cost)
 	}
 	if f.ExcursionFor != "" {
 		doc.ExcursionMM = number(f.ExcursionMM)
@@ -251,12 +262,20 @@ func scoutAnswer(r *scout.Report, files map[int]string) scoutDocument {
 }
 
 func scoutRecords(r *scout.Report, files map[int]string) [][]string {
-	rows := [][]string{{"name", "error_db", "sum_rms_db", "phase_rms_deg", "parts", "min_impedance_ohm", "reversed", "frontier", "file"}}
+	rows := [][]string{{"name", "error_db", "sum_rms_db", "phase_rms_deg", "parts", "cost", "min_impedance_ohm", "reversed", "frontier", "file"}}
 	for i := range r.Finds {
 		f := foundDocument(&r.Finds[i], files[i])
-		rows = append(rows, []string{f.Name, f.ErrorDB.csv(), f.SumRMSDB.csv(), f.PhaseRMSDeg.csv(), fmt.Sprint(f.Parts), f.MinImpedance.csv(), strings.Join(f.Reversed, " "), fmt.Sprint(f.Frontier), f.File})
+		rows = append(rows, []string{f.Name, f.ErrorDB.csv(), f.SumRMSDB.csv(), f.PhaseRMSDeg.csv(), fmt.Sprint(f.Parts), f.Cost.csv(), f.MinImpedance.csv(), strings.Join(f.Reversed, " "), fmt.Sprint(f.Frontier), f.File})
 	}
 	return rows
+}
+
+// costText writes a cost that is known.
+func costText(cost float64) string {
+	if math.IsNaN(cost) {
+		return ""
+	}
+	return fixed(cost, 2)
 }
 
 // scoutText is the answer for people.
@@ -272,10 +291,10 @@ func scoutText(r *scout.Report, files map[int]string) string {
 	some := shown(r)
 	fmt.Fprintf(&b, "%d arrangements tuned, %d of them dropped for the load or a driver's excursion; %d that no other beats:\n\n", r.Tuned, r.Dropped, len(some))
 	t := table.New(table.Column{Name: "arrangement", Left: true}, table.Column{Name: "error", Unit: "dB"}, table.Column{Name: "sum", Unit: "dB"},
-		table.Column{Name: "phase", Unit: "°"}, table.Column{Name: "parts"}, table.Column{Name: "|Z|", Unit: "Ω"}, table.Column{Name: "reversed", Left: true})
+		table.Column{Name: "phase", Unit: "°"}, table.Column{Name: "parts"}, table.Column{Name: "cost"}, table.Column{Name: "|Z|", Unit: "Ω"}, table.Column{Name: "reversed", Left: true})
 	for _, i := range some {
 		f := foundDocument(&r.Finds[i], "")
-		t.Row(f.Name, fixed(float64(f.ErrorDB), 2), fixed(float64(f.SumRMSDB), 2), fixed(float64(f.PhaseRMSDeg), 0), fmt.Sprint(f.Parts), fixed(float64(f.MinImpedance), 2), strings.Join(f.Reversed, " "))
+		t.Row(f.Name, fixed(float64(f.ErrorDB), 2), fixed(float64(f.SumRMSDB), 2), fixed(float64(f.PhaseRMSDeg), 0), fmt.Sprint(f.Parts), costText(float64(f.Cost)), fixed(float64(f.MinImpedance), 2), strings.Join(f.Reversed, " "))
 	}
 	b.WriteString(t.Text(2 * pageWidth))
 	if len(files) > 0 {
