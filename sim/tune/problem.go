@@ -71,7 +71,7 @@ func New(d *xover.Design, sys *sim.System, open func(name string) (io.ReadCloser
 	if d.Tone != nil {
 		return nil, errors.New("tune: a tone network has no ways to tune; give a design with ways")
 	}
-	p := &Problem{design: d, sys: sys, open: open, limit: d.Tune.MinImpedance, fixed: d.Tune.HasLevel, level: d.Tune.Level}
+	p := &Problem{design: d, sys: sys, open: open, limit: d.Tune.MinImpedance, fixed: d.Tune.HasLevel && sys.Sums(), level: d.Tune.Level} // a level in SPL is none for gains
 	band := d.Tune.Band
 	if band == [2]float64{} {
 		band = [2]float64{200, 20e3}

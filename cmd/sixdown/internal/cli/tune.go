@@ -221,6 +221,10 @@ func (t *tuning) write(o *tuneOptions, src []byte) error {
 		return nil
 	}
 	values, ohmsOf := map[string]float64{}, map[string]float64{}
+	src, err := t.changed(src, values)
+	if err != nil {
+		return err
+	}
 	for v, value := range t.chosen() {
 		values[t.vars[v].Part] = value
 		if t.bought != nil && t.bought.Ohms[v] > 0 {
@@ -245,6 +249,27 @@ func (t *tuning) write(o *tuneOptions, src []byte) error {
 	}
 	t.written = path
 	return nil
+}
+
+// changed adds to values what --set has made of parts, and turns the controls in src as --turn has: what is written is what was
+// tuned.
+func (t *tuning) changed(src []byte, values map[string]float64) ([]byte, error) {
+	before, _, err := xover.Parse("", src)
+	if err != nil {
+		return nil, err
+	}
+	for i := range t.design.Parts {
+		if p := &t.design.Parts[i]; p.Same == "" && p.Value != before.Parts[i].Value {
+			values[p.Name] = p.Value
+		}
+	}
+	turns := map[string]float64{}
+	for i, c := range t.design.Controls {
+		if c.At != before.Controls[i].At {
+			turns[c.Name] = c.At
+		}
+	}
+	return xover.EditControl(src, turns)
 }
 
 // readSource returns where parts are bought: nil for "".
