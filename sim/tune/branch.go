@@ -87,6 +87,9 @@ func (b *buyer) gap(v int) float64 {
 // bound returns the least objective that choice leaves possible, as far as a descent from x finds it, and where.
 func (b *buyer) bound(choice []int, x []float64) (float64, []float64, error) {
 	b.nodes++
+	if b.tell != nil {
+		b.tell(float64(b.nodes)/float64(b.most), b.bestF)
+	}
 	if !b.market.enough(choice) {
 		return math.Inf(1), nil, nil
 	}

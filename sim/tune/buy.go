@@ -20,9 +20,9 @@ func noneFor(v *Variable) error {
 
 // BuySettings are how Buy looks. The zero value is a good one.
 type BuySettings struct {
-	Pairs    bool // two items in series or in parallel may make one part
-	Nodes    int  // places of the search tree that are re-tuned at most; 0: 800
-	Progress func(done, best float64)
+	Pairs    bool                     // two items in series or in parallel may make one part
+	Nodes    int                      // places of the search tree that are re-tuned at most; 0: 800
+	Progress func(done, best float64) // if not nil, called now and then: share of the work at most, and objective so far
 }
 
 // Bought is a set of parts that can be bought.
@@ -61,6 +61,7 @@ type buyer struct {
 	bestF     float64
 	bestPrice float64
 	x         []float64 // for value
+	tell      func(done, best float64)
 	nodes     int
 	most      int
 	ctx       context.Context
@@ -78,7 +79,7 @@ func (p *Problem) Buy(ctx context.Context, from []float64, source Source, set Bu
 		return nil, err
 	}
 	coils := p.windings(source)
-	b := &buyer{p: p, ctx: ctx, market: p.market(source, coils, set.Pairs), bestF: math.Inf(1), x: make([]float64, len(x)), most: set.Nodes, limit: math.Inf(-1)}
+	b := &buyer{p: p, ctx: ctx, market: p.market(source, coils, set.Pairs), bestF: math.Inf(1), x: make([]float64, len(x)), most: set.Nodes, tell: set.Progress, limit: math.Inf(-1)}
 	if b.most <= 0 {
 		b.most = 800
 	}

@@ -23,9 +23,14 @@ type (
 		LevelDB      number `json:"level_db"`
 	}
 	adviceDocument struct {
+		Part string `json:"part"`
+		Say  string `json:"say"`
+		How  string `json:"how"` // what takes its place: open or short
+	}
+	worthDocument struct {
 		Part    string `json:"part"`
-		Say     string `json:"say"`
-		CostsDB number `json:"costs_db2"` // what leaving it out adds to the objective
+		Without number `json:"objective_without"` // the others tuned anew; null: it must be there
+		How     string `json:"how"`
 	}
 	bindingDocument struct {
 		Part  string `json:"part"`  // "" for the least impedance
@@ -70,6 +75,7 @@ type (
 		Price       *number           `json:"price"`
 		Proved      *bool             `json:"stock_proved"`
 		Advice      []adviceDocument  `json:"advice"`
+		Worth       []worthDocument   `json:"worth"` // of every part, the least first
 		Binding     []bindingDocument `json:"binding"`
 		Changes     []changeDocument  `json:"changes"`
 		Yield       *yieldDocument    `json:"yield"`
@@ -108,11 +114,18 @@ func (t *tuning) byPart(values []float64) map[string]number {
 func (t *tuning) document() tuneDocument {
 	r := t.result
 	doc := tuneDocument{
-		Before: scored(r.Before), After: scored(r.After), Parts: t.byPart(r.Values), Advice: []adviceDocument{}, Binding: []bindingDocument{},
+		Before: scored(r.Before), After: scored(r.After), Parts: t.byPart(r.Values), Advice: []adviceDocument{}, Worth: []worthDocument{}, Binding: []bindingDocument{},
 		Status: statusText(r.Status), Met: !r.Unmet, Evaluations: r.Evaluations, Seconds: number(t.seconds),
 	}
 	for _, w := range t.worths {
-		doc.Advice = append(doc.Advice, adviceDocument{w.Part, worthText(&w), number(w.Costs)})
+		how := "short"
+		if w.Open {
+			how = "open"
+		}
+		if w.Useless {
+			doc.Advice = append(doc.Advice, adviceDocument{w.Part, leaveOut, how})
+		}
+		doc.Worth = append(doc.Worth, worthDocument{w.Part, number(w.Without), how})
 	}
 	for _, b := range r.Binding {
 		bound := "least"
@@ -165,19 +178,19 @@ func joined(c *tune.Choice) string {
 	return "series"
 }
 
-// worthText says what leaving a part out would do.
-func worthText(w *tune.Worth) string {
-	how := "short it"
+const leaveOut = "contributes nothing; leave it out"
+
+// adviceText says of a part that is worth nothing how to leave it out.
+func adviceText(w *tune.Worth) string {
+	how := "put a wire in its place"
 	if w.Open {
-		how = "leave it open"
+		how = "leave its place empty"
 	}
-	switch {
-	case math.IsInf(w.Without, 1):
-		return "it must be there"
-	case w.Useless:
-		return fmt.Sprintf("contributes nothing; leave it out (%s)", how)
+	text := w.Part + " " + leaveOut + ": " + how
+	if w.Costs > 0 && w.Without > 0 {
+		text += fmt.Sprintf(", for an error of %s instead of %s", decibels(rms(w.Without)), decibels(rms(w.Without-w.Costs)))
 	}
-	return fmt.Sprintf("without it (%s) the error rises to %s", how, decibels(rms(w.Without)))
+	return text
 }
 
 // text is the answer for people.
@@ -203,7 +216,7 @@ func (t *tuning) text() string {
 	for _, w := range t.worths {
 		if w.Useless {
 			useless++
-			b.WriteString(folded("advice    ", w.Part+" "+worthText(&w)))
+			b.WriteString(folded("advice    ", adviceText(&w)))
 		}
 	}
 	if useless > 1 {
