@@ -52,7 +52,7 @@ With --chart the answer is drawn too, over the grid's span: the response with ea
 way and its target, phase, group delay, the load, the phasors at each crossing, the
 sum with one side reversed, the step response, which needs frequencies up to
 64 kHz (beyond its end a driver's table is carried on by its slope), and the polar
-maps.`,
+maps; with --around, the means over many angles.`,
 		Example: `  sixdown predict harbour.toml
   sixdown predict harbour.toml --at "1 kHz,2.2 kHz" --set C3=5.6uF
   sixdown predict harbour.toml --from 100Hz --to 10kHz --per-octave 48 --csv

@@ -7,6 +7,7 @@ import (
 
 	"github.com/spf13/cobra"
 
+	"sixdown/cmd/sixdown/internal/chart"
 	"sixdown/cmd/sixdown/internal/table"
 	"sixdown/sim"
 	"sixdown/sim/field"
@@ -43,7 +44,7 @@ func (o *aroundOptions) check(against, chart string) error {
 		switch {
 		case against != "":
 			return usageFault(name, "two designs are given", "give one; the table is of a single design")
-		case chart != "":
+		case chart != "" && o.polar != "":
 			return usageFault(name, "it prints a table, and --chart asks for a picture", "leave one of them out; --panels polar draws the polar maps")
 		case o.angleText != "":
 			return usageFault(name, "it goes all round, and --angle asks for one angle", "leave one of them out")
@@ -219,6 +220,11 @@ func runCurves(s *streams, o *predictOptions, sys *sim.System, freqs []float64) 
 		names, columns = append(names, a.name+"_db"), append(columns, numbers(a.levels))
 		heads = append(heads, table.Column{Group: a.group, Name: a.head, Unit: "dB"})
 	}
+	if o.chart.path != "" {
+		if err := drawCurves(o, sys, freqs); err != nil {
+			return err
+		}
+	}
 	switch {
 	case o.form.json:
 		return s.answerJSON(doc)
@@ -238,4 +244,22 @@ func runCurves(s *streams, o *predictOptions, sys *sim.System, freqs []float64) 
 		text += "missing   " + m + "\n"
 	}
 	return s.answer(text)
+}
+
+// drawCurves draws the means over many angles over the span of freqs, more finely.
+func drawCurves(o *predictOptions, sys *sim.System, freqs []float64) error {
+	from, to := slices.Min(freqs), slices.Max(freqs)
+	if !(to > from) {
+		return usageFault("--chart", "the curves are of one frequency", "give a span, --from and --to")
+	}
+	fine := gridOptions{from: from, to: to, perOctave: 24}
+	c, err := sys.Curves(fine.even())
+	if err != nil {
+		return err
+	}
+	page := &chart.Page{Title: sys.Title(), Caption: c.Missing, Panels: chart.Around(c)}
+	if o.design.path == "-" {
+		return o.chart.write(page)
+	}
+	return o.chart.write(page, o.design.path)
 }
