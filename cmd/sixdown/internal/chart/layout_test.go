@@ -4,6 +4,8 @@ import (
 	"math"
 	"slices"
 	"testing"
+
+	"sixdown/sim"
 )
 
 // pages are those that the layout is tested with.
@@ -20,11 +22,28 @@ func pages(t testing.TB) map[string]*Page {
 		"three-way":            pageOf(t, threeWay(t, freqs)),
 		"two designs":          pageOf(t, &named, other),
 		"spread":               spreadPage(freqs),
+		"around":               {Title: "Around", Panels: Around(falling(freqs))},
 		"twice the same":       pageOf(t, &named, func() *Subject { c := named; c.Name = "B"; return &c }()),
 	}
 }
 
 // TestWritingIsClear: on every page no two texts run into each other, and all lie on the sheet with a margin.
+// falling are curves that fall the more, the more of the sphere they are of.
+func falling(freqs []float64) *sim.Curves {
+	c := &sim.Curves{Freqs: freqs, Basis: "model"}
+	for _, f := range freqs {
+		x := f / 5000
+		c.OnAxis = append(c.OnAxis, 85)
+		c.ListeningWindow = append(c.ListeningWindow, 85-x)
+		c.EarlyReflections = append(c.EarlyReflections, 85-2*x)
+		c.SoundPower = append(c.SoundPower, 85-3*x)
+		c.InRoom = append(c.InRoom, 85-2.3*x)
+		c.EarlyReflectionsDI = append(c.EarlyReflectionsDI, x)
+		c.SoundPowerDI = append(c.SoundPowerDI, 2*x)
+	}
+	return c
+}
+
 // spreadPage is a page of the panels for tolerances and for designs compared, of curves made up for it.
 func spreadPage(freqs []float64) *Page {
 	fan := func(name string, at float64) Fan {
