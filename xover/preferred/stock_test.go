@@ -20,7 +20,7 @@ func TestReadStock(t *testing.T) {
 		item(func(i *Item) { i.Kind, i.Value, i.Tol = Capacitor, 6.8e-6, 0.05 }),
 	}
 	for name, text := range map[string]string{
-		"comma":      "# a shelf\nkind,value,tol,dcr,price,count,name\nL,0.33 mH,,0.35 ohm,4.50,,\"LA, small\"\nR,4R7,1 %,,,3,\n\nC,6u8,5,,,,\n",
+		"comma":      "# a shelf\nKind,value,tolerance,resistance,price,quantity,name\nL,0.33 mH,,0.35 ohm,4.50,,\"LA, small\"\nR,4R7,1 %,,,3,\n\nC,6u8,5,,,,\n",
 		"semicolon":  "\ufeffvalue;kind;dcr;price;name;tol;count\r\n0,33 mH;L;0,35;4,5;LA, small;;\r\n4,7 ohm;R;;;;1;3\r\n6,8 uF;c;;;;5 %;\r\n",
 		"tab":        "value\tname\tdcr\tprice\ttol\tcount\n0.33mH\tLA, small\t0.35\t4.5\n4.7 ohm\t\t\t\t1 %\t3\n6.8uF\t\t\t\t5 %\n2 uF\t\t\t\t\t0\n",
 		"toml":       "# shelf\n[[item]]\nvalue = \"0.33 mH\"\ndcr = \"0.35 ohm\"\nprice = 4.5\nname = \"LA, small\"\n[[item]]\nkind = \"R\"\nvalue = \"4R7\"\ntol = \"1 %\"\ncount = 3\n[[item]]\nvalue = \"6.8 uF\"\ntol = 5\n",

@@ -7,6 +7,7 @@ import (
 	"fmt"
 	"io"
 	"math"
+	"slices"
 	"strconv"
 	"strings"
 
@@ -88,6 +89,23 @@ func isTOML(src []byte) bool {
 // columns are the names that a list may use.
 func columns() []string { return []string{"kind", "value", "tol", "dcr", "price", "count", "name"} }
 
+// columnOf returns which column a name means; "" if it is none. What a shop's list may say for it will do too.
+func columnOf(name string) string {
+	name = strings.ToLower(strings.TrimSpace(name))
+	switch name {
+	case "tolerance":
+		return "tol"
+	case "resistance":
+		return "dcr"
+	case "quantity", "stock":
+		return "count"
+	}
+	if slices.Contains(columns(), name) {
+		return name
+	}
+	return ""
+}
+
 // readCSV reads comma-separated values.
 func (f *stockFile) readCSV(src []byte) {
 	r := csv.NewReader(bytes.NewReader(src))
@@ -161,12 +179,7 @@ func (f *stockFile) header(line int, record []string) []string {
 	names := make([]string, len(record))
 	seen := map[string]bool{}
 	for i, text := range record {
-		names[i] = strings.ToLower(strings.TrimSpace(text))
-		known := false
-		for _, c := range columns() {
-			known = known || c == names[i]
-		}
-		if !known || seen[names[i]] {
+		if names[i] = columnOf(text); names[i] == "" || seen[names[i]] {
 			f.fail(line, fmt.Sprintf("%.40q is no name of a column, or is there twice", text), "name the columns "+strings.Join(columns(), ", ")+"; only value must be there")
 			return nil
 		}
@@ -196,18 +209,13 @@ func (f *stockFile) readTOML(src []byte) {
 	}
 	for i, it := range list.Item {
 		fields := map[string]string{}
-		for key, v := range it {
-			fields[key] = fmt.Sprint(v)
-		}
 		before := len(f.errs)
-		for key := range fields {
-			known := false
-			for _, c := range columns() {
-				known = known || c == key
-			}
-			if !known {
+		for key, v := range it {
+			column := columnOf(key)
+			if column == "" {
 				f.fail(0, fmt.Sprintf("item %d: there is no key %.40q", i+1, key), "the keys are "+strings.Join(columns(), ", "))
 			}
+			fields[column] = fmt.Sprint(v)
 		}
 		if len(f.errs) == before {
 			f.item(0, fields)
