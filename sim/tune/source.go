@@ -3,6 +3,7 @@ package tune
 import (
 	"math"
 	"slices"
+	"strconv"
 
 	"sixdown/xover"
 	"sixdown/xover/preferred"
@@ -63,7 +64,7 @@ func (p *Problem) market(source Source, coils windings, pairs bool) *market {
 			c := candidate{x: math.Log(value), value: value, items: items, pair: pair}
 			if q.Kind == xover.Inductor {
 				if c.ohm = dcr; !(dcr > 0) {
-					c.ohm = coils.ohm(v, c.x)
+					c.ohm = threeFigures(coils.ohm(v, c.x))
 				}
 			}
 			if price > 0 {
@@ -101,6 +102,15 @@ func (p *Problem) market(source Source, coils windings, pairs bool) *market {
 		m.candidates[v] = thinned(m.candidates[v])
 	}
 	return m
+}
+
+// threeFigures rounds a resistance to what is known of one that was never measured.
+func threeFigures(ohm float64) float64 {
+	if !(ohm > 0) {
+		return 0
+	}
+	rounded, _ := strconv.ParseFloat(strconv.FormatFloat(ohm, 'e', 2, 64), 64) // its own text always parses
+	return rounded
 }
 
 // thinned leaves out candidates that differ from the one before by less than a thousandth, unless they are single items, which
