@@ -3,17 +3,26 @@ package sim
 import (
 	"fmt"
 	"math"
+	"math/rand/v2"
 	"testing"
 
 	"sixdown/xover"
 )
 
-// stack is a bass–middle–treble network with values of our own, its knobs at t, m and l.
-func stack(t, m, l float64) *xover.Design {
+// stackValues are the parts of a bass–middle–treble network: Ω and F.
+type stackValues struct{ R1, R2, R3, R4, C1, C2, C3 float64 }
+
+// ownStack has values of our own.
+func ownStack() stackValues {
+	return stackValues{R1: 220e3, R2: 500e3, R3: 22e3, R4: 47e3, C1: 330e-12, C2: 47e-9, C3: 22e-9}
+}
+
+// design is the network with its knobs at t, m and l.
+func (v stackValues) design(t, m, l float64) *xover.Design {
 	return &xover.Design{
 		Parts: []xover.Part{
-			pot("P1", stackR1), pot("P2", stackR2), pot("P3", stackR3), resistor("R4", stackR4),
-			capacitor("C1", stackC1, 0), capacitor("C2", stackC2, 0), capacitor("C3", stackC3, 0),
+			pot("P1", v.R1), pot("P2", v.R2), pot("P3", v.R3), resistor("R4", v.R4),
+			capacitor("C1", v.C1, 0), capacitor("C2", v.C2, 0), capacitor("C3", v.C3, 0),
 		},
 		Tone: &xover.Tone{Network: []xover.Step{
 			between(leaf("C1"), "amp", "top"),
@@ -30,18 +39,10 @@ func stack(t, m, l float64) *xover.Design {
 	}
 }
 
-const (
-	stackR1, stackR2, stackR3, stackR4 = 220e3, 500e3, 22e3, 47e3
-	stackC1, stackC2, stackC3          = 330e-12, 47e-9, 22e-9
-)
-
-// stackGain is the same network in closed form: D. T. Yeh and J. O. Smith, Proc. DAFx-06, Montreal, 2006 (from
+// gain is the same network in closed form: D. T. Yeh and J. O. Smith, Proc. DAFx-06, Montreal, 2006 (from
 // memory; derived again from the arrangement by symbolic nodal analysis, the seven coefficients agree).
-func stackGain(s complex128, t, m, l float64) complex128 {
-	const (
-		R1, R2, R3, R4 = stackR1, stackR2, stackR3, stackR4
-		C1, C2, C3     = stackC1, stackC2, stackC3
-	)
+func (v stackValues) gain(s complex128, t, m, l float64) complex128 {
+	R1, R2, R3, R4, C1, C2, C3 := v.R1, v.R2, v.R3, v.R4, v.C1, v.C2, v.C3
 	b1 := t*C1*R1 + m*C3*R3 + l*(C1*R2+C2*R2) + (C1*R3 + C2*R3)
 	b2 := t*(C1*C2*R1*R4+C1*C3*R1*R4) - m*m*(C1*C3*R3*R3+C2*C3*R3*R3) +
 		m*(C1*C3*R1*R3+C1*C3*R3*R3+C2*C3*R3*R3) + l*(C1*C2*R1*R2+C1*C2*R2*R4+C1*C3*R2*R4) +
@@ -62,11 +63,33 @@ func TestToneStack(t *testing.T) {
 	for _, knobs := range [][3]float64{
 		{0.5, 0.5, 0.5}, {0.1, 0.9, 0.3}, {1, 1, 1}, {0, 0.5, 1}, {1, 0.2, 0.05}, {0, 0, 1}, {0.7, 0, 0.4}, {0.4, 1, 0}, {1, 0.5, 0},
 	} {
-		s := mustNew(t, stack(knobs[0], knobs[1], knobs[2]))
+		s := mustNew(t, ownStack().design(knobs[0], knobs[1], knobs[2]))
 		for _, f := range []float64{10, 80, 400, 1500, 6000, 40e3} {
 			// The closed form subtracts, so it loses a few digits itself.
 			nearC(t, fmt.Sprintf("knobs at %g, %g Hz", knobs, f), mustPredict(t, s, f).Ways[0].H[0],
-				stackGain(complex(0, 2*math.Pi*f), knobs[0], knobs[1], knobs[2]), 1e-11)
+				ownStack().gain(complex(0, 2*math.Pi*f), knobs[0], knobs[1], knobs[2]), 1e-11)
+		}
+	}
+}
+
+// A hundred networks of values and settings by lot, from 20 Hz to 20 kHz.
+func TestToneStackOfAnyValues(t *testing.T) {
+	random := rand.New(rand.NewPCG(2006, 9))
+	about := func(value, decades float64) float64 {
+		return value * math.Pow(10, decades*(2*random.Float64()-1))
+	}
+	for range 100 {
+		v := stackValues{
+			R1: about(220e3, 1), R2: about(500e3, 1), R3: about(22e3, 1), R4: about(47e3, 1),
+			C1: about(330e-12, 1), C2: about(47e-9, 1), C3: about(22e-9, 1),
+		}
+		knobs := [3]float64{random.Float64(), random.Float64(), random.Float64()}
+		s := mustNew(t, v.design(knobs[0], knobs[1], knobs[2]))
+		for k := range 31 {
+			f := 20 * math.Pow(1000, float64(k)/30)
+			// The coefficients have terms of both signs, which costs them a few of their sixteen digits.
+			nearC(t, fmt.Sprintf("%+v, knobs at %g, %g Hz", v, knobs, f), mustPredict(t, s, f).Ways[0].H[0],
+				v.gain(complex(0, 2*math.Pi*f), knobs[0], knobs[1], knobs[2]), 1e-10)
 		}
 	}
 }
