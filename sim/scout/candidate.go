@@ -62,18 +62,17 @@ const (
 	pointsThreeWay = 2
 )
 
-// A refusal is a crossover point that a driver does not stand.
-type refusal struct {
-	low, high float64 // Hz; what lies within is left
-	reasons   []string
+// A leeway is where two ways may cross.
+type leeway struct {
+	low, high float64  // Hz
+	reasons   []string // what bounds it, a sentence each
 }
 
-// span returns the crossover points that the drivers of ways i and i+1 leave open, in Hz, for a target of that order, and
-// what bounds them. All three rules are common practice, no source: a driver's high-pass lies above twice its resonance, more for
-// low orders; its low-pass lies below where its diaphragm is a wavelength across; and the two are no farther apart than a
-// wavelength.
-func span(d *xover.Design, ways []xover.Way, i, order int) refusal {
-	r := refusal{low: 80, high: 8000}
+// span returns the crossover points that the drivers of ways i and i+1 leave open for a target of that order. All three rules
+// are common practice, no source: a driver's high-pass lies above twice its resonance, more for low orders; its low-pass lies
+// below where its diaphragm is a wavelength across; and the two are no farther apart than a wavelength.
+func span(d *xover.Design, ways []xover.Way, i, order int) leeway {
+	r := leeway{low: 80, high: 8000}
 	atLeast := func(f float64, why string) {
 		if f > r.low {
 			r.low = f
@@ -300,8 +299,9 @@ func coil(far, re float64) (le, ohm float64) {
 	return math.Sqrt(far*far-re*re) / (2 * math.Pi * 10e3), re
 }
 
-// coilOhms is what a coil's winding has for each henry^0.6, as of 0.35 ohm in 1 mH: common practice, no source.
-var coilOhms = 0.35 / math.Pow(1e-3, 0.6)
+// windingOhm returns what the winding of a coil of that many H has in Ω: 0.35 for 1 mH (common practice, no source), and others
+// as of the same wire, for which package tune derives the power.
+func windingOhm(henry float64) float64 { return 0.35 * math.Pow(henry/1e-3, 0.6) }
 
 // place gives the parts of e names and puts them into the design.
 func place(d *xover.Design, namer *ladder.Namer, e ladder.Expr) *xover.Expr {
@@ -319,7 +319,7 @@ func place(d *xover.Design, namer *ladder.Namer, e ladder.Expr) *xover.Expr {
 	switch e.Part.Kind {
 	case ladder.Inductor:
 		part.Kind = xover.Inductor
-		part.DCR = coilOhms * math.Pow(part.Value, 0.6)
+		part.DCR = windingOhm(part.Value)
 	case ladder.Capacitor:
 		part.Kind = xover.Capacitor
 	}

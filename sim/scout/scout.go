@@ -131,7 +131,7 @@ func (p *plan) tuned(ctx context.Context, base *xover.Design, sys *sim.System, l
 	// The coils are other ones now: with the resistances of these, once more from here.
 	for i := range d.Parts {
 		if part := &d.Parts[i]; part.Kind == xover.Inductor {
-			part.DCR = fourFigures(coilOhms * math.Pow(part.Value, 0.6))
+			part.DCR = fourFigures(windingOhm(part.Value))
 		}
 	}
 	search.Starts = 1
