@@ -260,6 +260,9 @@ func (f *Find) excursion(sys *sim.System) error {
 	return nil
 }
 
+// load is the least impedance to a twentieth of an ohm: those that lie at the limit differ by less, and not for anybody's good.
+func (f *Find) load() float64 { return math.Round(20*f.Score.MinImpedance) / 20 }
+
 // mark marks the frontier.
 func mark(finds []Find) {
 	for i := range finds {
@@ -267,10 +270,10 @@ func mark(finds []Find) {
 		a.Frontier = true
 		for j := range finds {
 			b := &finds[j]
-			if i == j || b.ErrorDB > a.ErrorDB || b.Parts > a.Parts || b.Cost > a.Cost || b.Score.MinImpedance < a.Score.MinImpedance {
+			if i == j || b.ErrorDB > a.ErrorDB || b.Parts > a.Parts || b.Cost > a.Cost || b.load() < a.load() {
 				continue
 			}
-			if b.ErrorDB < a.ErrorDB || b.Parts < a.Parts || b.Cost < a.Cost || b.Score.MinImpedance > a.Score.MinImpedance || j < i {
+			if b.ErrorDB < a.ErrorDB || b.Parts < a.Parts || b.Cost < a.Cost || b.load() > a.load() || j < i {
 				a.Frontier = false
 				break
 			}
