@@ -75,7 +75,7 @@ func (fn *fan) at(f float64) (*rose, error) {
 // size returns the sum's amplitude in Pa at an angle in degrees.
 func (r *rose) size(deg float64) float64 {
 	l := r.s.listener
-	l.Angle.VerticalDeg = deg
+	l.Angle = r.s.also(field.Angle{VerticalDeg: deg})
 	sum := complex128(0)
 	for i, front := range r.front {
 		sum += lagrange(front, (deg+lobeReach)/fanStep) * r.s.units[i].speaker.path(l).At(r.f)
