@@ -1,16 +1,21 @@
 """A second opinion on tuning: the same objective coded anew in numpy, and scipy.optimize from many starts.
 
-    python3 tune.py evaluate  < problems.json     the objective at given values
-    python3 tune.py optimise  < problems.json     the best of so many restarts, with wall times
+    python3 tune.py evaluate  < problems.json     the score of given values
+    python3 tune.py optimise  < problems.json     the best from given and random places, with wall times
 
-Reads a list of problems, writes a list of answers. A problem is
+Reads a list of problems, writes { "with": versions, "answers": [...] }. A problem is
 
-    { "name", "freqs": [Hz], "source": ohm, "nodes": n,
+    { "name", "freqs": [Hz], "band": [Hz, Hz], "source": ohm, "nodes": n,
       "branches": [{ "kind": "R"|"L"|"C"|"Z", "from", "to", "value", "loss", "z": [[re, im]...] over freqs, "zload" over loads }],
       "outputs": [[from, to]...], "press": [ear][way][[re, im]...] in Pa per volt/volt, or null without sound,
-      "targets": [[{ "high", "shape", "order", "hz" }...]...] by way, "aim": [dB], "weights": { "sum", "ways", "angles" },
-      "level": dB or null, "vars": [{ "branches": [index], "low", "high", "start" }],
-      "limit": ohm, "loads": [Hz], "values": [[by variable]...], "restarts", "seed" }
+      "targets": [[{ "high", "shape", "order", "hz" }...]...] by way, "tilt": dB an octave,
+      "weights": { "sum", "ways", "phase", "angles" }, "level": dB or null,
+      "vars": [{ "branches": [index], "low", "high", "start" }], "limit": ohm, "loads": [Hz],
+      "values": [[by variable]...], "restarts", "seed" }
+
+An evaluation scores each of values. An optimisation begins at each of values, or at the start if there are none, and at so
+many places more, each value of them within a decade of the start's, evenly in its logarithm. By least_squares (trf, exact
+derivatives, its own tolerances and limits), or with a limit on the impedance over loads by SLSQP.
 
 Node 0 is the return and node 1 the amplifier's terminal. The targets are scipy.signal's. What the objective is stands in
 the documentation of package tune.
@@ -20,6 +25,7 @@ import sys
 import time
 
 import numpy as np
+import scipy
 from scipy import optimize, signal
 
 
@@ -39,8 +45,6 @@ def target_db(targets, f):
         w = 2 * np.pi * t["hz"]
         if t["shape"] == "bessel":
             b, a = signal.bessel(order, w, kind, analog=True, norm="mag")
-        elif t["shape"] == "linkwitz-riley" and t["order"] == 2:
-            b, a = signal.butter(1, w, kind, analog=True)
         else:
             b, a = signal.butter(order, w, kind, analog=True)
         h = h * signal.freqs(b, a, 2 * np.pi * f)[1] ** power
@@ -113,15 +117,17 @@ class Network:
         return ys, volts, adj
 
     def impedance(self, values):
+        """What the amplifier sees behind its own resistance, and the voltages for a current of 1 A into it."""
         ys, v, _ = self.solve(values, [])
         if self.source > 0:
-            return v[:, 1] * self.source / (1 - v[:, 1])
-        i = 0
-        for b, y in zip(self.branches, ys):
-            for a, c in ((b["from"], b["to"]), (b["to"], b["from"])):
-                if a == 1:
-                    i = i + y * (v[:, a] - v[:, c])
-        return 1 / i
+            i = (1 - v[:, 1]) / self.source
+        else:
+            i = 0
+            for b, y in zip(self.branches, ys):
+                for a, c in ((b["from"], b["to"]), (b["to"], b["from"])):
+                    if a == 1:
+                        i = i + y * (v[:, a] - v[:, c])
+        return v[:, 1] / i, ys, v / i[:, None]
 
 
 class Problem:
@@ -129,12 +135,13 @@ class Problem:
         self.p = p
         self.f = np.asarray(p["freqs"])
         self.net = Network(p, self.f, "z")
-        self.load = Network(p, p["loads"], "zload") if p["limit"] > 0 else None
+        self.load = Network(p, p["loads"], "zload") if p["loads"] else None
         self.base = [b["value"] for b in p["branches"]]
         self.vars = p["vars"]
-        self.aim = np.asarray(p["aim"])
-        self.press = [cplx(e) for e in p["press"]] if p["press"] else None
+        self.aim = p["tilt"] * np.log2(self.f / 1000)
+        self.press = [cplx(e) / 20e-6 for e in p["press"]] if p["press"] else None
         self.targets = [target_db(t, self.f) if t else None for t in p["targets"]]
+        self.points = []  # of each pair of neighbours, where the phase between them counts
 
     def values(self, x):
         values = list(self.base)
@@ -143,94 +150,191 @@ class Problem:
                 values[b] = v
         return values
 
-    def residuals(self, x, want_jac=False):
-        """Residuals whose squares add up to the objective, and their derivatives by x = ln values."""
-        w = self.p["weights"]
+    def gains(self, x):
         values = self.values(x)
         ys, v, adj = self.net.solve(values, self.p["outputs"])
-        gains = [v[:, a] - v[:, c] for a, c in self.p["outputs"]]
-        slopes = []  # by variable, by way
-        if want_jac:
-            for q in self.vars:
-                d = [np.zeros(self.f.size, complex) for _ in gains]
-                for b in q["branches"]:
-                    a, c = self.p["branches"][b]["from"], self.p["branches"][b]["to"]
-                    dy = self.net.slope(b, ys[b], values[b])
-                    for o in range(len(gains)):
-                        d[o] -= (adj[:, a, o] - adj[:, c, o]) * (v[:, a] - v[:, c]) * dy
-                slopes.append(d)
-        terms = []  # (what, its derivatives, aim, weight a point, which level)
-        n = self.f.size
-        if self.press is not None:
-            for e, press in enumerate(self.press):
-                add = lambda g: sum(press[k] * g[k] for k in range(len(g)))
-                weight = w["sum"] if e == 0 else w["angles"]
-                terms.append((add(gains) / 20e-6, [add(d) / 20e-6 for d in slopes], self.aim, np.full(n, weight / n), e, np.arange(n)))
+        return values, ys, v, adj, [v[:, a] - v[:, c] for a, c in self.p["outputs"]]
+
+    def settle(self, x):
+        """Choose where the phases count: both neighbours within 12 dB of the sum. Returns the phase differences there."""
+        self.points, phases = [], []
+        if self.press is None:
+            return phases
+        gains = self.gains(x)[-1]
+        heard = [self.press[0][k] * g for k, g in enumerate(gains)]
+        order = np.argsort([self.middle(k) for k in range(len(gains))], kind="stable")
+        for low, high in zip(order, order[1:]):
+            least = np.abs(sum(heard)) * 10 ** (-12 / 20)
+            at = np.flatnonzero((np.abs(heard[low]) > least) & (np.abs(heard[high]) > least))
+            self.points.append((low, high, at))
+            phases.append(np.angle(heard[high][at] / heard[low][at], deg=True))
+        return phases
+
+    def middle(self, way):
+        """The middle of what a way's targets pass, which puts the ways in order."""
+        low, high = self.p["band"]
+        for t in self.p["targets"][way] or []:
+            if t["high"]:
+                low = max(low, t["hz"])
+            else:
+                high = min(high, t["hz"])
+        return low * high
+
+    def terms(self, gains):
+        """The mean squares of levels: (what is heard, how it depends on the gains, aim, grid points, weight, which level)."""
+        w, every = self.p["weights"], np.arange(self.f.size)
+        terms = []
+        for e, press in enumerate(self.press or []):
+            weight = w["sum"] if e == 0 else w["angles"]
+            terms.append((sum(c * g for c, g in zip(press, gains)), list(press), self.aim, every, weight, e))
         for k, t in enumerate(self.targets):
-            if t is None:
-                continue
-            at = np.flatnonzero(t > -20)
+            at = np.flatnonzero(t > -20) if t is not None else every[:0]
             if at.size == 0:
                 continue
-            c = self.press[0][k] / 20e-6 if self.press is not None else np.ones(n)
-            terms.append(((c * gains[k])[at], [(c * d[k])[at] for d in slopes], t[at], np.full(at.size, w["ways"] / at.size), 0, at))
-        db = 20 / np.log(10)
-        r = [db * np.log(np.abs(z)) - aim for z, _, aim, _, _, _ in terms]
-        J = [[db * np.real(d / z) for d in dz] for z, dz, _, _, _, _ in terms]
-        for level in {t[4] for t in terms}:
-            of = [i for i, t in enumerate(terms) if t[4] == level]
+            c = self.press[0][k] if self.press is not None else np.ones(self.f.size)
+            share = [c[at] if o == k else np.zeros(at.size) for o in range(len(gains))]
+            terms.append(((c * gains[k])[at], share, t[at], at, w["ways"], 0))
+        return terms
+
+    def deviations(self, terms):
+        """In dB about the levels, by term, and the levels."""
+        off = [20 * np.log10(np.abs(z)) - aim for z, _, aim, _, _, _ in terms]
+        levels = {}
+        for level in {t[5] for t in terms}:
+            of = [i for i, t in enumerate(terms) if t[5] == level]
             if level == 0 and self.p["level"] is not None:
+                levels[level] = self.p["level"]
+            else:
+                levels[level] = sum(terms[i][4] * off[i].mean() for i in of) / sum(terms[i][4] for i in of)
+        return [r - levels[t[5]] for r, t in zip(off, terms)], levels
+
+    def residuals(self, x):
+        """Residuals whose squares add up to the objective."""
+        gains = self.gains(x)[-1]
+        terms = self.terms(gains)
+        out = [np.sqrt(t[4] / r.size) * r for r, t in zip(self.deviations(terms)[0], terms)]
+        for low, high, at in self.points if self.p["weights"]["phase"] else []:
+            press = self.press[0]
+            turn = np.angle((press[high] * gains[high])[at] / (press[low] * gains[low])[at], deg=True)
+            out.append(np.sqrt(self.p["weights"]["phase"] / max(at.size, 1)) * turn / 10)
+        return np.concatenate(out)
+
+    def jacobian(self, x):
+        """Derivatives of the residuals by x = ln values: dV = -inverse of Y times dY V."""
+        values, ys, v, adj, gains = self.gains(x)
+        terms = self.terms(gains)
+        columns = []
+        for q in self.vars:
+            d = [np.zeros(self.f.size, complex) for _ in gains]
+            for b in q["branches"]:
+                a, c = self.p["branches"][b]["from"], self.p["branches"][b]["to"]
+                dy = self.net.slope(b, ys[b], values[b])
+                for o in range(len(gains)):
+                    d[o] -= (adj[:, a, o] - adj[:, c, o]) * (v[:, a] - v[:, c]) * dy
+            col = [20 / np.log(10) * np.real(sum(s * g[t[3]] for s, g in zip(t[1], d)) / t[0]) for t in terms]
+            for level in {t[5] for t in terms}:
+                if level == 0 and self.p["level"] is not None:
+                    continue
+                of = [i for i, t in enumerate(terms) if t[5] == level]
+                mean = sum(terms[i][4] * col[i].mean() for i in of) / sum(terms[i][4] for i in of)
                 for i in of:
-                    r[i] = r[i] - self.p["level"]
-                continue
-            total = sum(terms[i][3].sum() for i in of)
-            mean = sum((terms[i][3] * r[i]).sum() for i in of) / total
-            for i in of:
-                r[i] = r[i] - mean
-            for k in range(len(slopes)):
-                mean = sum((terms[i][3] * J[i][k]).sum() for i in of) / total
-                for i in of:
-                    J[i][k] = J[i][k] - mean
-        root = [np.sqrt(t[3]) for t in terms]
-        resid = np.concatenate([a * b for a, b in zip(root, r)])
-        if not want_jac:
-            return resid
-        return np.stack([np.concatenate([root[i] * J[i][k] for i in range(len(terms))]) for k in range(len(slopes))], axis=1)
+                    col[i] = col[i] - mean
+            col = [np.sqrt(t[4] / r.size) * r for r, t in zip(col, terms)]
+            for low, high, at in self.points if self.p["weights"]["phase"] else []:
+                turn = np.degrees(np.imag((d[high] / gains[high] - d[low] / gains[low])[at]))
+                col.append(np.sqrt(self.p["weights"]["phase"] / max(at.size, 1)) * turn / 10)
+            columns.append(np.concatenate(col))
+        return np.stack(columns, axis=1)
+
+    def objective(self, x):
+        return float(np.sum(self.residuals(x) ** 2))
+
+    def room(self, x):
+        """ln |Zin| above the limit, over loads."""
+        return np.log(np.abs(self.load.impedance(self.values(x))[0]) / self.p["limit"])
+
+    def room_jacobian(self, x):
+        """dZ = -u² dy, u the voltage across the branch for 1 A."""
+        values = self.values(x)
+        z, ys, v = self.load.impedance(values)
+        columns = []
+        for q in self.vars:
+            d = 0
+            for b in q["branches"]:
+                u = v[:, self.p["branches"][b]["from"]] - v[:, self.p["branches"][b]["to"]]
+                d = d - u * u * self.load.slope(b, ys[b], values[b])
+            columns.append(np.real(d / z))
+        return np.stack(columns, axis=1)
+
+    def least_ohm(self, x):
+        """The least |Zin|: by the parabola through |Zin|² at the three points of loads about it, as at a series resonance."""
+        square = np.abs(self.load.impedance(self.values(x))[0]) ** 2
+        k = int(np.argmin(square))
+        if 0 < k < square.size - 1:
+            a, b, c = square[k - 1 : k + 2]
+            return float(np.sqrt(b - (a - c) ** 2 / (8 * (a + c - 2 * b))))
+        return float(np.sqrt(square[k]))
+
+    def score(self, values):
+        x = np.log(values)
+        phases = self.settle(x)
+        terms = self.terms(self.gains(x)[-1])
+        off, levels = self.deviations(terms)
+        means = [np.mean(r**2) for r in off]
+        sound = self.press is not None
+        ways = means[len(self.press) if sound else 0 :]
+        turns = np.concatenate(phases) if phases else np.zeros(0)
+        return {
+            "objective": self.objective(x),
+            "level": levels[0],
+            "sum_rms": np.sqrt(means[0]) if sound else None,
+            "way_rms": np.sqrt(np.mean(ways)) if ways else None,
+            "phase_rms": np.sqrt(np.mean(turns**2)) if turns.size else None,
+            "least_ohm": self.least_ohm(x) if self.load else None,
+        }
+
+    def descend(self, start, low, high):
+        """The objective and the place where a descent from start ends; infinite if it breaks the limit."""
+        start = np.clip(start, low + 1e-9, high - 1e-9)
+        self.settle(start)
+        if self.p["limit"] > 0:
+            r = optimize.minimize(
+                self.objective, start, method="SLSQP", jac=lambda x: 2 * self.jacobian(x).T @ self.residuals(x),
+                bounds=list(zip(low, high)), constraints=[{"type": "ineq", "fun": self.room, "jac": self.room_jacobian}],
+                options={"maxiter": 1000, "ftol": 1e-10})
+            if self.room(r.x).min() < -1e-6:
+                return np.inf, r.x
+        else:
+            r = optimize.least_squares(self.residuals, start, self.jacobian, bounds=(low, high))
+        self.settle(r.x)
+        return self.objective(r.x), r.x
 
     def optimise(self):
         low = np.log([q["low"] for q in self.vars])
         high = np.log([q["high"] for q in self.vars])
         start = np.clip(np.log([q["start"] for q in self.vars]), low, high)
         rng = np.random.default_rng(self.p["seed"])
-        best, at, t0 = np.inf, None, time.perf_counter()
-        for k in range(self.p["restarts"]):
-            x0 = start if k == 0 else np.clip(start + rng.uniform(-1, 1, start.size) * np.log(10), low, high)
-            inside = np.clip(x0, low + 1e-9, high - 1e-9)
-            if self.load is None:
-                r = optimize.least_squares(self.residuals, inside, lambda x: self.residuals(x, True), bounds=(low, high), max_nfev=300)
-                f, x = 2 * r.cost, r.x
-            else:
-                limit = np.log(self.p["limit"])
-                room = lambda x: np.log(np.abs(self.load.impedance(self.values(x)))) - limit
-                r = optimize.minimize(
-                    lambda x: float(np.sum(self.residuals(x) ** 2)), inside, method="SLSQP",
-                    jac=lambda x: 2 * self.residuals(x, True).T @ self.residuals(x),
-                    bounds=list(zip(low, high)), constraints=[{"type": "ineq", "fun": room}], options={"maxiter": 200})
-                f, x = r.fun, r.x
-                if room(x).min() < -1e-6:
-                    continue
-            if f < best:
-                best, at = f, x
-        return {"name": self.p["name"], "objective": best, "values": list(np.exp(at)), "seconds": time.perf_counter() - t0}
+        places = [np.log(v) for v in self.p["values"]] if self.p["values"] else [start]
+        for _ in range(self.p["restarts"]):
+            places.append(np.clip(start + rng.uniform(-1, 1, start.size) * np.log(10), low, high))
+        began = time.perf_counter()
+        ends = [self.descend(x, low, high) for x in places]
+        seconds = time.perf_counter() - began
+        best, at = min(ends, key=lambda end: end[0])
+        return {
+            "name": self.p["name"], "objective": best, "values": list(np.exp(at)), "seconds": seconds, "starts": len(places),
+            "within_1_percent": sum(int(f <= 1.01 * best) for f, _ in ends), "broke_limit": sum(int(np.isinf(f)) for f, _ in ends),
+        }
 
 
 def main():
     problems = [Problem(p) for p in json.load(sys.stdin)]
     if sys.argv[1:] == ["evaluate"]:
-        out = [{"name": p.p["name"], "objectives": [float(np.sum(p.residuals(np.log(v)) ** 2)) for v in p.p["values"]]} for p in problems]
+        answers = [{"name": p.p["name"], "scores": [p.score(v) for v in p.p["values"]]} for p in problems]
     else:
-        out = [p.optimise() for p in problems]
-    json.dump(out, sys.stdout)
+        answers = [p.optimise() for p in problems]
+    versions = f"Python {sys.version.split()[0]}, numpy {np.__version__}, scipy {scipy.__version__}"
+    json.dump({"with": versions, "answers": answers}, sys.stdout)
 
 
 main()

@@ -4,54 +4,22 @@ import (
 	"bytes"
 	"context"
 	"encoding/json"
-	"io"
+	"maps"
 	"math"
 	"math/rand/v2"
 	"os"
 	"os/exec"
-	"path/filepath"
+	"slices"
 	"strings"
 	"testing"
 	"time"
 
-	"sixdown/sim"
 	"sixdown/sim/circuit"
 	"sixdown/xover"
 )
 
-// record writes what scipy finds anew: SIXDOWN_RECORD=1 go test -run Record ./sim/tune.
+// record is what scipy found. To make it anew: SIXDOWN_RECORD=1 go test -run Record ./sim/tune.
 const record = "../../testdata/tune/reference.json"
-
-// problemsIn reads the ten problems of testdata/tune.
-func problemsIn(t testing.TB) map[string]*Problem {
-	t.Helper()
-	files, err := filepath.Glob("../../testdata/tune/*.toml")
-	if err != nil || len(files) < 10 {
-		t.Fatalf("%d problems: %v", len(files), err)
-	}
-	all := map[string]*Problem{}
-	for _, path := range files {
-		src, err := os.ReadFile(path)
-		if err != nil {
-			t.Fatal(err)
-		}
-		d, _, err := xover.Parse(path, src)
-		if err != nil {
-			t.Fatal(err)
-		}
-		open := func(name string) (io.ReadCloser, error) { return os.Open(filepath.Join(filepath.Dir(path), name)) }
-		sys, err := sim.New(d, open)
-		if err != nil {
-			t.Fatal(err)
-		}
-		p, err := New(d, sys, open)
-		if err != nil {
-			t.Fatal(err)
-		}
-		all[strings.TrimSuffix(filepath.Base(path), ".toml")] = p
-	}
-	return all
-}
 
 // The JSON of testdata/tune.py.
 type (
@@ -79,13 +47,14 @@ type (
 	pyProblem struct {
 		Name     string             `json:"name"`
 		Freqs    []float64          `json:"freqs"`
+		Band     [2]float64         `json:"band"`
 		Source   float64            `json:"source"`
 		Nodes    int                `json:"nodes"`
 		Branches []pyBranch         `json:"branches"`
 		Outputs  [][2]int           `json:"outputs"`
 		Press    [][][][2]float64   `json:"press"`
 		Targets  [][]pyTarget       `json:"targets"`
-		Aim      []float64          `json:"aim"`
+		Tilt     float64            `json:"tilt"`
 		Weights  map[string]float64 `json:"weights"`
 		Level    *float64           `json:"level"`
 		Vars     []pyVar            `json:"vars"`
@@ -95,12 +64,30 @@ type (
 		Restarts int                `json:"restarts"`
 		Seed     int                `json:"seed"`
 	}
-	pyAnswer struct {
+	pyScore struct {
+		Objective float64  `json:"objective"`
+		Level     float64  `json:"level"`
+		SumRMS    *float64 `json:"sum_rms"`
+		WayRMS    *float64 `json:"way_rms"`
+		PhaseRMS  *float64 `json:"phase_rms"`
+		LeastOhm  float64  `json:"least_ohm"`
+	}
+	pyBest struct {
 		Name       string    `json:"name"`
-		Objectives []float64 `json:"objectives,omitempty"`
-		Objective  float64   `json:"objective,omitempty"`
-		Values     []float64 `json:"values,omitempty"`
-		Seconds    float64   `json:"seconds,omitempty"`
+		Objective  float64   `json:"objective"`
+		Values     []float64 `json:"values"`
+		Seconds    float64   `json:"seconds"`
+		Starts     int       `json:"starts"`
+		Within     int       `json:"within_1_percent"` // how many starts lead as far, to 1 %
+		BrokeLimit int       `json:"broke_limit"`
+	}
+	pyAnswers[T any] struct {
+		With    string `json:"with"`
+		Answers []T    `json:"answers"`
+	}
+	pyScores struct {
+		Name   string    `json:"name"`
+		Scores []pyScore `json:"scores"`
 	}
 )
 
@@ -112,13 +99,19 @@ func pairsOf(z []complex128) [][2]float64 {
 	return out
 }
 
-// forPython writes a problem down: what the drivers are, where the ear is and what is wanted, but nothing of how it is solved.
-func forPython(name string, p *Problem) pyProblem {
+// forPython writes a problem down: what the drivers are, where the ear is and what is wanted, but nothing of how it is
+// solved. The load is to be looked at over loads, in Hz.
+func forPython(t testing.TB, name string, p *Problem, loads []float64) pyProblem {
+	t.Helper()
+	if p.design.Tune.CurveFile != "" {
+		t.Fatal("tune.py knows no curves")
+	}
 	net := p.sys.Netlist()
 	w := p.design.Tune.Weights
 	q := pyProblem{
-		Name: name, Freqs: p.freqs, Source: net.Source, Nodes: net.Nodes, Limit: p.limit, Loads: logGrid(20, 20e3, 24), Aim: p.terms[0].aim,
-		Weights: map[string]float64{"sum": w.Sum, "ways": w.Ways, "angles": w.Angles},
+		Name: name, Freqs: p.freqs, Band: [2]float64{p.freqs[0], p.freqs[len(p.freqs)-1]}, Source: net.Source, Nodes: net.Nodes, Limit: p.limit, Loads: loads,
+		Tilt:    p.design.Tune.Tilt,
+		Weights: map[string]float64{"sum": w.Sum, "ways": w.Ways, "phase": w.Phase, "angles": w.Angles},
 	}
 	if p.fixed {
 		q.Level = &p.level
@@ -145,7 +138,9 @@ func forPython(name string, p *Problem) pyProblem {
 		for _, press := range e.press {
 			ways = append(ways, pairsOf(press))
 		}
-		q.Press = append(q.Press, ways)
+		if ways != nil {
+			q.Press = append(q.Press, ways)
+		}
 	}
 	for _, way := range p.design.Ways {
 		ts := []pyTarget{}
@@ -160,8 +155,16 @@ func forPython(name string, p *Problem) pyProblem {
 	return q
 }
 
-// python runs testdata/tune.py.
-func python(t testing.TB, task string, problems []pyProblem) []pyAnswer {
+// limitedLoads are where scipy holds the limit on the impedance: as closely as numpy can in reasonable time, if there is one.
+func limitedLoads(p *Problem) []float64 {
+	if p.limit == 0 {
+		return nil
+	}
+	return logGrid(20, 20e3, 24)
+}
+
+// python runs testdata/tune.py on one core.
+func python[T any](t testing.TB, task string, problems []pyProblem) pyAnswers[T] {
 	t.Helper()
 	exe := "/usr/bin/python3" // Debian's, which has scipy
 	if exec.Command(exe, "-c", "import scipy").Run() != nil {
@@ -178,6 +181,7 @@ func python(t testing.TB, task string, problems []pyProblem) []pyAnswer {
 		t.Fatal(err)
 	}
 	cmd := exec.Command(exe, "../../testdata/tune.py", task)
+	cmd.Env = append(os.Environ(), "OPENBLAS_NUM_THREADS=1", "OMP_NUM_THREADS=1", "MKL_NUM_THREADS=1")
 	cmd.Stdin = bytes.NewReader(in)
 	var stderr strings.Builder
 	cmd.Stderr = &stderr
@@ -185,20 +189,52 @@ func python(t testing.TB, task string, problems []pyProblem) []pyAnswer {
 	if err != nil {
 		t.Fatalf("tune.py: %v\n%s", err, stderr.String())
 	}
-	var answers []pyAnswer
+	var answers pyAnswers[T]
 	if err := json.Unmarshal(out, &answers); err != nil {
 		t.Fatal(err)
 	}
 	return answers
 }
 
-// The objective is what numpy makes of its definition, at values far from any optimum.
-func TestObjectiveAgreesWithNumPy(t *testing.T) {
+// recorded reads reference.json, by problem.
+func recorded(t testing.TB) map[string]pyBest {
+	t.Helper()
+	src, err := os.ReadFile(record)
+	if err != nil {
+		t.Fatal(err)
+	}
+	var answers pyAnswers[pyBest]
+	if err := json.Unmarshal(src, &answers); err != nil {
+		t.Fatal(err)
+	}
+	best := map[string]pyBest{}
+	for _, a := range answers.Answers {
+		best[a.Name] = a
+	}
+	return best
+}
+
+// A score is what numpy makes of its definition, at values far from any optimum and at ours. Besides the ten problems there are
+// some with a weight for the phase between ways, and one without sound.
+func TestScoreAgreesWithNumPy(t *testing.T) {
 	all := problemsIn(t)
+	for _, name := range []string{"skerry", "lantern", "capstan"} {
+		all[name+" in phase"] = problemFrom(t, name, func(d *xover.Design) { d.Tune.Weights.Phase = 0.7 })
+	}
+	gains, _ := resistive("LR4", func(int) float64 { return 1 })
+	all["gains"] = problem(t, gains)
 	random := rand.New(rand.NewPCG(1, 2))
 	var ask []pyProblem
-	for name, p := range all {
-		q := forPython(name, p)
+	for _, name := range slices.Sorted(maps.Keys(all)) {
+		p := all[name]
+		q := forPython(t, name, p, logGrid(20, 20e3, 300))
+		r, err := p.Run(context.Background(), Search{Starts: 2})
+		if err != nil {
+			t.Fatal(err)
+		}
+		if name != "gains" { // an objective of 0 has no digits to compare
+			q.Values = append(q.Values, r.Values)
+		}
 		for range 5 {
 			values := p.Start()
 			for v := range values {
@@ -208,36 +244,48 @@ func TestObjectiveAgreesWithNumPy(t *testing.T) {
 		}
 		ask = append(ask, q)
 	}
-	for i, a := range python(t, "evaluate", ask) {
+	for i, a := range python[pyScores](t, "evaluate", ask).Answers {
 		p := all[a.Name]
-		for k, want := range a.Objectives {
+		for k, want := range a.Scores {
 			s, err := p.Score(ask[i].Values[k])
 			if err != nil {
 				t.Fatal(err)
 			}
-			// Levels lose up to six digits between ways that nearly cancel, in either program.
-			if math.Abs(s.Objective/want-1) > 1e-9 {
-				t.Errorf("%s: objective %.12g, numpy has %.12g", a.Name, s.Objective, want)
+			same := func(what string, got float64, want *float64, tolerance float64) {
+				if want == nil {
+					if !math.IsNaN(got) {
+						t.Errorf("%s: %s is %.12g, numpy has none", a.Name, what, got)
+					}
+				} else if !(math.Abs(got-*want) <= tolerance*math.Abs(*want)) {
+					t.Errorf("%s: %s %.12g, numpy has %.12g", a.Name, what, got, *want)
+				}
 			}
+			// Levels lose up to six digits between ways that nearly cancel, in either program.
+			same("objective", s.Objective, &want.Objective, 1e-9)
+			same("level", s.LevelDB, &want.Level, 1e-9)
+			same("sum", s.SumRMSDB, want.SumRMS, 1e-9)
+			same("ways", s.WayRMSDB, want.WayRMS, 1e-9)
+			same("phase", s.PhaseRMSDeg, want.PhaseRMS, 1e-9)
+			// Numpy's least is that of a parabola through three points of a grid, 300 an octave. At a dip of a Q of 25 that leaves
+			// 5e-5, and at 1500 an octave 2e-6, which takes numpy too long for every day.
+			same("impedance", s.MinImpedance, &want.LeastOhm, 1e-4)
 		}
 	}
 }
 
-// SIXDOWN_RECORD writes reference.json: scipy's best of 50 restarts, 12 of the problem with a limit.
+// SIXDOWN_RECORD writes reference.json: scipy's best from the design and 50 random places.
 func TestRecord(t *testing.T) {
 	if os.Getenv("SIXDOWN_RECORD") == "" {
 		t.Skip("SIXDOWN_RECORD is not set; the record stands")
 	}
+	all := problemsIn(t)
 	var ask []pyProblem
-	for name, p := range problemsIn(t) {
-		q := forPython(name, p)
-		q.Restarts, q.Seed = 51, 1
-		if p.limit > 0 {
-			q.Restarts = 12
-		}
+	for _, name := range slices.Sorted(maps.Keys(all)) {
+		q := forPython(t, name, all[name], limitedLoads(all[name]))
+		q.Restarts, q.Seed = 50, 1
 		ask = append(ask, q)
 	}
-	out, err := json.MarshalIndent(python(t, "optimise", ask), "", " ")
+	out, err := json.MarshalIndent(python[pyBest](t, "optimise", ask), "", " ")
 	if err != nil {
 		t.Fatal(err)
 	}
@@ -246,33 +294,22 @@ func TestRecord(t *testing.T) {
 	}
 }
 
-// In each of the ten problems the objective is within 1 % of the best that scipy's least_squares found from the design and 50
-// random restarts (reference.json, made by testdata/tune.py); of the one with a limit on the impedance, SLSQP from 12.
+// In each of the ten problems the objective is within 1 % of the best that scipy found from the design and 50 random places
+// (reference.json, made by testdata/tune.py): least_squares, and SLSQP where the impedance is limited.
 func TestTenProblemsAgainstSciPy(t *testing.T) {
-	src, err := os.ReadFile(record)
-	if err != nil {
-		t.Fatal(err)
-	}
-	var best []pyAnswer
-	if err := json.Unmarshal(src, &best); err != nil {
-		t.Fatal(err)
-	}
-	all := problemsIn(t)
+	best, all := recorded(t), problemsIn(t)
 	if len(best) != len(all) {
 		t.Fatalf("%d of %d problems are in the record", len(best), len(all))
 	}
-	for _, b := range best {
-		p := all[b.Name]
-		if p == nil {
-			t.Fatalf("%s is not among the problems", b.Name)
-		}
+	for _, name := range slices.Sorted(maps.Keys(all)) {
+		p, b := all[name], best[name]
 		// The record is of this problem.
 		s, err := p.Score(b.Values)
 		if err != nil {
-			t.Fatal(err)
+			t.Fatalf("%s: %v", name, err)
 		}
 		if math.Abs(s.Objective/b.Objective-1) > 1e-8 {
-			t.Errorf("%s: the recorded values have the objective %.10g, the record says %.10g", b.Name, s.Objective, b.Objective)
+			t.Errorf("%s: the recorded values have the objective %.10g, the record says %.10g", name, s.Objective, b.Objective)
 		}
 		began := time.Now()
 		r, err := p.Run(context.Background(), Search{Workers: 1})
@@ -280,37 +317,51 @@ func TestTenProblemsAgainstSciPy(t *testing.T) {
 			t.Fatal(err)
 		}
 		took := time.Since(began).Seconds()
-		t.Logf("%-8s %2d parts: %10.6f, scipy %10.6f (%+.3f %%), %5.2f s on one core, scipy %5.1f s (%.0f times)", b.Name, len(p.vars), r.After.Objective, b.Objective,
-			100*(r.After.Objective/b.Objective-1), took, b.Seconds, b.Seconds/took)
+		t.Logf("%-8s %2d parts: %10.6f, scipy %10.6f (%+.3f %%; %2d of %d starts lead there), %5.2f s on one core, scipy %5.1f s (%.0f times)", name, len(p.vars), r.After.Objective, b.Objective,
+			100*(r.After.Objective/b.Objective-1), b.Within, b.Starts, took, b.Seconds, b.Seconds/took)
 		if r.After.Objective > 1.01*b.Objective {
-			t.Errorf("%s: objective %.6g, scipy has %.6g", b.Name, r.After.Objective, b.Objective)
+			t.Errorf("%s: objective %.6g, scipy has %.6g", name, r.After.Objective, b.Objective)
 		}
 		if p.limit > 0 && r.After.MinImpedance < p.limit*(1-1e-9) {
-			t.Errorf("%s: the load falls to %.9g ohm, below %g", b.Name, r.After.MinImpedance, p.limit)
+			t.Errorf("%s: the load falls to %.9g ohm, below %g", name, r.After.MinImpedance, p.limit)
 		}
 	}
 }
 
-// The record is not by chance: from the design alone and a few restarts scipy finds, here and now, nothing better on two problems.
+// Here and now, too, scipy finds nothing better: not from where our search ends, and on two problems not from the design and
+// some random places. And where its record ends it still stays.
 func TestSciPyFindsNothingBetter(t *testing.T) {
 	if testing.Short() {
 		t.Skip("short")
 	}
-	all := problemsIn(t)
+	best, all := recorded(t), problemsIn(t)
 	var ask []pyProblem
-	for _, name := range []string{"pilot", "mooring"} {
-		q := forPython(name, all[name])
-		q.Restarts, q.Seed = 4, 7
-		ask = append(ask, q)
-	}
-	for _, a := range python(t, "optimise", ask) {
-		r, err := all[a.Name].Run(context.Background(), Search{})
+	var want []float64 // not to be undercut
+	for _, name := range slices.Sorted(maps.Keys(all)) {
+		p := all[name]
+		r, err := p.Run(context.Background(), Search{})
 		if err != nil {
 			t.Fatal(err)
 		}
-		if r.After.Objective > 1.01*a.Objective {
-			t.Errorf("%s: objective %.6g, scipy has %.6g", a.Name, r.After.Objective, a.Objective)
+		// A search ends when a step promises less than a millionth. Where the load is limited, scipy's may fall lower between
+		// two points of its grid: by ½(h/2)² times a curvature of ln |Z| of some units, h = ln 2/24, thus by 1e-4 or so of the objective.
+		tolerance := 1e-6
+		if p.limit > 0 {
+			tolerance = 1e-3
 		}
-		t.Logf("%s: %.6f, scipy %.6f", a.Name, r.After.Objective, a.Objective)
+		q := forPython(t, name, p, limitedLoads(p))
+		q.Values = [][]float64{r.Values}
+		ask, want = append(ask, q), append(want, r.After.Objective*(1-tolerance))
+		q.Values = [][]float64{best[name].Values}
+		ask, want = append(ask, q), append(want, best[name].Objective*(1-1e-4)) // least_squares ends at 1e-8 of progress a step, where that is slow
+		if name == "pilot" || name == "mooring" {
+			q.Values, q.Restarts, q.Seed = nil, 4, 7
+			ask, want = append(ask, q), append(want, r.After.Objective/1.01)
+		}
+	}
+	for i, a := range python[pyBest](t, "optimise", ask).Answers {
+		if a.Objective < want[i] {
+			t.Errorf("%s from %d places: scipy has %.9g, below %.9g", a.Name, a.Starts, a.Objective, want[i])
+		}
 	}
 }
