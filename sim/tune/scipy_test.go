@@ -155,7 +155,7 @@ func forPython(t testing.TB, name string, p *Problem, loads []float64) pyProblem
 	return q
 }
 
-// limitedLoads are where scipy holds the limit on the impedance: as closely as numpy can in reasonable time, if there is one.
+// limitedLoads are where scipy holds the limit on the impedance, if there is one: not between these points, as the search does.
 func limitedLoads(p *Problem) []float64 {
 	if p.limit == 0 {
 		return nil
@@ -296,6 +296,9 @@ func TestRecord(t *testing.T) {
 
 // In each of the ten problems the objective is within 1 % of the best that scipy found from the design and 50 random places
 // (reference.json, made by testdata/tune.py): least_squares, and SLSQP where the impedance is limited.
+//
+// That is so with the default seed. A search may miss: of the seeds 1 to 20, two miss by more than 1 % on capstan and five on
+// skerry, none on the others; with twice the starts none and two.
 func TestTenProblemsAgainstSciPy(t *testing.T) {
 	best, all := recorded(t), problemsIn(t)
 	if len(best) != len(all) {
