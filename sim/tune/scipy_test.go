@@ -346,8 +346,8 @@ func TestSciPyFindsNothingBetter(t *testing.T) {
 		if err != nil {
 			t.Fatal(err)
 		}
-		// A search ends when a step promises less than a millionth. Where the load is limited, scipy's may fall lower between
-		// two points of its grid: by ½(h/2)² times a curvature of ln |Z| of some units, h = ln 2/24, thus by 1e-4 or so of the objective.
+		// A builder would not hear a millionth. Where the load is limited, scipy's may fall lower between two points of its
+		// grid: by ½(h/2)² times a curvature of ln |Z| of some units, h = ln 2/24, thus by 1e-4 or so of the objective.
 		tolerance := 1e-6
 		if p.limit > 0 {
 			tolerance = 1e-3
