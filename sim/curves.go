@@ -78,8 +78,8 @@ func warningsOf(rs []*Response) []string {
 
 // Curves are those of ANSI/CTA-2034-A, "Standard Method of Measurement for In-Home Loudspeakers", for a loudspeaker
 // that is turned in steps of 10° in two planes. All means are of the squares of pressures. Levels are in dB SPL for the
-// drive's level at the design's listening distance, over Freqs. What belongs to which curve is from memory of the
-// standard.
+// drive's level at the design's listening distance, over Freqs. What belongs to which curve, and with what
+// weight, is from memory of the standard.
 type Curves struct {
 	Freqs           []float64 // Hz
 	OnAxis          []float64
@@ -93,7 +93,7 @@ type Curves struct {
 	RearWall         []float64 // mean of ±90° to ±170° and 180° horizontally
 	EarlyReflections []float64 // mean of these five
 
-	SoundPower         []float64 // mean over the sphere, each direction weighted by the part of it that it stands for
+	SoundPower         []float64 // mean over the sphere with the standard's weights; of a beam up to 1.05 dB above the true one
 	EarlyReflectionsDI []float64 // dB, ListeningWindow less EarlyReflections
 	SoundPowerDI       []float64 // dB, ListeningWindow less SoundPower
 	InRoom             []float64 // 12 % of the listening window, 44 % of the early reflections, 44 % of the sound power
@@ -125,21 +125,28 @@ func directions() []direction {
 	return all
 }
 
-// zone returns the part of the sphere that a direction stands for: of the zone within 5° of its angle from the axis, a
-// quarter, since four directions share it; the caps before and behind are whole. All add up to 1. The zone's area on a
-// unit sphere is 2π(cos θ₁ - cos θ₂), Archimedes.
+// weight returns what the square of the pressure in a direction counts for in the sound power. The standard prints these
+// weights; as remembered, 0.000604486 at 0° and 180°, 0.004730189 at 10°, 0.019629373 at 90°. To their last digit
+// they are parts of the sphere: what lies between two half-planes, 5° before and behind the angle, that end in the line
+// about which the loudspeaker turns, and between the two planes at 45° that part one orbit from the other. On a unit
+// sphere these last are, at an angle ψ on the orbit, at elevations of tan ε = ± sin ψ; with sin ε = sin ψ/√(1 + sin² ψ)
+// the part is
 //
-// The weights that the standard prints are not these: as far as remembered they are 0.0047 at 10° and 0.0196 at 90°,
-// against 0.0038 and 0.0218 here. By them the sound power of a cardioid comes out 0.1 dB higher and that of a dipole
-// 0.3 dB higher, away from the exact -4.77 dB re the axis, which these weights meet within 0.01 dB.
-func (d direction) zone() float64 {
+//	(1/4π) ∫ 2 sin ε dψ = (1/2π) [-arcsin(cos ψ/√2)]
+//
+// At 0° and 180° the weight is a quarter of what lies there: what is on one side of one orbit. So all 70 add up to
+// 1 - 6 × 0.000604486, by which the mean is divided. (Derived; the test
+// holds it against the printed figures.)
+//
+// Away from the orbit such a part is farther from the axis than its angle says, so what beams comes out with more power
+// than it has: a cardioid 0.1 dB, a dipole 0.35 dB, a pressure of cos² θ 0.5 dB, a narrow beam up to
+// 10 lg(4/π) = 1.05 dB. A quarter of the band between two cones about the axis would be nearer to the truth, and not the
+// standard's curve.
+func (d direction) weight() float64 {
 	const half = 5 * math.Pi / 180
-	switch d.deg {
-	case 0, 180:
-		return (1 - math.Cos(half)) / 2
-	}
 	theta := math.Abs(float64(d.deg)) * math.Pi / 180
-	return (math.Cos(theta-half) - math.Cos(theta+half)) / 8
+	from, to := max(theta-half, 0), min(theta+half, math.Pi)
+	return (math.Asin(math.Cos(from)/math.Sqrt2) - math.Asin(math.Cos(to)/math.Sqrt2)) / (2 * math.Pi)
 }
 
 // both returns the horizontal directions at each angle to both sides.
@@ -214,9 +221,13 @@ func curvesOf(squares map[direction][]float64, n int) *Curves {
 			early[k] += b[k] / float64(len(bounces))
 		}
 	}
+	whole := 0.0
+	for _, d := range directions() {
+		whole += d.weight()
+	}
 	for _, d := range directions() { // in order, so that rounding is the same each time
 		for k, q := range squares[d] {
-			power[k] += d.zone() * q
+			power[k] += d.weight() / whole * q
 		}
 	}
 	for k := range room {

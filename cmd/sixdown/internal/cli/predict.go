@@ -46,7 +46,9 @@ does.
 With --angle the ear is turned about the cabinet's origin, for all of these. --polar
 and --around print other tables: the sum at every 10 degrees of a plane, and the
 means over many angles of ANSI/CTA-2034-A with the directivity indexes, and whether
-the drivers' directivity is measured (responses) or from the model.
+the drivers' directivity is measured (responses) or from the model. Its sound power is
+by the weights that the standard prints, by which a beam has up to 1 dB more than it
+truly radiates: compare it with curves of that standard.
 
 With --chart the answer is drawn too, over the grid's span: the response with each
 way and its target, phase, group delay, the load, the phasors at each crossing, the
