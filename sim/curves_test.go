@@ -1,6 +1,7 @@
 package sim
 
 import (
+	"fmt"
 	"math"
 	"slices"
 	"testing"
@@ -101,6 +102,48 @@ func TestCurvesOfKnownSources(t *testing.T) {
 	}
 	near(t, "early reflections DI", c.EarlyReflectionsDI[0], 10*math.Log10(window/early), 1e-12)
 	near(t, "sound power DI", c.SoundPowerDI[0], 10*math.Log10(window/power), 1e-12)
+}
+
+// TestCurvesOfOneDirection: of a loudspeaker that is heard in one direction alone, with the square of a pascal there, a
+// mean over n directions is 1/n where the direction is among them and 0 elsewhere. Which are among them is as remembered
+// of the standard: h is right and v up, in degrees.
+func TestCurvesOfOneDirection(t *testing.T) {
+	h := func(degs ...int) (ds []direction) {
+		for _, deg := range degs {
+			ds = append(ds, direction{Horizontal, deg})
+		}
+		return ds
+	}
+	v := func(degs ...int) (ds []direction) {
+		for _, deg := range degs {
+			ds = append(ds, direction{Vertical, deg})
+		}
+		return ds
+	}
+	members := map[string][]direction{
+		"on axis":          h(0),
+		"listening window": append(h(0, -10, 10, -20, 20, -30, 30), v(-10, 10)...),
+		"floor":            v(-20, -30, -40),
+		"ceiling":          v(40, 50, 60),
+		"front wall":       h(0, -10, 10, -20, 20, -30, 30),
+		"side walls":       h(-40, -50, -60, -70, -80, 40, 50, 60, 70, 80),
+		"rear wall":        h(180, -90, -100, -110, -120, -130, -140, -150, -160, -170, 90, 100, 110, 120, 130, 140, 150, 160, 170),
+	}
+	for _, one := range directions() {
+		squares := map[direction][]float64{}
+		for _, d := range directions() {
+			squares[d] = []float64{0}
+		}
+		squares[one] = []float64{1}
+		got := curvesOf(squares, 1).named()
+		for name, among := range members {
+			want := 0.0
+			if slices.Contains(among, one) {
+				want = 1 / float64(len(among))
+			}
+			near(t, fmt.Sprintf("%s heard at %v", name, one), math.Pow(10, (got[name]-pascalSPL)/10), want, 1e-12)
+		}
+	}
 }
 
 // twoPoints is two equal flat drivers in parallel, above and below the origin by half of apart.
