@@ -42,7 +42,7 @@ network = ["series C1"]
 `))
 	fmt.Println(err)
 	// Output:
-	// small.toml:3:1: [drive] has no key "levle"; did you mean "level"?
+	// small.toml:3:1: [drive] has no key "levle"; did you mean "level"? its keys are level, source, rated_power, rated_load
 	// small.toml:7:11: way "high" has the driver "tweeter", which is not defined; add a table [driver.tweeter]
 	// small.toml:8:20: "C1" is used and not defined; [parts] defines none
 }

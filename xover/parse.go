@@ -134,7 +134,7 @@ func firstInvalid(src []byte) int {
 // top reads the tables of the file. Parts and drivers come first, wherever they stand, since ways, tone
 // networks and controls name them.
 func (p *parser) top(root *table) {
-	r := p.read(root, "the file")
+	r := p.read(root, "file", "the file")
 	r.text("title", &p.design.Title)
 	r.inTable("drive", "", p.drive)
 	r.inTable("listen", "", p.listen)
@@ -174,7 +174,7 @@ func (r *tableReader) inTable(key, example string, read func(*tableReader)) {
 		r.fail(r.pos(e.at), fmt.Sprintf("%s is %s", key, e.value.kind), mend)
 		return
 	}
-	inner := r.read(e.value.table, "["+key+"]")
+	inner := r.read(e.value.table, key, "["+key+"]")
 	read(inner)
 	inner.done()
 }
@@ -206,7 +206,7 @@ func (r *tableReader) eachNamed(key string, most int, read func(name string, t *
 		if fault := nameFault(named.name); fault != "" {
 			r.fail(r.pos(named.at), fmt.Sprintf("[%s.%s]: %s", key, shortened(named.name), fault), nameMend)
 		}
-		inner := r.read(named.value.table, fmt.Sprintf("[%s.%s]", key, shortened(named.name)))
+		inner := r.read(named.value.table, key, fmt.Sprintf("[%s.%s]", key, shortened(named.name)))
 		read(named.name, inner)
 		inner.done()
 	}
@@ -234,7 +234,7 @@ func (r *tableReader) eachOf(key string, most int, read func(*tableReader)) {
 			r.fail(r.pos(item.at), fmt.Sprintf("%s is %s", key, item.kind), mend)
 			continue
 		}
-		inner := r.read(item.table, fmt.Sprintf("[[%s]]", key))
+		inner := r.read(item.table, key, fmt.Sprintf("[[%s]]", key))
 		read(inner)
 		inner.done()
 	}

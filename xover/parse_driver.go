@@ -172,7 +172,7 @@ func (p *parser) driverBreakup(d *Driver, r *tableReader) {
 			p.fail(p.pos(item.at), fmt.Sprintf("%s breakup holds %s", r.label, item.kind), "write it like "+example)
 			continue
 		}
-		peak := p.read(item.table, r.label+" breakup")
+		peak := p.read(item.table, "breakup", r.label+" breakup")
 		d.Breakup = append(d.Breakup, p.driverPeak(peak))
 		peak.done()
 	}

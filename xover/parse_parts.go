@@ -31,7 +31,7 @@ func (p *parser) parts(r *tableReader) {
 		}
 		switch e.value.kind {
 		case tableNode:
-			inner := p.read(e.value.table, e.name)
+			inner := p.read(e.value.table, "part", e.name)
 			p.partTable(&part, inner)
 			inner.done()
 		default:
@@ -154,7 +154,7 @@ func (p *parser) partTable(part *Part, r *tableReader) {
 	default:
 		r.missing("value", fmt.Sprintf("give it, such as value = %q", part.Kind.Unit().Example()))
 	}
-	if r.take("taper") != nil && part.Kind == Resistor {
+	if r.table.index["taper"] != nil && part.Kind == Resistor {
 		part.Kind = Potentiometer
 	}
 	r.quantity("tol", quantity.Percent, notNegative, &part.Tol)

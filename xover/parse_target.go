@@ -32,12 +32,23 @@ func (p *parser) targets(w *Way, r *tableReader) {
 		case item.kind != textNode:
 			r.wrongType("a target", item, targetForm)
 		case p.checkText("a target", item):
-			c := p.cursor(item)
-			if t, ok := c.target(); ok {
+			if t, ok := p.target(item); ok {
 				w.Targets = append(w.Targets, t)
 			}
 		}
 	}
+}
+
+// target reads one target. Where what a wrong one means is plain, the error says it whole.
+func (p *parser) target(n *node) (Target, bool) {
+	before := len(p.errors)
+	t, ok := p.cursor(n).target()
+	if !ok && len(p.errors) > before {
+		if right := targetMend(n.text); right != "" {
+			p.errors[before].Mend = fmt.Sprintf("write %q", right)
+		}
+	}
+	return t, ok
 }
 
 // target reads `low-pass SHAPE ORDER [ripple X dB] [reference R] at F`.

@@ -14,13 +14,14 @@ import (
 type tableReader struct {
 	*parser
 	table *table
+	kind  string // "drive", "way", "part" …, for slips
 	label string // for messages: `[drive]`, `way "low"`
 	known []string
 	open  bool // its keys are names of the builder's own: none is unknown
 }
 
-func (p *parser) read(t *table, label string) *tableReader {
-	return &tableReader{parser: p, table: t, label: label}
+func (p *parser) read(t *table, kind, label string) *tableReader {
+	return &tableReader{parser: p, table: t, kind: kind, label: label}
 }
 
 // take returns the entry of a key, nil if the table has none, and counts the key as known.
@@ -41,8 +42,7 @@ func (r *tableReader) done() {
 			return
 		}
 		if !slices.Contains(r.known, e.name) {
-			r.fail(r.pos(e.at), fmt.Sprintf("%s has no key %q", r.label, shortened(e.name)),
-				didYouMean(e.name, r.known, "its keys are "+listed(r.known)))
+			r.fail(r.pos(e.at), fmt.Sprintf("%s has no key %q", r.label, shortened(e.name)), keyMend(r.kind, e.name, r.known))
 		}
 	}
 }
@@ -106,7 +106,7 @@ func (r *tableReader) word(key string, choices ...string) (word string, ok bool)
 		r.wrongType(key, e.value, either)
 		return "", false
 	}
-	r.fail(r.pos(e.value.at), fmt.Sprintf("%s is %q", key, shortened(e.value.text)), didYouMean(e.value.text, choices, either))
+	r.fail(r.pos(e.value.at), fmt.Sprintf("%s is %q", key, shortened(e.value.text)), wordMend(key, e.value.text, choices, either))
 	return "", false
 }
 

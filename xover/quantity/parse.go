@@ -14,12 +14,12 @@ import (
 // The number has a decimal point, may have a sign and a power of ten ("1e-6 F"), and must be finite.
 // The error, always an *Error, says what to write instead.
 func Parse(text string) (float64, Unit, error) {
-	return parse(text, `write a number with its unit, such as "4.7 uF"`, `use ohm, H, F, Hz, m, m2, m3, l, s, V, W, dB, %, m/s or kg/m3, with a prefix where it fits, such as "4.7 uF"`)
+	return parse(text, `write a number with its unit, such as "4.7 uF"`, `use ohm, H, F, Hz, m, m2, m3, l, s, V, W, dB, %, m/s or kg/m3, with a prefix where it fits, such as "4.7 uF"`, None)
 }
 
 // parse does the work of Parse; its errors say form to mend a text that is no number, and units to mend one
-// whose unit is not known.
-func parse(text, form, units string) (float64, Unit, error) {
+// whose unit is not known. want is the unit that is asked for, None for any.
+func parse(text, form, units string, want Unit) (float64, Unit, error) {
 	trimmed := strings.TrimSpace(text)
 	switch {
 	case trimmed == "":
@@ -43,7 +43,7 @@ func parse(text, form, units string) (float64, Unit, error) {
 		unit, exponent, ok = lookUp(spelling)
 	}
 	if !ok {
-		if example := prefixAlone(number, spelling); example != "" {
+		if example := prefixAlone(number, spelling, want); example != "" {
 			return 0, None, &Error{fmt.Sprintf("%s has the prefix %s and no unit", quote(text), spelling),
 				fmt.Sprintf("write the unit too, such as %q", example)}
 		}
@@ -64,7 +64,7 @@ func parse(text, form, units string) (float64, Unit, error) {
 // The error says what was found, and gives an example of what would be right.
 func ParseAs(text string, want Unit) (float64, error) {
 	mend := fmt.Sprintf("write %s such as %q", want.Noun(), want.Example())
-	v, unit, err := parse(text, mend, mend)
+	v, unit, err := parse(text, mend, mend, want)
 	if err != nil {
 		return 0, err
 	}
@@ -83,8 +83,16 @@ func ParseAs(text string, want Unit) (float64, error) {
 }
 
 // prefixAlone returns an example of what number and spelling may have meant, if spelling is nothing but a
-// prefix that parts have, "4.7k" or "10u"; else "".
-func prefixAlone(number, spelling string) string {
+// prefix that the unit which is asked for takes, or without one, that parts have, "4.7k" or "10u"; else "".
+func prefixAlone(number, spelling string, want Unit) string {
+	if want != None {
+		for _, s := range symbols {
+			if s.unit == want && utf8.RuneCountInString(spelling) == 1 && strings.Contains(s.prefixes, spelling) {
+				return number + " " + spelling + s.text
+			}
+		}
+		return ""
+	}
 	switch spelling {
 	case "k", "K", "M", "G":
 		return number + " " + spelling + "ohm"

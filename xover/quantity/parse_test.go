@@ -150,6 +150,10 @@ func TestParseAsErrors(t *testing.T) {
 		{"87", Decibel, `"87" has no unit; write "87 dB"`},
 		{"5", Percent, `"5" has no unit; write "5 %"`},
 		{"3.1 ohm", None, `"3.1 ohm" is a resistance; write a bare number such as "0.5"`},
+		{"2.2k", Hertz, `"2.2k" has the prefix k and no unit; write the unit too, such as "2.2 kHz"`},
+		{"2.2 k", Ohm, `"2.2 k" has the prefix k and no unit; write the unit too, such as "2.2 kohm"`},
+		{"500u", Henry, `"500u" has the prefix u and no unit; write the unit too, such as "500 uH"`},
+		{"12 k", CubicMetre, `"12 k" has no unit that is known: "k"; write a volume such as "12 l"`},
 		{"2 mm", Hertz, `"2 mm" is a length, not a frequency; write a frequency such as "2.2 kHz"`},
 	} {
 		if v, err := ParseAs(test.text, test.unit); err == nil || err.Error() != test.want || v != 0 {
