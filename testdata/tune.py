@@ -156,8 +156,9 @@ class Problem:
         return values, ys, v, adj, [v[:, a] - v[:, c] for a, c in self.p["outputs"]]
 
     def settle(self, x):
-        """Choose where the phases count: both neighbours within 12 dB of the sum. Returns the phase differences there."""
-        self.points, phases = [], []
+        """Choose where the phases count: where the targets of neighbours are both above -12 dB, or, if they do not say, where both
+        ways are within 12 dB of the sum. Returns the phase differences at the latter."""
+        self.points, phases, said = [], [], []
         if self.press is None:
             return phases
         gains = self.gains(x)[-1]
@@ -168,6 +169,10 @@ class Problem:
             at = np.flatnonzero((np.abs(heard[low]) > least) & (np.abs(heard[high]) > least))
             self.points.append((low, high, at))
             phases.append(np.angle(heard[high][at] / heard[low][at], deg=True))
+            if self.targets[low] is not None and self.targets[high] is not None:
+                said.append((low, high, np.flatnonzero((self.targets[low] > -12) & (self.targets[high] > -12))))
+        if len(said) == len(order) - 1 and all(at.size for _, _, at in said):
+            self.points = said
         return phases
 
     def middle(self, way):

@@ -1,6 +1,9 @@
 package tune
 
-import "math"
+import (
+	"math"
+	"slices"
+)
 
 // A descent goes down from one place to the nearest optimum by the method of Levenberg and Marquardt (K. Levenberg, Quart. Appl.
 // Math. 2, 1944, 164–168; D. W. Marquardt, J. SIAM 11, 1963, 431–441) on the logarithms of the values. Each step minimises
@@ -61,6 +64,11 @@ func (d *descent) begin(x []float64) error {
 	}
 	d.e.setPairs()
 	return d.arrive()
+}
+
+// place returns where the descent is.
+func (d *descent) place() place {
+	return place{x: slices.Clone(d.x), f: d.f, missed: d.missed, over: d.over}
 }
 
 // arrive computes what the next step needs to know of x.

@@ -7,8 +7,9 @@
 //
 //	mean of (sum - aim - level)² + Σ ways: mean of (way - target - level)² where the target is above -20 dB
 //
-// with the weights that the design gives, and further terms for the phase between ways and for other places of the
-// ear where it asks for them. The aim is flat but for the design's tilt and curve. The level, unless the design
+// with the weights that the design gives, and further terms where it asks for them: for other places of the ear, and for the
+// phase between neighbouring ways, the mean of (degrees/10)² where both their targets are above -12 dB or, if there are none, where
+// both ways are within 12 dB of the sum. The aim is flat but for the design's tilt and curve. The level, unless the design
 // gives it, is the one that makes the objective least; it is eliminated, not searched for. Without a sum, the ways'
 // gains in dB stand for what they give to the ear.
 //

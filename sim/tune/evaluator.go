@@ -31,12 +31,6 @@ type evaluator struct {
 	calls       int            // how often the objective has been computed
 }
 
-// A phasePair is two neighbouring ways and where the phase between them counts.
-type phasePair struct {
-	low, high int
-	at        []int
-}
-
 const (
 	dbPerNeper = 8.685889638065037 // 20/ln 10
 	pascalRef  = 20e-6             // Pa
@@ -83,7 +77,7 @@ func (p *Problem) newEvaluatorWith(coils windings) (*evaluator, error) {
 		}
 	}
 	if p.limit > 0 {
-		e.loads = logGrid(loadFrom, loadTo, perOctave)
+		e.loads = logGrid(loadFrom, loadTo, p.grid)
 		if e.load, err = p.newSweep(e.loads, coils); err != nil {
 			return nil, err
 		}

@@ -3,7 +3,6 @@ package tune
 import (
 	"math"
 	"math/cmplx"
-	"slices"
 
 	"sixdown/xover"
 )
@@ -24,11 +23,7 @@ func (p *Problem) natural() [][]float64 {
 			}
 			return cmplx.Abs(z)
 		}
-		for _, part := range partsOf(p.design.Ways[w].Network) {
-			v := slices.IndexFunc(p.vars, func(q Variable) bool { return q.Part == part || slices.Contains(q.Followers, part) })
-			if v < 0 {
-				continue
-			}
+		for _, v := range p.variablesOf(w) {
 			for _, f := range at {
 				value := load(f)
 				switch p.vars[v].Kind {

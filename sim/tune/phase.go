@@ -7,14 +7,75 @@ import (
 	"slices"
 )
 
-// setPairs chooses, at the present place, which ways are neighbours and where the phase between them counts. It stays so
-// until the next call, so that a descent has one smooth objective.
+// A phasePair is two neighbouring ways and the grid points at which the phase between them counts.
+type phasePair struct {
+	low, high int
+	at        []int
+}
+
+// meetings returns the neighbours among ways of such targets, in dB over the grid, and the grid points at which both targets are
+// above -12 dB. It is nil where a way has no target or targets do not meet.
+func meetings(targets [][]float64) []phasePair {
+	centre := make([]float64, len(targets))
+	for w, target := range targets {
+		if target == nil {
+			return nil
+		}
+		centre[w] = middle(len(target), func(k int) float64 { return math.Pow(10, target[k]/20) })
+	}
+	pairs := neighbours(centre)
+	for i := range pairs {
+		q := &pairs[i]
+		for k := range targets[q.low] {
+			if targets[q.low][k] > -within && targets[q.high][k] > -within {
+				q.at = append(q.at, k)
+			}
+		}
+		if len(q.at) == 0 {
+			return nil
+		}
+	}
+	return pairs
+}
+
+// middle returns the mean of 0 … n-1, weighted by power.
+func middle(n int, amplitude func(k int) float64) float64 {
+	power, sum := 0.0, 0.0
+	for k := range n {
+		a := amplitude(k)
+		power += a * a
+		sum += a * a * float64(k)
+	}
+	if power == 0 {
+		return 0
+	}
+	return sum / power
+}
+
+// neighbours returns ways in the order of what they are loudest about, each with the next.
+func neighbours(centre []float64) []phasePair {
+	order := make([]int, len(centre))
+	for w := range order {
+		order[w] = w
+	}
+	slices.SortStableFunc(order, func(a, b int) int { return cmp.Compare(centre[a], centre[b]) })
+	pairs := make([]phasePair, len(order)-1)
+	for i := range pairs {
+		pairs[i] = phasePair{low: order[i], high: order[i+1]}
+	}
+	return pairs
+}
+
+// setPairs chooses where the phase between ways counts: where the targets meet, or, if they do not say, where both ways are within
+// 12 dB of the sum at the present place. It stays so until the next call, so that a descent has one smooth objective.
 func (e *evaluator) setPairs() {
 	e.pairs = e.pairs[:0]
 	if e.p.phase == 0 {
 		return
 	}
-	e.pairs = e.neighbours()
+	if e.pairs = e.p.meets; e.pairs == nil {
+		e.pairs = e.meetingsHere()
+	}
 	row := 0
 	for _, t := range e.p.terms {
 		row += len(t.at)
@@ -31,39 +92,26 @@ func (e *evaluator) setPairs() {
 	}
 }
 
-// neighbours returns the ways in the order of the frequencies that they are loudest at, each with the next, and the grid
-// points at which both are within 12 dB of the sum.
-func (e *evaluator) neighbours() []phasePair {
+// meetingsHere returns the neighbours at the present place and the grid points at which both are within 12 dB of the sum.
+func (e *evaluator) meetingsHere() []phasePair {
 	press := e.p.ears[0].press
 	if press == nil {
 		return nil
 	}
-	order := make([]int, len(press))
-	centre := make([]float64, len(press)) // mean log frequency, weighted by power
-	for w := range press {
-		order[w] = w
-		power := 0.0
-		for k, g := range e.gain[w] {
-			a := cmplx.Abs(press[w][k] * g)
-			power += a * a
-			centre[w] += a * a * float64(k)
-		}
-		if power > 0 {
-			centre[w] /= power
-		}
+	size := func(w, k int) float64 { return cmplx.Abs(press[w][k] * e.gain[w][k]) }
+	centre := make([]float64, len(press))
+	for w := range centre {
+		centre[w] = middle(len(e.p.freqs), func(k int) float64 { return size(w, k) })
 	}
-	slices.SortStableFunc(order, func(a, b int) int { return cmp.Compare(centre[a], centre[b]) })
 	share := math.Pow(10, -within/20.)
-	var pairs []phasePair
-	for i := range order[1:] {
-		q := phasePair{low: order[i], high: order[i+1]}
+	pairs := neighbours(centre)
+	for i := range pairs {
+		q := &pairs[i]
 		for k := range e.p.freqs {
-			least := share * cmplx.Abs(e.sum[0][k])
-			if cmplx.Abs(press[q.low][k]*e.gain[q.low][k]) > least && cmplx.Abs(press[q.high][k]*e.gain[q.high][k]) > least {
+			if least := share * cmplx.Abs(e.sum[0][k]); size(q.low, k) > least && size(q.high, k) > least {
 				q.at = append(q.at, k)
 			}
 		}
-		pairs = append(pairs, q)
 	}
 	return pairs
 }

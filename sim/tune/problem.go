@@ -15,6 +15,7 @@ import (
 // What the search looks at.
 const (
 	perOctave = 24    // points of the grid, as the objective is defined
+	coarse    = 8     // points of the grid on which a search begins
 	floorDB   = -20   // a way's target counts where it is above this
 	within    = 12    // dB below the sum within which both ways have a say in the phase between them
 	phaseUnit = 10    // degrees that count as much as 1 dB
@@ -42,13 +43,17 @@ type Problem struct {
 	vars     []Variable
 	branches [][]int // of the netlist, by variable, those of its followers too
 
+	grid  float64   // points an octave, at least
 	freqs []float64 // Hz
 	terms []term
 	ears  []ear
-	fixed bool    // the level is given
-	level float64 // dB, then
-	phase float64 // weight of each pair's phase
-	limit float64 // Ω, least |Zin|; 0: none
+	fixed bool        // the level is given
+	level float64     // dB, then
+	phase float64     // weight of each pair's phase
+	meets []phasePair // where the targets say that it counts; nil: they do not say
+	limit float64     // Ω, least |Zin|; 0: none
+
+	rough *Problem // the same on a coarser grid; nil in itself
 }
 
 // An ear is a place at which pressures are: the listening point first, then those of the design's tune angles. press holds the
@@ -68,15 +73,25 @@ type term struct {
 // New makes a Problem of a design and the System that was made of it. open opens the file that [tune] curve names; it
 // may be nil if there is none. New keeps all three. The error says what is missing and how to mend it.
 func New(d *xover.Design, sys *sim.System, open func(name string) (io.ReadCloser, error)) (*Problem, error) {
+	p, err := newProblem(d, sys, open, perOctave)
+	if err != nil {
+		return nil, err
+	}
+	p.rough, err = newProblem(d, sys, open, coarse)
+	return p, err
+}
+
+// newProblem is New with so many points an octave, without a rough one.
+func newProblem(d *xover.Design, sys *sim.System, open func(name string) (io.ReadCloser, error), grid float64) (*Problem, error) {
 	if d.Tone != nil {
 		return nil, errors.New("tune: a tone network has no ways to tune; give a design with ways")
 	}
-	p := &Problem{design: d, sys: sys, open: open, limit: d.Tune.MinImpedance, fixed: d.Tune.HasLevel && sys.Sums(), level: d.Tune.Level} // a level in SPL is none for gains
+	p := &Problem{design: d, sys: sys, open: open, grid: grid, limit: d.Tune.MinImpedance, fixed: d.Tune.HasLevel && sys.Sums(), level: d.Tune.Level} // a level in SPL is none for gains
 	band := d.Tune.Band
 	if band == [2]float64{} {
 		band = [2]float64{200, 20e3}
 	}
-	p.freqs = logGrid(band[0], band[1], perOctave)
+	p.freqs = logGrid(band[0], band[1], grid)
 	p.variables()
 	if len(p.vars) == 0 {
 		return nil, errors.New("tune: no part may be moved; take hold off one, or name one in a network")
@@ -187,6 +202,7 @@ func (p *Problem) setTerms(aim []float64) error {
 	if p.sys.Sums() {
 		p.terms = append(p.terms, term{way: -1, at: all, aim: aim, weight: w.Sum / n})
 	}
+	targets := make([][]float64, len(p.design.Ways))
 	for i := range p.design.Ways {
 		way := &p.design.Ways[i]
 		if len(way.Targets) == 0 {
@@ -196,6 +212,7 @@ func (p *Problem) setTerms(aim []float64) error {
 		if err != nil {
 			return fmt.Errorf("tune: way %q: %w", way.Name, err)
 		}
+		targets[i] = target
 		t := term{way: i}
 		for k, v := range target {
 			if v > floorDB {
@@ -214,7 +231,7 @@ func (p *Problem) setTerms(aim []float64) error {
 		p.terms = append(p.terms, term{way: -1, ear: e, at: all, aim: aim, weight: w.Angles / n, level: e})
 	}
 	if p.sys.Sums() && len(p.design.Ways) > 1 {
-		p.phase = w.Phase
+		p.phase, p.meets = w.Phase, meetings(targets)
 	}
 	return nil
 }

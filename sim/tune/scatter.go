@@ -3,6 +3,7 @@ package tune
 import (
 	"math"
 	"math/rand/v2"
+	"slices"
 )
 
 // scatter returns places to begin at, as logarithms within the bounds: the design's own first, then a sequence that fills the
@@ -42,22 +43,54 @@ func (p *Problem) scatter(count int, seed uint64) [][]float64 {
 	return places
 }
 
-// kick is the factor by which a value is moved at most.
-const kick = 2.5
+// What children are like. Chosen on problems by lot and judged on others, as the rest of the search.
+const (
+	mixed  = 0.4 // share of those that have one way's values from another place
+	moving = 1.5 // how many of a child's values are moved on average
+	shaken = 0.2 // share of those of which all values are
+	kick   = 2.5 // the factor by which a value is moved at most
+)
 
-// kicked returns so many places about each of places, drawn by lot.
-func (p *Problem) kicked(places []place, count int, seed uint64) []place {
-	random := rand.New(rand.NewPCG(seed, 0x41c5)) // any second word
+// children returns so many new places for each of places, drawn by lot. Some take all values of one way from another place: ways
+// meet at the amplifier and at the ear alone, so that what is good in two places may be good together.
+func (p *Problem) children(places []place, count int, random *rand.Rand) []place {
+	byWay := make([][]int, len(p.design.Ways))
+	for w := range byWay {
+		byWay[w] = p.variablesOf(w)
+	}
 	var all []place
 	for range count {
 		for i := range places {
-			x := make([]float64, len(p.vars))
+			x := slices.Clone(places[i].x)
+			if random.Float64() < mixed {
+				other := &places[random.IntN(len(places))]
+				for _, v := range byWay[random.IntN(len(byWay))] {
+					x[v] = other.x[v]
+				}
+			}
+			chance := 2 * moving * random.Float64() / float64(len(x))
+			if random.Float64() < shaken {
+				chance = 1
+			}
 			for v := range x {
-				moved := places[i].x[v] + (2*random.Float64()-1)*math.Log(kick)
-				x[v] = min(max(moved, math.Log(p.vars[v].Low)), math.Log(p.vars[v].High))
+				if random.Float64() < chance {
+					moved := x[v] + (2*random.Float64()-1)*math.Log(kick)
+					x[v] = min(max(moved, math.Log(p.vars[v].Low)), math.Log(p.vars[v].High))
+				}
 			}
 			all = append(all, place{x: x, f: math.Inf(1)})
 		}
 	}
 	return all
+}
+
+// variablesOf returns which variables way w's network has, those that its parts follow too.
+func (p *Problem) variablesOf(w int) (vars []int) {
+	for _, part := range partsOf(p.design.Ways[w].Network) {
+		v := slices.IndexFunc(p.vars, func(q Variable) bool { return q.Part == part || slices.Contains(q.Followers, part) })
+		if v >= 0 && !slices.Contains(vars, v) {
+			vars = append(vars, v)
+		}
+	}
+	return vars
 }

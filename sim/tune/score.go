@@ -73,7 +73,7 @@ func (e *evaluator) score(x []float64) (Score, error) {
 		s.WayRMSDB = math.Sqrt(square / float64(ways))
 	}
 	points, square := 0, 0.0
-	for _, q := range e.neighbours() {
+	for _, q := range e.meetingsHere() {
 		for _, k := range q.at {
 			d := e.between(&q, k)
 			square += d * d

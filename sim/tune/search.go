@@ -5,6 +5,7 @@ import (
 	"context"
 	"errors"
 	"math"
+	"math/rand/v2"
 	"runtime"
 	"slices"
 	"sync"
@@ -13,7 +14,7 @@ import (
 
 // Search is how Run looks. The zero value is a good one.
 type Search struct {
-	Starts   int                      // places to begin at; 0: 180, a few tenths of a second of work
+	Starts   int                      // places to begin at; 0: 360, a few tenths of a second of work
 	Seed     uint64                   // of the places
 	Workers  int                      // goroutines; 0: as many as there are cores. It changes no digit of the result
 	Progress func(done, best float64) // if not nil, called now and then, from one goroutine at a time: share of the work, and objective so far
@@ -50,16 +51,30 @@ type Binding struct {
 }
 
 // defaultStarts is how many places a search begins at: a few tenths of a second of work.
-const defaultStarts = 180
+const defaultStarts = 360
 
-// The rounds of a search: all places take a few steps, the better ones more; the best are kicked, to look into what lies near them;
-// and the best of all go all the way.
-var rounds = [...]struct {
-	steps int // of each descent
-	keep  int // as one in so many of the last round
-	least int // at least so many
-	kicks int // before it, so many new places about each
-}{{8, 1, 1, 0}, {12, 3, 12, 0}, {12, 10, 6, 9}, {12, 10, 6, 9}, {400, 8, 4, 0}}
+// A round of a search.
+type round struct {
+	rough    bool // on the coarse grid
+	share    int  // it takes the best in so many of the starts
+	least    int  // but at least so many
+	children int  // and so many new places for each of them
+	steps    int  // of each descent
+}
+
+// The rounds: all places take a few steps on the coarse grid, the better ones more; the best have children, to look into what
+// lies near them and between them; and the best of all go all the way on the grid of the objective.
+var rounds = [...]round{
+	{rough: true, share: 1, least: 1, steps: 10},
+	{rough: true, share: 5, least: 12, steps: 15},
+	{rough: true, share: 18, least: 12, children: 5, steps: 12},
+	{rough: true, share: 18, least: 12, children: 5, steps: 12},
+	{rough: true, share: 18, least: 12, children: 5, steps: 12},
+	{share: 45, least: 4, steps: 400},
+}
+
+// kept returns how many places a search of so many starts keeps for the round.
+func (r *round) kept(starts int) int { return min(starts, max(starts/r.share, r.least)) }
 
 // Run looks for the values of the least objective within the bounds and the limit on the impedance. ctx stops it; the best
 // so far is then the result, with Status Interrupted and no error. The same Search gives the same Result.
@@ -190,17 +205,23 @@ func (r *runner) all(starts [][]float64) ([]place, error) {
 		places[i] = place{x: x, f: math.Inf(1)}
 	}
 	total := 0
-	count := len(starts)
 	for _, round := range rounds {
-		count = min(count, max(count/round.keep, round.least)) * (1 + round.kicks)
-		total += count
+		total += round.kept(len(starts)) * (1 + round.children)
 	}
 	r.best = math.Inf(1)
+	random := rand.New(rand.NewPCG(r.search.Seed, 0x41c5)) // any second word
+	rough := true
 	for _, round := range rounds {
 		places = distinct(places)
-		places = places[:min(len(places), max(len(places)/round.keep, round.least))]
-		places = append(places, r.p.kicked(places, round.kicks, r.search.Seed)...)
-		if err := r.round(places, round.steps, total); err != nil {
+		places = places[:min(len(places), round.kept(len(starts)))]
+		if rough && !round.rough {
+			for i := range places {
+				places[i].over = false
+			}
+		}
+		rough = round.rough
+		places = append(places, r.p.children(places, round.children, random)...)
+		if err := r.round(places, &round, total); err != nil {
 			return nil, err
 		}
 		slices.SortStableFunc(places, func(a, b place) int { return a.compare(&b) })
@@ -243,20 +264,26 @@ func distinct(places []place) []place {
 }
 
 // round lets each place take steps further down. The result does not depend on how the places are shared out.
-func (r *runner) round(places []place, steps, total int) error {
+func (r *runner) round(places []place, round *round, total int) error {
+	p := r.p
+	if round.rough {
+		p = p.rough
+	}
 	var next atomic.Int64
 	errs := make([]error, r.workers)
 	var wg sync.WaitGroup
 	for w := range r.workers {
 		wg.Go(func() {
-			e, err := r.p.newEvaluatorWith(r.coils)
+			e, err := p.newEvaluatorWith(r.coils)
 			if err != nil {
 				errs[w] = err
 				return
 			}
-			d := r.p.newDescent(e)
+			d := p.newDescent(e)
 			for i := int(next.Add(1)) - 1; i < len(places) && r.ctx.Err() == nil; i = int(next.Add(1)) - 1 {
-				r.descend(d, &places[i], steps)
+				if at := &places[i]; !at.over && !at.lost {
+					*at = r.descend(d, at.x, round.steps)
+				}
 				r.tell(&places[i], total)
 			}
 			r.calls.Add(int64(e.calls))
@@ -266,22 +293,34 @@ func (r *runner) round(places []place, steps, total int) error {
 	return errors.Join(errs...)
 }
 
-// descend takes a place further down, unless the context is cancelled on the way: then as far as it has come.
-func (r *runner) descend(d *descent, at *place, steps int) {
-	if at.over || at.lost {
-		return
-	}
-	if err := d.begin(at.x); err != nil {
-		at.lost = true
-		return
-	}
-	for done := 0; done < steps && !d.over && r.ctx.Err() == nil; done += 5 {
-		if err := d.run(min(5, steps-done)); err != nil {
+// descend goes down from x by at most so many steps, unless the context is cancelled on the way: then as far as it has come.
+// Where the place decides which phases count, they are chosen anew at the end, for places to be compared by the same measure, and the descent
+// goes on if it is over and what it gained is not lost by the new choice.
+func (r *runner) descend(d *descent, x []float64, steps int) place {
+	const choices = 8
+	best := place{x: x, lost: true}
+	for n, over := 0, true; d.begin(x) == nil; n++ {
+		here := d.place()
+		here.over = over && n > 0
+		if !best.lost && here.compare(&best) >= 0 {
+			best.over = here.over
 			break
 		}
+		best = here
+		if !over || n == choices {
+			break
+		}
+		for done := 0; done < steps && !d.over && r.ctx.Err() == nil; done += 5 {
+			if d.run(min(5, steps-done)) != nil {
+				break
+			}
+		}
+		if d.e.p.phase == 0 || d.e.p.meets != nil {
+			return d.place()
+		}
+		x, over = slices.Clone(d.x), d.over
 	}
-	at.x = slices.Clone(d.x)
-	at.f, at.missed, at.over = d.f, d.missed, d.over
+	return best
 }
 
 // tell reports progress.
