@@ -124,10 +124,14 @@ source = "0.05 ohm"          # amplifier and cable
 distance = "1 m"             # from the front of the cabinet
 height   = "0 mm"            # of the ear above its origin
 
+`)
+	fmt.Fprintf(&b, `[tune]
+min_impedance = %-12s # what your amplifier stands; tune keeps to it
+
 [parts]
 # A coil's wire has resistance. When you know it, write for example:
 # L1 = { value = "1.1 mH", dcr = "0.3 ohm" }
-`)
+`, tomlString(quantity.Format(p.leastLoad(), quantity.Ohm)))
 	for _, w := range p.ways {
 		for _, s := range w.stages {
 			b.WriteByte('\n')
@@ -146,6 +150,16 @@ height   = "0 mm"            # of the ear above its origin
 		w.write(&b, p.drivers[i].name)
 	}
 	return b.String()
+}
+
+// leastLoad returns in Ω what the network should not fall below: 80 % of 4 ohm, as loudspeakers rated at that may (IEC 60268-5,
+// from memory), or of the least driver where that is less.
+func (p *startPlan) leastLoad() float64 {
+	least := 4.0
+	for _, w := range p.ways {
+		least = min(least, w.load)
+	}
+	return fourFigures(0.8 * least)
 }
 
 func (p *startPlan) writeDriver(b *strings.Builder, d startDriver) {
