@@ -36,6 +36,8 @@ func newPredictCmd(s *streams) *cobra.Command {
 - in short, where the ways cross and how well they are in step there, how even the
   sum is, and where the load is lowest.
 
+What a design file may say: sixdown help design.
+
 Without --at or a grid, the table is in third-octaves with the design's targets
 among them; JSON and CSV are in 24 points an octave from 20 Hz to 20 kHz.
 

@@ -20,7 +20,7 @@ and what adds up at the ear, renders it to sound files, and checks what was buil
 against what was designed.
 
 Values are written with their units: "2.2 kHz", 4.7uF, 0.33mH, 8ohm. A design
-file may be named -, for standard input.`,
+file may be named -, for standard input; what stands in it: sixdown help design.`,
 		Example: `  sixdown size --shape linkwitz-riley --order 4 --at 2.2kHz --load 8ohm
   sixdown predict harbour.toml`,
 		Version:       version(),
@@ -46,6 +46,7 @@ file may be named -, for standard input.`,
 			root.AddCommand(c)
 		}
 	}
+	root.AddCommand(newDesignTopic())
 	return root
 }
 
@@ -89,8 +90,8 @@ func version() string {
 func newHelpCmd() *cobra.Command {
 	return &cobra.Command{
 		Use:     "help [command]",
-		Short:   "Explain a command",
-		Example: "  sixdown help predict",
+		Short:   "Explain a command, or the design file",
+		Example: "  sixdown help predict\n  sixdown help design",
 		RunE: func(cmd *cobra.Command, args []string) error {
 			about, rest, err := cmd.Root().Find(args)
 			if err != nil || len(rest) > 0 {
@@ -115,7 +116,7 @@ func knownCommand(cmd *cobra.Command, args []string) error {
 func unknownCommand(cmd *cobra.Command, args []string) error {
 	var names []string
 	for _, c := range cmd.Commands() {
-		if c.IsAvailableCommand() || c.Name() == "help" {
+		if c.IsAvailableCommand() || c.IsAdditionalHelpTopicCommand() || c.Name() == "help" {
 			names = append(names, c.Name())
 		}
 	}

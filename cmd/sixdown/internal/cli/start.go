@@ -36,7 +36,7 @@ func newStartCmd(s *streams) *cobra.Command {
 		Short: "Write a design file to begin with, for these drivers and this crossover",
 		Long: `Start writes a design file with a network sized for the drivers as resistances, with
 targets, polarities, and pads where drivers differ in sensitivity. It is to be read
-and changed.
+and changed; what may stand in it: sixdown help design.
 
 Drivers are given from the lowest way to the highest, each as
   NAME=8ohm                      a resistance

@@ -46,7 +46,7 @@ amplifier, since an even sum can be had from networks that short it.
 
 Further keys of [tune]: level, tilt (dB per octave), curve (a table of Hz and dB),
 weights = { sum, ways, phase, angles }, and angles = ["h=30", "v=-10"], other places of the
-ear at which the sum should be even.
+ear at which the sum should be even. All keys of a design: sixdown help design.
 
 With --stock it then looks for the best set that can be bought: of a series of preferred
 values, or of a list (CSV or TOML: kind, value, tol, dcr, price, count, name). A coil
