@@ -14,6 +14,7 @@ import (
 type Alignment struct {
 	Crossing
 	Lower, Upper []string   // every way is on one side of the crossing or the other
+	OneTimeBase  bool       // of the two ways' drivers, as System.OneTimeBase; if not, nothing that follows of phases means anything
 	Band         [2]float64 // Hz, around the crossing, in which both ways are within 12 dB of the sum or above it
 
 	Freqs         []float64 // Hz, 48 points an octave over Band; one frequency if Band is no more
@@ -132,6 +133,7 @@ func (s *System) align(c Crossing, lower []bool, r *Response) (Alignment, error)
 		}
 	}
 	low, high := slices.Index(s.names, c.Low), slices.Index(s.names, c.High)
+	a.OneTimeBase = s.oneTimeBase(func(way int) bool { return way == low || way == high })
 	var err error
 	if a.Band, err = s.overlap(low, high, c.Frequency, r); err != nil {
 		return Alignment{}, err

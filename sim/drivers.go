@@ -39,6 +39,7 @@ type speaker struct {
 	load     driver.Load
 	radiator driver.Radiator // nil: it has no acoustic output
 	at       field.Point     // acoustic centre
+	mic      field.Point     // where a measured response was taken
 	path     func(field.Listener) field.Path
 	around   *driver.Directivity                 // nil: not measured at angles
 	bearing  func(ear field.Point) field.Bearing // of the ear from the axis on which around was measured
@@ -164,6 +165,7 @@ func (sp *speaker) setMeasured(d *xover.Driver, l field.Listener, open opener) e
 	if d.HasMic {
 		mic = field.Point(d.Mic)
 	}
+	sp.mic = mic
 	if at.Distance(mic) == 0 {
 		return fmt.Errorf("driver %q: its microphone stands at its acoustic centre; correct mic or at", d.Name)
 	}

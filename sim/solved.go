@@ -9,7 +9,7 @@ import (
 )
 
 // A solved is what does not depend on where the ear is. If there is a sum, the grid holds the n frequencies
-// asked for, then each of them nudged down, then up.
+// asked for, then those a little below each, then those a little above.
 type solved struct {
 	grid     []float64
 	n        int
@@ -23,11 +23,9 @@ func (s *System) solve(freqs []float64) (*solved, error) {
 	n := len(freqs)
 	q := &solved{grid: append(make([]float64, 0, 3*n), freqs...), n: n}
 	if s.Sums() {
-		for _, f := range freqs {
-			q.grid = append(q.grid, f*(1-nudge))
-		}
-		for _, f := range freqs {
-			q.grid = append(q.grid, f*(1+nudge))
+		q.grid = q.grid[:3*n]
+		for i, f := range freqs {
+			q.grid[i+n], q.grid[i+2*n] = s.beside(f)
 		}
 	}
 	q.amp, q.zin = make([]complex128, len(q.grid)), make([]complex128, len(q.grid))
@@ -47,6 +45,24 @@ func (s *System) solve(freqs []float64) (*solved, error) {
 	return q, share(chunks, func(task int) error {
 		return s.solvePart(q, task*len(q.grid)/chunks, (task+1)*len(q.grid)/chunks)
 	})
+}
+
+// beside returns frequencies a little below and above f, in Hz. The end of a table, where its curve is kinked, does not lie between
+// them: there both are on the side of f, and of the table if f is its end.
+func (s *System) beside(f float64) (below, above float64) {
+	below, above = f*(1-nudge), f*(1+nudge)
+	for _, u := range s.units {
+		for _, t := range u.speaker.tables {
+			lo, hi := t.Range()
+			switch {
+			case below < lo && lo < above && f >= lo, below < hi && hi < above && f > hi:
+				below, above = f, f*(1+2*nudge)
+			case below < lo && lo < above, below < hi && hi < above:
+				below, above = f*(1-2*nudge), f
+			}
+		}
+	}
+	return below, above
 }
 
 // solvePart fills q from lo up to hi.

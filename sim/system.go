@@ -193,6 +193,7 @@ func (s *System) addWays(d *xover.Design, f *flattener, open opener) error {
 		s.straight = append(s.straight, a)
 	}
 	s.warnSilent()
+	s.warnTimeBase()
 	return nil
 }
 

@@ -73,7 +73,7 @@ func NewDirectivity(axis *Table, horizontal, vertical []AngledTable, minimum boo
 	d := &Directivity{minimum: minimum, hi: math.Inf(1)}
 	delay := 0.
 	if !minimum {
-		delay, _ = flight(axis)
+		delay = flight(ExcessDelay(axis))
 	}
 	var err error
 	if d.axis, err = d.read(axis, delay); err != nil {
@@ -100,7 +100,7 @@ func (d *Directivity) read(t *Table, delay float64) (polarCurve, error) {
 		freqs, _, _ := t.columns()
 		return minimumPhaseOf(freqs, lnMag), nil
 	}
-	r, err := newResponseTable(t, func(*Table) (float64, []string) { return delay, nil })
+	r, err := newResponseTable(t, delay)
 	if err != nil {
 		return nil, err
 	}

@@ -1,7 +1,6 @@
 package driver
 
 import (
-	"fmt"
 	"math"
 	"math/cmplx"
 )
@@ -13,8 +12,8 @@ const (
 	quietest       = 20.0   // dB below the loudest row: rows more quiet than that are noise and reflections
 	octavesForTime = 5.0    // below the highest row that is loud enough: farther down a microsecond does not show
 	searchRows     = 192    // as many rows as the search looks at
-	flightSpeed    = 343.0  // m/s, at 20 °C, for the note
-	worthTelling   = 0.1    // m; acoustic centres of drivers on one baffle differ by less
+	flightSpeed    = 343.0  // m/s, at 20 °C
+	worthTaking    = 0.1    // m; acoustic centres of drivers on one baffle differ by less
 	blocks         = 8      // of the jackknife
 	coherentEnough = 0.5    // of a perfectly straight phase
 	asCoherent     = 0.98   // of the best: rows at equal steps repeat the best delay, and the nearest counts
@@ -183,17 +182,11 @@ func (l *lineFit) solve() (slope, constant float64) {
 	return slope, (l.y - slope*l.x) / l.w
 }
 
-// flight returns the delay in s that a response's phase holds, and a note about it; 0 and none if it is too little or too
-// uncertain to count as flight time.
-func flight(t *Table) (seconds float64, note []string) {
-	delay, spread := ExcessDelay(t)
-	metres := delay * flightSpeed
-	if math.Abs(metres) < worthTelling || spread > math.Abs(delay)/5 {
-		return 0, nil
+// flight returns the delay in s that a response's phase holds, 0 if it is too little or too uncertain to count as flight time,
+// for its phase to be followed from row to row without it.
+func flight(delay, spread float64) float64 {
+	if math.Abs(delay)*flightSpeed < worthTaking || spread > math.Abs(delay)/5 {
+		return 0
 	}
-	say := fmt.Sprintf("the phase holds %.2f ms of flight time beyond minimum phase, %.2f m", delay*1e3, metres)
-	if delay < 0 {
-		say = fmt.Sprintf("the phase lacks %.2f ms of minimum phase, so %.2f m of flight too much was taken out", -delay*1e3, -metres)
-	}
-	return delay, []string{fmt.Sprintf("%s: %s; other drivers' tables must hold the same", t.Name, say)}
+	return delay
 }

@@ -12,15 +12,25 @@ type ResponseTable struct {
 	lo, hi float64 // Hz, first and last row
 	curve  curve   // the delay taken out
 	delay  float64 // s
+	excess float64 // s, as ExcessDelay finds it
+	spread float64 // s, of it
 	notes  []string
 }
 
 // NewResponseTable makes a radiator of a table with a phase in every row and values in dB SPL between -500
 // and 500. The error is a *TableError.
-func NewResponseTable(t *Table) (*ResponseTable, error) { return newResponseTable(t, flight) }
+func NewResponseTable(t *Table) (*ResponseTable, error) {
+	excess, spread := ExcessDelay(t)
+	r, err := newResponseTable(t, flight(excess, spread))
+	if err != nil {
+		return nil, err
+	}
+	r.excess, r.spread = excess, spread
+	return r, nil
+}
 
-// newResponseTable is NewResponseTable with a way to find the flight time in s that is to be taken out, and a note on it.
-func newResponseTable(t *Table, flight func(*Table) (float64, []string)) (*ResponseTable, error) {
+// newResponseTable is NewResponseTable with the flight time in s that is to be taken out before the phase is followed.
+func newResponseTable(t *Table, delay float64) (*ResponseTable, error) {
 	if !t.HasPhase {
 		return nil, &TableError{File: t.Name, What: "the response has no phase column", Mend: "give three columns: Hz, dB, degrees; or let it be minimum phase with phase = \"minimum\""}
 	}
@@ -29,7 +39,6 @@ func newResponseTable(t *Table, flight func(*Table) (float64, []string)) (*Respo
 		return nil, err
 	}
 	// With the flight time out the phase turns slowly, and can be followed from row to row where the rows are far apart.
-	delay, note := flight(t)
 	freqs, _, deg := t.columns()
 	for i, f := range freqs {
 		deg[i] += 360 * f * delay
@@ -39,7 +48,7 @@ func newResponseTable(t *Table, flight func(*Table) (float64, []string)) (*Respo
 		name: t.Name, lo: freqs[0], hi: freqs[len(freqs)-1],
 		curve: newCurve(freqs, lnMag, phase, math.Inf(1)),
 		delay: delay,
-		notes: slices.Concat(t.Notes, t.doubts(doubtful), note),
+		notes: slices.Concat(t.Notes, t.doubts(doubtful)),
 	}, nil
 }
 
@@ -64,6 +73,9 @@ func (r *ResponseTable) Pressure(f float64) complex128 {
 	lnMag, phase := r.curve.polar(f)
 	return polarRect(lnMag, phase-2*math.Pi*f*r.delay)
 }
+
+// ExcessDelay returns what ExcessDelay finds in the table.
+func (r *ResponseTable) ExcessDelay() (seconds, spread float64) { return r.excess, r.spread }
 
 // Range returns the frequencies in Hz of the first and the last row; beyond them the response is invented.
 func (r *ResponseTable) Range() (lo, hi float64) { return r.lo, r.hi }

@@ -232,8 +232,7 @@ func TestFlightTimeInAFile(t *testing.T) {
 	if delay, spread := ExcessDelay(table); abs(delay-0.4/343) > 5e-6 || !(spread < 5e-6) { // as TestExcessDelay
 		t.Errorf("got %.2f µs ± %.2f, want %.2f", delay*1e6, spread*1e6, 0.4/343*1e6)
 	}
-	want := []string{"flight-time-left-in.frd: the phase holds 1.17 ms of flight time beyond minimum phase, 0.40 m; other drivers' tables must hold the same"}
-	if !slices.Equal(notes, want) {
-		t.Errorf("got notes %q, want %q", notes, want)
+	if len(notes) > 0 {
+		t.Errorf("got notes %q", notes)
 	}
 }

@@ -1,37 +1,22 @@
 package chart
 
-import (
-	"math"
-	"slices"
+import "math"
 
-	"sixdown/sim"
-)
-
-// Measured responses may hold the flight of the sound to the microphone and the delay of what recorded it. Where that is
-// more than leastFlight it is taken out of pictures of phase and time, in which nothing else could be seen.
-const (
-	leastFlight = 0.3e-3 // s; more than drivers are apart in depth, 0.1 m: common practice, no source
-	mostFlight  = 0.2    // s, well within stepPeriod
-	flightFrom  = 2e3    // Hz, from where group delay is flight and little else
-)
-
-// flight returns the time in s that the sum of r is late at high frequencies: the median of its group delay there. It is
-// 0 if that is too little to be taken out.
-func flight(r *sim.Response) float64 {
-	var late []float64
-	for i, d := range r.SumDelay {
-		if r.Freqs[i] >= flightFrom && !math.IsNaN(d) {
-			late = append(late, d)
-		}
+// held says what the first subject's measurements hold of flight time, which pictures of phase and time leave out, since
+// nothing else could be seen; "" if nothing.
+func held(subjects []*Subject) string {
+	if late := subjects[0].late(); late > 0 {
+		return ", less " + number(1000*late, 3) + " ms more that the tables hold"
 	}
-	if len(late) == 0 {
+	return ""
+}
+
+// late is Late where there is a sum to be drawn.
+func (s *Subject) late() float64 {
+	if !s.sounds() {
 		return 0
 	}
-	slices.Sort(late)
-	if d := late[len(late)/2]; d > leastFlight {
-		return min(d, mostFlight)
-	}
-	return 0
+	return s.Late
 }
 
 // withoutFlight returns z over freqs, in Hz, the time late in s taken out of its phase.

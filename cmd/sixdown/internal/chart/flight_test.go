@@ -3,6 +3,7 @@ package chart
 import (
 	"math"
 	"math/cmplx"
+	"strings"
 	"testing"
 
 	"sixdown/sim"
@@ -20,31 +21,53 @@ func delayed(freqs []float64, late float64) *sim.Response {
 }
 
 func TestFlightIsTakenOut(t *testing.T) {
-	for _, c := range []struct{ late, want float64 }{
-		{0, 0}, {0.2e-3, 0}, {-1e-3, 0}, // drivers apart in depth, and an acausal file: left as they are
-		{2.915e-3, 2.915e-3}, {1, mostFlight},
-	} {
-		r := delayed(StepFrequencies(), c.late)
-		late := flight(r)
-		if late != c.want {
-			t.Errorf("late by %g s: %g s is taken out, want %g", c.late, late, c.want)
-		}
+	for _, late := range []float64{0, -1e-3, 2.915e-3} {
+		r := delayed(StepFrequencies(), late)
 		for i, z := range withoutFlight(r.Sum, r.Freqs, late) {
-			if want := cmplx.Rect(1, -2*math.Pi*r.Freqs[i]*(c.late-c.want)); cmplx.Abs(z-want) > 1e-9 { // rounding of 2πfτ, some 4e5 rad at most
-				t.Fatalf("late by %g s: at %g Hz %v is left, want %v", c.late, r.Freqs[i], z, want)
+			if cmplx.Abs(z-1) > 1e-9 { // rounding of 2πfτ, some 4e5 rad at most
+				t.Fatalf("late by %g s: at %g Hz %v is left, want 1", late, r.Freqs[i], z)
 			}
 		}
 	}
-	quiet := delayed([]float64{3e3, 4e3}, math.NaN())
-	if late := flight(quiet); late != 0 {
-		t.Errorf("no group delay at all: %g s is taken out", late)
+}
+
+// What the tables hold is left out of the curves of phase, group delay and step, and all three say so.
+func TestHeldFlightIsSaid(t *testing.T) {
+	const late = 2.915e-3
+	r := delayed([]float64{100, 1000, 10e3}, late)
+	step, err := StepOf(delayed(StepFrequencies(), late), late)
+	if err != nil {
+		t.Fatal(err)
+	}
+	subjects := []*Subject{{Response: r, Late: late, Step: step}}
+	for _, p := range []Panel{Phase(subjects, "a"), GroupDelay(subjects, "a"), StepResponse(subjects)} {
+		plot := p.(*plotPanel)
+		if !strings.HasSuffix(plot.note, ", less 2.92 ms more that the tables hold") {
+			t.Errorf("%s: the note is %q", plot.title, plot.note)
+		}
+		for _, c := range plot.series {
+			for i := range c.x {
+				value, want := c.y[i], 0.0
+				if plot.title == "Step" { // half-way up is the moment of the edge, since the Gaussian has no delay
+					value, want = c.x[i], math.Copysign(math.Abs(c.x[i]), c.y[i]-0.5)
+				}
+				if math.Abs(value-want) > 0.02 { // 5 samples of 7.6 µs in ms, 0.02°
+					t.Fatalf("%s: %g at %g, want %g", plot.title, c.y[i], c.x[i], want)
+				}
+			}
+		}
+		subjects[0].Gains = true
+		if note := Phase(subjects, "a").(*plotPanel).note; note != "a" {
+			t.Errorf("gains hold no flight, and the note is %q", note)
+		}
+		subjects[0].Gains = false
 	}
 }
 
 // The edge of a sum that is late by 30 ms, more than the panel is wide, is in the picture.
 func TestStepFollowsTheFlight(t *testing.T) {
 	const late = 30e-3
-	s, err := StepOf(delayed(StepFrequencies(), late))
+	s, err := StepOf(delayed(StepFrequencies(), late), late)
 	if err != nil {
 		t.Fatal(err)
 	}

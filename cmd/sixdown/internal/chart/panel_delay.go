@@ -3,15 +3,16 @@ package chart
 import "math"
 
 // GroupDelay draws the group delay of the sum. Where it is positive and spans much, which low notes make it do, the
-// axis is in equal ratios.
+// axis is in equal ratios. The flight that the first subject's tables hold is left out.
 func GroupDelay(subjects []*Subject, note string) Panel {
 	lo, hi := ends(subjects)
 	p := &plotPanel{high: 146, plot: plot{title: "Group delay", note: note, x: frequencyAxis(lo, hi)}}
+	p.note += held(subjects)
 	var all [][]float64
 	for k, s := range subjects {
 		ms := make([]float64, len(s.Response.SumDelay))
 		for i, d := range s.Response.SumDelay {
-			ms[i] = 1000 * d
+			ms[i] = 1000 * (d - subjects[0].late())
 		}
 		all = append(all, ms)
 		p.series = append(p.series, series{name: s.named("sum"), x: s.Response.Freqs, y: ms, pen: styles(k, len(subjects), total, -1, totalWidth), bold: true})

@@ -11,13 +11,8 @@ import (
 func Phase(subjects []*Subject, note string) Panel {
 	lo, hi := ends(subjects)
 	p := &plotPanel{high: 174, plot: plot{title: "Phase", note: note, x: frequencyAxis(lo, hi), y: phaseAxis(180)}}
-	late := 0.0
-	if subjects[0].sounds() {
-		late = flight(subjects[0].Response)
-	}
-	if late > 0 {
-		p.note += ", and less " + number(1000*late, 3) + " ms that measurements hold"
-	}
+	p.note += held(subjects)
+	late := subjects[0].late()
 	for k, s := range subjects {
 		f := s.Response.Freqs
 		for i, w := range s.Response.Ways {

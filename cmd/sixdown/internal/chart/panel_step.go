@@ -4,13 +4,13 @@ import "math"
 
 // StepResponse draws the answer to a step. Each subject must have its Step.
 func StepResponse(subjects []*Subject) Panel {
-	p := &plotPanel{high: 178, half: true, plot: plot{title: "Step", note: "relative to the peak"}}
+	p := &plotPanel{high: 178, half: true, plot: plot{title: "Step", note: "relative to the peak" + held(subjects)}}
 	top, bottom := math.Inf(-1), math.Inf(1)
 	from, to := math.Inf(1), math.Inf(-1)
 	for k, s := range subjects {
 		ms := make([]float64, len(s.Step.Seconds))
 		for i, t := range s.Step.Seconds {
-			ms[i] = 1000 * t
+			ms[i] = 1000 * (t - subjects[0].late())
 		}
 		from, to = min(from, ms[0]), max(to, ms[len(ms)-1])
 		for i, c := range s.Step.Ways {

@@ -58,7 +58,7 @@ func stepOf(t *testing.T, h func(s complex128) complex128) *Step {
 	for _, f := range r.Freqs {
 		r.Ways[0].H = append(r.Ways[0].H, h(complex(0, 2*math.Pi*f)))
 	}
-	step, err := StepOf(r)
+	step, err := StepOf(r, 0)
 	if err != nil {
 		t.Fatal(err)
 	}
@@ -110,7 +110,7 @@ func TestStep(t *testing.T) {
 			t.Errorf("%s: %d points are checked only", c.name, checked)
 		}
 	}
-	if _, err := StepOf(&sim.Response{Freqs: []float64{1, 2}}); err == nil {
+	if _, err := StepOf(&sim.Response{Freqs: []float64{1, 2}}, 0); err == nil {
 		t.Error("two frequencies are enough")
 	}
 }

@@ -84,7 +84,7 @@ func design(t testing.TB, freqs []float64, at []float64, ways map[string]func(f 
 		steps.Sum = append(steps.Sum, total(f))
 	}
 	var err error
-	if s.Step, err = StepOf(steps); err != nil {
+	if s.Step, err = StepOf(steps, 0); err != nil {
 		t.Fatal(err)
 	}
 	return s

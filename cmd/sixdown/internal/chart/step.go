@@ -19,6 +19,7 @@ const (
 	stepTop    = 64e3    // Hz, where it is 31 dB down and the harmonics end
 	stepFrom   = -0.5e-3 // s, from when what measurements hold of flight is over
 	stepTo     = 5e-3    // s
+	mostFlight = 0.2     // s, well within stepPeriod
 )
 
 // A Step is what a design answers to a step of the amplifier's voltage, as heard through a Gaussian low-pass of
@@ -39,15 +40,16 @@ func StepFrequencies() []float64 {
 	return f
 }
 
-// StepOf returns the step response that belongs to a response over StepFrequencies.
-func StepOf(r *sim.Response) (*Step, error) {
+// StepOf returns the step response that belongs to a response over StepFrequencies, from when the time late in s is over that
+// measurements hold of flight.
+func StepOf(r *sim.Response, late float64) (*Step, error) {
 	if want := StepFrequencies(); len(r.Freqs) != len(want) || r.Freqs[0] != want[0] {
 		return nil, fmt.Errorf("chart: a step response needs the response at %d frequencies, and there are %d; predict it at StepFrequencies", len(want), len(r.Freqs))
 	}
 	fft := fourier.NewFFT(stepSize)
 	step := &Step{}
 	const dt = stepPeriod / stepSize
-	late := flight(r)
+	late = min(late, mostFlight)
 	first, last := int(math.Ceil((late+stepFrom)/dt)), int(math.Floor((late+stepTo)/dt))
 	for i := first; i <= last; i++ {
 		step.Seconds = append(step.Seconds, float64(i)*dt)

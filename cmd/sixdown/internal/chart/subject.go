@@ -16,6 +16,7 @@ type Subject struct {
 	Targets  [][]float64
 	Crossing []Crossing // rising
 	Step     *Step      // for StepResponse
+	Late     float64    // s, flight time that measurements hold, to be left out of phases and times
 	Gains    bool       // gains are drawn though there is a sum, since the other subject has none
 }
 

@@ -1,6 +1,7 @@
 package cli
 
 import (
+	"fmt"
 	"slices"
 
 	"github.com/spf13/cobra"
@@ -99,6 +100,17 @@ type prediction struct {
 	level     float64         // V rms, what SPL is for
 	distance  float64         // m
 	warnings  []string
+}
+
+// splConditions says at what distance and for what voltage SPL is, "SPL at 2 m for 2.83 V"; of two designs that differ, of each.
+func splConditions(ps []*prediction) string {
+	at := func(p *prediction) string {
+		return fmt.Sprintf("at %s m for %s V", figures(p.distance, 4), figures(p.level, 4))
+	}
+	if len(ps) == 2 && at(ps[0]) != at(ps[1]) {
+		return fmt.Sprintf("SPL of A %s, of B %s", at(ps[0]), at(ps[1]))
+	}
+	return "SPL " + at(ps[0])
 }
 
 func runPredict(s *streams, o *predictOptions) error {

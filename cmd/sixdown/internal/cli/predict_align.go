@@ -14,8 +14,9 @@ type (
 	alignmentDocument struct {
 		Low              string             `json:"low"`
 		High             string             `json:"high"`
-		Lower            []string           `json:"lower"` // the ways on one side of the crossing
-		Upper            []string           `json:"upper"` // and on the other
+		OneTimeBase      bool               `json:"one_time_base"` // false: the phases that follow mean nothing
+		Lower            []string           `json:"lower"`         // the ways on one side of the crossing
+		Upper            []string           `json:"upper"`         // and on the other
 		CrossingHz       number             `json:"crossing_hz"`
 		BandHz           []number           `json:"band_hz"` // where both ways are within 12 dB of the sum
 		Difference       differenceOfPhase  `json:"phase_difference"`
@@ -64,7 +65,7 @@ func alignmentDocuments(as []sim.Alignment) []alignmentDocument {
 	docs := make([]alignmentDocument, 0, len(as))
 	for _, a := range as {
 		doc := alignmentDocument{
-			Low: a.Low, High: a.High, Lower: a.Lower, Upper: a.Upper,
+			Low: a.Low, High: a.High, OneTimeBase: a.OneTimeBase, Lower: a.Lower, Upper: a.Upper,
 			CrossingHz: number(a.Frequency), BandHz: numbers(a.Band[:]),
 			Difference: differenceOfPhase{
 				MeanDeg: number(a.MeanDeg), LeastDeg: number(a.LeastDeg), WorstDeg: number(a.WorstDeg), WorstHz: number(a.WorstAt),
@@ -87,10 +88,11 @@ func alignmentDocuments(as []sim.Alignment) []alignmentDocument {
 // A stepping is how well two ways are in step.
 type stepping string
 
-// What two equal ways lose in the sum at these mean phases is 0.7 dB at 45°, 3 dB at 90° and 6 dB, so that they are no
+// What two equal ways lose in the sum at these mean phases is 0.1 dB at 20°, 0.7 dB at 45°, 3 dB at 90° and 6 dB, so that they are no
 // louder than one, at 120°.
 const (
 	inStep     stepping = "in step"
+	nearly     stepping = "nearly in step"
 	quadrature stepping = "in quadrature, as odd orders are"
 	undecided  stepping = "in quadrature, which is right for odd orders and wrong for even ones"
 	outOfStep  stepping = "out of step"
@@ -100,8 +102,10 @@ const (
 // steppingOf judges a crossing by what the ways there aim at, a quarter turn being as it should be for odd orders alone.
 func steppingOf(a *sim.Alignment, aim parity) stepping {
 	switch {
-	case a.MeanDeg <= 45:
+	case a.MeanDeg <= 20:
 		return inStep
+	case a.MeanDeg <= 45:
+		return nearly
 	case math.Abs(a.MeanDeg-90) < 15 && a.WorstDeg-a.LeastDeg < 30 && aim == odd:
 		return quadrature
 	case math.Abs(a.MeanDeg-90) < 15 && a.WorstDeg-a.LeastDeg < 30 && aim == unstated:
@@ -147,24 +151,38 @@ func aimAt(d *xover.Design, c sim.Crossing) parity {
 	return aim
 }
 
-// alignmentText says how well two ways are in step and, where they are not, what to do.
-func alignmentText(a *sim.Alignment, aim parity) string {
+// worthMoving is by how many degrees a move must lessen what two ways nearly in step are apart, to be told.
+const worthMoving = 10
+
+// alignmentText says how well two ways are in step and, where they are not, what to do. With turned the ear is not straight ahead.
+func alignmentText(a *sim.Alignment, aim parity, turned bool) string {
 	const indent = "          "
+	if !a.OneTimeBase {
+		return folded(indent, fmt.Sprintf("%s and %s are not on one time base: nothing can be said of the phase between them, nor of what they add up to", a.Low, a.High))
+	}
 	found := steppingOf(a, aim)
 	apart := apartText(a.LeastDeg, a.WorstDeg) + " from " + hertzToHertz(a.Band)
 	if fixed(a.LeastDeg, 0) != fixed(a.WorstDeg, 0) {
 		apart += ", mean " + wholeDegrees(a.MeanDeg)
 	}
-	null := "reversed, " + holeText(a.Null)
 	quarterTurn := found == quadrature || found == undecided
-	if a.ReversedIsBetter && !quarterTurn {
-		null = holeText(a.AsWired) + ", relative to " + strings.Join(fewer(a), " and ") + " reversed"
-	}
-	text := folded(indent, fmt.Sprintf("%s: %s; %s; %s", found, apart, null, lobeText(&a.Lobe)))
-	if found == inStep || quarterTurn {
+	text := folded(indent, fmt.Sprintf("%s: %s; %s; %s", found, apart, nullText(a, quarterTurn), lobeText(&a.Lobe, turned)))
+	switch {
+	case found == inStep, quarterTurn, found == nearly && a.MeanDeg-a.Best.MeanDeg < worthMoving:
 		return text
 	}
 	return text + folded(indent, remedy(a))
+}
+
+// nullText says what becomes of the sum with one side reversed: the better in step, the deeper the null.
+func nullText(a *sim.Alignment, quarterTurn bool) string {
+	switch {
+	case noNull(a.Null) && noNull(a.AsWired):
+		return "no null, either way about"
+	case a.ReversedIsBetter && !quarterTurn:
+		return "as wired, " + holeText(a.AsWired) + ", relative to " + strings.Join(fewer(a), " and ") + " reversed"
+	}
+	return "reversed, " + holeText(a.Null)
 }
 
 // fewer returns the ways on that side of a crossing which has fewer.
@@ -209,41 +227,61 @@ func remedy(a *sim.Alignment) string {
 
 // thenApart says how far two ways would be apart.
 func thenApart(mean, worst float64) string {
+	if fixed(worst, 0) == "0" {
+		return ", which brings them into step"
+	}
 	return fmt.Sprintf(", for a mean of %s and %s at most", wholeDegrees(mean), wholeDegrees(worst))
 }
+
+// noNull reports whether h is too shallow to be called a null.
+func noNull(h sim.Hole) bool { return h.DepthDB > -3 }
 
 // holeText says how deep a hole is: "a null of -17.1 dB at 2.2 kHz".
 func holeText(h sim.Hole) string {
 	switch {
-	case h.DepthDB < -60: // deeper than parts and rooms let any be
+	case h.DepthDB < -silentDB:
 		return "a null below -60 dB at " + hertz(h.Frequency)
-	case h.DepthDB > -3:
+	case noNull(h):
 		return "no null"
 	}
 	return fmt.Sprintf("a null of %s dB at %s", fixed(h.DepthDB, 1), hertz(h.Frequency))
 }
 
-// lobeText says where the main lobe points.
-func lobeText(l *sim.Lobe) string {
-	text := "main lobe straight ahead"
+// lobeText says where the main lobe points, straight ahead or, for an ear that is turned, from there.
+func lobeText(l *sim.Lobe, turned bool) string {
+	ahead, from := "straight ahead", ""
+	if turned {
+		ahead, from = "at the ear", " from the ear"
+	}
+	text := "main lobe " + ahead
 	up := "up"
 	if l.AngleDeg < 0 {
 		up = "down"
 	}
+	there := "ahead"
+	if turned {
+		there = "there"
+	}
 	switch angle := math.Abs(l.AngleDeg); {
 	case angle >= 45:
-		text = "main lobe 45° or more " + up
+		text = "main lobe 45° or more " + up + from
 	case fixed(angle, 0) != "0":
-		text = fmt.Sprintf("main lobe %s %s", wholeDegrees(angle), up)
+		text = fmt.Sprintf("main lobe %s %s%s", wholeDegrees(angle), up, from)
 	}
-	if l.LevelDB >= 0.5 && !math.IsInf(l.LevelDB, 0) {
-		text += fmt.Sprintf(", %s dB above that ahead", fixed(l.LevelDB, 1))
+	switch {
+	case l.LevelDB > silentDB:
+		text += "; " + ahead + " it is silent"
+	case l.LevelDB >= 0.5:
+		text += fmt.Sprintf(", %s dB above that %s", fixed(l.LevelDB, 1), there)
 	}
 	if len(l.Warnings) > 0 {
 		text += ", if measured drivers sound alike at all angles"
 	}
 	return text
 }
+
+// silentDB is how far in dB below its parts a sum is silent: deeper than parts and rooms let any null be.
+const silentDB = 60
 
 // apartText says how far two ways are apart: "4 to 31° apart".
 func apartText(least, worst float64) string {

@@ -84,6 +84,9 @@ func (o *chartOptions) page(s *streams, ps []*prediction, grid *gridOptions) (*c
 		subjects = append(subjects, subject)
 		page.Caption = append(page.Caption, line)
 	}
+	if a := angleText(ps[0].Angle); a != "" {
+		page.Caption = append(page.Caption, "the ear is turned "+a)
+	}
 	if len(ps) > 1 {
 		page.Title = "A: " + orUntitled(ps[0].Title) + "   B: " + orUntitled(ps[1].Title)
 		if o.changes != "" {
@@ -94,7 +97,7 @@ func (o *chartOptions) page(s *streams, ps []*prediction, grid *gridOptions) (*c
 	levels, phases := "gain across the drivers, dB re open circuit", "of the gain"
 	switch {
 	case sums:
-		levels = fmt.Sprintf("dB SPL at %s m for %s V", figures(first.distance, 4), figures(first.level, 4))
+		levels = "dB " + splConditions(ps)
 		phases = "at the ear, without the flight over the listening distance"
 	case first.summary.Tone != nil:
 		levels = "output, dB re the open-circuit source"
@@ -163,6 +166,9 @@ func (o *chartOptions) subject(p *prediction, sum bool, grid *gridOptions) (*cha
 		return nil, err
 	}
 	s := &chart.Subject{Response: r, Gains: !sum}
+	if held, ok := p.system.HeldFlight(); ok {
+		s.Late = held
+	}
 	if s.Targets, err = targetLevels(p, r, sum); err != nil {
 		return nil, err
 	}
@@ -191,7 +197,7 @@ func (o *chartOptions) subject(p *prediction, sum bool, grid *gridOptions) (*cha
 		if !sum {
 			long.Sum = nil
 		}
-		if s.Step, err = chart.StepOf(long); err != nil {
+		if s.Step, err = chart.StepOf(long, s.Late); err != nil {
 			return nil, err
 		}
 	}

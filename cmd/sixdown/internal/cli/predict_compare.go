@@ -143,7 +143,14 @@ func (c *comparison) text() string {
 	if c.changes != "" {
 		fmt.Fprintf(&b, " with %s", c.changes)
 	}
-	b.WriteString("\n\n")
+	b.WriteByte('\n')
+	if c.sums() {
+		b.WriteString(c.conditions() + "\n")
+	}
+	if a := angleText(c.a.Angle); a != "" {
+		fmt.Fprintf(&b, "The ear is turned %s\n", a)
+	}
+	b.WriteByte('\n')
 	b.WriteString(c.table().Text(pageWidth))
 	for _, p := range []struct {
 		name string
@@ -162,6 +169,9 @@ func (c *comparison) text() string {
 	}
 	return b.String()
 }
+
+// conditions says at what distance and for what voltage the SPL of the two is.
+func (c *comparison) conditions() string { return splConditions([]*prediction{c.a, c.b}) }
 
 // titled returns a design's title with its file.
 func titled(p *prediction, file string) string {

@@ -16,7 +16,9 @@ type (
 		Ways        []wayDocument    `json:"ways"`
 		Sum         sumDocument      `json:"sum"`
 		Input       inputDocument    `json:"input"`
-		Drivers     []driverDocument `json:"drivers"` // those with impedance tables
+		Drivers     []driverDocument `json:"drivers"`       // those with impedance tables
+		Flights     []flightDocument `json:"flights"`       // of drivers with a measured phase
+		OneTimeBase bool             `json:"one_time_base"` // false: phases between drivers, and the sum, mean nothing
 		Summary     summaryDocument  `json:"summary"`
 		Warnings    []string         `json:"warnings"`
 	}
@@ -85,7 +87,8 @@ func (p *prediction) document() predictDocument {
 			PhaseDeg:     phases(p.Zin),
 			EPDROhm:      numbers(sim.EPDRs(p.Zin)),
 		},
-		Drivers:  driverDocuments(p.system.Fits()),
+		Drivers: driverDocuments(p.system.Fits()),
+		Flights: flightDocuments(p.system), OneTimeBase: p.system.OneTimeBase(),
 		Summary:  summarize(p.summary, p.alignment),
 		Warnings: append([]string{}, p.warnings...), // [] and not null where there are none
 	}

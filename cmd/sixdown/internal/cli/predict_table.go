@@ -8,6 +8,7 @@ import (
 	"sixdown/cmd/sixdown/internal/caution"
 	"sixdown/cmd/sixdown/internal/table"
 	"sixdown/sim"
+	"sixdown/sim/field"
 )
 
 // pageWidth is how wide in characters tables may grow before they are folded.
@@ -20,7 +21,7 @@ func (p *prediction) text() string {
 		fmt.Fprintf(&b, "%s\n", p.Title)
 	}
 	if p.Sum != nil {
-		fmt.Fprintf(&b, "SPL at %[1]s m for %[2]s V; delay without the flight over %[1]s m\n", figures(p.distance, 4), figures(p.level, 4))
+		fmt.Fprintf(&b, "SPL at %[1]s m for %[2]s V; delay without the flight over %[1]s m%[3]s\n", figures(p.distance, 4), figures(p.level, 4), p.heldText())
 	}
 	if a := angleText(p.Angle); a != "" {
 		fmt.Fprintf(&b, "The ear is turned %s\n", a)
@@ -99,8 +100,8 @@ func (p *prediction) summaryText() string {
 	for k, c := range s.Crossings {
 		level := decibels(c.LevelDB) + " each"
 		switch {
-		case math.IsInf(c.LevelDB, 0):
-			level = "no sum is left of them"
+		case c.LevelDB > silentDB:
+			level = "no sum is left of them, which is silent there"
 		case s.Sum != nil:
 			level += ", relative to the sum"
 		}
@@ -109,7 +110,7 @@ func (p *prediction) summaryText() string {
 		case p.alignment == nil && math.Abs(c.PhaseDeg) > 120: // beyond which the two are less than either alone
 			b.WriteString("          they are nearly opposed: try the other polarity\n")
 		case p.alignment != nil:
-			b.WriteString(alignmentText(&p.alignment[k], aimAt(p.design, c)))
+			b.WriteString(alignmentText(&p.alignment[k], aimAt(p.design, c), p.Angle != (field.Angle{})))
 		}
 	}
 	switch q := s.Sum; {
@@ -135,6 +136,7 @@ func (p *prediction) summaryText() string {
 		}
 		fmt.Fprintf(&b, "output    in third-octaves from %s at %s to %s at %s\n", decibels(t.GainDB[low]), hertz(t.Freqs[low]), decibels(t.GainDB[high]), hertz(t.Freqs[high]))
 	}
+	b.WriteString(flightsText(p.system))
 	b.WriteString(fitsText(p.system.Fits()))
 	fmt.Fprintf(&b, "load      lowest |Z| %s Ω at %s", ohms(s.MinImpedance), hertz(s.MinImpedanceAt))
 	if s.Tone == nil {
