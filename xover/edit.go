@@ -46,31 +46,54 @@ func Edit(src []byte, values map[string]float64) ([]byte, error) {
 // EditDCR returns a copy of the design file src in which each coil named in ohms has that winding resistance, in Ω; where the
 // file gives none it is added. Like Edit it changes these alone and proves it.
 func EditDCR(src []byte, ohms map[string]float64) ([]byte, error) {
+	return editKey(src, "dcr", quantity.Ohm, ohms, func(f *file, name string) (map[string]keyPlace, *float64) {
+		part := f.design.Part(name)
+		if part == nil || part.Kind != Inductor {
+			return nil, nil
+		}
+		return f.dcr, &part.DCR
+	})
+}
+
+// EditTol returns a copy of the design file src in which each part named in tols has that tolerance, a fraction of its value; where
+// the file gives none it is added. Like Edit it changes these alone and proves it.
+func EditTol(src []byte, tols map[string]float64) ([]byte, error) {
+	return editKey(src, "tol", quantity.Percent, tols, func(f *file, name string) (map[string]keyPlace, *float64) {
+		part := f.design.Part(name)
+		if part == nil {
+			return nil, nil
+		}
+		return f.tol, &part.Tol
+	})
+}
+
+// editKey gives parts a key of that unit. of returns where the file has the key of a part, and the number itself; nil if the
+// part can have none.
+func editKey(src []byte, key string, unit quantity.Unit, values map[string]float64, of func(f *file, name string) (map[string]keyPlace, *float64)) ([]byte, error) {
 	f, err := parseFile("", src)
 	if err != nil {
 		return nil, err
 	}
-	want := f.design
 	var splices []splice
-	for _, name := range sortedKeys(ohms) {
-		part := want.Part(name)
-		if part == nil || part.Kind != Inductor {
-			return nil, &Error{What: fmt.Sprintf("%q is no coil", name), Mend: "name one of [parts]"}
+	for _, name := range sortedKeys(values) {
+		places, number := of(f, name)
+		if number == nil {
+			return nil, &Error{What: fmt.Sprintf("%q is no part that has a %s", name, key), Mend: "name one of [parts]"}
 		}
-		if what, mend := valueFault(ohms[name], quantity.Ohm, notNegative); what != "" {
-			return nil, &Error{What: name + ": dcr: " + what, Mend: mend}
+		if what, mend := valueFault(values[name], unit, notNegative); what != "" {
+			return nil, &Error{What: name + ": " + key + ": " + what, Mend: mend}
 		}
-		if part.DCR == ohms[name] {
+		if *number == values[name] {
 			continue
 		}
-		part.DCR = ohms[name]
-		place, ok := f.dcr[name]
+		*number = values[name]
+		place, ok := places[name]
 		if !ok { // the short form
-			place = dcrPlace{f.parts[name], "{ value = " + string(src[f.parts[name].from:f.parts[name].to]) + ", dcr = ", " }"}
+			place = keyPlace{f.parts[name], "{ value = " + string(src[f.parts[name].from:f.parts[name].to]) + ", " + key + " = ", " }"}
 		}
-		splices = append(splices, splice{place.span, place.before + strconv.Quote(quantity.Format(part.DCR, quantity.Ohm)) + place.after})
+		splices = append(splices, splice{place.span, place.before + strconv.Quote(quantity.Format(*number, unit)) + place.after})
 	}
-	return proved(src, splices, want)
+	return proved(src, splices, f.design)
 }
 
 // EditControl returns a copy of the design file src in which each control named in at is turned so far, 0

@@ -154,3 +154,30 @@ network = ["series L1", "series L2", "series L3", "series L4", "series L5"]
 		}
 	}
 }
+
+func TestEditTol(t *testing.T) {
+	const src = `[parts]
+L1 = "0.5 mH" # short
+C2 = { value = "1 uF", tol = "10 %" } # stated
+R3 = { value = "2 ohm", hold = true }
+[driver.d]
+impedance = "8 ohm"
+[[way]]
+name = "low"
+driver = "d"
+network = ["series L1", "series C2", "series R3"]
+`
+	want := strings.NewReplacer(`"0.5 mH"`, `{ value = "0.5 mH", tol = "2 %" }`, `"10 %"`, `"5 %"`, `"2 ohm"`, `"2 ohm", tol = "1 %"`).Replace(src)
+	got, err := EditTol([]byte(src), map[string]float64{"L1": 0.02, "C2": 0.05, "R3": 0.01})
+	if err != nil {
+		t.Fatal(err)
+	}
+	if string(got) != want {
+		t.Errorf("got\n%s", got)
+	}
+	for _, bad := range []map[string]float64{{"L9": 0.1}, {"L1": -1}, {"L1": math.NaN()}} {
+		if got, err := EditTol([]byte(src), bad); err == nil || got != nil {
+			t.Errorf("%v: no error", bad)
+		}
+	}
+}

@@ -30,15 +30,15 @@ type file struct {
 	design   *Design
 	warnings []Warning
 	parts    map[string]span     // of the literal that gives a part's value
-	dcr      map[string]dcrPlace // where a part's winding resistance is written, or could be
+	dcr, tol map[string]keyPlace // where a part's winding resistance and tolerance are written, or could be
 	controls map[string]span     // of the number that gives a control's setting
 }
 
 // A span is a piece of the source, from its first byte to the one behind it.
 type span struct{ from, to int }
 
-// A dcrPlace is what to put a resistance in place of, and what goes before and after it.
-type dcrPlace struct {
+// A keyPlace is what to put a key's text in place of, and what goes before and after it.
+type keyPlace struct {
 	span
 	before, after string
 }
@@ -65,7 +65,7 @@ func parseFile(name string, src []byte) (*file, error) {
 	p := &parser{
 		diagnostics: diagnostics{file: name},
 		design:      defaults(),
-		file:        &file{parts: map[string]span{}, dcr: map[string]dcrPlace{}, controls: map[string]span{}},
+		file:        &file{parts: map[string]span{}, dcr: map[string]keyPlace{}, tol: map[string]keyPlace{}, controls: map[string]span{}},
 		partAt:      map[string]int{},
 		faulty:      map[string]bool{},
 		lost:        map[string]bool{},

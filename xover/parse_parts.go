@@ -99,29 +99,29 @@ func (p *parser) partValue(part *Part, n *node) {
 	p.file.parts[part.Name] = span{n.at + p.offset, n.end + p.offset}
 }
 
-// dcrPlace notes where the long form of a part has its dcr, or could have it.
-func (p *parser) dcrPlace(part *Part, r *tableReader) {
+// keyPlace tells where the long form of a part has a key, or could have it.
+func (p *parser) keyPlace(r *tableReader, key string) (place keyPlace, ok bool) {
 	literal := func(key string) *node {
 		if e := r.table.index[key]; e != nil && e.value.kind == textNode {
 			return e.value
 		}
 		return nil
 	}
-	if n := literal("dcr"); n != nil {
-		p.file.dcr[part.Name] = dcrPlace{span{n.at + p.offset, n.end + p.offset}, "", ""}
-		return
+	if n := literal(key); n != nil {
+		return keyPlace{span{n.at + p.offset, n.end + p.offset}, "", ""}, true
 	}
 	n := literal("value")
 	if n == nil {
 		n = literal("same")
 	}
-	if n != nil {
-		before := "\ndcr = "
-		if r.table.inline {
-			before = ", dcr = "
-		}
-		p.file.dcr[part.Name] = dcrPlace{span{n.end + p.offset, n.end + p.offset}, before, ""}
+	if n == nil {
+		return keyPlace{}, false
 	}
+	before := "\n" + key + " = "
+	if r.table.inline {
+		before = ", " + key + " = "
+	}
+	return keyPlace{span{n.end + p.offset, n.end + p.offset}, before, ""}, true
 }
 
 // shortName tells a name such as R1, L12 or C3, whose letter says what the part is.
@@ -171,7 +171,11 @@ func (p *parser) partTable(part *Part, r *tableReader) {
 		}
 		return true
 	}
-	p.dcrPlace(part, r)
+	for key, places := range map[string]map[string]keyPlace{"dcr": p.file.dcr, "tol": p.file.tol} {
+		if place, ok := p.keyPlace(r, key); ok {
+			places[part.Name] = place
+		}
+	}
 	if only("dcr", Inductor) {
 		r.quantity("dcr", quantity.Ohm, notNegative, &part.DCR)
 	}

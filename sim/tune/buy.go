@@ -2,10 +2,12 @@ package tune
 
 import (
 	"context"
+	"errors"
 	"fmt"
 	"math"
 	"runtime"
 	"slices"
+	"strings"
 
 	"sixdown/xover/preferred"
 	"sixdown/xover/quantity"
@@ -16,6 +18,28 @@ func noneFor(v *Variable) error {
 	unit := v.Kind.Unit()
 	return fmt.Errorf("tune: the list has no %s between %s and %s for %s; add some, hold the part, or widen its range",
 		v.Kind, quantity.Format(v.Low, unit), quantity.Format(v.High, unit), v.Part)
+}
+
+// tooFew says what the shelf has too little of for any set, as the nearest values would need it.
+func (p *Problem) tooFew(m *market, choice []int) error {
+	for i, it := range m.items {
+		need := 0
+		var parts []string
+		for v, c := range choice {
+			for _, k := range m.candidates[v][c].items {
+				if k == i {
+					need += m.parts[v]
+					parts = append(append(parts, p.vars[v].Part), p.vars[v].Followers...)
+				}
+			}
+		}
+		if it.Count >= 0 && need > it.Count {
+			unit := p.vars[slices.IndexFunc(p.vars, func(q Variable) bool { return q.Part == parts[0] })].Kind.Unit()
+			return fmt.Errorf("tune: the list has too few parts for any set that was tried: of %s there are %d, and %s need %d; add some, or lower what is asked",
+				quantity.Format(it.Value, unit), it.Count, strings.Join(parts, ", "), need)
+		}
+	}
+	return errors.New("tune: no set was found before the search was interrupted; let it go on for longer")
 }
 
 // BuySettings are how Buy looks. The zero value is a good one.
@@ -33,7 +57,7 @@ type Bought struct {
 	Rounded Score // of the nearest values to the optimum, for comparison
 	Choices []Choice
 	Price   float64 // of all, as far as prices are stated
-	Unmet   bool    // no set that was tried holds the limit on the impedance
+	Unmet   bool    // no set that was tried holds the limit on the impedance; this is the one that comes nearest
 	Nodes   int     // places of the search tree
 	Proved  bool    // the tree was searched to its end: no set is better, as far as re-tuning finds what is best of the rest
 	Status  Status
@@ -48,6 +72,19 @@ type Choice struct {
 	Parts    int // how many parts of the design it stands for
 }
 
+// Tol returns the tolerance of what is bought, as a fraction: the wider of a pair's, which is what the two have at worst; negative
+// where it is not stated.
+func (c *Choice) Tol() float64 {
+	tol := -1.0
+	for _, it := range c.Items {
+		if it.Tol < 0 {
+			return -1
+		}
+		tol = max(tol, it.Tol)
+	}
+	return tol
+}
+
 // A buyer looks for the best set.
 type buyer struct {
 	p      *Problem
@@ -58,6 +95,8 @@ type buyer struct {
 
 	bend      []float64 // by variable: how much the objective bends with it at the optimum
 	best      []int     // candidate by variable; nil: none yet
+	nearest   []int     // of those that the shelf has enough for, the one that comes nearest to the limit; nil: none yet
+	highest   float64   // ln of the least |Zin| of nearest
 	bestF     float64
 	bestPrice float64
 	x         []float64 // for value
@@ -79,7 +118,7 @@ func (p *Problem) Buy(ctx context.Context, from []float64, source Source, set Bu
 		return nil, err
 	}
 	coils := p.windings(source)
-	b := &buyer{p: p, ctx: ctx, market: p.market(source, coils, set.Pairs), bestF: math.Inf(1), x: make([]float64, len(x)), most: set.Nodes, tell: set.Progress, limit: math.Inf(-1)}
+	b := &buyer{p: p, ctx: ctx, market: p.market(source, coils, set.Pairs), bestF: math.Inf(1), x: make([]float64, len(x)), most: set.Nodes, tell: set.Progress, limit: math.Inf(-1), highest: math.Inf(-1)}
 	if b.most <= 0 {
 		b.most = 800
 	}
@@ -107,12 +146,15 @@ func (p *Problem) Buy(ctx context.Context, from []float64, source Source, set Bu
 		return nil, err
 	}
 	if b.best == nil {
-		b.best, res.Unmet = rounded, true
+		if b.nearest == nil {
+			return nil, p.tooFew(b.market, rounded)
+		}
+		b.best, res.Unmet = b.nearest, true
 	}
 	if res.Score, err = b.score(b.best); err != nil {
 		return nil, err
 	}
-	res.Price, res.Nodes, res.Proved = b.market.price(b.best), b.nodes, b.nodes < b.most && ctx.Err() == nil
+	res.Price, res.Nodes, res.Proved = b.market.price(b.best), b.nodes, b.nodes < b.most && ctx.Err() == nil && !res.Unmet
 	if ctx.Err() != nil {
 		res.Status = Interrupted
 	}
@@ -131,19 +173,13 @@ func (p *Problem) Buy(ctx context.Context, from []float64, source Source, set Bu
 	return res, nil
 }
 
-// place moves the evaluator to a choice, each coil with the resistance of what was chosen.
+// place returns where a choice is, each coil with the resistance of what was chosen.
 func (b *buyer) place(choice []int) ([]float64, windings) {
-	x := make([]float64, len(choice))
-	coils := make(windings, len(choice))
+	x, ohms := make([]float64, len(choice)), make([]float64, len(choice))
 	for v, c := range choice {
-		q := &b.market.candidates[v][c]
-		x[v] = q.x
-		if q.ohm > 0 {
-			lnR := math.Log(q.ohm)
-			coils[v] = &winding{[]float64{q.x, q.x + 1}, []float64{lnR, lnR}}
-		}
+		x[v], ohms[v] = b.market.candidates[v][c].x, b.market.candidates[v][c].ohm
 	}
-	return x, coils
+	return x, b.p.fixedOhms(x, ohms)
 }
 
 // score returns the score of a choice.
@@ -179,10 +215,21 @@ func (b *buyer) value(choice []int, worth float64) (float64, error) {
 		return f, nil
 	}
 	lowest, err := b.e.lowest()
-	if err != nil || lowest < b.limit {
+	if err != nil {
 		return math.Inf(1), err
 	}
+	b.approach(choice, lowest)
+	if lowest < b.limit {
+		return math.Inf(1), nil
+	}
 	return f, nil
+}
+
+// approach keeps the choice that comes nearest to the limit on the impedance, for ln of its least |Zin|.
+func (b *buyer) approach(choice []int, lowest float64) {
+	if lowest > b.highest && b.best == nil {
+		b.nearest, b.highest = slices.Clone(choice), lowest
+	}
 }
 
 // try keeps a choice if it is the best so far; it reports whether it is.
@@ -204,8 +251,12 @@ func (b *buyer) keep(choice []int, f float64) (bool, error) {
 		// What lies between the grid's points is looked at only for what would be chosen.
 		x, coils := b.place(choice)
 		ohm, _, err := b.p.leastImpedance(x, coils)
-		if err != nil || ohm < b.p.limit*(1-1e-9) {
+		if err != nil {
 			return false, err
+		}
+		if ohm < b.p.limit*(1-1e-9) {
+			b.approach(choice, math.Log(ohm))
+			return false, nil
 		}
 	}
 	b.best, b.bestF, b.bestPrice = slices.Clone(choice), f, price
@@ -228,7 +279,7 @@ func (b *buyer) exactOhms(choice []int) error {
 
 // search goes through all the stages.
 func (b *buyer) search(x []float64, rounded []int) error {
-	if _, err := b.try(rounded); err != nil {
+	if _, err := b.try(rounded); err != nil || b.ctx.Err() != nil {
 		return err
 	}
 	tops, err := b.tops(x)
@@ -255,6 +306,9 @@ func (b *buyer) search(x []float64, rounded []int) error {
 			return err
 		}
 	}
+	if b.ctx.Err() != nil {
+		return nil
+	}
 	for _, choice := range b.scattered() {
 		if err := b.climb(choice); err != nil {
 			return err
@@ -276,6 +330,9 @@ func (b *buyer) tops(x []float64) ([][]float64, error) {
 	starts := append([][]float64{clampTo(b.p, x)}, b.p.scatter(defaultStarts/2, 0)...)
 	r := &runner{p: b.p, coils: b.e.coils, ctx: b.ctx, workers: runtime.GOMAXPROCS(0)}
 	found, err := r.all(starts)
+	if b.ctx.Err() != nil {
+		return nil, nil // interrupted before any was found
+	}
 	if err != nil {
 		return nil, err
 	}

@@ -77,13 +77,9 @@ func (p *Problem) newEvaluatorWith(coils windings) (*evaluator, error) {
 		}
 	}
 	if p.limit > 0 {
-		e.loads = logGrid(loadFrom, loadTo, p.grid)
-		if e.load, err = p.newSweep(e.loads, coils); err != nil {
-			return nil, err
-		}
-		e.zin = make([]complex128, len(e.loads))
+		err = e.setLoads(logGrid(loadFrom, loadTo, p.grid))
 	}
-	return e, nil
+	return e, err
 }
 
 // set moves to the values of which x are the logarithms.

@@ -33,8 +33,9 @@ type Octave struct {
 // leastChange is the ratio in ln below which a part counts as unchanged.
 const leastChange = 0.005
 
-// Explain compares values before with values after, by variable.
-func (p *Problem) Explain(before, after []float64) (*Explanation, error) {
+// Explain compares values before with values after, by variable. ohms are the resistances in Ω that coils have with the values
+// after, by variable, 0 for what the design states; nil: all as the design states.
+func (p *Problem) Explain(before, after, ohms []float64) (*Explanation, error) {
 	a, err := p.logs(before)
 	if err != nil {
 		return nil, err
@@ -43,7 +44,7 @@ func (p *Problem) Explain(before, after []float64) (*Explanation, error) {
 	if err != nil {
 		return nil, err
 	}
-	e, err := p.newEvaluator()
+	e, err := p.newEvaluatorWith(p.fixedOhms(b, ohms))
 	if err != nil {
 		return nil, err
 	}
@@ -53,6 +54,7 @@ func (p *Problem) Explain(before, after []float64) (*Explanation, error) {
 	}
 	x := &Explanation{}
 	done := e.wayLevels()
+	counts := p.counting()
 	octaves := p.octaves()
 	offAfter := e.offs(octaves)
 	names := p.sys.Names()
@@ -70,6 +72,9 @@ func (p *Problem) Explain(before, after []float64) (*Explanation, error) {
 		undone := e.wayLevels()
 		for w := range names {
 			for _, o := range octaves {
+				if !counts[w][o[0]] && !counts[w][o[len(o)-1]] {
+					continue
+				}
 				mean := 0.0
 				for _, k := range o {
 					mean += (done[w][k] - undone[w][k]) / float64(len(o))
@@ -82,6 +87,9 @@ func (p *Problem) Explain(before, after []float64) (*Explanation, error) {
 		x.Changes = append(x.Changes, c)
 	}
 	slices.SortStableFunc(x.Changes, func(a, b Change) int { return cmp.Compare(b.Costs, a.Costs) })
+	if e, err = p.newEvaluator(); err != nil {
+		return nil, err
+	}
 	if _, err := e.objective(a); err != nil {
 		return nil, err
 	}
@@ -90,6 +98,25 @@ func (p *Problem) Explain(before, after []float64) (*Explanation, error) {
 		x.Octaves = append(x.Octaves, o)
 	}
 	return x, nil
+}
+
+// counting reports for each way and grid point whether the way's level there counts by itself: where its target is high enough, or
+// everywhere if it has none.
+func (p *Problem) counting() [][]bool {
+	counts := make([][]bool, p.outputs())
+	for w := range counts {
+		counts[w] = make([]bool, len(p.freqs))
+		i := slices.IndexFunc(p.terms, func(t term) bool { return t.way == w })
+		for k := range counts[w] {
+			counts[w][k] = i < 0
+		}
+		if i >= 0 {
+			for _, k := range p.terms[i].at {
+				counts[w][k] = true
+			}
+		}
+	}
+	return counts
 }
 
 // octaves returns the grid points of each octave of the band.

@@ -252,7 +252,7 @@ func TestInterruptedKeepsTheBest(t *testing.T) {
 	}
 }
 
-// An impossible limit is said to be unmet, and what is reached is the load's own greatest: 8 Ω at DC.
+// An impossible limit is said to be unmet, and what is reached is the load's own greatest: 8 Ω behind two coils of 15 mH at 20 Hz.
 func TestUnmetLimit(t *testing.T) {
 	text, _ := resistive("B3", func(int) float64 { return 1.2 })
 	p := problem(t, "[tune]\nmin_impedance = \"50 ohm\"\n"+text)
@@ -260,7 +260,7 @@ func TestUnmetLimit(t *testing.T) {
 	if err != nil {
 		t.Fatal(err)
 	}
-	if !r.Unmet || r.After.MinImpedance > 8.001 {
+	if most := math.Hypot(8, 2*math.Pi*20*30e-3); !r.Unmet || r.After.MinImpedance > most*1.001 {
 		t.Errorf("unmet %t, least impedance %g", r.Unmet, r.After.MinImpedance)
 	}
 }
@@ -343,7 +343,7 @@ driver = "w"
 target = ["low-pass butterworth 1 at 1 kHz"]
 network = ["series L1"]
 `)
-	x, err := p.Explain([]float64{2.5464790894703255e-3}, []float64{1.2732395447351628e-3})
+	x, err := p.Explain([]float64{2.5464790894703255e-3}, []float64{1.2732395447351628e-3}, nil)
 	if err != nil {
 		t.Fatal(err)
 	}

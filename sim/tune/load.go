@@ -3,6 +3,7 @@ package tune
 import (
 	"math"
 	"math/cmplx"
+	"slices"
 )
 
 // A dip is a minimum of |Zin| over the grid.
@@ -14,6 +15,32 @@ type dip struct {
 
 // near is how much above the limit a dip is still watched: a step of the search may bring it below.
 const near = 2.0
+
+// setLoads makes freqs, in Hz and rising, the grid on which |Zin| is limited.
+func (e *evaluator) setLoads(freqs []float64) (err error) {
+	if e.load, err = e.p.newSweep(freqs, e.coils); err != nil {
+		return err
+	}
+	e.loads, e.zin = freqs, make([]complex128, len(freqs))
+	return nil
+}
+
+// watched is how near in ratio a frequency of the grid must be to count as the same.
+const watched = 1e-4
+
+// watches reports whether f, in Hz, is on the grid on which |Zin| is limited.
+func (e *evaluator) watches(f float64) bool {
+	return slices.ContainsFunc(e.loads, func(g float64) bool { return math.Abs(f/g-1) < watched })
+}
+
+// watch puts f, in Hz, on that grid.
+func (e *evaluator) watch(f float64) error {
+	at, _ := slices.BinarySearch(e.loads, f)
+	for v := range e.x {
+		e.x[v] = math.NaN() // so that set moves all values
+	}
+	return e.setLoads(slices.Insert(slices.Clone(e.loads), at, f))
+}
 
 // lowest returns ln of the least |Zin| over the grid at the present place, and +Inf where it is not limited.
 func (e *evaluator) lowest() (float64, error) {

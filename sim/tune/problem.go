@@ -81,6 +81,14 @@ func New(d *xover.Design, sys *sim.System, open func(name string) (io.ReadCloser
 	return p, err
 }
 
+// WithLimit returns the same problem with another limit on the impedance, in Ω; 0: none.
+func (p *Problem) WithLimit(ohm float64) *Problem {
+	q, rough := *p, *p.rough
+	q.limit, rough.limit = ohm, ohm
+	q.rough = &rough
+	return &q
+}
+
 // newProblem is New with so many points an octave, without a rough one.
 func newProblem(d *xover.Design, sys *sim.System, open func(name string) (io.ReadCloser, error), grid float64) (*Problem, error) {
 	if d.Tone != nil {

@@ -94,14 +94,13 @@ func (p *Problem) Run(ctx context.Context, s Search) (*Result, error) {
 		return nil, err
 	}
 	res := &Result{Before: before, Starts: s.Starts, Status: r.status}
-	best := found[0]
 	e, err := p.newEvaluator()
 	if err != nil {
 		return nil, err
 	}
-	x := best.x
-	if p.limit > 0 && r.status != Interrupted {
-		if x, err = r.keepLimit(e, best.x); err != nil {
+	x := found[0].x
+	if p.limit > 0 {
+		if x, err = r.holding(e, found); err != nil {
 			return nil, err
 		}
 	}
@@ -336,32 +335,90 @@ func (r *runner) tell(at *place, total int) {
 	}
 }
 
-// keepLimit goes down from x once more, with the limit raised by as much as |Zin| falls short of it between the grid's
-// points, until it holds everywhere.
-func (r *runner) keepLimit(e *evaluator, x []float64) ([]float64, error) {
-	d := r.p.newDescent(e)
-	raise := 1.0
-	for range 12 {
-		d.limit = r.p.limit * raise
-		if err := d.begin(x); err != nil {
-			return nil, err
+// mostHeld is how many places are made to hold the limit between the grid's points, for the best of them to be found.
+const mostHeld = 6
+
+// holding returns the best place that holds the limit everywhere, beginning at those found, the best first; if none does, the design's
+// own values if they do, else the place that comes nearest.
+func (r *runner) holding(e *evaluator, found []place) ([]float64, error) {
+	p := r.p
+	var best []float64
+	f := math.Inf(1)
+	nearest, most := found[0].x, 0.0
+	for i, at := range distinct(found) {
+		if i == mostHeld || at.lost || at.f >= f {
+			break // the limit makes no place better
 		}
-		if err := d.run(60); err != nil {
-			return nil, err
-		}
-		x = slices.Clone(d.x)
-		ohm, _, err := r.p.leastImpedance(x, nil)
+		x, ohm, err := p.keepLimit(e, at.x)
 		if err != nil {
 			return nil, err
 		}
-		short := r.p.limit / ohm
-		if short <= 1+1e-9 && (raise == 1 || short > 1-1e-6) {
-			return x, nil
+		if ohm > most {
+			nearest, most = x, ohm
 		}
-		if short > 1.05 {
-			return x, nil // it cannot be met
+		if ohm < p.limit*(1-1e-9) {
+			continue
 		}
-		raise *= short * (1 + 2e-10)
+		g, err := e.objective(x)
+		if err != nil {
+			return nil, err
+		}
+		if g < f {
+			best, f = x, g
+		}
 	}
-	return x, nil
+	if best != nil {
+		return best, nil
+	}
+	own, err := p.logs(p.Start())
+	if err != nil {
+		return nil, err
+	}
+	ohm, _, err := p.leastImpedance(own, nil)
+	if err != nil {
+		return nil, err
+	}
+	if ohm > most {
+		return own, nil
+	}
+	return nearest, nil
+}
+
+// keepLimit goes down from x once more until the limit holds between the points of the grid too: where |Zin| falls short of it
+// there, that frequency is watched from then on, and what little remains is made up for by a higher limit. It returns the place and
+// the least |Zin| there.
+func (p *Problem) keepLimit(e *evaluator, x []float64) ([]float64, float64, error) {
+	d := p.newDescent(e)
+	raise := 1.0
+	best, most := x, 0.0
+	for range 40 {
+		d.limit = p.limit * raise
+		if err := d.begin(x); err != nil {
+			return nil, 0, err
+		}
+		if err := d.run(60); err != nil {
+			return nil, 0, err
+		}
+		x = slices.Clone(d.x)
+		ohm, at, err := p.leastImpedance(x, nil)
+		if err != nil {
+			return nil, 0, err
+		}
+		if ohm > most {
+			best, most = x, ohm
+		}
+		switch short := p.limit / ohm; {
+		case short <= 1+1e-9 && (raise == 1 || short > 1-1e-6):
+			return x, ohm, nil
+		case short > 1.001 && !e.watches(at):
+			if err := e.watch(at); err != nil {
+				return nil, 0, err
+			}
+		case short > 1.05:
+			return best, most, nil // it is watched and cannot be helped
+		default:
+			raise *= short * (1 + 2e-10)
+		}
+	}
+	return best, most, nil
 }

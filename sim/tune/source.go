@@ -80,7 +80,13 @@ func (p *Problem) market(source Source, coils windings, pairs bool) *market {
 		}
 		if pairs {
 			all := source.Within(KindOf(q.Kind), q.Low/1000, q.High*1000)
-			for _, pr := range preferred.Pairs(all, q.Low, q.High) {
+			wound := slices.Clone(all)
+			for i := range wound {
+				if it := &wound[i]; it.Kind == preferred.Inductor && !(it.DCR > 0) {
+					it.DCR = threeFigures(coils.ohm(v, math.Log(it.Value)))
+				}
+			}
+			for _, pr := range preferred.Pairs(wound, q.Low, q.High) {
 				add(pr.Value, pr.DCR, pr.Price, [2]int{index(all[pr.A]), index(all[pr.B])}, &pr)
 			}
 		}

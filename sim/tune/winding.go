@@ -23,8 +23,12 @@ const leastOhm = 1e-6 // Ω
 // of the wire with N·N^½, so that R goes with L^(1.5/2.5).
 const sameWire = 0.6
 
+// WindingOhm returns the resistance in Ω that a coil of that many H is taken to have of which neither a list nor the design says any:
+// 0.35 Ω for 1 mH (common practice, no source), and others as of the same wire.
+func WindingOhm(henry float64) float64 { return 0.35 * math.Pow(henry/1e-3, sameWire) }
+
 // windings returns the resistances of coils: those of the list where it states them, else of the design's own coil, wound of the
-// same wire.
+// same wire, else WindingOhm's. Of several coils of one value, such as with cores and without, it has the mean in ln.
 func (p *Problem) windings(source Source) windings {
 	coils := make(windings, len(p.vars))
 	for v := range p.vars {
@@ -34,20 +38,45 @@ func (p *Problem) windings(source Source) windings {
 		}
 		part := p.leader(p.design.Part(q.Part))
 		w := &winding{}
+		same := 0. // coils of the last value
 		for _, item := range source.Within(preferred.Inductor, q.Low, q.High) {
-			if item.DCR > 0 {
-				w.lnL, w.lnR = append(w.lnL, math.Log(item.Value)), append(w.lnR, math.Log(item.DCR))
+			if !(item.DCR > 0) {
+				continue
 			}
+			lnL, lnR := math.Log(item.Value), math.Log(item.DCR)
+			if n := len(w.lnL); n > 0 && lnL-w.lnL[n-1] < 1e-9 {
+				same++
+				w.lnR[n-1] += (lnR - w.lnR[n-1]) / same
+				continue
+			}
+			same = 1
+			w.lnL, w.lnR = append(w.lnL, lnL), append(w.lnR, lnR)
 		}
-		switch {
-		case len(w.lnL) == 1:
+		if len(w.lnL) == 0 {
+			lnL, ohm := math.Log(part.Value), part.DCR
+			if !(ohm > 0) {
+				ohm = WindingOhm(part.Value)
+			}
+			w.lnL, w.lnR = []float64{lnL}, []float64{math.Log(ohm)}
+		}
+		if len(w.lnL) == 1 {
 			w.lnL, w.lnR = append(w.lnL, w.lnL[0]+1), append(w.lnR, w.lnR[0]+sameWire)
-		case len(w.lnL) == 0 && part.DCR > 0:
-			lnL, lnR := math.Log(part.Value), math.Log(part.DCR)
-			w.lnL, w.lnR = []float64{lnL, lnL + 1}, []float64{lnR, lnR + sameWire}
 		}
-		if len(w.lnL) > 0 {
-			coils[v] = w
+		coils[v] = w
+	}
+	return coils
+}
+
+// fixedOhms returns windings by which coils have these resistances in Ω, 0 for what the design states, whatever their values do about x.
+func (p *Problem) fixedOhms(x, ohms []float64) windings {
+	if ohms == nil {
+		return nil
+	}
+	coils := make(windings, len(x))
+	for v, ohm := range ohms {
+		if ohm > 0 {
+			lnR := math.Log(ohm)
+			coils[v] = &winding{[]float64{x[v], x[v] + 1}, []float64{lnR, lnR}}
 		}
 	}
 	return coils

@@ -7,6 +7,7 @@ import (
 	"math"
 	"os"
 	"path/filepath"
+	"strconv"
 	"time"
 
 	"github.com/spf13/cobra"
@@ -42,16 +43,18 @@ lowers is the mean square of the sum about its level plus that of each way about
 target, in dB². Parts with hold = true stay; same = "L1" follows another; range = [a, b]
 bounds a value, else 0.1-100 ohm, 0.1-470 uF and 0.02-15 mH do. min_impedance in
 [tune] is a hard limit on the load from 20 Hz to 20 kHz: give one that suits the
-amplifier, since an even sum can be had from networks that short it.
+amplifier, since an even sum can be had from networks that short it. Where it is not
+held, nothing is written and the exit code is 1.
 
 Further keys of [tune]: level, tilt (dB per octave), curve (a table of Hz and dB),
-weights = { sum, ways, phase, angles }, and angles = ["h=30", "v=-10"], other places of the
+weights = { sum, ways, phase, angles } (phase: that of neighbouring ways, 10 degrees
+counting as 1 dB), and angles = ["h=30", "v=-10"], other places of the
 ear at which the sum should be even. All keys of a design: sixdown help design.
 
 With --stock it then looks for the best set that can be bought: of a series of preferred
 values, or of a list (CSV or TOML: kind, value, tol, dcr, price, count, name). A coil
 has the resistance that the list gives or, without one, that of the design's coil if it
-were wound of the same wire.
+were wound of the same wire, or 0.35 ohm for 1 mH if the design gives none either.
 
 Without --out and --in-place nothing is written. Interrupted, it keeps the best so far.`,
 		Example: `  sixdown tune harbour.toml --stock E12 --out tuned.toml
@@ -99,6 +102,8 @@ func (o *tuneOptions) check() error {
 		return usageFault("command line", "both --out and --in-place are given", "give one of them")
 	case o.inPlace && o.design.path == "-":
 		return usageFault("--in-place", "the design is standard input", "give --out FILE")
+	case o.out == "-":
+		return usageFault("--out", "the design cannot be written between the answer's lines", "give the name of a file")
 	case o.yield && o.stock != "":
 		return usageFault("--yield", "it moves values to where no stock has them", "leave out --stock, or buy by the error alone")
 	case o.pairs && o.stock == "":
@@ -142,14 +147,23 @@ func runTune(ctx context.Context, s *streams, o *tuneOptions) error {
 		return err
 	}
 	t.seconds = time.Since(began).Seconds()
-	t.warnOfLoad(s)
-	if err := t.write(o, src); err != nil {
+	if err := t.judgeLoad(ctx, s); err != nil {
 		return err
 	}
-	if o.form.json {
-		return s.answerJSON(t.document())
+	if !t.unmet() {
+		if err := t.write(o, src); err != nil {
+			return err
+		}
 	}
-	return s.answer(t.text())
+	if o.form.json {
+		err = s.answerJSON(t.document())
+	} else {
+		err = s.answer(t.text())
+	}
+	if err == nil && t.unmet() {
+		err = errCheckFailed
+	}
+	return err
 }
 
 // work does all the searching. An interrupt ends each search with the best so far.
@@ -161,8 +175,10 @@ func (t *tuning) work(ctx context.Context, s *streams, o *tuneOptions, source tu
 	if err != nil {
 		return err
 	}
-	if t.worths, err = t.problem.Worths(t.result.Values); err != nil {
-		return err
+	if t.result.Status != tune.Interrupted { // what is no optimum says nothing of its parts
+		if t.worths, err = t.problem.Worths(t.result.Values); err != nil {
+			return err
+		}
 	}
 	if source != nil {
 		bar := newProgress(s, "buying")
@@ -181,7 +197,11 @@ func (t *tuning) work(ctx context.Context, s *streams, o *tuneOptions, source tu
 		}
 	}
 	if o.explain {
-		t.explain, err = t.problem.Explain(t.problem.Start(), t.chosen())
+		var ohms []float64
+		if t.bought != nil {
+			ohms = t.bought.Ohms
+		}
+		t.explain, err = t.problem.Explain(t.problem.Start(), t.chosen(), ohms)
 	}
 	return err
 }
@@ -197,15 +217,35 @@ func (t *tuning) chosen() []float64 {
 	return t.result.Values
 }
 
-// warnOfLoad warns of a network that an amplifier may not stand.
-func (t *tuning) warnOfLoad(s *streams) {
-	after := t.chosenScore()
-	switch {
-	case t.result.Unmet || t.bought != nil && t.bought.Unmet:
-		s.warn(fmt.Sprintf("min_impedance %s cannot be held: the load is %s at least; lower the limit, widen a range, or give other parts", quantity.Format(t.design.Tune.MinImpedance, quantity.Ohm), ohms(after.MinImpedance)+" ohm"))
-	case t.design.Tune.MinImpedance == 0 && after.MinImpedance < min(lowLoad*t.design.Drive.RatedLoad, t.result.Before.MinImpedance):
-		s.warn(fmt.Sprintf("the load falls to %s ohm at %s, which amplifiers may not stand; give [tune] min_impedance a value that yours does", ohms(after.MinImpedance), hertz(after.MinImpedanceAt)))
+// unmet reports whether what would be written breaks the limit on the impedance.
+func (t *tuning) unmet() bool {
+	if t.bought != nil {
+		return t.bought.Unmet
 	}
+	return t.result.Unmet
+}
+
+// judgeLoad warns of a network that an amplifier may not stand and, where the design sets no limit, finds out what one would cost.
+func (t *tuning) judgeLoad(ctx context.Context, s *streams) error {
+	after := t.chosenScore()
+	limit := t.design.Tune.MinImpedance
+	usual := min(lowLoad*t.design.Drive.RatedLoad, t.result.Before.MinImpedance)
+	switch {
+	case t.unmet():
+		s.warn(fmt.Sprintf("min_impedance %s is not held by any values that were tried: the load is %s ohm at least; nothing is written; lower the limit, widen a range, or give other parts", quantity.Format(limit, quantity.Ohm), ohms(after.MinImpedance)))
+	case limit == 0 && after.MinImpedance < usual:
+		usual = math.Floor(10*usual) / 10
+		warning := fmt.Sprintf("the load falls to %s ohm at %s, which amplifiers may not stand; give [tune] min_impedance a value that yours does", ohms(after.MinImpedance), hertz(after.MinImpedanceAt))
+		safe, err := t.problem.WithLimit(usual).Run(ctx, tune.Search{Seed: 1})
+		if err != nil {
+			return err
+		}
+		if !safe.Unmet && safe.Status != tune.Interrupted {
+			warning += fmt.Sprintf(": with %s the error would be %s instead of %s", quantity.Format(usual, quantity.Ohm), decibels(rms(safe.After.Objective)), decibels(rms(t.result.After.Objective)))
+		}
+		s.warn(warning)
+	}
+	return nil
 }
 
 // lowLoad is how much of the rated load the impedance may fall to: 80 %, IEC 60268-5, 16.1, on the rated impedance.
@@ -220,16 +260,22 @@ func (t *tuning) write(o *tuneOptions, src []byte) error {
 	if path == "" {
 		return nil
 	}
-	values, ohmsOf := map[string]float64{}, map[string]float64{}
+	values, ohmsOf, tols := map[string]float64{}, map[string]float64{}, map[string]float64{}
 	src, err := t.changed(src, values)
 	if err != nil {
 		return err
 	}
 	for v, value := range t.chosen() {
-		values[t.vars[v].Part] = value
-		if t.bought != nil && t.bought.Ohms[v] > 0 {
-			for _, name := range append([]string{t.vars[v].Part}, t.vars[v].Followers...) {
-				ohmsOf[name] = t.bought.Ohms[v]
+		values[t.vars[v].Part] = nineFigures(value)
+		if t.bought == nil {
+			continue
+		}
+		for _, name := range append([]string{t.vars[v].Part}, t.vars[v].Followers...) {
+			if ohm := t.bought.Ohms[v]; ohm > 0 {
+				ohmsOf[name] = ohm
+			}
+			if tol := t.bought.Choices[v].Tol(); tol >= 0 {
+				tols[name] = tol
 			}
 		}
 	}
@@ -238,6 +284,9 @@ func (t *tuning) write(o *tuneOptions, src []byte) error {
 		return err
 	}
 	if edited, err = xover.EditDCR(edited, ohmsOf); err != nil {
+		return err
+	}
+	if edited, err = xover.EditTol(edited, tols); err != nil {
 		return err
 	}
 	inputs := []string{}
@@ -249,6 +298,15 @@ func (t *tuning) write(o *tuneOptions, src []byte) error {
 	}
 	t.written = path
 	return nil
+}
+
+// nineFigures rounds a value to more figures than any part has, and fewer than sums of two leave behind.
+func nineFigures(v float64) float64 {
+	rounded, err := strconv.ParseFloat(strconv.FormatFloat(v, 'e', 8, 64), 64)
+	if err != nil {
+		return v
+	}
+	return rounded
 }
 
 // changed adds to values what --set has made of parts, and turns the controls in src as --turn has: what is written is what was

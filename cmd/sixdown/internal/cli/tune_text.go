@@ -3,6 +3,7 @@ package cli
 import (
 	"fmt"
 	"math"
+	"slices"
 	"strings"
 
 	"sixdown/cmd/sixdown/internal/table"
@@ -36,15 +37,16 @@ type (
 		Part  string `json:"part"`  // "" for the least impedance
 		Bound string `json:"bound"` // least or greatest
 		Limit number `json:"limit"`
-		AtHz  number `json:"at_hz"`
+		AtHz  number `json:"at_hz"` // of the least impedance; else null
 	}
 	itemDocument struct {
 		Parts    []string `json:"parts"`
-		Values   []number `json:"values"` // two of a pair
-		Joined   string   `json:"joined"` // series or parallel; "" for one
-		Names    []string `json:"names"`
+		Values   []number `json:"values"`   // two of a pair
+		Joined   string   `json:"joined"`   // series or parallel; "" for one
+		Names    []string `json:"names"`    // of those that have one
 		Quantity int      `json:"quantity"` // of each
-		Price    number   `json:"price"`
+		Price    number   `json:"price"`    // of all; null where one has none
+		Tol      number   `json:"tol"`      // a fraction; null: not stated
 	}
 	changeDocument struct {
 		Part   string `json:"part"`
@@ -132,10 +134,17 @@ func (t *tuning) document() tuneDocument {
 		if b.Upper {
 			bound = "greatest"
 		}
-		doc.Binding = append(doc.Binding, bindingDocument{b.Part, bound, number(b.Limit), number(b.At)})
+		at := b.At
+		if b.Part != "" {
+			at = math.NaN()
+		}
+		doc.Binding = append(doc.Binding, bindingDocument{b.Part, bound, number(b.Limit), number(at)})
 	}
 	if b := t.bought; b != nil {
-		stock, rounded, price := scored(b.Score), scored(b.Rounded), number(b.Price)
+		stock, rounded, price := scored(b.Score), scored(b.Rounded), number(math.NaN())
+		if b.Price > 0 {
+			price = number(b.Price)
+		}
 		doc.Stock, doc.Rounded, doc.Price, doc.Proved, doc.StockParts = &stock, &rounded, &price, &b.Proved, t.byPart(b.Values)
 		doc.StockDCR = map[string]number{}
 		for v, ohm := range b.Ohms {
@@ -143,14 +152,21 @@ func (t *tuning) document() tuneDocument {
 				doc.StockDCR[t.vars[v].Part] = number(ohm)
 			}
 		}
-		doc.Met = doc.Met && !b.Unmet
+		doc.Met = !b.Unmet
 		for v, c := range b.Choices {
 			item := itemDocument{Parts: append([]string{c.Part}, t.vars[v].Followers...), Quantity: c.Parts, Values: []number{}, Names: []string{}}
 			for _, it := range c.Items {
-				item.Values, item.Names = append(item.Values, number(it.Value)), append(item.Names, it.Name)
-				if it.Price >= 0 {
-					item.Price += number(it.Price * float64(c.Parts))
+				item.Values = append(item.Values, number(it.Value))
+				if it.Name != "" {
+					item.Names = append(item.Names, it.Name)
 				}
+				if it.Price < 0 {
+					it.Price = math.NaN()
+				}
+				item.Price += number(it.Price * float64(c.Parts))
+			}
+			if item.Tol = number(c.Tol()); item.Tol < 0 {
+				item.Tol = number(math.NaN())
 			}
 			item.Joined = joined(&c)
 			doc.Shopping = append(doc.Shopping, item)
@@ -213,10 +229,14 @@ func (t *tuning) text() string {
 		b.WriteString(folded("yield     ", fmt.Sprintf("%s %% of builds pass when tuned, %s %% when centred (standard error %s points)", fixed(100*c.Before, 1), fixed(100*c.After, 1), fixed(100*c.Sigma, 1))))
 	}
 	useless := 0
+	ideal := ""
+	if t.bought != nil {
+		ideal = "with ideal values "
+	}
 	for _, w := range t.worths {
 		if w.Useless {
 			useless++
-			b.WriteString(folded("advice    ", adviceText(&w)))
+			b.WriteString(folded("advice    ", ideal+adviceText(&w)))
 		}
 	}
 	if useless > 1 {
@@ -226,7 +246,9 @@ func (t *tuning) text() string {
 		b.WriteByte('\n')
 		b.WriteString(t.explainText())
 	}
-	if t.written != "" {
+	if t.unmet() {
+		b.WriteString(folded("limit     ", fmt.Sprintf("the load falls to %s Ω, below min_impedance, whatever was tried: nothing is written", ohms(t.chosenScore().MinImpedance))))
+	} else if t.written != "" {
 		b.WriteString("written   " + t.written + "\n")
 	} else {
 		b.WriteString("nothing is written; --out FILE or --in-place does\n")
@@ -333,9 +355,14 @@ func (t *tuning) boughtText() string {
 	if gain := improvement(b.Rounded.Objective, b.Score.Objective); gain > 0.5 {
 		text += fmt.Sprintf("; its objective is %s %% below that of the nearest values", figures(gain, 3))
 	}
-	if b.Proved {
+	switch {
+	case b.Unmet:
+		text += "; of the sets that were tried it comes nearest to the limit"
+	case b.Proved:
 		text += "; no other set is better, as far as re-tuning tells"
-	} else {
+	case b.Status == tune.Interrupted:
+		text += "; the search was interrupted, so that a better one may exist"
+	default:
 		text += fmt.Sprintf("; the search stopped after %d places, so that a better one may exist", b.Nodes)
 	}
 	out := folded("bought    ", text)
@@ -362,7 +389,7 @@ func (t *tuning) boughtText() string {
 			found.parts = append(found.parts, names...)
 		}
 	}
-	if b.Price > 0 {
+	if slices.ContainsFunc(lines, func(l *line) bool { return l.item.Price >= 0 || l.item.Count >= 0 || l.item.Name != "" }) {
 		for _, l := range lines {
 			name := l.item.Name
 			if name != "" {
@@ -375,6 +402,8 @@ func (t *tuning) boughtText() string {
 			}
 			out += folded("          ", fmt.Sprintf("%d × %s%s%s for %s", l.count, name, quantity.Round(l.item.Value, unit, 4), price, strings.Join(l.parts, ", ")))
 		}
+	}
+	if b.Price > 0 {
 		out += fmt.Sprintf("          in all %s, as far as prices are stated\n", fixed(b.Price, 2))
 	}
 	return out
