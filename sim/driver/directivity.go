@@ -31,6 +31,7 @@ type Directivity struct {
 	tables  []angled  // without the axis
 	planes  [2]*plane // horizontal, vertical; nil: not measured
 	notes   []string
+	doubt   doubt   // of all tables off the axis
 	lo, hi  float64 // Hz, where all tables have rows
 	minimum bool
 }
@@ -79,12 +80,13 @@ func NewDirectivity(axis *Table, horizontal, vertical []AngledTable, minimum boo
 	if d.axis, err = d.read(axis, delay); err != nil {
 		return nil, err
 	}
-	d.notes = nil // those on the axis are the radiator's
+	d.notes, d.doubt = nil, doubt{} // those on the axis are the radiator's
 	for i, given := range [][]AngledTable{horizontal, vertical} {
 		if d.planes[i], err = d.plane(given, delay); err != nil {
 			return nil, err
 		}
 	}
+	d.notes = append(d.notes, d.doubt.note(delay != 0)...)
 	return d, nil
 }
 
@@ -105,6 +107,7 @@ func (d *Directivity) read(t *Table, delay float64) (polarCurve, error) {
 		return nil, err
 	}
 	d.notes = append(d.notes, r.notes...)
+	d.doubt.add(r.doubt)
 	// Off the axis the sound may have fallen so far that the delay is uncertain, but a whole flight time cannot vanish.
 	if own, spread := ExcessDelay(t); spread < otherBase/5 && math.Abs(own-delay) > otherBase {
 		d.notes = append(d.notes, fmt.Sprintf("%s: its phase holds %.2f ms of flight time and that on the axis %.2f ms; give all angles on one time base", t.Name, own*1e3, delay*1e3))

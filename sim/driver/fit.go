@@ -343,6 +343,15 @@ func (s *search) covariance(b fitted) *mat.SymDense {
 	return cov
 }
 
+// mostMiss is how far in per cent a circuit may be off its table on the whole to be one for it.
+const mostMiss = 10
+
+// Follows reports whether the circuit follows its table. If not, what is read from the circuit means nothing.
+func (f *Fit) Follows() bool { return f.RMSPercent <= mostMiss }
+
+// Resonates reports whether the table tells a resonance: Fs, Qms, Qes and Qts, to better than half of Qts.
+func (f *Fit) Resonates() bool { return f.Follows() && f.Fs.Value > 0 && f.Qts.Sigma <= f.Qts.Value/2 }
+
 // judge holds the circuit against every row of the table.
 func (f *Fit) judge(t *ImpedanceTable) {
 	var sum, span float64

@@ -15,6 +15,7 @@ type ResponseTable struct {
 	excess float64 // s, as ExcessDelay finds it
 	spread float64 // s, of it
 	notes  []string
+	doubt  doubt
 }
 
 // NewResponseTable makes a radiator of a table with a phase in every row and values in dB SPL between -500
@@ -26,10 +27,12 @@ func NewResponseTable(t *Table) (*ResponseTable, error) {
 		return nil, err
 	}
 	r.excess, r.spread = excess, spread
+	r.notes = append(r.notes, r.doubt.note(r.delay != 0)...)
 	return r, nil
 }
 
-// newResponseTable is NewResponseTable with the flight time in s that is to be taken out before the phase is followed.
+// newResponseTable is NewResponseTable with the flight time in s that is to be taken out before the phase is followed. Its doubt
+// is not in its notes.
 func newResponseTable(t *Table, delay float64) (*ResponseTable, error) {
 	if !t.HasPhase {
 		return nil, &TableError{File: t.Name, What: "the response has no phase column", Mend: "give three columns: Hz, dB, degrees; or let it be minimum phase with phase = \"minimum\""}
@@ -48,7 +51,8 @@ func newResponseTable(t *Table, delay float64) (*ResponseTable, error) {
 		name: t.Name, lo: freqs[0], hi: freqs[len(freqs)-1],
 		curve: newCurve(freqs, lnMag, phase, math.Inf(1)),
 		delay: delay,
-		notes: slices.Concat(t.Notes, t.doubts(doubtful)),
+		notes: slices.Concat(t.Notes, t.oddResponse()),
+		doubt: t.doubtOf(outsideNulls(doubtful, freqs, lnMag)),
 	}, nil
 }
 

@@ -334,15 +334,6 @@ func (t *Table) columns() (freqs, values, deg []float64) {
 	return freqs, values, deg
 }
 
-// doubts returns a note about rows between which the phase turns too far to be followed.
-func (t *Table) doubts(rows []int) []string {
-	if len(rows) == 0 {
-		return nil
-	}
-	r := t.Rows[rows[0]]
-	return []string{fmt.Sprintf("%s:%d: the phase turns by more than 135 degrees from one row to the next near %s Hz, so which way it went is a guess; take the flight time out, or measure in finer steps", t.Name, r.Line, hertz(r.Frequency))}
-}
-
 // hertz writes a frequency in Hz for a message, to about four figures and without an exponent.
 func hertz(f float64) string {
 	if f >= 1000 {

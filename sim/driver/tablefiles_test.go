@@ -71,7 +71,7 @@ func TestTableFiles(t *testing.T) {
 		"phase-shifted-by-turns.frd": {phases(response, 1175.25, 1128.5, -708, -20.5, 2458.25, 2402, 176.5, -1679.75), nil},
 		"phase-from-0-to-360.frd":    {phases(response, 95.25, 48.5, 12, 339.5, 298.25, 242, 176.5, 120.25), nil},
 		"phase-in-steps-too-coarse.frd": {phases(response, 90, -20, -160, 30, -110, 100, -60, 150),
-			[]string{":3: the phase turns by more than 135 degrees from one row to the next near 400 Hz, so which way it went is a guess; take the flight time out, or measure in finer steps"}},
+			[]string{":3: the phase turns by more than 135 degrees from one row to the next near 400 Hz, and in 5 more places, so which way it went is a guess; take the flight time out, or measure in finer steps"}},
 		// By hand: 12.6·cos 120° = -6.3.
 		"negative-resistance.zma": {phases(impedance, 28.5, 95, 120, -3.5, -36.75, -31.5, -18.25, -8.5),
 			[]string{":4: the real part of the impedance is negative in 2 rows from 25 to 31.5 Hz, at worst -6.3 ohm at 31.5 Hz, and no passive driver gives power; check how it was measured"}},

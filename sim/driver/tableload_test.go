@@ -138,7 +138,7 @@ func TestPhaseIsUnwrapped(t *testing.T) {
 func TestTableNotes(t *testing.T) {
 	z := mustImpedance(t, "20 8 100\n200 8 -30\n2000 8 110\n")
 	want := []string{
-		"w.zma:3: the phase turns by more than 135 degrees from one row to the next near 2000 Hz, so which way it went is a guess; take the flight time out, or measure in finer steps",
+		"w.zma:3: the phase turns by more than 135 degrees from one row to the next near 2000 Hz, so which way it went is a guess; measure in finer steps",
 		"w.zma:3: the real part of the impedance is negative in 2 rows from 20 to 2000 Hz, at worst -2.74 ohm at 2000 Hz, and no passive driver gives power; check how it was measured", // 8·cos 110°
 	}
 	if !slices.Equal(z.Notes(), want) {

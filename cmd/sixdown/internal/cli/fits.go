@@ -15,12 +15,19 @@ func fitsText(fits []sim.DriverFit) string {
 	var b strings.Builder
 	for _, d := range fits {
 		f := d.Fit
+		if !f.Follows() {
+			b.WriteString(folded("fit       ", fmt.Sprintf("%s: no circuit was found that follows %s; the nearest is %s %% off on the whole, and %s %% at %s. Is it Hz, ohm, degrees?", d.Driver, d.File, percent(f.RMSPercent), percent(f.WorstPercent), hertz(f.WorstAt))))
+			continue
+		}
 		text := d.Driver + ": Re " + estimate(f.Re, " Ω")
-		if f.Fs.Value > 0 {
+		switch {
+		case f.Fs.Value > 0 && !f.Resonates():
+			text += "; no resonance is to be told from the table"
+		case f.Fs.Value > 0:
 			text += ", fs " + estimate(f.Fs, " Hz") + ", Qms " + estimate(f.Qms, "") + ", Qes " + estimate(f.Qes, "") + ", Qts " + estimate(f.Qts, "")
 		}
 		b.WriteString(folded("fit       ", text))
-		if v := f.Box; v != nil {
+		if v := f.Box; v != nil && f.Resonates() {
 			b.WriteString("          vented: fb " + estimate(v.Fb, " Hz") + ", Vas/Vb " + estimate(v.Alpha, "") + ", QL " + estimate(v.QL, "") + "\n")
 		}
 		fmt.Fprintf(&b, "          within %s %% of %s, worst %s %% at %s\n", percent(f.RMSPercent), d.File, percent(f.WorstPercent), hertz(f.WorstAt))
@@ -56,13 +63,14 @@ type (
 	driverDocument struct {
 		Name              string            `json:"name"`
 		Impedance         string            `json:"impedance"` // the file
-		Re                estimateDocument  `json:"re_ohm"`
-		Fs                *estimateDocument `json:"fs_hz"` // null, as are the Qs, if no resonance shows
+		Re                *estimateDocument `json:"re_ohm"`    // null if the fit does not follow the table
+		Fs                *estimateDocument `json:"fs_hz"`     // null, as are the Qs, if no resonance shows
 		Qms               *estimateDocument `json:"qms"`
 		Qes               *estimateDocument `json:"qes"`
 		Qts               *estimateDocument `json:"qts"`
 		Box               *boxDocument      `json:"vented_box"`
 		Elements          []elementDocument `json:"elements"`
+		Follows           bool              `json:"fit_follows_table"`
 		RMSErrorPercent   number            `json:"rms_error_percent"`
 		WorstErrorPercent number            `json:"worst_error_percent"`
 		WorstAtHz         number            `json:"worst_at_hz"`
@@ -91,14 +99,18 @@ func driverDocuments(fits []sim.DriverFit) []driverDocument {
 	for _, d := range fits {
 		f := d.Fit
 		doc := driverDocument{
-			Name: d.Driver, Impedance: d.File, Re: estimated(f.Re),
+			Name: d.Driver, Impedance: d.File, Follows: f.Follows(),
 			RMSErrorPercent: number(f.RMSPercent), WorstErrorPercent: number(f.WorstPercent), WorstAtHz: number(f.WorstAt),
 		}
-		if f.Fs.Value > 0 {
+		if f.Follows() {
+			re := estimated(f.Re)
+			doc.Re = &re
+		}
+		if f.Resonates() {
 			fs, qms, qes, qts := estimated(f.Fs), estimated(f.Qms), estimated(f.Qes), estimated(f.Qts)
 			doc.Fs, doc.Qms, doc.Qes, doc.Qts = &fs, &qms, &qes, &qts
 		}
-		if v := f.Box; v != nil {
+		if v := f.Box; v != nil && f.Resonates() {
 			doc.Box = &boxDocument{estimated(v.Fb), estimated(v.Alpha), estimated(v.QL)}
 		}
 		for _, e := range f.Elements() {

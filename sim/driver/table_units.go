@@ -1,0 +1,65 @@
+package driver
+
+import (
+	"fmt"
+	"math"
+)
+
+// What columns hold by their look: files say it nowhere, and a wrong guess of theirs is a wrong answer.
+const (
+	fewestForUnits = 16    // rows
+	kilohertzTop   = 200.0 // Hz, below which no table of a driver ends that was meant in Hz
+	countedTop     = 2000  // rows; a spectrum in steps of 1 Hz goes farther
+)
+
+// oddFrequencies returns a note if the first column hardly is in Hz.
+func (t *Table) oddFrequencies() []string {
+	n := len(t.Rows)
+	if n < fewestForUnits {
+		return nil
+	}
+	last := t.Rows[n-1].Frequency
+	counted := n < countedTop
+	for i := 1; i < n; i++ {
+		counted = counted && math.Abs(t.Rows[i].Frequency-t.Rows[i-1].Frequency-1) < 1e-9
+	}
+	switch {
+	case counted && t.Rows[0].Frequency <= 1:
+		return []string{fmt.Sprintf("%s: its first column counts from %g in steps of 1: is it the number of the row? It is taken as Hz; let the first column be the frequency in Hz", t.Name, t.Rows[0].Frequency)}
+	case last < kilohertzTop:
+		return []string{fmt.Sprintf("%s: the table ends at %s Hz: is its first column in kHz? It is taken as Hz; give Hz", t.Name, hertz(last))}
+	}
+	return nil
+}
+
+// spans returns the least and the greatest value, and the greatest size of a phase.
+func (t *Table) spans() (least, greatest, phase float64) {
+	least, greatest = math.Inf(1), math.Inf(-1)
+	for _, r := range t.Rows {
+		least, greatest, phase = min(least, r.Value), max(greatest, r.Value), max(phase, math.Abs(r.PhaseDeg))
+	}
+	return least, greatest, phase
+}
+
+// oddImpedance returns notes if columns hardly are in Hz and degrees. An impedance that goes up and down by half has a phase of many
+// degrees (Bode's relation: 90° for each factor of e in e), so one that stays within π/2 is in radians.
+func (t *Table) oddImpedance() []string {
+	notes := t.oddFrequencies()
+	if least, greatest, phase := t.spans(); len(t.Rows) >= fewestForUnits && greatest > 1.5*least && phase <= 1.02*math.Pi/2 {
+		notes = append(notes, radians(t.Name))
+	}
+	return notes
+}
+
+// oddResponse is oddImpedance for levels in dB, whose phases go round.
+func (t *Table) oddResponse() []string {
+	notes := t.oddFrequencies()
+	if least, greatest, phase := t.spans(); len(t.Rows) >= fewestForUnits && greatest > least+10 && phase > 0 && phase <= 1.02*math.Pi {
+		notes = append(notes, radians(t.Name))
+	}
+	return notes
+}
+
+func radians(name string) string {
+	return name + ": the phase stays within a few units while the values change a lot: is it in radians? It is taken as degrees; give degrees"
+}
