@@ -124,6 +124,10 @@ func (f *flattener) place(l *ladder) (from, to int, err error) {
 			}
 		case xover.Couple:
 			f.couples = append(f.couples, pendingCouple{where: l.where(), step: st})
+		case xover.OpAmp:
+			f.net.Amplifiers = append(f.net.Amplifiers, circuit.Amplifier{
+				Name: st.Name, Plus: f.find(l.scope, st.Plus), Minus: f.find(l.scope, st.Minus), Out: f.find(l.scope, st.Out),
+			})
 		case xover.DriverPlace:
 			from, to = f.find(l.scope, st.From), f.find(l.scope, st.To)
 		case xover.Mark:

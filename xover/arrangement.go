@@ -38,6 +38,14 @@ func (p *parser) step(n *node, drivers bool) (s Step, ok bool) {
 		c.take()
 		s.Op = Couple
 		ok = c.couple(&s)
+	case "opamp":
+		c.take()
+		s.Op = OpAmp
+		if drivers {
+			c.failAt(first, "a way has no operational amplifier: it is passive, and feeds a driver", "leave it to a tone network")
+			return s, false
+		}
+		ok = c.opAmp(&s)
 	case "driver":
 		c.take()
 		s.Op = DriverPlace
@@ -64,9 +72,9 @@ func (p *parser) step(n *node, drivers bool) (s Step, ok bool) {
 func (c *cursor) placed(s *Step) (ok bool) {
 	first := c.peek()
 	if next := c.tokens[min(c.next+1, len(c.tokens)-1)].text; c.partAtToken(first) < 0 && first.text != "(" && next != "from" && next != "+" && next != "|" {
-		verbs := []string{"series", "shunt", "mark", "couple", "driver"}
+		verbs := []string{"series", "shunt", "mark", "couple", "driver", "opamp"}
 		c.failAt(first, fmt.Sprintf("a step begins with %s", found(first)),
-			didYouMean(first.text, verbs, `begin with series, shunt, mark, couple or driver, or write "X from a to b"`))
+			didYouMean(first.text, verbs, `begin with series, shunt, mark, couple, driver or opamp, or write "X from a to b"`))
 		return false
 	}
 	if s.Expr, ok = c.expression(); !ok {
@@ -172,6 +180,42 @@ func (c *cursor) mark() (name string, ok bool) {
 		return "", false
 	}
 	return t.text, true
+}
+
+// opAmp reads `A1 plus x minus y out z`.
+func (c *cursor) opAmp(s *Step) bool {
+	const mend = `write "opamp A1 plus x minus y out z"`
+	t := c.take()
+	if nameFault(t.text) != "" || slices.Contains(keywords, t.text) {
+		c.failAt(t, fmt.Sprintf("the name of the operational amplifier is missing before %s", found(t)), mend)
+		return false
+	}
+	s.Name = t.text
+	for _, end := range []struct {
+		word string
+		node *string
+	}{{"plus", &s.Plus}, {"minus", &s.Minus}, {"out", &s.Out}} {
+		if !c.word(end.word, mend) {
+			return false
+		}
+		at, ok := c.peek(), false
+		if *end.node, ok = c.node(); !ok {
+			return false
+		}
+		if end.word == "out" && isTerminal(*end.node) {
+			c.failAt(at, fmt.Sprintf("its output is at %s, which another source holds", *end.node), "name another node")
+			return false
+		}
+	}
+	switch {
+	case s.Plus == s.Minus:
+		c.fail(s.Pos, fmt.Sprintf("both inputs of %s are at %q", s.Name, s.Plus), "name two nodes")
+		return false
+	case s.Plus == s.Out:
+		c.fail(s.Pos, fmt.Sprintf("the output of %s goes straight to its plus input, which makes it latch", s.Name), "feed back to minus")
+		return false
+	}
+	return true
 }
 
 // couple reads `L1 L2 0.02`.

@@ -230,17 +230,21 @@ const (
 	Between                   // Expr lies from From to To; with Wiper, it is a three-terminal potentiometer
 	Couple                    // coils A and B have the coupling coefficient K
 	DriverPlace               // the driver lies from From to To
+	OpAmp                     // an ideal operational amplifier called Name has its inputs at Plus and Minus and its output at Out
 )
 
 // A Step is one string of a network.
 type Step struct {
 	Op    StepOp
-	Expr  *Expr   // of Series, Shunt and Between
-	Name  string  // of Mark
-	From  string  // of Between and DriverPlace: a node's name
-	To    string  // of Between and DriverPlace
-	Wiper string  // of Between; "" when the part has two terminals
-	A, B  string  // of Couple
+	Expr  *Expr  // of Series, Shunt and Between
+	Name  string // of Mark and OpAmp
+	From  string // of Between and DriverPlace: a node's name
+	To    string // of Between and DriverPlace
+	Wiper string // of Between; "" when the part has two terminals
+	A, B  string // of Couple
+	Plus  string // of OpAmp: a node's name, as are Minus and Out
+	Minus string
+	Out   string
 	K     float64 // of Couple; positive when currents from first to second node aid each other
 	Pos   Position
 }

@@ -97,10 +97,7 @@ func (w *wiring) nameMarks(i int) {
 func (w *wiring) nameOthers(i int) {
 	s := &w.scopes[i]
 	for _, step := range w.network(i) {
-		if step.Op != Between && step.Op != DriverPlace {
-			continue
-		}
-		for _, name := range []string{step.From, step.To, step.Wiper} {
+		for _, name := range []string{step.From, step.To, step.Wiper, step.Plus, step.Minus, step.Out} {
 			if _, known := s.names[name]; known || name == "" || isTerminal(name) || strings.Contains(name, ".") {
 				continue
 			}
@@ -129,6 +126,13 @@ func (w *wiring) connect(i int) {
 				w.end(wiper, step.Expr.String())
 				w.unite(wiper, from)
 			}
+		case OpAmp:
+			// It makes its inputs alike and holds its output, so none of the three hangs loose by it; what is not otherwise reached is.
+			out := w.resolve(i, step, step.Out)
+			w.end(out, "opamp "+step.Name)
+			w.end(w.resolve(i, step, step.Plus), "opamp "+step.Name)
+			w.end(w.resolve(i, step, step.Minus), "opamp "+step.Name)
+			w.unite(out, 0)
 		case DriverPlace:
 			if placed {
 				w.fail(step.Pos, s.label+" places its driver twice", "keep one of them")

@@ -9,7 +9,7 @@ import (
 )
 
 // keywords are the words of the arrangement language; no part may be called so.
-var keywords = []string{"series", "shunt", "mark", "couple", "driver", "from", "to", "wiper"}
+var keywords = []string{"series", "shunt", "mark", "couple", "driver", "from", "to", "wiper", "opamp", "plus", "minus"}
 
 // parts reads [parts].
 func (p *parser) parts(r *tableReader) {

@@ -19,6 +19,8 @@ func (s Step) String() string {
 		return "couple " + s.A + " " + s.B + " " + strconv.FormatFloat(s.K, 'g', -1, 64)
 	case DriverPlace:
 		return between("driver")
+	case OpAmp:
+		return "opamp " + s.Name + " plus " + s.Plus + " minus " + s.Minus + " out " + s.Out
 	}
 	text := between(s.Expr.String())
 	if s.Wiper != "" {

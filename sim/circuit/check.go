@@ -57,6 +57,16 @@ func (n *Netlist) check(outs []Output) error {
 			return err
 		}
 	}
+	for _, a := range n.Amplifiers {
+		switch {
+		case !node(a.Plus) || !node(a.Minus) || !node(a.Out):
+			return fmt.Errorf("circuit: %s: lies at nodes %d, %d and %d; they are numbered 0 to %d", a.Name, a.Plus, a.Minus, a.Out, n.Nodes-1)
+		case a.Plus == a.Minus:
+			return fmt.Errorf("circuit: %s: both inputs are at %s; connect them apart", a.Name, n.nodeName(a.Plus))
+		case a.Out == Return || a.Out == Amp:
+			return fmt.Errorf("circuit: %s: its output is at %s, which another source holds; give it a node of its own", a.Name, n.nodeName(a.Out))
+		}
+	}
 	for i, o := range outs {
 		if !node(o.From) || !node(o.To) {
 			return fmt.Errorf("circuit: output %d: lies between nodes %d and %d; they are numbered 0 to %d", i, o.From, o.To, n.Nodes-1)

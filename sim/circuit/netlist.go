@@ -43,13 +43,21 @@ type Coupling struct {
 	K    float64 // coupling coefficient, -1 < K < 1
 }
 
+// An Amplifier is an ideal operational amplifier: whatever its output has to give against Return, it makes V(Plus) = V(Minus), and its
+// inputs take no current.
+type Amplifier struct {
+	Name             string
+	Plus, Minus, Out int // nodes
+}
+
 // A Netlist is a linear circuit driven by one voltage source behind a resistance, between Amp and Return.
 type Netlist struct {
-	Nodes     int      // how many, Return and Amp included; they are numbered 0 … Nodes-1
-	NodeNames []string // for messages, len Nodes; may be nil
-	Branches  []Branch
-	Couplings []Coupling
-	Source    float64 // Ω, between the ideal source and Amp
+	Nodes      int      // how many, Return and Amp included; they are numbered 0 … Nodes-1
+	NodeNames  []string // for messages, len Nodes; may be nil
+	Branches   []Branch
+	Couplings  []Coupling
+	Amplifiers []Amplifier
+	Source     float64 // Ω, between the ideal source and Amp
 }
 
 // An Output is a voltage between two nodes, V(From) - V(To).
