@@ -17,6 +17,8 @@
 // Where digits may cancel all the same, at the pivot of a purely reactive node or among coupled coils, the sums
 // are watched, and a frequency at which one cancels is solved again in doubled precision.
 //
+// Ideal operational amplifiers are solved by superposition of passive networks (amplifier.go).
+//
 // Derivatives come from the adjoint network (S. W. Director and R. A. Rohrer, "The Generalized Adjoint
 // Network and Network Sensitivities", IEEE Trans. Circuit Theory 16(3), 1969, 318–323).
 //

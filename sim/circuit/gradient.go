@@ -63,6 +63,9 @@ func gradSlots(p *program) int { return 2*len(p.params) + 1 }
 // Gradient solves the network and computes the derivative of every output's gain by the value of every
 // resistor, inductor and capacitor: one more back-substitution an output. It allocates only when first called.
 func (s *Sweep) Gradient() error {
+	if s.active != nil {
+		return s.active.solve((*Sweep).Gradient)
+	}
 	stride := len(s.w) * lanes
 	if s.grad == nil {
 		s.grad = make([]complex128, len(s.c.outs)*len(s.c.net.Branches)*stride)
@@ -197,6 +200,11 @@ func (s *Sweep) factor(f form, b int) *vec {
 // GainGradient copies ∂(V_out/V_open)/∂(value of a branch), in 1/Ω, 1/H or 1/F, as of the last Gradient.
 // A one-port, and a part whose value was zero when the circuit was compiled, has none: zeros.
 func (s *Sweep) GainGradient(dst []complex128, out, branch int) {
+	if s.active != nil {
+		clear(dst)
+		s.AddGainGradient(dst, out, branch, 1)
+		return
+	}
 	if s.grad == nil {
 		panic("circuit: GainGradient before Gradient")
 	}
@@ -205,6 +213,10 @@ func (s *Sweep) GainGradient(dst []complex128, out, branch int) {
 
 // AddGainGradient adds what GainGradient copies, times a factor, to dst.
 func (s *Sweep) AddGainGradient(dst []complex128, out, branch int, factor float64) {
+	if s.active != nil {
+		s.active.addGradient(dst, out, func(part *Sweep, dst []complex128, out int) { part.AddGainGradient(dst, out, branch, factor) })
+		return
+	}
 	if s.grad == nil {
 		panic("circuit: AddGainGradient before Gradient")
 	}
@@ -219,6 +231,10 @@ func (s *Sweep) AddGainGradient(dst []complex128, out, branch int, factor float6
 // AddLossGradient adds ∂(V_out/V_open)/∂(series resistance of an inductor), in 1/Ω, times a factor, to dst, as of the last
 // Gradient. With Z = R + jωL, it is that by L over jω. Of other branches it adds nothing.
 func (s *Sweep) AddLossGradient(dst []complex128, out, branch int, factor float64) {
+	if s.active != nil {
+		s.active.addGradient(dst, out, func(part *Sweep, dst []complex128, out int) { part.AddLossGradient(dst, out, branch, factor) })
+		return
+	}
 	if s.grad == nil {
 		panic("circuit: AddLossGradient before Gradient")
 	}

@@ -74,6 +74,9 @@ func grid(rows, n int) [][]complex128 {
 // source; len(dst) must be the number of frequencies. Like the other methods of this kind it solves
 // first where values have changed, and gives that solution's error.
 func (s *Sweep) NodeVoltage(dst []complex128, node int) error {
+	if s.active != nil {
+		return s.active.nodeVoltage(dst, node)
+	}
 	return s.each(dst, func(i int) complex128 { return s.nodeAt(node, i) })
 }
 
@@ -83,6 +86,9 @@ func (s *Sweep) BranchVoltage(dst []complex128, branch int) error {
 	if err := s.c.branch(branch); err != nil {
 		return err
 	}
+	if s.active != nil {
+		return s.active.superpose(dst, func(_ int, part *Sweep, dst []complex128) error { return part.BranchVoltage(dst, branch) })
+	}
 	return s.each(dst, func(i int) complex128 { return s.voltAt(branch, i) })
 }
 
@@ -91,6 +97,9 @@ func (s *Sweep) BranchVoltage(dst []complex128, branch int) error {
 func (s *Sweep) BranchCurrent(dst []complex128, branch int) error {
 	if err := s.c.branch(branch); err != nil {
 		return err
+	}
+	if s.active != nil {
+		return s.active.superpose(dst, func(_ int, part *Sweep, dst []complex128) error { return part.BranchCurrent(dst, branch) })
 	}
 	far, tree := s.c.behind(branch)
 	return s.each(dst, func(i int) complex128 {
@@ -105,10 +114,13 @@ func (s *Sweep) BranchCurrent(dst []complex128, branch int) error {
 }
 
 // ImpedanceGradient stores ∂Zin/∂(value of a branch), in Ω per Ω, H or F. A part whose value was zero when
-// the circuit was compiled, and a one-port, has none: zeros.
+// the circuit was compiled, and a one-port, has none: zeros. Of a circuit with amplifiers it is not known: an error.
 func (s *Sweep) ImpedanceGradient(dst []complex128, branch int) error {
 	if err := s.c.branch(branch); err != nil {
 		return err
+	}
+	if s.active != nil {
+		return errActiveImpedance
 	}
 	return s.each(dst, func(i int) complex128 { return s.impedanceSlope(branch, i) })
 }
@@ -117,6 +129,9 @@ func (s *Sweep) ImpedanceGradient(dst []complex128, branch int) error {
 func (s *Sweep) ImpedanceGradientAt(branch, i int) (complex128, error) {
 	if err := s.c.branch(branch); err != nil {
 		return 0, err
+	}
+	if s.active != nil {
+		return 0, errActiveImpedance
 	}
 	if err := s.look(); err != nil {
 		return 0, err

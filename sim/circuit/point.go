@@ -292,6 +292,9 @@ func (c *Circuit) At(s complex128) (*Point, error) {
 	if s == 0 || !finite(s) {
 		return nil, fmt.Errorf("circuit: s = %g rad/s; ask for DC or Infinity", s)
 	}
+	if c.active != nil {
+		return c.activePoint(func(part *Circuit) (*Point, error) { return part.At(s) })
+	}
 	return c.point(s, false)
 }
 
@@ -338,6 +341,9 @@ func (c *Circuit) DC() (*Point, error) { return c.limit(limitDC) }
 func (c *Circuit) Infinity() (*Point, error) { return c.limit(limitInfinity) }
 
 func (c *Circuit) limit(s float64) (*Point, error) {
+	if c.active != nil {
+		return c.activePoint(func(part *Circuit) (*Point, error) { return part.limit(s) })
+	}
 	a, err := c.point(complex(s, 0), true)
 	if err != nil {
 		return nil, err

@@ -356,6 +356,8 @@ type Circuit struct {
 	outs []Output
 	f    *folded
 	p    *program
+
+	active *active // not nil: there are amplifiers, and f and p are those of its parts
 }
 
 // Compile checks n, folds it, and compiles its elimination. outs are the voltages that the caller will ask
@@ -370,6 +372,13 @@ func Compile(n *Netlist, outs []Output) (*Circuit, error) {
 	c.net.Branches = append([]Branch(nil), n.Branches...)
 	c.net.Couplings = append([]Coupling(nil), n.Couplings...)
 	c.net.NodeNames = append([]string(nil), n.NodeNames...)
+	if len(n.Amplifiers) > 0 {
+		var err error
+		if c.active, err = compileActive(c); err != nil {
+			return nil, err
+		}
+		return c, nil
+	}
 	f, err := fold(&c.net, outs)
 	if err != nil {
 		return nil, err

@@ -1,6 +1,11 @@
 package circuit
 
-import "fmt"
+import (
+	"fmt"
+	"slices"
+
+	"gonum.org/v1/gonum/mat"
+)
 
 // A StateSpace is a network as first-order differential equations,
 //
@@ -44,7 +49,7 @@ func NewStateSpace(n *Netlist, outs []Output) (*StateSpace, error) {
 	}
 	t := newNormalTree(g)
 	h := newHybrid(t)
-	ss, err := newStateEquations(g, t, h, outs)
+	ss, err := newStateEquations(g, t, h, outs, n.Amplifiers)
 	if err != nil {
 		return nil, err
 	}
@@ -84,7 +89,7 @@ func (ss *StateSpace) stiffestFirst() {
 
 // newStateEquations writes the equations. Every quantity is a matrix whose columns say how it depends on
 // the states and, last, on u.
-func newStateEquations(g *elementGraph, t *normalTree, h *hybrid, outs []Output) (*StateSpace, error) {
+func newStateEquations(g *elementGraph, t *normalTree, h *hybrid, outs []Output, amps []Amplifier) (*StateSpace, error) {
 	capacitors, err := newCapacitorStates(g, t)
 	if err != nil {
 		return nil, err
@@ -95,19 +100,20 @@ func newStateEquations(g *elementGraph, t *normalTree, h *hybrid, outs []Output)
 	}
 	nc, nl := len(capacitors.independent), len(coils.independent)
 	states := nc + nl
-	u := newMatrix(len(t.source), states+1)
-	for i := range t.source {
-		u.set(i, states, 1)
+	width := states + 1 + len(amps) // the states, the source, the amplifiers' outputs
+	u := newMatrix(len(t.source), width)
+	for i, e := range t.source {
+		u.set(i, states+g.elements[e].input, 1)
 	}
 
 	// Voltages of the tree's capacitors, from the charges; the source's share is what it
 	// pushes through loops of capacitors.
-	vC := newMatrix(len(t.tree[Capacitor]), states+1)
+	vC := newMatrix(len(t.tree[Capacitor]), width)
 	vC.paste(0, 0, capacitors.voltage)
 	vC = vC.sub(capacitors.feed.mul(u))
 
 	// Current of the link coils, so far as anything else sees it: F·i is the same for i and for this.
-	iL := newMatrix(len(t.link[Inductor]), states+1)
+	iL := newMatrix(len(t.link[Inductor]), width)
 	for k, row := range coils.independent {
 		for j := range nl {
 			iL.set(row, nc+j, coils.current.at(k, j))
@@ -125,25 +131,65 @@ func newStateEquations(g *elementGraph, t *normalTree, h *hybrid, outs []Output)
 	charging := fCR.mul(iR).add(fCL.mul(iL)).scale(-1)
 	driving := fUL.t().mul(u).add(fCL.t().mul(vC)).add(fGL.t().mul(vG))
 
-	rate := newMatrix(states, states+1)
-	rate.paste(0, 0, capacitors.rate.mul(charging.pick(capacitors.independent, upTo(states+1))))
+	rate := newMatrix(states, width)
+	rate.paste(0, 0, capacitors.rate.mul(charging.pick(capacitors.independent, upTo(width))))
 	rate.paste(nc, 0, coils.rate.mul(driving))
 
 	vΓ := coils.tree.mul(driving)
-	ss := &StateSpace{
-		A: rate.pick(upTo(states), upTo(states)).data,
-		B: rate.pick(upTo(states), []int{states}).data,
+	y := newMatrix(len(outs)+len(amps), width)
+	wanted := slices.Clone(outs)
+	for _, a := range amps {
+		wanted = append(wanted, Output{a.Plus, a.Minus})
 	}
-	y := newMatrix(len(outs), states+1)
-	for i, o := range outs {
+	for i, o := range wanted {
 		path, ok := t.path(g.node(o.From), g.node(o.To))
-		if !ok {
+		switch {
+		case !ok && i < len(outs):
 			return nil, fmt.Errorf("circuit: output %d: nothing joins its two ends; connect them, or choose two nodes that are joined", i)
+		case !ok:
+			return nil, fmt.Errorf("circuit: %s: nothing joins its two inputs; connect them to the network", amps[i-len(outs)].Name)
 		}
 		v := path.of(sourceKind).mul(u).add(path.of(Capacitor).mul(vC)).add(path.of(Resistor).mul(vG)).add(path.of(Inductor).mul(vΓ))
 		y.paste(i, 0, v)
 	}
-	ss.C = y.pick(upTo(len(outs)), upTo(states)).data
-	ss.D = y.pick(upTo(len(outs)), []int{states}).data
+	rate, y, err = closeLoops(rate, y, states, amps)
+	if err != nil {
+		return nil, err
+	}
+	ss := &StateSpace{
+		A: rate.pick(upTo(states), upTo(states)).data,
+		B: rate.pick(upTo(states), []int{states}).data,
+		C: y.pick(upTo(len(outs)), upTo(states)).data,
+		D: y.pick(upTo(len(outs)), []int{states}).data,
+	}
 	return ss, nil
+}
+
+// closeLoops makes of rate and y, whose last columns are for the amplifiers' outputs and the last rows of y how far their inputs are
+// apart, those of the network in which they are not apart: the outputs follow from states and source.
+func closeLoops(rate, y matrix, states int, amps []Amplifier) (closedRate, closedY matrix, err error) {
+	m := len(amps)
+	if m == 0 {
+		return rate, y, nil
+	}
+	outs, known := y.rows-m, upTo(states+1)
+	loop, rest := y.pick(span(outs, y.rows), span(states+1, y.cols)), y.pick(span(outs, y.rows), known)
+	var lu mat.LU
+	lu.Factorize(mat.NewDense(m, m, loop.data))
+	solved := mat.NewDense(m, states+1, nil)
+	// What feeds back at once, through resistors and capacitors alone, must be enough: a loop through coils alone would make the output
+	// follow the rate of the states.
+	if !(lu.Cond() < 1e9) || lu.SolveTo(solved, false, mat.NewDense(m, states+1, rest.data)) != nil {
+		return matrix{}, matrix{}, fmt.Errorf("circuit: %s has no feedback at high frequencies; connect its output to its minus input by a resistor or a capacitor", amps[0].Name)
+	}
+	output := newMatrix(m, states+1)
+	for i := range m {
+		for j := range states + 1 {
+			output.set(i, j, -solved.At(i, j))
+		}
+	}
+	close := func(full matrix) matrix {
+		return full.pick(upTo(full.rows), known).add(full.pick(upTo(full.rows), span(states+1, full.cols)).mul(output))
+	}
+	return close(rate), close(y), nil
 }

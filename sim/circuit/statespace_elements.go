@@ -10,6 +10,7 @@ type element struct {
 	kind     Kind // sourceKind, Capacitor, Resistor or Inductor
 	from, to int
 	value    float64 // F, Ω or H
+	input    int     // of a source: which; 0 the network's own, then the amplifiers' outputs
 }
 
 // An elementGraph is a netlist taken apart into ideal elements: one-ports expanded, losses split off to resistors,
@@ -51,6 +52,12 @@ func newElementGraph(n *Netlist) (*elementGraph, error) {
 		return nil, fmt.Errorf("circuit: the amplifier's terminals are shorted; give its source or what lies across it a resistance above 0 Ω")
 	}
 	g.elements = append(g.elements, element{kind: sourceKind, from: hot, to: Return})
+	for i, a := range n.Amplifiers {
+		if g.node(a.Out) == g.node(Return) || g.node(a.Out) == g.node(hot) {
+			return nil, fmt.Errorf("circuit: %s: its output is shorted; give what lies across it a resistance above 0 Ω", a.Name)
+		}
+		g.elements = append(g.elements, element{kind: sourceKind, from: a.Out, to: Return, input: i + 1})
+	}
 	for _, c := range n.Couplings {
 		a, b := coilOf[c.A], coilOf[c.B]
 		if a < 0 || b < 0 {
@@ -119,7 +126,7 @@ func (g *elementGraph) resistor(from, to int, value float64) {
 }
 
 func (g *elementGraph) add(kind Kind, from, to int, value float64) int {
-	g.elements = append(g.elements, element{kind, from, to, value})
+	g.elements = append(g.elements, element{kind: kind, from: from, to: to, value: value})
 	if kind != Inductor {
 		return -1
 	}

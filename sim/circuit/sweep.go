@@ -33,6 +33,8 @@ type Sweep struct {
 	g, zinv cvec             // V_amp/V_open and the input impedance of the present block
 	bad     [lanes]bool      // lanes of the present block that were mended
 	pt      *pointScratch
+
+	active *activeSweep // not nil: there are amplifiers, and all else is that of its parts
 }
 
 // NewSweep prepares a sweep over freqs, in Hz, positive and finite, in any order. The one-ports'
@@ -45,6 +47,9 @@ func (c *Circuit) NewSweep(freqs []float64) (*Sweep, error) {
 		if !(f > 0) || math.IsInf(f, 1) {
 			return nil, fmt.Errorf("circuit: frequency is %g Hz; give a positive number", f)
 		}
+	}
+	if c.active != nil {
+		return c.newActiveSweep(freqs)
 	}
 	n := len(freqs)
 	blocks := (n + lanes - 1) / lanes
@@ -132,6 +137,9 @@ func (c *cell) triple(branches []Branch, vals, loss []float64) [3]float64 {
 // SetValue changes the value of a branch, in Ω, H or F. A value of zero, or one for a branch that had zero
 // when the circuit was compiled, would change the arrangement: it is an error, as is a one-port.
 func (s *Sweep) SetValue(branch int, value float64) error {
+	if s.active != nil {
+		return s.active.set(func(part *Sweep) error { return part.SetValue(branch, value) })
+	}
 	if err := s.c.branch(branch); err != nil {
 		return err
 	}
@@ -148,10 +156,18 @@ func (s *Sweep) SetValue(branch int, value float64) error {
 }
 
 // Value is the present value of a branch, in Ω, H or F.
-func (s *Sweep) Value(branch int) float64 { return s.vals[branch] }
+func (s *Sweep) Value(branch int) float64 {
+	if s.active != nil {
+		s = s.active.parts[0]
+	}
+	return s.vals[branch]
+}
 
 // SetLoss changes the series resistance of an inductor or capacitor that was compiled with one, in Ω.
 func (s *Sweep) SetLoss(branch int, ohm float64) error {
+	if s.active != nil {
+		return s.active.set(func(part *Sweep) error { return part.SetLoss(branch, ohm) })
+	}
 	if err := s.c.branch(branch); err != nil {
 		return err
 	}
@@ -182,6 +198,9 @@ func (s *Sweep) renew(branch int) {
 // Solve computes the gains and the input impedance at every frequency. It allocates nothing. An error tells
 // where the network has no finite answer: at a resonance without any loss.
 func (s *Sweep) Solve() error {
+	if s.active != nil {
+		return s.active.solve((*Sweep).Solve)
+	}
 	for b := range s.w {
 		s.forward(b)
 		if err := s.finish(b); err != nil {
@@ -302,16 +321,32 @@ func finite(z complex128) bool {
 // Gain copies the gains V_out/V_open of an output, as of the last Solve or Gradient, or of the last question about the
 // inside of the network (inside.go), which solves too; len(dst) must be the number of frequencies.
 func (s *Sweep) Gain(dst []complex128, out int) {
+	if s.active != nil {
+		s.copyTo(dst, s.active.gain[out])
+		return
+	}
 	n := len(s.freqs)
 	s.copyTo(dst, s.gain[out*n:(out+1)*n])
 }
 
 // AmpGain copies V_amp/V_open: what the source resistance leaves of the open-circuit voltage.
-func (s *Sweep) AmpGain(dst []complex128) { s.copyTo(dst, s.amp) }
+func (s *Sweep) AmpGain(dst []complex128) {
+	if s.active != nil {
+		s.active.ampGain(dst)
+		return
+	}
+	s.copyTo(dst, s.amp)
+}
 
 // InputImpedance copies the impedance in Ω between Amp and Return, the source resistance not included.
 // Where no current flows it is infinite.
-func (s *Sweep) InputImpedance(dst []complex128) { s.copyTo(dst, s.zin) }
+func (s *Sweep) InputImpedance(dst []complex128) {
+	if s.active != nil {
+		s.active.inputImpedance(dst)
+		return
+	}
+	s.copyTo(dst, s.zin)
+}
 
 func (s *Sweep) copyTo(dst, src []complex128) {
 	if len(dst) != len(src) {
