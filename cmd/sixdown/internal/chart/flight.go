@@ -6,7 +6,7 @@ import "math"
 // nothing else could be seen; "" if nothing.
 func held(subjects []*Subject) string {
 	if late := subjects[0].late(); late > 0 {
-		return ", less " + number(1000*late, 3) + " ms more that the tables hold"
+		return ", less the " + decimals(1000*late, 2) + " ms that the tables hold"
 	}
 	return ""
 }

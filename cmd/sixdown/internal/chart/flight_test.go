@@ -42,7 +42,7 @@ func TestHeldFlightIsSaid(t *testing.T) {
 	subjects := []*Subject{{Response: r, Late: late, Step: step}}
 	for _, p := range []Panel{Phase(subjects, "a"), GroupDelay(subjects, "a"), StepResponse(subjects)} {
 		plot := p.(*plotPanel)
-		if !strings.HasSuffix(plot.note, ", less 2.92 ms more that the tables hold") {
+		if !strings.HasSuffix(plot.note, ", less the 2.92 ms that the tables hold") {
 			t.Errorf("%s: the note is %q", plot.title, plot.note)
 		}
 		for _, c := range plot.series {

@@ -20,7 +20,8 @@ const (
 // name writes a curve's name beside it. near is where along the frame it is best, negative: anywhere. It reports
 // false, and writes nothing, where every place is taken.
 func (l *labels) name(own [][]point, c series, near float64) bool {
-	t := text{text: c.name, size: labelSize, bold: c.bold, anchor: start, ink: c.pen.ink}
+	// The paler lines of a second design are names' own, but writing as pale is hard to read.
+	t := text{text: c.name, size: labelSize, bold: c.bold, anchor: start, ink: c.pen.ink.full()}
 	w, h := l.scene.fonts.width(t.text, t.size, t.bold), labelSize*capHeight
 	best, found := math.Inf(1), rect{}
 	for x := l.in.x + clear + 1; x+w <= l.in.right()-clear; x += 4 {

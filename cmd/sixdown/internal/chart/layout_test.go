@@ -19,15 +19,15 @@ func pages(t testing.TB) map[string]*Page {
 	return map[string]*Page{
 		"two-way in phase":     pageOf(t, a),
 		"two-way out of phase": pageOf(t, b),
+		"two-way opposed":      pageOf(t, twoWay(t, freqs, 150)),
 		"three-way":            pageOf(t, threeWay(t, freqs)),
 		"two designs":          pageOf(t, &named, other),
 		"spread":               spreadPage(freqs),
-		"around":               {Title: "Around", Panels: Around(falling(freqs))},
+		"around":               {Title: "Around", Panels: Around(falling(freqs), "dB SPL at 2 m for 2.83 V")},
 		"twice the same":       pageOf(t, &named, func() *Subject { c := named; c.Name = "B"; return &c }()),
 	}
 }
 
-// TestWritingIsClear: on every page no two texts run into each other, and all lie on the sheet with a margin.
 // falling are curves that fall the more, the more of the sphere they are of.
 func falling(freqs []float64) *sim.Curves {
 	c := &sim.Curves{Freqs: freqs, Basis: "model"}
@@ -66,6 +66,7 @@ func spreadPage(freqs []float64) *Page {
 	}}
 }
 
+// TestWritingIsClear: on every page no two texts run into each other, and all lie on the sheet with a margin.
 func TestWritingIsClear(t *testing.T) {
 	for name, p := range pages(t) {
 		for _, limit := range []float64{math.Inf(1), 1075} {

@@ -6,11 +6,14 @@ import (
 	"sixdown/sim"
 )
 
+// aroundRange is how many dB below the top are shown at most.
+const aroundRange = 30
+
 // Around draws the curves of ANSI/CTA-2034-A: what is heard on the axis and near it, what a room sends back, all that is radiated, and
-// what comes of it in a room; and below, in a panel of its own, the directivity indexes.
-func Around(c *sim.Curves) []Panel {
+// what comes of it in a room; and below, in a panel of its own, the directivity indexes. note says what the levels are for.
+func Around(c *sim.Curves, note string) []Panel {
 	f := c.Freqs
-	levels := &plotPanel{high: 250, plot: plot{title: "Around", note: "dB SPL, directivity: " + c.Basis, x: frequencyAxis(f[0], f[len(f)-1])}}
+	levels := &plotPanel{high: 270, plot: plot{title: "Around", note: note + "; directivity: " + c.Basis, x: frequencyAxis(f[0], f[len(f)-1])}}
 	top, bottom := math.Inf(-1), math.Inf(1)
 	for i, s := range []struct {
 		name   string
@@ -21,7 +24,9 @@ func Around(c *sim.Curves) []Panel {
 	}
 	levels.series = append(levels.series, series{name: "on axis", x: f, y: c.OnAxis, pen: pen{total, totalWidth, nil}, bold: true})
 	top, bottom = max(top, most(c.OnAxis)), min(bottom, least(c.OnAxis))
-	levels.y = linearAxis(max(bottom-2, top-fanRange), top+2, 6, " dB", true)
+	// By fives, so that no half of the panel stays empty.
+	top = topOf([]float64{top})
+	levels.y = linearAxis(min(max(5*math.Floor((bottom-1)/5), top-aroundRange), top-10), top, 7, " dB", false)
 
 	index := &plotPanel{high: 150, plot: plot{title: "Directivity index", note: "listening window less the rest", x: frequencyAxis(f[0], f[len(f)-1])}}
 	index.series = []series{

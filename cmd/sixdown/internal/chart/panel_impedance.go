@@ -20,14 +20,14 @@ func Impedance(subjects []*Subject, note string) []Panel {
 			epdr := sim.EPDRs(s.Response.Zin)
 			all = append(all, epdr)
 			size.series = append(size.series, series{name: s.named("EPDR"), x: f, y: epdr, pen: styles(k, len(subjects), way2, 1, wayWidth)})
-			if k == 0 {
-				size.callouts = append(size.callouts, lowest(s.named("EPDR"), f, epdr, way2))
+			if m := s.Summary; k == 0 && m != nil {
+				size.callouts = append(size.callouts, lowest(s.named("EPDR"), m.MinEPDRAt, m.MinEPDR, way2))
 			}
 		}
 		size.series = append(size.series, series{name: s.named("|Z|"), x: f, y: z, pen: styles(k, len(subjects), total, -1, totalWidth), bold: true})
 		angle.series = append(angle.series, series{name: s.Name, x: f, y: sim.PhasesDeg(s.Response.Zin), pen: styles(k, len(subjects), total, -1, totalWidth)})
-		if k == 0 {
-			size.callouts = append(size.callouts, lowest(s.named("|Z|"), f, z, total))
+		if m := s.Summary; k == 0 && m != nil {
+			size.callouts = append(size.callouts, lowest(s.named("|Z|"), m.MinImpedanceAt, m.MinImpedance, total))
 		}
 	}
 	// An axis in equal ratios needs ends above 0; a short, and a load that no current flows into, are outside it.
@@ -54,15 +54,9 @@ func ohms(v float64) string {
 	return number(v, 3)
 }
 
-// lowest is a remark at the lowest point of a curve in Ω.
-func lowest(name string, f, ohm []float64, i ink) callout {
-	low := 0
-	for k := range ohm {
-		if ohm[k] < ohm[low] {
-			low = k
-		}
-	}
-	return callout{f[low], ohm[low], name + " " + threeFigures(ohm[low]) + " Ω at " + hertz(f[low]), i}
+// lowest is a remark at the lowest point of a curve, of so many ohms at f in Hz.
+func lowest(name string, f, ohms float64, i ink) callout {
+	return callout{f, ohms, name + " " + threeFigures(ohms) + " Ω at " + hertz(f), i}
 }
 
 // threeFigures writes a resistance with three figures, zeros at the end too.

@@ -2,7 +2,7 @@ package chart
 
 import (
 	"math"
-	"math/cmplx"
+	"slices"
 	"strings"
 
 	"sixdown/sim"
@@ -11,71 +11,106 @@ import (
 // nullRange is how many dB below the top the deepest null is shown.
 const nullRange = 60
 
+// shallow is above what dB a hole is no null, as in the text of predict. Common practice, no source.
+const shallow = -3
+
 // Null draws the sum as it is, and for each crossing with the ways on one side of it reversed: the deeper the null
-// at the crossing, the better the two are in step there. It needs a sum and a crossing.
+// at the crossing, the better the two are in step there. Where reversed is the better polarity, the null of the sum as it is
+// wired is marked instead. It needs a sum and a crossing.
 func Null(s *Subject) Panel {
 	f := s.Response.Freqs
-	p := &plotPanel{high: 196, half: true, plot: plot{title: s.named("Reversed"), note: "the deeper the null, the better in step", x: frequencyAxis(ends([]*Subject{s}))}}
-	normal := sumLevels(s)
-	bottom := topOf(normal) - 20
+	p := &plotPanel{high: 196, half: true, plot: plot{title: s.named("Reversed"), note: s.nullNote(), x: frequencyAxis(ends([]*Subject{s}))}}
+	normal := series{name: "sum", x: f, y: sumLevels(s), pen: pen{total, totalWidth, nil}, bold: true}
+	top := topOf(normal.y)
+	bottom := top - 20
 	for k := range s.Crossing {
-		reversed, names, colour := s.reversed(k)
-		levels := sim.SPLs(reversed)
-		p.series = append(p.series, series{x: f, y: levels, pen: pen{wayInk(colour), wayWidth, dashes(max(1, colour))}})
-		at, depth := deepest(f, reversed, s.Response.Sum, s.Crossing[k].Frequency)
-		level := max(depth+interpolated(f, normal, at), topOf(normal)-nullRange)
-		bottom = min(bottom, level)
-		p.callouts = append(p.callouts, callout{at, level, strings.Join(names, ", ") + " reversed: " + decimals(depth, 1) + " dB at " + hertz(at), wayInk(colour)})
+		c := &s.Crossing[k]
+		names, first := s.turnable(c)
+		reversed := series{x: f, y: sim.SPLs(s.reversed(names)), pen: pen{wayInk(first), wayWidth, dashes(max(1, first))}}
+		// mark puts the bottom of a hole, so far below the curve of, onto the curve in.
+		mark := func(in, of *series, h sim.Hole, ink ink, text string) {
+			if h.DepthDB > shallow {
+				h.Frequency = c.Frequency // nowhere is better than another
+				p.callouts = append(p.callouts, callout{h.Frequency, interpolated(in.x, in.y, h.Frequency), text + ": no null", ink})
+				return
+			}
+			level := max(h.DepthDB+interpolated(of.x, of.y, h.Frequency), top-nullRange)
+			depth := decimals(h.DepthDB, 1) + " dB at "
+			if h.DepthDB < -nullRange {
+				depth = "below −60 dB at "
+			}
+			in.through(h.Frequency, level)
+			bottom = min(bottom, level)
+			p.callouts = append(p.callouts, callout{h.Frequency, level, text + ": " + depth + hertz(h.Frequency), ink})
+		}
+		switch {
+		case !c.OneTimeBase:
+		case c.ReversedIsBetter && c.AsWired.DepthDB <= shallow:
+			mark(&normal, &reversed, c.AsWired, total, "as wired")
+		default:
+			mark(&reversed, &normal, c.Null, wayInk(first), strings.Join(names, ", ")+" reversed")
+		}
+		p.series = append(p.series, reversed)
 	}
-	p.series = append(p.series, series{name: "sum", x: f, y: normal, pen: pen{total, totalWidth, nil}, bold: true})
-	p.y = linearAxis(5*math.Floor(bottom/5)-10, topOf(normal), 5, " dB", false)
+	p.series = append(p.series, normal)
+	p.y = linearAxis(5*math.Floor(bottom/5)-10, top, 5, " dB", false)
 	return p
 }
 
-// reversed returns the sum with the ways that lead below crossing k reversed, or, if these are the more, those that
-// lead above; with their names, and the first of them.
-func (s *Subject) reversed(k int) (sum []complex128, names []string, first int) {
-	below := map[string]bool{}
-	for _, c := range s.Crossing[:k+1] {
-		below[c.Low] = true
+// nullNote says how the picture is to be read.
+func (s *Subject) nullNote() string {
+	var better []string
+	for k := range s.Crossing {
+		switch c := &s.Crossing[k]; {
+		case !c.OneTimeBase:
+			return c.Low + " and " + c.High + " are not on one time base"
+		case c.ReversedIsBetter && c.AsWired.DepthDB <= shallow:
+			names, _ := s.turnable(c)
+			better = append(better, names...)
+		}
 	}
-	turn := func(name string) bool { return below[name] == (2*len(below) < len(s.Response.Ways)) }
-	sum = make([]complex128, len(s.Response.Freqs))
-	first = -1
-	for i, w := range s.Response.Ways {
+	switch {
+	case len(better) == 0:
+		return "the deeper the null, the better in step"
+	case len(s.Crossing) == 1:
+		return "reversed is better"
+	}
+	return "better reversed: " + strings.Join(better, ", ")
+}
+
+// turnable returns the ways on that side of a crossing which has fewer, in the order of the design, and which of all is the
+// first of them. To turn the others does the same.
+func (s *Subject) turnable(c *Crossing) (names []string, first int) {
+	side := c.Upper
+	if len(c.Lower) < len(c.Upper) {
+		side = c.Lower
+	}
+	first = slices.IndexFunc(s.Response.Ways, func(w sim.WayResponse) bool { return slices.Contains(side, w.Name) })
+	return side, max(first, 0)
+}
+
+// reversed returns the sum with the ways of those names turned.
+func (s *Subject) reversed(names []string) []complex128 {
+	sum := make([]complex128, len(s.Response.Freqs))
+	for _, w := range s.Response.Ways {
 		sign := complex128(1)
-		if turn(w.Name) {
+		if slices.Contains(names, w.Name) {
 			sign = -1
-			if names = append(names, w.Name); first < 0 {
-				first = i
-			}
 		}
 		for j, v := range w.P {
 			sum[j] += sign * v
 		}
 	}
-	return sum, names, max(first, 0)
+	return sum
 }
 
-// deepest finds where, within an octave of a crossing, the reversed sum is lowest relative to the normal one, and how
-// deep in dB that is. Between grid points the ratio of the two is taken to move straight, so that a null that falls
-// between two of them is not missed.
-func deepest(f []float64, reversed, normal []complex128, crossing float64) (at, depth float64) {
-	at, depth = crossing, math.Inf(1)
-	for i := 1; i < len(f); i++ {
-		if f[i] < crossing/2 || f[i-1] > crossing*2 {
-			continue
-		}
-		a, b := reversed[i-1]/normal[i-1], reversed[i]/normal[i]
-		t := 0.0
-		if d := b - a; d != 0 {
-			t = min(max(-real(a*cmplx.Conj(d))/real(d*cmplx.Conj(d)), 0), 1)
-		}
-		if l := sim.DB(a + complex(t, 0)*(b-a)); l < depth {
-			at, depth = f[i-1]*math.Pow(f[i]/f[i-1], t), l
-		}
+// through puts a point into a curve, so that a null that falls between two of its points is not cut short.
+func (c *series) through(x, y float64) {
+	at, found := slices.BinarySearch(c.x, x)
+	if found || at == 0 || at == len(c.x) {
+		return
 	}
-	return at, depth
+	c.x, c.y = slices.Insert(slices.Clone(c.x), at, x), slices.Insert(slices.Clone(c.y), at, y)
 }
 
 // interpolated returns the value at x of a curve over rising xs.

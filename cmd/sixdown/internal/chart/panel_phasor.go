@@ -67,7 +67,11 @@ func (p *phasorPanel) draw(s *scene, room rect) {
 	polarGrid(s, in, place(0), cmplx.Abs(sum)*scale)
 
 	s.frame(in)
-	key := text{point{in.x + 7, in.bottom() - 7}, "broad: the sum; circles 6 dB apart", noteSize - 1, false, start, faint}
+	said := "broad: the sum; circles 6 dB apart"
+	if !c.OneTimeBase {
+		said = "not on one time base: the angles mean nothing"
+	}
+	key := text{point{in.x + 7, in.bottom() - 7}, said, noteSize - 1, false, start, faint}
 	s.add(key)
 	l := &labels{scene: s, in: in, taken: append(taken, s.box(key))}
 	end := corners[len(corners)-1]

@@ -11,15 +11,15 @@ type PolarMap struct {
 	Title    string      // "Horizontal"
 	Freqs    []float64   // Hz, rising
 	AngleDeg []float64   // rising, from -180° to 180°
-	LevelDB  [][]float64 // by angle, then by frequency; dB re the axis or whatever Note says
-	Note     string      // "dB re on axis, from the model"
+	LevelDB  [][]float64 // by angle, then by frequency; dB re straight ahead or whatever Note says
+	Note     string      // "dB re straight ahead; positive: up"
 }
 
-// check judges a map's shape.
-func (m *PolarMap) check() error {
-	if len(m.Freqs) < 2 || len(m.AngleDeg) < 2 || len(m.LevelDB) != len(m.AngleDeg) ||
+// check judges a map's shape. It must have as many frequencies as least.
+func (m *PolarMap) check(least int) error {
+	if len(m.Freqs) < least || len(m.AngleDeg) < 2 || len(m.LevelDB) != len(m.AngleDeg) ||
 		slices.ContainsFunc(m.LevelDB, func(l []float64) bool { return len(l) != len(m.Freqs) }) {
-		return fmt.Errorf("polar map %q: there are %d angles, %d frequencies and %d rows of levels; give two or more of the first two and a row of levels over all frequencies for each angle", m.Title, len(m.AngleDeg), len(m.Freqs), len(m.LevelDB))
+		return fmt.Errorf("polar map %q: there are %d angles, %d frequencies and %d rows of levels; give two or more angles, %d or more frequencies and a row of levels over all frequencies for each angle", m.Title, len(m.AngleDeg), len(m.Freqs), len(m.LevelDB), least)
 	}
 	if !slices.IsSorted(m.Freqs) || !slices.IsSorted(m.AngleDeg) || !(m.Freqs[0] > 0) {
 		return fmt.Errorf("polar map %q: the angles or the frequencies do not rise; sort them", m.Title)
@@ -27,22 +27,39 @@ func (m *PolarMap) check() error {
 	return nil
 }
 
-// heatStep is how many dB each colour of a map stands for, half to either side of its level; the topmost stands for
-// 0 dB and all above.
+// heatStep is how many dB each colour of a map stands for, half to either side of its level; the lowest stands for all below too.
 const heatStep = 3
 
-// heatLevel is the level in dB that a colour stands for.
-func heatLevel(k int) float64 { return float64(k-heatSteps+1) * heatStep }
-
-// Polar draws a map's level over frequency and angle as areas of 3 dB, with a key. The map is not changed.
-func Polar(m *PolarMap) (Panel, error) {
-	if err := m.check(); err != nil {
-		return nil, err
+// Polar draws maps' levels over frequency and angle as areas of 3 dB, with a key. All are on one scale, whose topmost colour
+// is the loudest of all, 0 dB at the least. The maps are not changed.
+func Polar(maps ...*PolarMap) ([]Panel, error) {
+	top := max(0, heatStep*math.Ceil(loudest(maps)/heatStep-0.5))
+	var panels []Panel
+	for _, m := range maps {
+		if err := m.check(2); err != nil {
+			return nil, err
+		}
+		panels = append(panels, &polarPanel{m, top})
 	}
-	return &polarPanel{m}, nil
+	return panels, nil
 }
 
-type polarPanel struct{ *PolarMap }
+// loudest returns the highest finite level in dB of all maps; -Inf if there is none.
+func loudest(maps []*PolarMap) float64 {
+	high := math.Inf(-1)
+	for _, m := range maps {
+		high = max(high, most(m.LevelDB...))
+	}
+	return high
+}
+
+type polarPanel struct {
+	*PolarMap
+	top float64 // dB, that the topmost colour stands for
+}
+
+// level is the level in dB that a colour stands for.
+func (p *polarPanel) level(k int) float64 { return p.top + float64(k-heatSteps+1)*heatStep }
 
 func (p *polarPanel) height() float64 { return 196 }
 func (p *polarPanel) narrow() bool    { return false }
@@ -60,14 +77,14 @@ func (p *polarPanel) draw(s *scene, room rect) {
 	below := make([][]float64, len(p.LevelDB))
 	for i, row := range p.LevelDB {
 		for _, l := range row {
-			below[i] = append(below[i], -max(l, heatLevel(-1)))
+			below[i] = append(below[i], -max(l, p.level(-1)))
 		}
 	}
 	f := &field{logs, p.AngleDeg, below}
 	whole := [][]point{{{in.x.lo, in.y.lo}, {in.x.hi, in.y.lo}, {in.x.hi, in.y.hi}, {in.x.lo, in.y.hi}}}
 	in.areas = append(in.areas, area{whole, heat0 + heatSteps - 1})
 	for k := heatSteps - 2; k >= 0; k-- {
-		loops := f.above(-(heatLevel(k) + heatStep/2.0))
+		loops := f.above(-(p.level(k) + heatStep/2.0))
 		for _, l := range loops {
 			for i := range l {
 				l[i].x = math.Exp(l[i].x)
@@ -78,22 +95,23 @@ func (p *polarPanel) draw(s *scene, room rect) {
 	in.bare = true
 	plotted := rect{room.x, room.y, room.w - keyRoom, room.h}
 	in.draw(s, plotted)
-	heatKey(s, rect{plotted.right() + 14, frameIn(plotted).y, 12, frameIn(plotted).h})
+	p.key(s, rect{plotted.right() + 14, frameIn(plotted).y, 12, frameIn(plotted).h})
 }
 
-// heatKey draws the colours with their levels.
-func heatKey(s *scene, r rect) {
+// key draws the colours with their levels, every other one written and 0 dB among these.
+func (p *polarPanel) key(s *scene, r rect) {
 	step := r.h / heatSteps
 	for k := range heatSteps {
 		s.fill(rect{r.x, r.bottom() - float64(k+1)*step, r.w, step}, heat0+ink(k))
 	}
 	s.frame(r)
-	for k := 1; k < heatSteps; k += 2 {
-		level := number(heatLevel(k), 3)
-		if k == heatSteps-1 {
-			level += " dB"
+	unit := " dB"
+	for k := heatSteps - 1; k > 0; k-- {
+		if int(p.level(k))%(2*heatStep) != 0 {
+			continue
 		}
-		s.add(text{point{r.right() + 5, r.bottom() - (float64(k)+0.5)*step + tickSize*capHeight/2}, level, tickSize, false, start, faint})
+		s.add(text{point{r.right() + 5, r.bottom() - (float64(k)+0.5)*step + tickSize*capHeight/2}, number(p.level(k), 3) + unit, tickSize, false, start, faint})
+		unit = ""
 	}
 }
 
@@ -108,125 +126,4 @@ func angleAxis(lo, hi float64) axis {
 		a.ticks = append(a.ticks, tick{v, number(v, 3) + "°"})
 	}
 	return a
-}
-
-// PolarCurves draws the levels round the loudspeaker at a few frequencies, 0° to the top and positive angles to
-// the right. Of a map that ends at ±90° it draws the front half.
-func PolarCurves(m *PolarMap, freqs []float64) (Panel, error) {
-	if err := m.check(); err != nil {
-		return nil, err
-	}
-	return &polarCurves{m, freqs}, nil
-}
-
-type polarCurves struct {
-	*PolarMap
-	at []float64
-}
-
-// polarRange is how many dB the rim is above the middle; the rim is at polarTop.
-const (
-	polarRange = 30
-	polarTop   = 5
-)
-
-func (p *polarCurves) half() bool {
-	return p.AngleDeg[0] >= -90 && p.AngleDeg[len(p.AngleDeg)-1] <= 90
-}
-
-func (p *polarCurves) height() float64 {
-	if p.half() {
-		return 212
-	}
-	return 362
-}
-
-func (p *polarCurves) narrow() bool { return true }
-
-func (p *polarCurves) draw(s *scene, room rect) {
-	heading := plot{title: p.Title, note: p.Note}
-	heading.heading(s, room)
-	const top, foot, side = headingSpace + 16, 42, 30 // for the angles above, the levels and the key below, the angles beside
-	r := (room.h - top - foot) / 2
-	if p.half() {
-		r = room.h - top - foot
-	}
-	r = min(r, room.w/2-side)
-	centre := point{room.x + room.w/2, room.y + top + r}
-	at := func(angleDeg, level float64) point {
-		sin, cos := math.Sincos(angleDeg * math.Pi / 180)
-		d := r * min(max((level-polarTop+polarRange)/polarRange, 0), 1)
-		return point{centre.x + d*sin, centre.y - d*cos}
-	}
-	p.dial(s, centre, r, at)
-	for k, f := range p.at {
-		var points []point
-		for i, a := range p.AngleDeg {
-			points = append(points, at(a, interpolated(p.Freqs, p.LevelDB[i], f)))
-		}
-		s.add(line{points, pen{wayInk(k), wayWidth, dashes(k)}})
-	}
-	// The key, in one row.
-	const sample, gap = 22, 14
-	width := -float64(gap)
-	for _, f := range p.at {
-		width += sample + 5 + s.fonts.width(hertz(f), noteSize, false) + gap
-	}
-	x, y := room.x+(room.w-width)/2, room.bottom()-4
-	for k, f := range p.at {
-		s.stroke(point{x, y - 4}, point{x + sample, y - 4}, pen{wayInk(k), wayWidth, dashes(k)})
-		t := text{point{x + sample + 5, y}, hertz(f), noteSize, false, start, writing}
-		s.add(t)
-		x = s.box(t).right() + gap
-	}
-}
-
-// dial draws the circles with their levels and the rays with their angles.
-func (p *polarCurves) dial(s *scene, centre point, r float64, at func(angleDeg, level float64) point) {
-	box := rect{centre.x - r, centre.y - r, 2 * r, 2 * r}.grown(1)
-	if p.half() {
-		box.h = r + 1
-	}
-	for level := float64(polarTop - polarRange + 5); level <= polarTop; level += 5 {
-		w := pen{ink: minor, width: 0.7}
-		switch level {
-		case polarTop:
-			w.ink = frame
-		case 0:
-			w.ink = major
-		}
-		for _, part := range clipped(circle(centre, r*(level-polarTop+polarRange)/polarRange), box) {
-			s.add(line{part, w})
-		}
-	}
-	for a := -150.0; a <= 180; a += 30 {
-		if p.half() && math.Abs(a) > 90 {
-			continue
-		}
-		s.stroke(centre, at(a, polarTop), pen{ink: minor, width: 0.7})
-		e := at(a, polarTop)
-		sin, cos := math.Sincos(a * math.Pi / 180)
-		t := text{point{e.x + 5*sin, e.y - 5*cos + (1-cos)/2*tickSize*capHeight}, number(a, 3) + "°", tickSize, false, start, faint}
-		switch {
-		case math.Abs(sin) < 0.01:
-			t.anchor = middle
-		case sin < 0:
-			t.anchor = end
-		}
-		s.add(t)
-	}
-	ray := 180.0
-	if p.half() {
-		ray = 90
-	}
-	for level := -20.0; level <= 0; level += 10 {
-		e, text := at(ray, level), text{text: number(level, 3), size: tickSize - 1, ink: faint}
-		if level == 0 {
-			text.text += " dB"
-		}
-		if text.at = (point{e.x + 3, e.y - 2}); p.half() {
-			text.at, text.anchor = point{e.x, e.y + 11}, middle
-		}
-		s.add(text)
-	}
 }

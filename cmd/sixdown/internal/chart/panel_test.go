@@ -3,6 +3,7 @@ package chart
 import (
 	"math"
 	"math/cmplx"
+	"slices"
 	"strings"
 	"testing"
 
@@ -10,27 +11,58 @@ import (
 )
 
 // TestNull: two ways that are equally loud at their crossing, and φ apart in phase, sum to 2·cos(φ/2) of one and, one
-// reversed, to 2·sin(φ/2), so the reversed sum is lower by 20·lg tan(φ/2): derived by hand. The null lies at the
-// crossing, where a fourth-order pair is symmetrical.
+// reversed, to 2·sin(φ/2), so the reversed sum is lower by 20·lg tan(φ/2) and the sum as wired by as much if that is
+// above 0: derived by hand. A mark is on its curve, at the level that the curve of the formula has there.
 func TestNull(t *testing.T) {
-	for _, phi := range []float64{10, 30, 60, 85} {
-		s := twoWay(t, grid(700), phi)
-		reversed, names, first := s.reversed(0)
-		if len(names) != 1 || names[0] != "high" || first != 1 {
-			t.Fatalf("%q are reversed", names)
+	for _, c := range []struct {
+		phi  float64
+		text string
+		note string
+		on   string  // the name of the marked curve
+		of1  float64 // its pressure at the crossing, relative to one way's
+	}{
+		{20, "high reversed: −15.1 dB at 2 kHz", "the deeper the null, the better in step", "", 2 * math.Sin(10*math.Pi/180)},
+		{60, "high reversed: −4.8 dB at 2 kHz", "the deeper the null, the better in step", "", 1},
+		// In quadrature, as odd orders are, both are as loud.
+		{89, "high reversed: no null", "the deeper the null, the better in step", "", 2 * math.Sin(44.5*math.Pi/180)},
+		{91, "high reversed: no null", "the deeper the null, the better in step", "", 2 * math.Sin(45.5*math.Pi/180)},
+		{150, "as wired: −11.4 dB at 2 kHz", "reversed is better", "sum", 2 * math.Cos(75*math.Pi/180)},
+		{-150, "as wired: −11.4 dB at 2 kHz", "reversed is better", "sum", 2 * math.Cos(75*math.Pi/180)},
+		{180, "as wired: below −60 dB at 2 kHz", "reversed is better", "sum", 0},
+	} {
+		p := Null(twoWay(t, grid(700), c.phi)).(*plotPanel)
+		if len(p.callouts) != 1 || p.callouts[0].text != c.text || p.note != c.note {
+			t.Errorf("%g° apart: %+v under %q, want %q under %q", c.phi, p.callouts, p.note, c.text, c.note)
+			continue
 		}
-		at, depth := deepest(s.Response.Freqs, reversed, s.Response.Sum, 2000)
-		want := 20 * math.Log10(math.Tan(phi/2*math.Pi/180))
-		// The ratio is taken straight over steps of 1 %, over which it bends by some 1e-3 of itself.
-		if math.Abs(depth-want) > 0.01*math.Abs(want)+0.02 || math.Abs(at/2000-1) > 0.005 {
-			t.Errorf("%g° apart: a null of %.3f dB at %.1f Hz, want %.3f at 2000", phi, depth, at, want)
+		mark := p.callouts[0]
+		for _, s := range p.series {
+			if s.name != c.on {
+				continue
+			}
+			if got := interpolated(s.x, s.y, 2000); mark.x != 2000 || math.Abs(got-mark.y) > 1e-9 {
+				t.Errorf("%g° apart: the mark at %g dB, %g Hz is off its curve, which is at %g dB", c.phi, mark.y, mark.x, got)
+			}
+		}
+		// A way of a fourth-order pair is at 1/2 Pa there; 94 dB SPL is 1 Pa re 20 µPa. The grid has no point at
+		// 2 kHz, and the reference curve is straight between two: 0.02 dB. 60 dB below the top is as deep as is shown.
+		want := max(20*math.Log10(c.of1/2/20e-6), topOf([]float64{20 * math.Log10(1/20e-6)})-nullRange)
+		if math.Abs(mark.y-want) > 0.02 {
+			t.Errorf("%g° apart: the mark is at %.3f dB, want %.3f", c.phi, mark.y, want)
 		}
 	}
-	s := twoWay(t, grid(700), 0)
-	reversed, _, _ := s.reversed(0)
-	// In step the null has no bottom; between the points of the grid it still reaches far down.
-	if _, depth := deepest(s.Response.Freqs, reversed, s.Response.Sum, 2000); depth > -80 {
-		t.Errorf("in step the null is %.1f dB deep", depth)
+}
+
+// TestNullWithoutTimeBase: where two drivers' phases cannot be held against each other, no null is marked, and the phasors say so.
+func TestNullWithoutTimeBase(t *testing.T) {
+	s := twoWay(t, grid(100), 150)
+	s.Crossing[0].OneTimeBase = false
+	p := Null(s).(*plotPanel)
+	if len(p.callouts) != 0 || p.note != "low and high are not on one time base" {
+		t.Errorf("%+v are marked under %q", p.callouts, p.note)
+	}
+	if texts, _ := drawn(t, Phasors(s)[0]); !slices.Contains(texts, "not on one time base: the angles mean nothing") {
+		t.Errorf("with the phasors is written %q", texts)
 	}
 }
 
@@ -38,13 +70,13 @@ func TestNull(t *testing.T) {
 func TestReversed(t *testing.T) {
 	s := threeWay(t, grid(100))
 	for k, want := range []string{"low", "high"} {
-		sum, names, _ := s.reversed(k)
-		if strings.Join(names, " ") != want {
+		names, first := s.turnable(&s.Crossing[k])
+		if strings.Join(names, " ") != want || first != 2*k {
 			t.Errorf("at crossing %d %q is reversed, want %s", k, names, want)
 		}
-		for i := range sum {
+		for i, sum := range s.reversed(names) {
 			way := s.Response.Ways[2*k].P[i]
-			if d := s.Response.Sum[i] - 2*way - sum[i]; cmplx.Abs(d) > 1e-14 {
+			if d := s.Response.Sum[i] - 2*way - sum; cmplx.Abs(d) > 1e-14 {
 				t.Fatalf("at crossing %d the reversed sum is off by %g", k, cmplx.Abs(d))
 			}
 		}
@@ -148,24 +180,6 @@ func TestPhasors(t *testing.T) {
 	}
 }
 
-// TestPolarMapRefusals: maps that are no grid.
-func TestPolarMapRefusals(t *testing.T) {
-	for name, m := range map[string]*PolarMap{
-		"nothing":           {},
-		"a row is missing":  {Freqs: []float64{1, 2}, AngleDeg: []float64{0, 10}, LevelDB: [][]float64{{0, 0}}},
-		"a row is short":    {Freqs: []float64{1, 2}, AngleDeg: []float64{0, 10}, LevelDB: [][]float64{{0, 0}, {0}}},
-		"angles fall":       {Freqs: []float64{1, 2}, AngleDeg: []float64{10, 0}, LevelDB: [][]float64{{0, 0}, {0, 0}}},
-		"frequency of zero": {Freqs: []float64{0, 2}, AngleDeg: []float64{0, 10}, LevelDB: [][]float64{{0, 0}, {0, 0}}},
-	} {
-		if _, err := Polar(m); err == nil {
-			t.Errorf("%s: a map is drawn", name)
-		}
-		if _, err := PolarCurves(m, nil); err == nil {
-			t.Errorf("%s: curves are drawn", name)
-		}
-	}
-}
-
 // TestGainsAlone: a design without a sum at the ear, and a tone network, are drawn by their gains.
 func TestGainsAlone(t *testing.T) {
 	r := &sim.Response{Freqs: grid(100), Ways: []sim.WayResponse{{Name: "out"}}}
@@ -189,5 +203,55 @@ func BenchmarkSVG(b *testing.B) {
 	b.ReportAllocs()
 	for b.Loop() {
 		svgOf(b, p, Auto, 0)
+	}
+}
+
+// TestLowestImpedance: the marks are where the summary says, on the grid or not, and none is beyond the span.
+func TestLowestImpedance(t *testing.T) {
+	s := twoWay(t, grid(50), 0)
+	if c := Impedance([]*Subject{s}, "")[0].(*plotPanel).callouts; len(c) != 0 {
+		t.Errorf("%v are marked, and there is no summary", c)
+	}
+	s.Summary = &sim.Summary{MinImpedance: 6.13, MinImpedanceAt: 867.9, MinEPDR: 2.5, MinEPDRAt: 30e3}
+	p := Impedance([]*Subject{s}, "")[0].(*plotPanel)
+	texts, marks := drawn(t, p)
+	discs := 0
+	for _, m := range marks {
+		if d, ok := m.(disc); ok {
+			discs++
+			// 700 units wide at x = 10, less axisWidth: three decades.
+			if want := 10 + axisWidth + (700-axisWidth)*math.Log10(867.9/20)/3; math.Abs(d.at.x-want) > 1e-6 {
+				t.Errorf("the mark is at %g, want %g", d.at.x, want)
+			}
+		}
+	}
+	if discs != 1 || !slices.Contains(texts, "|Z| 6.13 Ω at 868 Hz") || slices.ContainsFunc(texts, func(s string) bool { return strings.HasPrefix(s, "EPDR ") }) {
+		t.Errorf("%d marks, and %q is written", discs, texts)
+	}
+}
+
+// TestNamesOfBothDesigns: the second design's lines are pale, and what is written at them is not.
+func TestNamesOfBothDesigns(t *testing.T) {
+	a, b := twoWay(t, grid(200), 0), twoWay(t, grid(200), 40)
+	a.Name, b.Name = "A", "B"
+	_, marks := drawn(t, Response([]*Subject{a, b}, ""))
+	pales, names := 0, 0
+	for _, m := range marks {
+		switch m := m.(type) {
+		case line:
+			if m.pen.ink == way1Pale || m.pen.ink == way2Pale || m.pen.ink == totalPale {
+				pales++
+			}
+		case text:
+			if want, ok := map[string]ink{"low B": way1, "high B": way2, "sum B": total}[m.text]; ok {
+				names++
+				if m.ink != want {
+					t.Errorf("%q is written in ink %d, want %d", m.text, m.ink, want)
+				}
+			}
+		}
+	}
+	if pales < 3 || names != 3 {
+		t.Errorf("%d pale lines and %d names of B, want 3 or more and 3", pales, names)
 	}
 }

@@ -84,12 +84,17 @@ func (p *plot) draw(s *scene, room rect) {
 			s.add(line{part, c.pen})
 		}
 	}
+	var seen []callout
 	for _, c := range p.callouts {
 		at := p.place(in, c.x, c.y)
+		if !in.grown(1e-6).holds(rect{at.x, at.y, 0, 0}) {
+			continue // of a frequency beyond the span that is drawn, or of nothing at all
+		}
+		seen = append(seen, c)
 		s.add(disc{at, 3.2, c.ink})
 		labels.taken = append(labels.taken, rect{at.x - 4, at.y - 4, 8, 8})
 	}
-	for _, c := range p.callouts {
+	for _, c := range seen {
 		labels.remark(p.place(in, c.x, c.y), c)
 	}
 	var rest []series
@@ -192,7 +197,7 @@ func (p *plot) numbers(s *scene, in rect) {
 			w.at.x, w.anchor = in.x, start
 		}
 		box := s.box(w)
-		if i > 0 && before.grown(3).overlaps(box) {
+		if i > 0 && before.grown(7).overlaps(box) {
 			continue
 		}
 		// The last one has the unit, so what comes before makes room for it.

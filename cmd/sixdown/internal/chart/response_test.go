@@ -65,8 +65,19 @@ func design(t testing.TB, freqs []float64, at []float64, ways map[string]func(f 
 	for k, f := range at {
 		p := value(f)
 		sum := total(f)
-		s.Crossing = append(s.Crossing, Crossing{sim.Crossing{Low: order[k], High: order[k+1], Frequency: f,
-			LevelDB: sim.DB(p[k]) - sim.DB(sum), PhaseDeg: sim.PhaseDeg(p[k+1] / p[k])}, p})
+		c := Crossing{Parts: p}
+		c.Low, c.High, c.Frequency = order[k], order[k+1], f
+		c.LevelDB, c.PhaseDeg = sim.DB(p[k])-sim.DB(sum), sim.PhaseDeg(p[k+1]/p[k])
+		c.Lower, c.Upper, c.OneTimeBase = order[:k+1], order[k+1:], true
+		// Fourth-order pairs, and those nearly so, are the deepest at their crossing.
+		others := sum - 2*p[k+1]
+		if k == 0 && len(order) > 2 {
+			others = sum - 2*p[k]
+		}
+		c.Null = sim.Hole{DepthDB: sim.DB(others / sum), Frequency: f}
+		c.AsWired = sim.Hole{DepthDB: -c.Null.DepthDB, Frequency: f}
+		c.ReversedIsBetter = c.Null.DepthDB > 0
+		s.Crossing = append(s.Crossing, c)
 	}
 	s.Targets = make([][]float64, len(order))
 	for i := range order {
@@ -122,15 +133,15 @@ func pageOf(t testing.TB, subjects ...*Subject) *Page {
 	}
 	p.Panels = append(p.Panels, StepResponse(subjects))
 	for _, edge := range []float64{90, 180} {
-		whole, err := Polar(pistonMap(edge))
+		whole, err := Polar(pistonMap(edge, grid(61)[14:]))
 		if err != nil {
 			t.Fatal(err)
 		}
-		curves, err := PolarCurves(pistonMap(edge), []float64{500, 2000, 5000, 10e3})
+		curves, err := PolarCurves(pistonMap(edge, []float64{500, 2000, 5000, 10e3}))
 		if err != nil {
 			t.Fatal(err)
 		}
-		p.Panels = append(p.Panels, whole, curves)
+		p.Panels = append(p.Panels, append(whole, curves...)...)
 	}
 	return p
 }
@@ -138,11 +149,8 @@ func pageOf(t testing.TB, subjects ...*Subject) *Page {
 // pistonMap is the directivity 2J₁(x)/x, x = ka·sinθ, of a flat piston of 50 mm radius in a wall: P. M. Morse and
 // K. U. Ingard, "Theoretical Acoustics", 1968, section 7.4; the far side, which it does not have, sees the sine of
 // half the angle.
-func pistonMap(edge float64) *PolarMap {
-	m := &PolarMap{Title: "Horizontal", Note: "dB re straight ahead"}
-	for i := range 61 {
-		m.Freqs = append(m.Freqs, 100*math.Pow(200, float64(i)/60))
-	}
+func pistonMap(edge float64, freqs []float64) *PolarMap {
+	m := &PolarMap{Title: "Horizontal", Note: "dB re straight ahead; positive: to the right", Freqs: freqs}
 	for a := -edge; a <= edge; a += 5 {
 		var levels []float64
 		for _, f := range m.Freqs {

@@ -18,12 +18,14 @@ type Subject struct {
 	Step     *Step      // for StepResponse
 	Late     float64    // s, flight time that measurements hold, to be left out of phases and times
 	Gains    bool       // gains are drawn though there is a sum, since the other subject has none
+	// Summary is over the span of Response.Freqs: its lowest impedances are marked. nil: none are.
+	Summary *sim.Summary
 }
 
 // A Crossing is where the lead passes from one way to another, with what each way gives there.
 type Crossing struct {
-	sim.Crossing
-	Parts []complex128 // Pa, in the order of Response.Ways
+	sim.Alignment              // without a sum its Crossing alone
+	Parts         []complex128 // Pa, in the order of Response.Ways
 }
 
 // tone reports whether it is a tone network.

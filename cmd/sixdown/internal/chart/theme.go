@@ -74,6 +74,14 @@ func (i ink) pale() ink {
 	return i
 }
 
+// full returns the ink whose paler twin i is, or i.
+func (i ink) full() ink {
+	if i >= totalPale && i <= way6Pale {
+		return i - totalPale + total
+	}
+	return i
+}
+
 // tint returns the ink of the total or a way as a ground.
 func (i ink) tint() ink {
 	if i >= total && i <= way6 {

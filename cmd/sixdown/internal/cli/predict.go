@@ -76,7 +76,7 @@ maps; with --around, the means over many angles.`,
 			if err := o.chart.check(cmd); err != nil {
 				return err
 			}
-			if err := o.around.check(o.against, o.chart.path); err != nil {
+			if err := o.around.check(o.against, o.chart.path, o.chart.panels); err != nil {
 				return err
 			}
 			return runPredict(s, &o)
@@ -129,7 +129,7 @@ func runPredict(s *streams, o *predictOptions) error {
 	case "--polar":
 		return runPolar(s, o, sys, freqs)
 	case "--around":
-		return runCurves(s, o, sys, freqs)
+		return runCurves(s, o, d, sys, freqs)
 	}
 	p, err := predictAt(s, d, sys, freqs)
 	if err != nil {

@@ -33,7 +33,7 @@ func (o *aroundOptions) addTo(cmd *cobra.Command) {
 }
 
 // check judges the options before anything is computed.
-func (o *aroundOptions) check(against, chart string) error {
+func (o *aroundOptions) check(against, chart string, panels []string) error {
 	if o.polar != "" && o.polar != "horizontal" && o.polar != "vertical" {
 		return usageFault("--polar", fmt.Sprintf("there is no plane %q", o.polar), didYouMean(o.polar, []string{"horizontal", "vertical"}, "give horizontal or vertical"))
 	}
@@ -46,6 +46,8 @@ func (o *aroundOptions) check(against, chart string) error {
 			return usageFault(name, "two designs are given", "give one; the table is of a single design")
 		case chart != "" && o.polar != "":
 			return usageFault(name, "it prints a table, and --chart asks for a picture", "leave one of them out; --panels polar draws the polar maps")
+		case chart != "" && len(panels) > 0:
+			return usageFault("--panels", "--around draws pictures of its own", "leave one of them out")
 		case o.angleText != "":
 			return usageFault(name, "it goes all round, and --angle asks for one angle", "leave one of them out")
 		}
@@ -192,7 +194,7 @@ func runPolar(s *streams, o *predictOptions, sys *sim.System, freqs []float64) e
 }
 
 // runCurves prints the means over many angles.
-func runCurves(s *streams, o *predictOptions, sys *sim.System, freqs []float64) error {
+func runCurves(s *streams, o *predictOptions, d *xover.Design, sys *sim.System, freqs []float64) error {
 	c, err := sys.Curves(freqs)
 	if err != nil {
 		return err
@@ -221,7 +223,7 @@ func runCurves(s *streams, o *predictOptions, sys *sim.System, freqs []float64) 
 		heads = append(heads, table.Column{Group: a.group, Name: a.head, Unit: "dB"})
 	}
 	if o.chart.path != "" {
-		if err := drawCurves(o, sys, freqs); err != nil {
+		if err := drawCurves(o, sys, freqs, "dB "+splConditions([]*prediction{{level: sys.Level(), distance: d.Listen.Distance}})); err != nil {
 			return err
 		}
 	}
@@ -246,8 +248,8 @@ func runCurves(s *streams, o *predictOptions, sys *sim.System, freqs []float64) 
 	return s.answer(text)
 }
 
-// drawCurves draws the means over many angles over the span of freqs, more finely.
-func drawCurves(o *predictOptions, sys *sim.System, freqs []float64) error {
+// drawCurves draws the means over many angles over the span of freqs, more finely. levels says what the levels are.
+func drawCurves(o *predictOptions, sys *sim.System, freqs []float64, levels string) error {
 	from, to := slices.Min(freqs), slices.Max(freqs)
 	if !(to > from) {
 		return usageFault("--chart", "the curves are of one frequency", "give a span, --from and --to")
@@ -257,7 +259,7 @@ func drawCurves(o *predictOptions, sys *sim.System, freqs []float64) error {
 	if err != nil {
 		return err
 	}
-	page := &chart.Page{Title: sys.Title(), Caption: c.Missing, Panels: chart.Around(c)}
+	page := &chart.Page{Title: sys.Title(), Caption: c.Missing, Panels: chart.Around(c, levels)}
 	if o.design.path == "-" {
 		return o.chart.write(page)
 	}

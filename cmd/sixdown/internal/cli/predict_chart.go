@@ -128,18 +128,16 @@ func (o *chartOptions) page(s *streams, ps []*prediction, grid *gridOptions) (*c
 		}},
 		{"step", true, "", func() ([]chart.Panel, error) { return one(chart.StepResponse(subjects)) }},
 		{"polar", sums, "no sum at the ear", func() ([]chart.Panel, error) {
-			var all []chart.Panel
-			for k, p := range ps {
-				panels, err := polarPanels(s, p, subjects[k].Name, grid)
-				if err != nil {
-					return nil, err
-				}
-				all = append(all, panels...)
+			var names []string
+			for _, s := range subjects {
+				names = append(names, s.Name)
 			}
-			if all == nil && len(o.panels) > 0 {
+			panels, omitted, err := polarPanels(s, ps, names, grid)
+			if err == nil && panels == nil && len(o.panels) > 0 {
 				return nil, usageFault("--panels polar", "the design sounds alike to all sides, since no driver has a place, a diameter or a baffle", "give these, or leave it out")
 			}
-			return all, nil
+			page.Caption = append(page.Caption, omitted...)
+			return panels, err
 		}},
 	} {
 		switch {
@@ -166,6 +164,9 @@ func (o *chartOptions) subject(p *prediction, sum bool, grid *gridOptions) (*cha
 		return nil, err
 	}
 	s := &chart.Subject{Response: r, Gains: !sum}
+	if s.Summary, err = p.system.Summary([2]float64{grid.from, grid.to}); err != nil {
+		return nil, err
+	}
 	if held, ok := p.system.HeldFlight(); ok {
 		s.Late = held
 	}
@@ -181,7 +182,10 @@ func (o *chartOptions) subject(p *prediction, sum bool, grid *gridOptions) (*cha
 		return nil, err
 	}
 	for k, c := range p.summary.Crossings {
-		x := chart.Crossing{Crossing: c}
+		x := chart.Crossing{Alignment: sim.Alignment{Crossing: c}}
+		if p.alignment != nil {
+			x.Alignment = p.alignment[k]
+		}
 		for _, w := range there.Ways {
 			if w.P != nil {
 				x.Parts = append(x.Parts, w.P[k])

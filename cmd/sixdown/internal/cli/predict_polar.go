@@ -1,74 +1,137 @@
 package cli
 
 import (
+	"fmt"
 	"math"
-	"slices"
+	"strings"
 
 	"sixdown/cmd/sixdown/internal/chart"
 	"sixdown/sim"
 	"sixdown/sim/field"
+	"sixdown/xover"
 )
 
-// The grid of a polar map.
+// The grids of a polar map and of polar curves, which are of a few frequencies and drawn as lines, so that corners show.
 const (
-	polarStep      = 3   // degrees
+	polarStep      = 2   // degrees
+	polarCurveStep = 1   // degrees
 	polarEdge      = 90  // degrees, to either side: the half-space in front, which a baffle's model is for
 	polarFrom      = 100 // Hz, below which a loudspeaker has hardly any directivity
 	polarPerOctave = 24
 )
 
+// Levels in dB that are told apart: by the ear at best, and by a polar map's colours, half to either side of 0 dB.
+const (
+	polarAlike  = 0.05
+	polarColour = 1.5
+)
+
+// polarPage is what there is to draw of how one or two designs sound all round the front.
+type polarPage struct {
+	maps, curves []*chart.PolarMap // of both designs side by side, first of the one plane, then of the other
+	omitted      []string          // which maps are left out, and why, a line each
+}
+
 // polarPanels predicts all round the front and draws it: for each plane a map, then curves at the crossings and
-// near the top. Where it sounds alike all round, as points that stand in one place do, there is nothing to draw.
-func polarPanels(s *streams, p *prediction, name string, grid *gridOptions) ([]chart.Panel, error) {
-	freqs := (&gridOptions{from: min(max(polarFrom, grid.from), grid.to/2), to: grid.to, perOctave: polarPerOctave}).even()
-	var maps, curves []chart.Panel
-	alike := true
-	for _, plane := range []struct {
-		title string
-		at    func(deg float64) field.Angle
-	}{
-		{"Horizontal", func(deg float64) field.Angle { return field.Angle{HorizontalDeg: deg} }},
-		{"Vertical", func(deg float64) field.Angle { return field.Angle{VerticalDeg: deg} }},
-	} {
-		m := &chart.PolarMap{Title: plane.title, Note: "dB re straight ahead", Freqs: freqs}
-		if p.Angle != (field.Angle{}) {
-			m.Note = "dB re the ear, " + angleText(p.Angle) + "; angles from there"
-		}
-		if name != "" {
-			m.Title += " " + name
-		}
-		var angles []field.Angle
-		for deg := -polarEdge; deg <= polarEdge; deg += polarStep {
-			m.AngleDeg = append(m.AngleDeg, float64(deg))
-			angles = append(angles, plane.at(float64(deg)))
-		}
-		rs, err := p.system.Field(freqs, angles)
-		if err != nil {
-			return nil, err
-		}
-		ahead := sim.SPLs(rs[slices.Index(m.AngleDeg, 0)].Sum)
-		for _, r := range rs {
-			for _, w := range r.Warnings {
-				p.warnOnce(s, w)
+// near the top. Where it sounds alike all round, as points that stand in one place do, there is nothing to draw. A map of one
+// colour, since a driver was measured at one angle and the others do little, is left out, which the lines say.
+func polarPanels(s *streams, ps []*prediction, names []string, grid *gridOptions) (panels []chart.Panel, omitted []string, err error) {
+	page := &polarPage{}
+	most := 0.0
+	for _, plane := range []sim.Plane{sim.Horizontal, sim.Vertical} {
+		for k, p := range ps {
+			off, err := page.add(s, p, plane, names[k], grid)
+			if err != nil {
+				return nil, nil, err
 			}
-			levels := less(sim.SPLs(r.Sum), ahead)
-			m.LevelDB = append(m.LevelDB, levels)
-			alike = alike && !slices.ContainsFunc(levels, func(l float64) bool { return math.Abs(l) > 0.05 })
+			most = max(most, off)
 		}
-		whole, err := chart.Polar(m)
-		if err != nil {
-			return nil, err
-		}
-		some, err := chart.PolarCurves(m, p.polarCuts(freqs[0], grid.to))
-		if err != nil {
-			return nil, err
-		}
-		maps, curves = append(maps, whole), append(curves, some)
 	}
-	if alike {
-		return nil, nil
+	if most <= polarAlike {
+		return nil, nil, nil
 	}
-	return append(maps, curves...), nil
+	maps, err := chart.Polar(page.maps...)
+	if err != nil {
+		return nil, nil, err
+	}
+	curves, err := chart.PolarCurves(page.curves...)
+	return append(maps, curves...), page.omitted, err
+}
+
+// add predicts one plane of one design, and returns how many dB it is off what it is straight ahead, at most.
+func (page *polarPage) add(s *streams, p *prediction, plane sim.Plane, name string, grid *gridOptions) (off float64, err error) {
+	title, side := "Horizontal", "to the right"
+	if plane == sim.Vertical {
+		title, side = "Vertical", "up"
+	}
+	note := "dB re straight ahead"
+	if p.Angle != (field.Angle{}) {
+		note = "dB re the ear, angles from there" // the page says how it is turned
+	}
+	freqs := (&gridOptions{from: min(max(polarFrom, grid.from), grid.to/2), to: grid.to, perOctave: polarPerOctave}).even()
+	whole := &chart.PolarMap{Title: strings.TrimSpace(title + " " + name), Note: note + "; positive: " + side, Freqs: freqs}
+	lines := &chart.PolarMap{Title: whole.Title, Note: whole.Note, Freqs: p.polarCuts(freqs[0], grid.to)}
+	if err := p.around(s, whole, plane, polarStep); err != nil {
+		return 0, err
+	}
+	for _, levels := range whole.LevelDB {
+		for _, l := range levels {
+			off = max(off, math.Abs(l))
+		}
+	}
+	if once := measuredOnce(p.design); len(once) > 0 {
+		if off < polarColour {
+			of := ""
+			if name != "" {
+				of = " of " + name
+			}
+			page.omitted = append(page.omitted, fmt.Sprintf("no %s map%s: %s measured at one angle and taken to sound alike at all", strings.ToLower(title), of, wasOrWere(once)))
+			return off, nil
+		}
+		whole.Note += "; " + wasOrWere(once) + " measured at one angle: alike at all"
+	}
+	if err := p.around(s, lines, plane, polarCurveStep); err != nil {
+		return 0, err
+	}
+	page.maps, page.curves = append(page.maps, whole), append(page.curves, lines)
+	return off, nil
+}
+
+// around fills in a map's angles, step degrees apart, and its levels relative to the ear.
+func (p *prediction) around(s *streams, m *chart.PolarMap, plane sim.Plane, step int) error {
+	for deg := -polarEdge; deg <= polarEdge; deg += step {
+		m.AngleDeg = append(m.AngleDeg, float64(deg))
+	}
+	a, err := p.system.Polar(m.Freqs, plane, m.AngleDeg)
+	if err != nil {
+		return err
+	}
+	for _, w := range a.Warnings {
+		p.warnOnce(s, w)
+	}
+	m.LevelDB = a.LevelDB
+	return nil
+}
+
+// measuredOnce returns the drivers whose response was measured at one angle only.
+func measuredOnce(d *xover.Design) []string {
+	var names []string
+	for i := range d.Drivers {
+		v := &d.Drivers[i]
+		if v.ResponseFile != "" && len(v.Horizontal)+len(v.Vertical) == 0 {
+			names = append(names, v.Name)
+		}
+	}
+	return names
+}
+
+// wasOrWere names one or more with the verb: "woofer and tweeter were".
+func wasOrWere(names []string) string {
+	if len(names) == 1 {
+		return names[0] + " was"
+	}
+	last := len(names) - 1
+	return strings.Join(names[:last], ", ") + " and " + names[last] + " were"
 }
 
 // polarCuts returns the frequencies of the polar curves: those of the crossings, three at most, and 10 kHz.
