@@ -54,6 +54,7 @@ func (sp *speaker) setAround(d *xover.Driver, t *driver.Table, mic field.Point, 
 		return fmt.Errorf("driver %q: %w", d.Name, err)
 	}
 	sp.around = around
+	sp.doubt = sp.doubt.Plus(around.Doubt())
 	sp.notes = append(sp.notes, around.Notes()...)
 	first, last := t.Rows[0].Frequency, t.Rows[len(t.Rows)-1].Frequency
 	if lo, hi := around.Range(); lo > first || hi < last {

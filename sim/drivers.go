@@ -47,6 +47,7 @@ type speaker struct {
 	radius   float64                             // m, of the diaphragm, if it is not in the response already; 0: a point
 	baffle   *field.Baffle                       // nil: its edges are not in the model, or in the response already
 	tables   []table
+	doubt    driver.Doubt // about the phases of all its responses
 	notes    []string
 }
 
@@ -81,6 +82,7 @@ func newSpeaker(d *xover.Driver, l field.Listener, baffle *field.Baffle, open op
 	for _, t := range sp.tables {
 		sp.notes = append(sp.notes, t.Notes()...)
 	}
+	sp.notes = append(sp.notes, sp.doubt.Notes()...)
 	return sp, nil
 }
 
@@ -193,6 +195,7 @@ func (sp *speaker) setMeasured(d *xover.Driver, l field.Listener, open opener) e
 	}
 	sp.radiator = r
 	sp.tables = append(sp.tables, r)
+	sp.doubt = r.Doubt()
 	sp.path = func(l field.Listener) field.Path { return l.FromMicrophone(at, mic) }
 	return sp.setAround(d, t, mic, l.SoundSpeed, open)
 }

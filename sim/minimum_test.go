@@ -55,7 +55,7 @@ func TestMinimumPhaseDriver(t *testing.T) {
 			nearC(t, fmt.Sprintf("%s: %g Hz", name, f), r.Sum[i], filter(f)*cmplx.Rect(p, -2*math.Pi*f*0.5/343), 0.002)
 		}
 		r = mustPredict(t, s, 5)
-		if want := "w.frd: the table begins at 10.0 Hz; from there to 5.00 Hz the slope fitted to its nearest octave is carried on, which is invented"; !slices.Equal(r.Warnings, []string{want}) {
+		if want := "w.frd: the table begins at 10.0 Hz; below it the slope fitted to its nearest octave is carried on, which is invented"; !slices.Equal(r.Warnings, []string{want}) {
 			t.Errorf("%s: warnings %q, want %q", name, r.Warnings, want)
 		}
 	}

@@ -148,12 +148,13 @@ func (s *System) rangeWarnings(freqs []float64) []string {
 			}
 			seen[t.Name()] = true
 			from, to := t.Range()
-			const tell = "%s: the table %s at %s; from there to %s %s is carried on, which is invented"
+			// How far freqs go is left out: of several predictions, each would have a sentence of its own.
+			const tell = "%s: the table %s at %s; %s it %s is carried on, which is invented"
 			if lo < from {
-				ws = append(ws, fmt.Sprintf(tell, t.Name(), "begins", hertz(from), hertz(lo), t.Beyond()))
+				ws = append(ws, fmt.Sprintf(tell, t.Name(), "begins", hertz(from), "below", t.Beyond()))
 			}
 			if hi > to {
-				ws = append(ws, fmt.Sprintf(tell, t.Name(), "ends", hertz(to), hertz(hi), t.Beyond()))
+				ws = append(ws, fmt.Sprintf(tell, t.Name(), "ends", hertz(to), "above", t.Beyond()))
 			}
 		}
 	}

@@ -133,8 +133,8 @@ func TestMeasuredDrivers(t *testing.T) {
 	nearC(t, "Zin", r.Zin[0], 16.0*6/(16+6), 1e-12)
 
 	want := []string{
-		"w.zma: the table begins at 100 Hz; from there to 50.0 Hz the slope of its nearest third of an octave is carried on, which is invented",
-		"w.zma: the table ends at 10.0 kHz; from there to 20.0 kHz the slope of its nearest third of an octave is carried on, which is invented",
+		"w.zma: the table begins at 100 Hz; below it the slope of its nearest third of an octave is carried on, which is invented",
+		"w.zma: the table ends at 10.0 kHz; above it the slope of its nearest third of an octave is carried on, which is invented",
 	}
 	if r = mustPredict(t, s, 50, 20e3); len(r.Warnings) != 6 || !slices.Equal(r.Warnings[:2], want) {
 		t.Errorf("warnings: got %q, want two for each of three tables, first %q", r.Warnings, want)

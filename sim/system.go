@@ -152,7 +152,11 @@ func (s *System) addWays(d *xover.Design, f *flattener, open opener) error {
 			return err
 		}
 		speakers[name] = sp
-		s.warnings = append(s.warnings, sp.notes...)
+		for _, n := range sp.notes {
+			if !slices.Contains(s.warnings, n) { // two of a kind share their files
+				s.warnings = append(s.warnings, n)
+			}
+		}
 	}
 	ladders := make([]*ladder, len(d.Ways))
 	for i, w := range d.Ways {

@@ -30,8 +30,8 @@ type Directivity struct {
 	axis    polarCurve
 	tables  []angled  // without the axis
 	planes  [2]*plane // horizontal, vertical; nil: not measured
-	notes   []string
-	doubt   doubt   // of all tables off the axis
+	notes   fold
+	doubt   Doubt   // of all tables off the axis
 	lo, hi  float64 // Hz, where all tables have rows
 	minimum bool
 }
@@ -80,13 +80,12 @@ func NewDirectivity(axis *Table, horizontal, vertical []AngledTable, minimum boo
 	if d.axis, err = d.read(axis, delay); err != nil {
 		return nil, err
 	}
-	d.notes, d.doubt = nil, doubt{} // those on the axis are the radiator's
+	d.notes, d.doubt = fold{}, Doubt{} // those on the axis are the radiator's
 	for i, given := range [][]AngledTable{horizontal, vertical} {
 		if d.planes[i], err = d.plane(given, delay); err != nil {
 			return nil, err
 		}
 	}
-	d.notes = append(d.notes, d.doubt.note(delay != 0)...)
 	return d, nil
 }
 
@@ -98,7 +97,7 @@ func (d *Directivity) read(t *Table, delay float64) (polarCurve, error) {
 		if err != nil {
 			return nil, err
 		}
-		d.notes = append(d.notes, t.Notes...)
+		d.notes.table(t.Name, t.Notes)
 		freqs, _, _ := t.columns()
 		return minimumPhaseOf(freqs, lnMag), nil
 	}
@@ -106,11 +105,12 @@ func (d *Directivity) read(t *Table, delay float64) (polarCurve, error) {
 	if err != nil {
 		return nil, err
 	}
-	d.notes = append(d.notes, r.notes...)
-	d.doubt.add(r.doubt)
+	d.notes.table(t.Name, r.notes)
+	own, spread := ExcessDelay(t)
+	d.doubt = d.doubt.Plus(r.doubt.knowing(own, spread))
 	// Off the axis the sound may have fallen so far that the delay is uncertain, but a whole flight time cannot vanish.
-	if own, spread := ExcessDelay(t); spread < otherBase/5 && math.Abs(own-delay) > otherBase {
-		d.notes = append(d.notes, fmt.Sprintf("%s: its phase holds %.2f ms of flight time and that on the axis %.2f ms; give all angles on one time base", t.Name, own*1e3, delay*1e3))
+	if spread < otherBase/5 && math.Abs(own-delay) > otherBase {
+		d.notes.add("time base", fmt.Sprintf("%s: its phase holds %.2f ms of flight time and that on the axis %.2f ms; give all angles on one time base", t.Name, own*1e3, delay*1e3))
 	}
 	return &r.curve, nil
 }
@@ -296,8 +296,12 @@ func (d *Directivity) Invented(offDeg, aroundDeg float64) []string {
 // planeNames are the planes with their two sides.
 var planeNames = [2][3]string{{"horizontal", "right", "left"}, {"vertical", "up", "down"}}
 
-// Notes returns what is odd about the tables off the axis, a sentence each.
-func (d *Directivity) Notes() []string { return d.notes }
+// Notes returns what is odd about the tables off the axis, a sentence each, but for their doubts; of several files with the
+// same oddity the first is named.
+func (d *Directivity) Notes() []string { return d.notes.notes() }
+
+// Doubt tells where phases off the axis cannot be followed.
+func (d *Directivity) Doubt() Doubt { return d.doubt }
 
 // Range returns the frequencies in Hz between which all tables have rows; beyond them some are carried on as they are
 // on the axis.

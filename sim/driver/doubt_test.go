@@ -13,7 +13,7 @@ import (
 func TestNullsAreNoDoubt(t *testing.T) {
 	tau := 0.3 * math.Sin(math.Pi/3) / 343
 	comb := func(f float64) complex128 { return complex(math.Cos(math.Pi*f*tau), 0) }
-	if n := mustResponse(t, phaseFile(grid(200, 20e3, 960), comb)).Notes(); len(n) > 0 {
+	if n := mustResponse(t, phaseFile(grid(200, 20e3, 960), comb)).Doubt().Notes(); len(n) > 0 {
 		t.Errorf("notes %q", n)
 	}
 	// A phase that jumps where the level is as everywhere is none.
@@ -23,7 +23,7 @@ func TestNullsAreNoDoubt(t *testing.T) {
 		}
 		return 1
 	}
-	n := mustResponse(t, phaseFile(grid(200, 20e3, 960), jump)).Notes()
+	n := mustResponse(t, phaseFile(grid(200, 20e3, 960), jump)).Doubt().Notes()
 	if len(n) != 1 || !strings.Contains(n[0], "more than 135 degrees") {
 		t.Errorf("notes %q", n)
 	}
@@ -43,7 +43,7 @@ func TestDoubtsAddUp(t *testing.T) {
 		t.Fatal(err)
 	}
 	// From 200 Hz to 20 kHz there are six multiples of 3 kHz, in nine tables: 53 places besides the first.
-	if n := d.Notes(); len(n) != 1 || !strings.HasPrefix(n[0], "10.frd:") || !strings.Contains(n[0], ", and in 53 more places of 9 tables, so") {
+	if n := d.Doubt().Notes(); len(n) != 1 || !strings.HasPrefix(n[0], "10.frd:") || !strings.Contains(n[0], ", and in 53 more places of 9 tables, so") {
 		t.Errorf("notes %q", n)
 	}
 }
@@ -71,7 +71,9 @@ func TestOddUnits(t *testing.T) {
 		{"as it should be", file(10, 20e3, 1, degree), ""},
 		{"a subwoofer's", file(5, 500, 1, degree), ""},
 		{"kHz", file(10, 20e3, 1e-3, degree), "in kHz?"},
+		{"kHz, few rows", "0.1 6 0\n1 7 20\n20 20 60\n", "in kHz?"},
 		{"radians", file(10, 20e3, 1, 1), "in radians?"},
+		{"no phase", file(10, 20e3, 1, 0), "0 in every row"},
 		{"rows counted", rows, "the number of the row?"},
 	} {
 		z, err := NewImpedanceTable(mustTable(t, tt.file))

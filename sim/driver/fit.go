@@ -11,6 +11,9 @@ import (
 // An Estimate is a value and its standard deviation, in the same unit.
 type Estimate struct{ Value, Sigma float64 }
 
+// Told reports whether there is a value, > 0, and it is more than a guess: its standard deviation is no more than half of it.
+func (e Estimate) Told() bool { return e.Value > 0 && e.Sigma <= e.Value/2 }
+
 // A Resonance is a resistor, an inductor and a capacitor in parallel.
 type Resonance struct {
 	Frequency float64 // Hz
@@ -269,7 +272,12 @@ func (s *search) result(b fitted) *Fit {
 	v := make([]float64, b.size())
 	b.values(v)
 	cov := s.covariance(b)
-	sigma := func(k int) float64 { return math.Sqrt(math.Max(0, cov.At(k, k))) }
+	sigma := func(k int) float64 {
+		if cov == nil {
+			return math.Inf(1)
+		}
+		return math.Sqrt(math.Max(0, cov.At(k, k)))
+	}
 	estimate := func(k int, unit float64) Estimate { return Estimate{v[k] / unit, v[k] / unit * sigma(k)} }
 	f := &Fit{Re: estimate(0, 1), Coil: b.coil, chain: b.circuit(v)}
 	switch b.coil {
@@ -287,6 +295,9 @@ func (s *search) result(b fitted) *Fit {
 		// Qes = Qms·Re/Res and Qts = Qms·Re/(Re + Res): relative errors add with their signs.
 		relative := func(re, res float64) float64 {
 			g := map[int]float64{0: re, k + 1: res, k + 2: 1}
+			if cov == nil {
+				return math.Inf(1)
+			}
 			sum := 0.0
 			for i, gi := range g {
 				for j, gj := range g {
@@ -314,7 +325,7 @@ func (s *search) result(b fitted) *Fit {
 	return f
 }
 
-// covariance returns that of the unknowns as they are held.
+// covariance returns that of the unknowns as they are held; nil if the points do not settle all of them.
 func (s *search) covariance(b fitted) *mat.SymDense {
 	n := b.size()
 	s.look(b.model, true)
@@ -322,11 +333,11 @@ func (s *search) covariance(b fitted) *mat.SymDense {
 	for i := range n {
 		s.normal.SetSym(i, i, s.normal.At(i, i)*(1+1e-12)+1e-14)
 	}
-	cov := mat.NewSymDense(n, nil)
 	var c mat.Cholesky
 	if !c.Factorize(s.normal) {
-		return cov
+		return nil
 	}
+	cov := mat.NewSymDense(n, nil)
 	_ = c.InverseTo(cov) // an error tells of the condition only
 	rows := len(s.points)
 	var square, neighbours float64
@@ -349,8 +360,8 @@ const mostMiss = 10
 // Follows reports whether the circuit follows its table. If not, what is read from the circuit means nothing.
 func (f *Fit) Follows() bool { return f.RMSPercent <= mostMiss }
 
-// Resonates reports whether the table tells a resonance: Fs, Qms, Qes and Qts, to better than half of Qts.
-func (f *Fit) Resonates() bool { return f.Follows() && f.Fs.Value > 0 && f.Qts.Sigma <= f.Qts.Value/2 }
+// Resonates reports whether the table tells a resonance: its Fs, and its Qts, though not always Qms and Qes apart.
+func (f *Fit) Resonates() bool { return f.Follows() && f.Fs.Told() && f.Qts.Told() }
 
 // judge holds the circuit against every row of the table.
 func (f *Fit) judge(t *ImpedanceTable) {

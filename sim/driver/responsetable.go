@@ -15,7 +15,7 @@ type ResponseTable struct {
 	excess float64 // s, as ExcessDelay finds it
 	spread float64 // s, of it
 	notes  []string
-	doubt  doubt
+	doubt  Doubt
 }
 
 // NewResponseTable makes a radiator of a table with a phase in every row and values in dB SPL between -500
@@ -27,12 +27,11 @@ func NewResponseTable(t *Table) (*ResponseTable, error) {
 		return nil, err
 	}
 	r.excess, r.spread = excess, spread
-	r.notes = append(r.notes, r.doubt.note(r.delay != 0)...)
+	r.doubt = r.doubt.knowing(excess, spread)
 	return r, nil
 }
 
-// newResponseTable is NewResponseTable with the flight time in s that is to be taken out before the phase is followed. Its doubt
-// is not in its notes.
+// newResponseTable is NewResponseTable with the flight time in s that is to be taken out before the phase is followed.
 func newResponseTable(t *Table, delay float64) (*ResponseTable, error) {
 	if !t.HasPhase {
 		return nil, &TableError{File: t.Name, What: "the response has no phase column", Mend: "give three columns: Hz, dB, degrees; or let it be minimum phase with phase = \"minimum\""}
@@ -52,7 +51,7 @@ func newResponseTable(t *Table, delay float64) (*ResponseTable, error) {
 		curve: newCurve(freqs, lnMag, phase, math.Inf(1)),
 		delay: delay,
 		notes: slices.Concat(t.Notes, t.oddResponse()),
-		doubt: t.doubtOf(outsideNulls(doubtful, freqs, lnMag)),
+		doubt: t.doubtOf(outsideNulls(doubtful, freqs, lnMag), delay == 0),
 	}, nil
 }
 
@@ -84,7 +83,10 @@ func (r *ResponseTable) ExcessDelay() (seconds, spread float64) { return r.exces
 // Range returns the frequencies in Hz of the first and the last row; beyond them the response is invented.
 func (r *ResponseTable) Range() (lo, hi float64) { return r.lo, r.hi }
 
-// Notes returns what is odd about the table, a sentence each.
+// Doubt tells where its phase cannot be followed. It is not in Notes, since a driver may have many tables and one doubt.
+func (r *ResponseTable) Doubt() Doubt { return r.doubt }
+
+// Notes returns what is odd about the table, a sentence each, but for its doubt.
 func (r *ResponseTable) Notes() []string { return r.notes }
 
 // Name returns the file's name.

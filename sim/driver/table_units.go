@@ -8,17 +8,18 @@ import (
 // What columns hold by their look: files say it nowhere, and a wrong guess of theirs is a wrong answer.
 const (
 	fewestForUnits = 16    // rows
-	kilohertzTop   = 200.0 // Hz, below which no table of a driver ends that was meant in Hz
+	kilohertzTop   = 200.0 // Hz, below which hardly a table of a driver ends that was meant in Hz
+	surelyTop      = 50.0  // Hz, below which none does, however few its rows
 	countedTop     = 2000  // rows; a spectrum in steps of 1 Hz goes farther
 )
 
 // oddFrequencies returns a note if the first column hardly is in Hz.
 func (t *Table) oddFrequencies() []string {
 	n := len(t.Rows)
-	if n < fewestForUnits {
+	last := t.Rows[n-1].Frequency
+	if n < fewestForUnits && last >= surelyTop {
 		return nil
 	}
-	last := t.Rows[n-1].Frequency
 	counted := n < countedTop
 	for i := 1; i < n; i++ {
 		counted = counted && math.Abs(t.Rows[i].Frequency-t.Rows[i-1].Frequency-1) < 1e-9
@@ -46,7 +47,7 @@ func (t *Table) spans() (least, greatest, phase float64) {
 func (t *Table) oddImpedance() []string {
 	notes := t.oddFrequencies()
 	if least, greatest, phase := t.spans(); len(t.Rows) >= fewestForUnits && greatest > 1.5*least && phase <= 1.02*math.Pi/2 {
-		notes = append(notes, radians(t.Name))
+		notes = append(notes, smallPhase(t.Name, phase))
 	}
 	return notes
 }
@@ -54,12 +55,15 @@ func (t *Table) oddImpedance() []string {
 // oddResponse is oddImpedance for levels in dB, whose phases go round.
 func (t *Table) oddResponse() []string {
 	notes := t.oddFrequencies()
-	if least, greatest, phase := t.spans(); len(t.Rows) >= fewestForUnits && greatest > least+10 && phase > 0 && phase <= 1.02*math.Pi {
-		notes = append(notes, radians(t.Name))
+	if least, greatest, phase := t.spans(); len(t.Rows) >= fewestForUnits && greatest > least+10 && phase <= 1.02*math.Pi {
+		notes = append(notes, smallPhase(t.Name, phase))
 	}
 	return notes
 }
 
-func radians(name string) string {
+func smallPhase(name string, most float64) string {
+	if most == 0 {
+		return name + ": the phase is 0 in every row while the values change a lot: was it measured? Give it in degrees; a response can have phase = \"minimum\" instead"
+	}
 	return name + ": the phase stays within a few units while the values change a lot: is it in radians? It is taken as degrees; give degrees"
 }

@@ -29,7 +29,7 @@ func readFile(name string) (t *Table, notes []string, err error) {
 	case t.HasPhase:
 		var p *ResponseTable
 		if p, err = NewResponseTable(t); err == nil {
-			notes = p.Notes()
+			notes = slices.Concat(p.Notes(), p.Doubt().Notes())
 		}
 	default:
 		var p *MinimumResponse
@@ -66,7 +66,7 @@ func TestTableFiles(t *testing.T) {
 		"rows-that-repeat.zma":            {nil, []string{":5: 1 row(s) repeat another and were passed over"}},
 		"rows-that-repeat-and-differ.zma": {averaged, []string{":5: 1 row(s) repeat a frequency and were averaged; they differ by up to 0.4, at 40 Hz"}},
 		"whole-hertz.frd": {[]Row{{20, 70.3, 149, 0}, {21, 70.8, 146.5, 0}, {22, 71.1, 145, 0}},
-			[]string{":2: 3 row(s) repeat a frequency and were averaged; they differ by up to 0.4, at 20 Hz"}},
+			[]string{":2: 3 row(s) repeat a frequency and were averaged; they differ by up to 0.4, at 20 Hz", ": the table ends at 22 Hz: is its first column in kHz? It is taken as Hz; give Hz"}},
 		"phase-followed.frd":         {phases(response, 95.25, 48.5, 12, -20.5, -61.75, -118, -183.5, -239.75), nil},
 		"phase-shifted-by-turns.frd": {phases(response, 1175.25, 1128.5, -708, -20.5, 2458.25, 2402, 176.5, -1679.75), nil},
 		"phase-from-0-to-360.frd":    {phases(response, 95.25, 48.5, 12, 339.5, 298.25, 242, 176.5, 120.25), nil},

@@ -35,12 +35,11 @@ func NewImpedanceTable(t *Table) (*ImpedanceTable, error) {
 		lnMag[i] = math.Log(z)
 	}
 	phase, doubtful := unwrap(deg)
-	doubt := t.doubtOf(doubtful)
 	z := &ImpedanceTable{
 		name: t.Name, freqs: freqs, lo: freqs[0], hi: freqs[len(freqs)-1],
 		ends:  [2]float64{ohms[0], ohms[len(ohms)-1]},
 		curve: newCurve(freqs, lnMag, phase, 1), // no passive impedance rises or falls faster for long than a coil's or a capacitor's
-		notes: slices.Concat(t.Notes, doubt.note(true), t.active(), t.oddImpedance()),
+		notes: slices.Concat(t.Notes, t.doubtOf(doubtful, false).Notes(), t.active(), t.oddImpedance()),
 	}
 	z.fit = sync.OnceValue(func() *Fit { return FitImpedance(z, FitSettings{}) })
 	return z, nil

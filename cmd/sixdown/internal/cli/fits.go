@@ -20,10 +20,9 @@ func fitsText(fits []sim.DriverFit) string {
 			continue
 		}
 		text := d.Driver + ": Re " + estimate(f.Re, " Ω")
-		switch {
-		case f.Fs.Value > 0 && !f.Resonates():
+		if !f.Resonates() {
 			text += "; no resonance is to be told from the table"
-		case f.Fs.Value > 0:
+		} else {
 			text += ", fs " + estimate(f.Fs, " Hz") + ", Qms " + estimate(f.Qms, "") + ", Qes " + estimate(f.Qes, "") + ", Qts " + estimate(f.Qts, "")
 		}
 		b.WriteString(folded("fit       ", text))
@@ -39,9 +38,9 @@ func fitsText(fits []sim.DriverFit) string {
 func percent(v float64) string { return figures(math.Max(v, 0.01), 2) }
 
 // estimate writes a value and its standard deviation to one figure of the latter, but to no more than four of the
-// value: "5.62 ± 0.01 Ω". What the four figures hide is left out.
+// value: "5.62 ± 0.01 Ω". What the four figures hide is left out, and so is a value that is no more than a guess.
 func estimate(e driver.Estimate, unit string) string {
-	if !(e.Value > 0) || math.IsInf(e.Value, 0) {
+	if !e.Told() || math.IsInf(e.Value, 0) {
 		return none
 	}
 	finest := 3 - int(math.Floor(math.Log10(e.Value))) // decimals of four figures
@@ -75,14 +74,15 @@ type (
 		WorstErrorPercent number            `json:"worst_error_percent"`
 		WorstAtHz         number            `json:"worst_at_hz"`
 	}
+	// null where the standard deviation is more than half of the value
 	estimateDocument struct {
 		Value number `json:"value"`
 		Sigma number `json:"sigma"`
 	}
 	boxDocument struct {
-		Fb    estimateDocument `json:"fb_hz"`
-		Alpha estimateDocument `json:"vas_over_vb"`
-		QL    estimateDocument `json:"ql"`
+		Fb    *estimateDocument `json:"fb_hz"`
+		Alpha *estimateDocument `json:"vas_over_vb"`
+		QL    *estimateDocument `json:"ql"`
 	}
 	elementDocument struct {
 		Name  string `json:"name"`
@@ -103,12 +103,10 @@ func driverDocuments(fits []sim.DriverFit) []driverDocument {
 			RMSErrorPercent: number(f.RMSPercent), WorstErrorPercent: number(f.WorstPercent), WorstAtHz: number(f.WorstAt),
 		}
 		if f.Follows() {
-			re := estimated(f.Re)
-			doc.Re = &re
+			doc.Re = estimated(f.Re)
 		}
 		if f.Resonates() {
-			fs, qms, qes, qts := estimated(f.Fs), estimated(f.Qms), estimated(f.Qes), estimated(f.Qts)
-			doc.Fs, doc.Qms, doc.Qes, doc.Qts = &fs, &qms, &qes, &qts
+			doc.Fs, doc.Qms, doc.Qes, doc.Qts = estimated(f.Fs), estimated(f.Qms), estimated(f.Qes), estimated(f.Qts)
 		}
 		if v := f.Box; v != nil && f.Resonates() {
 			doc.Box = &boxDocument{estimated(v.Fb), estimated(v.Alpha), estimated(v.QL)}
@@ -121,8 +119,11 @@ func driverDocuments(fits []sim.DriverFit) []driverDocument {
 	return docs
 }
 
-func estimated(e driver.Estimate) estimateDocument {
-	return estimateDocument{number(e.Value), number(e.Sigma)}
+func estimated(e driver.Estimate) *estimateDocument {
+	if !e.Told() {
+		return nil
+	}
+	return &estimateDocument{number(e.Value), number(e.Sigma)}
 }
 
 // noteLines writes sentences a line or more each.
