@@ -55,11 +55,11 @@ func (l *labels) name(own [][]point, c series, near float64) bool {
 }
 
 // remark writes a callout's text near its point; over a curve if there is no other place, and not at all if there
-// is none.
-func (l *labels) remark(at point, c callout) {
+// is none. With led a thin line leads from the point to a text that is no longer plainly of it.
+func (l *labels) remark(at point, c callout, led bool) {
 	t := text{text: c.text, size: labelSize, anchor: start, ink: c.ink}
 	w, h := l.scene.fonts.width(t.text, t.size, false), labelSize*capHeight
-	best, found := math.Inf(1), rect{}
+	best, found, far := math.Inf(1), rect{}, 0.0
 	for _, r := range []float64{8, 14, 22, 32, 44, 60, 80} {
 		for k := range 16 {
 			sin, cos := math.Sincos(2 * math.Pi * float64(k) / 16)
@@ -74,12 +74,17 @@ func (l *labels) remark(at point, c callout) {
 				}
 			}
 			if cost += r; cost < best {
-				best, found = cost, box
+				best, found, far = cost, box, r
 			}
 		}
 	}
-	if !math.IsInf(best, 1) {
-		l.write(t, found)
+	if math.IsInf(best, 1) {
+		return
+	}
+	if l.write(t, found); led && far > 22 {
+		to := point{min(max(at.x, found.x), found.right()), min(max(at.y, found.y-2), found.bottom()+2)}
+		l.scene.stroke(at, to, pen{ink: c.ink, width: 0.8})
+		l.curves = append(l.curves, []point{at, to})
 	}
 }
 

@@ -238,3 +238,33 @@ func TestWidths(t *testing.T) {
 		}
 	}
 }
+
+// TestRemarkFarFromItsPoint: where curves leave a remark no place near its point, a line leads to it.
+func TestRemarkFarFromItsPoint(t *testing.T) {
+	for _, c := range []struct {
+		walls []float64 // heights of curves from edge to edge, in page units; the point is at 100
+		lines int
+	}{{nil, 0}, {[]float64{85, 92, 108, 115, 122, 129}, 1}} {
+		s := emptyScene(t)
+		l := &labels{scene: s, in: rect{0, 0, 400, 200}}
+		for _, y := range c.walls {
+			l.curves = append(l.curves, []point{{0, y}, {400, y}})
+		}
+		l.remark(point{200, 100}, callout{text: "here"}, true)
+		texts, lines := 0, 0
+		for _, m := range s.marks {
+			switch m := m.(type) {
+			case text:
+				texts++
+			case line:
+				lines++
+				if m.points[0] != (point{200, 100}) || !s.box(s.marks[0].(text)).grown(2).holds(rect{m.points[1].x, m.points[1].y, 0, 0}) {
+					t.Errorf("%v: the line is from the point to its text, and goes %v", c.walls, m.points)
+				}
+			}
+		}
+		if texts != 1 || lines != c.lines {
+			t.Errorf("%v: %d texts and %d lines, want 1 and %d", c.walls, texts, lines, c.lines)
+		}
+	}
+}

@@ -32,8 +32,8 @@ func GroupDelay(subjects []*Subject, note string) Panel {
 	if !(to-from > 1e-3) {
 		from, to = from-0.05, to+0.05
 	}
-	room := 0.05 * (to - from)
-	p.y = linearAxis(from-room, to+room, 4, " ms", true)
+	room := 0.08 * (to - from)
+	p.y = linearAxis(from-room, to+room, 4, " ms", false)
 	return p
 }
 

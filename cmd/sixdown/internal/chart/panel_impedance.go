@@ -21,13 +21,13 @@ func Impedance(subjects []*Subject, note string) []Panel {
 			all = append(all, epdr)
 			size.series = append(size.series, series{name: s.named("EPDR"), x: f, y: epdr, pen: styles(k, len(subjects), way2, 1, wayWidth)})
 			if m := s.Summary; k == 0 && m != nil {
-				size.callouts = append(size.callouts, lowest(s.named("EPDR"), m.MinEPDRAt, m.MinEPDR, way2))
+				size.callouts = append(size.callouts, lowest(s.named("lowest"), m.MinEPDRAt, m.MinEPDR, way2))
 			}
 		}
 		size.series = append(size.series, series{name: s.named("|Z|"), x: f, y: z, pen: styles(k, len(subjects), total, -1, totalWidth), bold: true})
 		angle.series = append(angle.series, series{name: s.Name, x: f, y: sim.PhasesDeg(s.Response.Zin), pen: styles(k, len(subjects), total, -1, totalWidth)})
 		if m := s.Summary; k == 0 && m != nil {
-			size.callouts = append(size.callouts, lowest(s.named("|Z|"), m.MinImpedanceAt, m.MinImpedance, total))
+			size.callouts = append(size.callouts, lowest(s.named("lowest"), m.MinImpedanceAt, m.MinImpedance, total))
 		}
 	}
 	// An axis in equal ratios needs ends above 0; a short, and a load that no current flows into, are outside it.

@@ -48,7 +48,11 @@ func Null(s *Subject) Panel {
 		case c.ReversedIsBetter && c.AsWired.DepthDB <= shallow:
 			mark(&normal, &reversed, c.AsWired, total, "as wired")
 		default:
-			mark(&reversed, &normal, c.Null, wayInk(first), strings.Join(names, ", ")+" reversed")
+			text := strings.Join(names, ", ")
+			if len(s.Crossing) == 1 { // there is room to say it again
+				text += " reversed"
+			}
+			mark(&reversed, &normal, c.Null, wayInk(first), text)
 		}
 		p.series = append(p.series, reversed)
 	}

@@ -76,11 +76,11 @@ func (p *phasorPanel) draw(s *scene, room rect) {
 	l := &labels{scene: s, in: in, taken: append(taken, s.box(key))}
 	end := corners[len(corners)-1]
 	s.arrow(place(0), place(end), pen{totalPale, 8, nil}, 20)
-	l.curves = append(l.curves, []point{place(0), place(end)})
+	l.curves = append(l.curves, edges(place(0), place(end), 8)...)
 	for i := range c.Parts {
 		from, to := place(corners[i]), place(corners[i+1])
 		s.arrow(from, to, pen{p.subject.wayInk(i), 2.6, nil}, 10)
-		l.curves = append(l.curves, []point{from, to})
+		l.curves = append(l.curves, edges(from, to, 4)...)
 	}
 	for i, v := range c.Parts {
 		name := p.subject.Response.Ways[i].Name
@@ -88,8 +88,18 @@ func (p *phasorPanel) draw(s *scene, room rect) {
 		if cmplx.Abs(v*turn)*scale < 6 {
 			continue // too short an arrow to be named
 		}
-		l.remark(place((corners[i]+corners[i+1])/2), callout{text: said, ink: p.subject.wayInk(i)})
+		l.remark(place((corners[i]+corners[i+1])/2), callout{text: said, ink: p.subject.wayInk(i)}, false)
 	}
+}
+
+// edges returns an arrow's shaft and the lines beside it that its head reaches, which nothing written may touch.
+func edges(from, to point, reach float64) [][]point {
+	length := math.Hypot(to.x-from.x, to.y-from.y)
+	if length == 0 {
+		return nil
+	}
+	x, y := -reach*(to.y-from.y)/length, reach*(to.x-from.x)/length
+	return [][]point{{from, to}, {{from.x + x, from.y + y}, {to.x + x, to.y + y}}, {{from.x - x, from.y - y}, {to.x - x, to.y - y}}}
 }
 
 // polarGrid draws rays each 30° from a centre, and circles about it: one of radius r, and others 6.02 dB apart.

@@ -31,7 +31,7 @@ func StepResponse(subjects []*Subject) Panel {
 	if !(top > bottom) {
 		top, bottom = 1, 0 // nothing is heard
 	}
-	room := 0.05 * (top - bottom)
-	p.y = linearAxis(bottom-room, top+room, 5, "", true)
+	room := 0.08 * (top - bottom)
+	p.y = linearAxis(bottom-room, top+room, 5, "", false)
 	return p
 }

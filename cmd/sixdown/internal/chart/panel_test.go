@@ -225,7 +225,7 @@ func TestLowestImpedance(t *testing.T) {
 			}
 		}
 	}
-	if discs != 1 || !slices.Contains(texts, "|Z| 6.13 Ω at 868 Hz") || slices.ContainsFunc(texts, func(s string) bool { return strings.HasPrefix(s, "EPDR ") }) {
+	if discs != 1 || !slices.Contains(texts, "lowest 6.13 Ω at 868 Hz") || slices.ContainsFunc(texts, func(s string) bool { return strings.Contains(s, "2.50 Ω") }) {
 		t.Errorf("%d marks, and %q is written", discs, texts)
 	}
 }

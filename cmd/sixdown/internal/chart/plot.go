@@ -95,7 +95,7 @@ func (p *plot) draw(s *scene, room rect) {
 		labels.taken = append(labels.taken, rect{at.x - 4, at.y - 4, 8, 8})
 	}
 	for _, c := range seen {
-		labels.remark(p.place(in, c.x, c.y), c)
+		labels.remark(p.place(in, c.x, c.y), c, true)
 	}
 	var rest []series
 	for _, c := range p.series {
