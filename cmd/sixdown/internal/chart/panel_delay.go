@@ -33,7 +33,7 @@ func GroupDelay(subjects []*Subject, note string) Panel {
 		from, to = from-0.05, to+0.05
 	}
 	room := 0.08 * (to - from)
-	p.y = linearAxis(from-room, to+room, 4, " ms", false)
+	p.y = linearAxis(from-room, to+room, 5, " ms", false)
 	return p
 }
 
