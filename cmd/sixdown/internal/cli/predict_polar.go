@@ -3,6 +3,7 @@ package cli
 import (
 	"fmt"
 	"math"
+	"slices"
 	"strings"
 
 	"sixdown/cmd/sixdown/internal/chart"
@@ -11,10 +12,9 @@ import (
 	"sixdown/xover"
 )
 
-// The grids of a polar map and of polar curves, which are of a few frequencies and drawn as lines, so that corners show.
+// The grid of a polar map and of polar curves.
 const (
-	polarStep      = 2   // degrees
-	polarCurveStep = 1   // degrees
+	polarStep      = 2   // degrees: finer than the corners of a curve show, and angles are what takes time
 	polarEdge      = 90  // degrees, to either side: the half-space in front, which a baffle's model is for
 	polarFrom      = 100 // Hz, below which a loudspeaker has hardly any directivity
 	polarPerOctave = 24
@@ -71,7 +71,7 @@ func (page *polarPage) add(s *streams, p *prediction, plane sim.Plane, name stri
 	freqs := (&gridOptions{from: min(max(polarFrom, grid.from), grid.to/2), to: grid.to, perOctave: polarPerOctave}).even()
 	whole := &chart.PolarMap{Title: strings.TrimSpace(title + " " + name), Note: note + "; positive: " + side, Freqs: freqs}
 	lines := &chart.PolarMap{Title: whole.Title, Note: whole.Note, Freqs: p.polarCuts(freqs[0], grid.to)}
-	if err := p.around(s, whole, plane, polarStep); err != nil {
+	if err := p.around(s, plane, whole, lines); err != nil {
 		return 0, err
 	}
 	for _, levels := range whole.LevelDB {
@@ -90,26 +90,29 @@ func (page *polarPage) add(s *streams, p *prediction, plane sim.Plane, name stri
 		}
 		whole.Note += "; " + wasOrWere(once) + " measured at one angle: alike at all"
 	}
-	if err := p.around(s, lines, plane, polarCurveStep); err != nil {
-		return 0, err
-	}
 	page.maps, page.curves = append(page.maps, whole), append(page.curves, lines)
 	return off, nil
 }
 
-// around fills in a map's angles, step degrees apart, and its levels relative to the ear.
-func (p *prediction) around(s *streams, m *chart.PolarMap, plane sim.Plane, step int) error {
-	for deg := -polarEdge; deg <= polarEdge; deg += step {
-		m.AngleDeg = append(m.AngleDeg, float64(deg))
+// around fills in the angles of a plane's map and curves and the levels there relative to the ear. Both are asked for at once, since
+// what a baffle does takes long for each angle, however many frequencies it is for.
+func (p *prediction) around(s *streams, plane sim.Plane, whole, lines *chart.PolarMap) error {
+	var degs []float64
+	for deg := -polarEdge; deg <= polarEdge; deg += polarStep {
+		degs = append(degs, float64(deg))
 	}
-	a, err := p.system.Polar(m.Freqs, plane, m.AngleDeg)
+	a, err := p.system.Polar(slices.Concat(whole.Freqs, lines.Freqs), plane, degs)
 	if err != nil {
 		return err
 	}
 	for _, w := range a.Warnings {
 		p.warnOnce(s, w)
 	}
-	m.LevelDB = a.LevelDB
+	n := len(whole.Freqs)
+	whole.AngleDeg, lines.AngleDeg = degs, degs
+	for _, levels := range a.LevelDB {
+		whole.LevelDB, lines.LevelDB = append(whole.LevelDB, levels[:n]), append(lines.LevelDB, levels[n:])
+	}
 	return nil
 }
 
