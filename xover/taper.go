@@ -26,6 +26,32 @@ func (p *Part) Fraction(at float64) float64 {
 	return at
 }
 
+// FractionSlope returns the derivative of Fraction by at, at 0 < at < 1.
+func (p *Part) FractionSlope(at float64) float64 {
+	switch p.Taper {
+	case Log:
+		return exponentialSlope(at, p.Mid)
+	case ReverseLog:
+		return exponentialSlope(1-at, p.Mid)
+	}
+	return 1
+}
+
+// exponentialSlope is the derivative of exponential: bˣ·ln b/(b − 1).
+func exponentialSlope(x, mid float64) float64 {
+	if !(mid > 0 && mid < 1) {
+		mid = DefaultMid
+	}
+	logB := 2 * math.Log((1-mid)/mid)
+	switch {
+	case logB == 0:
+		return 1
+	case logB < 0:
+		return logB * math.Exp(x*logB) / math.Expm1(logB)
+	}
+	return -logB * math.Exp((x-1)*logB) / math.Expm1(-logB)
+}
+
 // exponential is the Log taper at x, 0 < x < 1.
 func exponential(x, mid float64) float64 {
 	if !(mid > 0 && mid < 1) {

@@ -40,7 +40,7 @@ func missingPart(k xover.Kind, open bool) float64 {
 	return small
 }
 
-// Worths returns what each part that may be moved is worth at values, which should be an optimum; the least first.
+// Worths returns what each part that may be moved is worth at values, which should be an optimum; the least first. Controls are no parts.
 func (p *Problem) Worths(values []float64) ([]Worth, error) {
 	x, err := p.logs(values)
 	if err != nil {
@@ -61,6 +61,9 @@ func (p *Problem) Worths(values []float64) ([]Worth, error) {
 	}
 	var all []Worth
 	for v := range p.vars {
+		if p.vars[v].Control != "" {
+			continue
+		}
 		w := Worth{Part: p.vars[v].Part, Without: math.Inf(1)}
 		d.frozen[v] = true
 		for _, open := range []bool{true, false} { // open first: of two that do as well it is the safer

@@ -246,8 +246,15 @@ func (e *evaluator) column(v int) {
 	p, col := e.p, e.jac[v]
 	value := math.Exp(e.x[v])
 	ohm := e.coils.slope(v, e.x[v])
+	control := p.vars[v].Control != ""
 	for w, slope := range e.slope {
 		clear(slope)
+		if control {
+			for i, rate := range p.rates(v, value) {
+				e.sweep.AddGainGradient(slope, w, p.branches[v][i], rate)
+			}
+			continue
+		}
 		for _, b := range p.branches[v] {
 			e.sweep.AddGainGradient(slope, w, b, value)
 			if ohm > 0 {

@@ -15,8 +15,8 @@ type Explanation struct {
 
 // A Change is what one part's change did, found by undoing it alone.
 type Change struct {
-	Part          string
-	Before, After float64 // Ω, H or F
+	Part          string  // or control
+	Before, After float64 // Ω, H or F; of a control settings
 	Way           string  // whose level it changes most
 	From, To      float64 // Hz, the octave of the band in which it does so
 	DB            float64 // mean change of that way's level there, from undone to done
@@ -68,7 +68,7 @@ func (p *Problem) Explain(before, after, ohms []float64) (*Explanation, error) {
 		if err != nil {
 			continue
 		}
-		c := Change{Part: p.vars[v].Part, Before: before[v], After: after[v], Costs: g - f}
+		c := Change{Part: p.vars[v].name(), Before: before[v], After: after[v], Costs: g - f}
 		undone := e.wayLevels()
 		for w := range names {
 			for _, o := range octaves {

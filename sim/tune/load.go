@@ -73,8 +73,8 @@ func (e *evaluator) dips(limit float64) ([]dip, error) {
 		return nil, nil
 	}
 	for v, branches := range e.p.branches {
-		value, ohm := math.Exp(e.x[v]), e.coils.slope(v, e.x[v])
-		for _, b := range branches {
+		rates, ohm := e.p.rates(v, math.Exp(e.x[v])), e.coils.slope(v, e.x[v])
+		for j, b := range branches {
 			for i := range ds {
 				k := ds[i].at
 				slope, err := e.load.ImpedanceGradientAt(b, k)
@@ -82,7 +82,7 @@ func (e *evaluator) dips(limit float64) ([]dip, error) {
 					return nil, err
 				}
 				d := slope / e.zin[k]
-				ds[i].slope[v] += value*real(d) + ohm*imag(d)/(2*math.Pi*e.loads[k]) // as of AddLossGradient
+				ds[i].slope[v] += rates[j]*real(d) + ohm*imag(d)/(2*math.Pi*e.loads[k]) // as of AddLossGradient
 			}
 		}
 	}

@@ -25,9 +25,10 @@ const (
 	silent    = -400. // dB, for what cannot be heard at all
 )
 
-// A Variable is a part whose value may be moved.
+// A Variable is a part whose value may be moved, or a control that may be turned.
 type Variable struct {
-	Part      string
+	Part      string // of a control, the potentiometer
+	Control   string // its name; "": the value of a part. Value, Low and High are then settings
 	Kind      xover.Kind
 	Value     float64  // Ω, H or F: where the search begins, the design's own value unless Moved
 	Low, High float64  // least and greatest, the same unit
@@ -89,20 +90,19 @@ func (p *Problem) WithLimit(ohm float64) *Problem {
 	return &q
 }
 
+var errNothingMoves = errors.New("tune: no part may be moved; take hold off one, or name one in a network")
+
 // newProblem is New with so many points an octave, without a rough one.
 func newProblem(d *xover.Design, sys *sim.System, open func(name string) (io.ReadCloser, error), grid float64) (*Problem, error) {
-	if d.Tone != nil {
-		return nil, errors.New("tune: a tone network has no ways to tune; give a design with ways")
-	}
-	p := &Problem{design: d, sys: sys, open: open, grid: grid, limit: d.Tune.MinImpedance, fixed: d.Tune.HasLevel && sys.Sums(), level: d.Tune.Level} // a level in SPL is none for gains
+	p := &Problem{design: d, sys: sys, open: open, grid: grid, limit: d.Tune.MinImpedance, fixed: d.Tune.HasLevel && (sys.Sums() || d.Tone != nil), level: d.Tune.Level} // a level in SPL is none for gains
 	band := d.Tune.Band
 	if band == [2]float64{} {
 		band = [2]float64{200, 20e3}
 	}
 	p.freqs = logGrid(band[0], band[1], grid)
 	p.variables()
-	if len(p.vars) == 0 {
-		return nil, errors.New("tune: no part may be moved; take hold off one, or name one in a network")
+	if len(p.vars) == 0 && len(d.Controls) == 0 {
+		return nil, errNothingMoves
 	}
 	if err := p.listen(); err != nil {
 		return nil, err
@@ -125,8 +125,17 @@ func logGrid(lo, hi float64, n float64) []float64 {
 	return f
 }
 
-// bounds returns what can be bought of a kind, in Ω, H or F.
-func bounds(k xover.Kind) (low, high float64) {
+// bounds returns what can be bought of a kind, in Ω, H or F: for crossovers, or for tone networks (common practice, no source).
+func (p *Problem) bounds(k xover.Kind) (low, high float64) {
+	if p.design.Tone != nil {
+		switch k {
+		case xover.Inductor:
+			return 1e-3, 100
+		case xover.Capacitor:
+			return 10e-12, 100e-6
+		}
+		return 10, 10e6
+	}
 	switch k {
 	case xover.Inductor:
 		return 0.02e-3, 15e-3
@@ -158,7 +167,7 @@ func (p *Problem) variables() {
 		if !ok {
 			v = len(p.vars)
 			index[lead.Name] = v
-			low, high := bounds(lead.Kind)
+			low, high := p.bounds(lead.Kind)
 			if lead.Range != [2]float64{} {
 				low, high = lead.Range[0], lead.Range[1]
 			}
@@ -209,6 +218,10 @@ func (p *Problem) setTerms(aim []float64) error {
 	n := float64(len(all))
 	if p.sys.Sums() {
 		p.terms = append(p.terms, term{way: -1, at: all, aim: aim, weight: w.Sum / n})
+	}
+	if p.design.Tone != nil {
+		p.terms = append(p.terms, term{way: 0, at: all, aim: aim, weight: 1 / n})
+		return nil
 	}
 	targets := make([][]float64, len(p.design.Ways))
 	for i := range p.design.Ways {
@@ -289,6 +302,9 @@ func (p *Problem) newSweep(freqs []float64, coils windings) (*circuit.Sweep, err
 
 // move gives variable v of a sweep the value of which x is the logarithm.
 func (p *Problem) move(s *circuit.Sweep, coils windings, v int, x float64) error {
+	if p.vars[v].Control != "" {
+		return p.turn(s, v, math.Exp(x))
+	}
 	for _, b := range p.branches[v] {
 		if err := s.SetValue(b, math.Exp(x)); err != nil {
 			return err

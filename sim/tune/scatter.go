@@ -62,7 +62,7 @@ func (p *Problem) children(places []place, count int, random *rand.Rand) []place
 	for range count {
 		for i := range places {
 			x := slices.Clone(places[i].x)
-			if random.Float64() < mixed {
+			if random.Float64() < mixed && len(byWay) > 0 {
 				other := &places[random.IntN(len(places))]
 				for _, v := range byWay[random.IntN(len(byWay))] {
 					x[v] = other.x[v]

@@ -44,7 +44,7 @@ type Result struct {
 
 // A Binding is a bound or a limit that the optimum lies at.
 type Binding struct {
-	Part  string  // "": the least impedance
+	Part  string  // or control; "": the least impedance
 	Upper bool    // the greatest value, not the least
 	Limit float64 // Ω, H or F
 	At    float64 // Hz, of the least impedance
@@ -79,6 +79,9 @@ func (r *round) kept(starts int) int { return min(starts, max(starts/r.share, r.
 // Run looks for the values of the least objective within the bounds and the limit on the impedance. ctx stops it; the best
 // so far is then the result, with Status Interrupted and no error. The same Search gives the same Result.
 func (p *Problem) Run(ctx context.Context, s Search) (*Result, error) {
+	if len(p.vars) == 0 {
+		return nil, errNothingMoves
+	}
 	before, err := p.Score(p.designValues())
 	if err != nil {
 		return nil, err
@@ -118,7 +121,9 @@ func (p *Problem) Run(ctx context.Context, s Search) (*Result, error) {
 func (p *Problem) designValues() []float64 {
 	values := make([]float64, len(p.vars))
 	for v := range values {
-		values[v] = p.leader(p.design.Part(p.vars[v].Part)).Value
+		if values[v] = p.vars[v].Value; p.vars[v].Control == "" {
+			values[v] = p.leader(p.design.Part(p.vars[v].Part)).Value
+		}
 	}
 	return values
 }
@@ -146,9 +151,9 @@ func (p *Problem) binding(res *Result) []Binding {
 	for v, value := range res.Values {
 		switch q := &p.vars[v]; {
 		case value <= q.Low*(1+1e-9):
-			bs = append(bs, Binding{Part: q.Part, Limit: q.Low})
+			bs = append(bs, Binding{Part: q.name(), Limit: q.Low})
 		case value >= q.High*(1-1e-9):
-			bs = append(bs, Binding{Part: q.Part, Upper: true, Limit: q.High})
+			bs = append(bs, Binding{Part: q.name(), Upper: true, Limit: q.High})
 		}
 	}
 	if p.limit > 0 && !res.Unmet && res.After.MinImpedance < p.limit*(1+1e-4) {

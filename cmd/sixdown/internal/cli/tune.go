@@ -12,6 +12,7 @@ import (
 
 	"github.com/spf13/cobra"
 
+	"sixdown/sim"
 	"sixdown/sim/tune"
 	"sixdown/xover"
 	"sixdown/xover/preferred"
@@ -28,6 +29,7 @@ type tuneOptions struct {
 	inPlace bool
 	explain bool
 	yield   bool
+	turns   bool
 	starts  int
 	seed    uint64
 }
@@ -56,6 +58,9 @@ values, or of a list (CSV or TOML: kind, value, tol, dcr, price, count, name). A
 has the resistance that the list gives or, without one, that of the design's coil if it
 were wound of the same wire, or 0.35 ohm for 1 mH if the design gives none either.
 
+The output of a tone network is tuned to the curve and the tilt of [tune] over its band,
+by the parts and with --settings by the controls. Potentiometers stay as they are.
+
 Without --out and --in-place nothing is written. Interrupted, it keeps the best so far.`,
 		Example: `  sixdown tune harbour.toml --stock E12 --out tuned.toml
   sixdown tune harbour.toml --stock shelf.csv --explain
@@ -74,6 +79,7 @@ Without --out and --in-place nothing is written. Interrupted, it keeps the best 
 	f.BoolVar(&o.inPlace, "in-place", false, "write the new values into the design itself")
 	f.BoolVar(&o.explain, "explain", false, "say what changed, and what each change does")
 	f.BoolVar(&o.yield, "yield", false, "move on to where more builds stay within the limit of [spread]; the objective may rise by half")
+	f.BoolVar(&o.turns, "settings", false, "turn the controls too; hold parts that should stay")
 	f.IntVar(&o.starts, "starts", 0, "places to begin at; without it, as many as usually suffice")
 	f.Uint64Var(&o.seed, "seed", 1, "of these places")
 	o.design.addTo(cmd)
@@ -106,6 +112,8 @@ func (o *tuneOptions) check() error {
 		return usageFault("--out", "the design cannot be written between the answer's lines", "give the name of a file")
 	case o.yield && o.stock != "":
 		return usageFault("--yield", "it moves values to where no stock has them", "leave out --stock, or buy by the error alone")
+	case o.turns && (o.stock != "" || o.yield):
+		return usageFault("--settings", "controls are turned, not bought, and a yield is that of one setting", "leave out --stock and --yield")
 	case o.pairs && o.stock == "":
 		return usageFault("--pairs", "there is nothing to pair without --stock", "give --stock too")
 	case o.starts < 0 || o.starts > 100000:
@@ -132,8 +140,19 @@ func runTune(ctx context.Context, s *streams, o *tuneOptions) error {
 		return err
 	}
 	t := &tuning{design: d, stock: o.stock}
+	if o.turns {
+		tune.OffTheEnds(d)
+		if sys, err = sim.New(d, tablesIn(o.design.folder())); err != nil {
+			return err
+		}
+	}
 	if t.problem, err = tune.New(d, sys, tablesIn(o.design.folder())); err != nil {
 		return err
+	}
+	if o.turns {
+		if err := t.problem.MoveSettings(); err != nil {
+			return err
+		}
 	}
 	t.vars = t.problem.Variables()
 	for _, v := range t.vars {
@@ -233,7 +252,7 @@ func (t *tuning) judgeLoad(ctx context.Context, s *streams) error {
 	switch {
 	case t.unmet():
 		s.warn(fmt.Sprintf("min_impedance %s is not held by any values that were tried: the load is %s ohm at least; nothing is written; lower the limit, widen a range, or give other parts", quantity.Format(limit, quantity.Ohm), ohms(after.MinImpedance)))
-	case limit == 0 && after.MinImpedance < usual:
+	case limit == 0 && t.design.Tone == nil && after.MinImpedance < usual:
 		usual = math.Floor(10*usual) / 10
 		warning := fmt.Sprintf("the load falls to %s ohm at %s, which amplifiers may not stand; give [tune] min_impedance a value that yours does", ohms(after.MinImpedance), hertz(after.MinImpedanceAt))
 		safe, err := t.problem.WithLimit(usual).Run(ctx, tune.Search{Seed: 1})
@@ -260,12 +279,20 @@ func (t *tuning) write(o *tuneOptions, src []byte) error {
 	if path == "" {
 		return nil
 	}
-	values, ohmsOf, tols := map[string]float64{}, map[string]float64{}, map[string]float64{}
-	src, err := t.changed(src, values)
+	values, ohmsOf, tols, turns := map[string]float64{}, map[string]float64{}, map[string]float64{}, map[string]float64{}
+	for v, value := range t.chosen() {
+		if control := t.vars[v].Control; control != "" {
+			turns[control] = fourDecimals(value)
+		}
+	}
+	src, err := t.changed(src, values, turns)
 	if err != nil {
 		return err
 	}
 	for v, value := range t.chosen() {
+		if t.vars[v].Control != "" {
+			continue
+		}
 		values[t.vars[v].Part] = nineFigures(value)
 		if t.bought == nil {
 			continue
@@ -309,9 +336,12 @@ func nineFigures(v float64) float64 {
 	return rounded
 }
 
+// fourDecimals rounds a setting to finer than any knob is set.
+func fourDecimals(at float64) float64 { return math.Round(at*1e4) / 1e4 }
+
 // changed adds to values what --set has made of parts, and turns the controls in src as --turn has: what is written is what was
 // tuned.
-func (t *tuning) changed(src []byte, values map[string]float64) ([]byte, error) {
+func (t *tuning) changed(src []byte, values, turns map[string]float64) ([]byte, error) {
 	before, _, err := xover.Parse("", src)
 	if err != nil {
 		return nil, err
@@ -321,9 +351,8 @@ func (t *tuning) changed(src []byte, values map[string]float64) ([]byte, error) 
 			values[p.Name] = p.Value
 		}
 	}
-	turns := map[string]float64{}
 	for i, c := range t.design.Controls {
-		if c.At != before.Controls[i].At {
+		if _, moved := turns[c.Name]; !moved && c.At != before.Controls[i].At {
 			turns[c.Name] = c.At
 		}
 	}

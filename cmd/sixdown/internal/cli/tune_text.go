@@ -71,6 +71,7 @@ type (
 		Stock       *scoreDocument    `json:"stock"`
 		Rounded     *scoreDocument    `json:"rounded"`
 		Parts       map[string]number `json:"parts"`
+		Settings    map[string]number `json:"settings,omitempty"` // of controls, with --settings
 		StockParts  map[string]number `json:"stock_parts"`
 		StockDCR    map[string]number `json:"stock_dcr_ohm"`
 		Shopping    []itemDocument    `json:"shopping"`
@@ -106,6 +107,9 @@ func statusText(s tune.Status) string {
 func (t *tuning) byPart(values []float64) map[string]number {
 	m := map[string]number{}
 	for v, value := range values {
+		if t.vars[v].Control != "" {
+			continue
+		}
 		for _, name := range append([]string{t.vars[v].Part}, t.vars[v].Followers...) {
 			m[name] = number(value)
 		}
@@ -118,6 +122,14 @@ func (t *tuning) document() tuneDocument {
 	doc := tuneDocument{
 		Before: scored(r.Before), After: scored(r.After), Parts: t.byPart(r.Values), Advice: []adviceDocument{}, Worth: []worthDocument{}, Binding: []bindingDocument{},
 		Status: statusText(r.Status), Met: !r.Unmet, Evaluations: r.Evaluations, Seconds: number(t.seconds),
+	}
+	for v, q := range t.vars {
+		if q.Control != "" {
+			if doc.Settings == nil {
+				doc.Settings = map[string]number{}
+			}
+			doc.Settings[q.Control] = number(r.Values[v])
+		}
 	}
 	for _, w := range t.worths {
 		how := "short"
@@ -278,9 +290,14 @@ func (t *tuning) scoresText() string {
 		tab.Row(cells...)
 	}
 	row("objective, dB²", func(s tune.Score) string { return objectiveText(s.Objective) })
-	row("sum, dB rms", func(s tune.Score) string { return fixed(s.SumRMSDB, 3) })
-	row("ways, dB rms", func(s tune.Score) string { return fixed(s.WayRMSDB, 3) })
-	row("phase, ° rms", func(s tune.Score) string { return fixed(s.PhaseRMSDeg, 1) })
+	if t.design.Tone != nil {
+		row("output, dB rms", func(s tune.Score) string { return fixed(s.WayRMSDB, 3) })
+		row("its level, dB", func(s tune.Score) string { return fixed(s.LevelDB, 2) })
+	} else {
+		row("sum, dB rms", func(s tune.Score) string { return fixed(s.SumRMSDB, 3) })
+		row("ways, dB rms", func(s tune.Score) string { return fixed(s.WayRMSDB, 3) })
+		row("phase, ° rms", func(s tune.Score) string { return fixed(s.PhaseRMSDeg, 1) })
+	}
 	row("lowest |Z|, Ω", func(s tune.Score) string { return fixed(s.MinImpedance, 2) })
 	row("there, Hz", func(s tune.Score) string { return figures(s.MinImpedanceAt, 4) })
 	return tab.Text(pageWidth)
@@ -307,6 +324,10 @@ func (t *tuning) partsText() string {
 	for v, q := range t.vars {
 		unit := q.Kind.Unit()
 		name := strings.Join(append([]string{q.Part}, q.Followers...), ", ")
+		if q.Control != "" {
+			tab.Row(q.Control, fixed(q.Value, 3), fixed(t.result.Values[v], 3))
+			continue
+		}
 		cells := []string{name, quantity.Round(t.design.Part(q.Part).Value, unit, 4), quantity.Round(t.result.Values[v], unit, 4)}
 		if t.bought != nil {
 			dcr := ""
@@ -340,11 +361,14 @@ func (t *tuning) bindingText(b tune.Binding) string {
 	if b.Part == "" {
 		return fmt.Sprintf("the least impedance, %s, at %s", quantity.Format(b.Limit, quantity.Ohm), hertz(b.At))
 	}
-	unit := t.design.Part(b.Part).Kind.Unit()
 	which := "least"
 	if b.Upper {
 		which = "greatest"
 	}
+	if t.design.Control(b.Part) != nil {
+		return fmt.Sprintf("%s is turned as far as it goes, %s", b.Part, fixed(b.Limit, 3))
+	}
+	unit := t.design.Part(b.Part).Kind.Unit()
 	return fmt.Sprintf("%s is at its %s value, %s", b.Part, which, quantity.Format(b.Limit, unit))
 }
 
@@ -413,12 +437,15 @@ func (t *tuning) boughtText() string {
 func (t *tuning) explainText() string {
 	var b strings.Builder
 	for _, c := range t.explain.Changes {
-		unit := t.design.Part(c.Part).Kind.Unit()
+		written := func(v float64) string { return quantity.Round(v, t.design.Part(c.Part).Kind.Unit(), 3) }
+		if t.design.Control(c.Part) != nil {
+			written = func(v float64) string { return fixed(v, 3) }
+		}
 		raises, by := "raises", c.DB
 		if by < 0 {
 			raises, by = "lowers", -by
 		}
-		text := fmt.Sprintf("from %s to %s", quantity.Round(c.Before, unit, 3), quantity.Round(c.After, unit, 3))
+		text := fmt.Sprintf("from %s to %s", written(c.Before), written(c.After))
 		if c.Way != "" {
 			text += fmt.Sprintf(" %s %s by %s from %s to %s", raises, c.Way, decibels(by), roughly(c.From), roughly(c.To))
 		}
