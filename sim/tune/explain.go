@@ -5,12 +5,52 @@ import (
 	"math"
 	"math/cmplx"
 	"slices"
+
+	"sixdown/xover"
 )
 
 // An Explanation says what a change of values did.
 type Explanation struct {
 	Changes []Change // by part, what matters most first
 	Octaves []Octave // by way, then the sum, rising
+	Scaled  []Scaled // ways of which the whole network became one for another impedance
+}
+
+// A Scaled is a way whose parts were moved together: resistors and coils by about Factor, capacitors by about its reciprocal.
+type Scaled struct {
+	Way    string
+	Factor float64
+}
+
+// A way counts as scaled if its parts moved by this factor on the whole, and so many of them toward it.
+const (
+	muchScaled  = 1.5
+	mostOfParts = 0.75
+)
+
+// scaled returns the ways that were scaled from a to b, logarithms of values.
+func (p *Problem) scaled(a, b []float64) []Scaled {
+	var all []Scaled
+	for w := range p.design.Ways {
+		vars := p.variablesOf(w)
+		sum, toward := 0.0, 0
+		moves := make([]float64, len(vars))
+		for i, v := range vars {
+			if moves[i] = b[v] - a[v]; p.vars[v].Kind == xover.Capacitor {
+				moves[i] = -moves[i]
+			}
+			sum += moves[i] / float64(len(vars))
+		}
+		for _, m := range moves {
+			if m*sum > 0 && math.Abs(m) > leastChange {
+				toward++
+			}
+		}
+		if len(vars) > 2 && math.Abs(sum) > math.Log(muchScaled) && float64(toward) >= mostOfParts*float64(len(vars)) {
+			all = append(all, Scaled{p.sys.Names()[w], math.Exp(sum)})
+		}
+	}
+	return all
 }
 
 // A Change is what one part's change did, found by undoing it alone.
@@ -52,7 +92,7 @@ func (p *Problem) Explain(before, after, ohms []float64) (*Explanation, error) {
 	if err != nil {
 		return nil, err
 	}
-	x := &Explanation{}
+	x := &Explanation{Scaled: p.scaled(a, b)}
 	done := e.wayLevels()
 	counts := p.counting()
 	octaves := p.octaves()

@@ -368,3 +368,26 @@ network = ["series L1"]
 		}
 	}
 }
+
+// A network made for a third of the impedance, each part within a tenth of it, was scaled; one with a part moved alone was not.
+func TestScaledTogether(t *testing.T) {
+	p := problem(t, twoWay(""))
+	before := p.Start()
+	after := append([]float64(nil), before...)
+	for v, q := range p.vars {
+		switch q.Part {
+		case "C2":
+			after[v] *= 3.2
+		case "L2", "R1", "R2":
+			after[v] /= 2.8
+		}
+	}
+	x, err := p.Explain(before, after, nil)
+	if err != nil {
+		t.Fatal(err)
+	}
+	// The mean in ln of 1/3.2 and three of 1/2.8.
+	if want := math.Pow(1/(3.2*2.8*2.8*2.8), 0.25); len(x.Scaled) != 1 || x.Scaled[0].Way != "high" || math.Abs(x.Scaled[0].Factor-want) > 1e-12 {
+		t.Errorf("scaled %+v, want high by %g", x.Scaled, want)
+	}
+}

@@ -436,6 +436,9 @@ func (t *tuning) boughtText() string {
 // explainText says what changed and what it did.
 func (t *tuning) explainText() string {
 	var b strings.Builder
+	for _, c := range t.explain.Scaled {
+		b.WriteString(folded("together  ", fmt.Sprintf("the parts of %s became those for about %s times the impedance, so that what one of them does by itself says little", c.Way, figures(c.Factor, 2))))
+	}
 	for _, c := range t.explain.Changes {
 		written := func(v float64) string { return quantity.Round(v, t.design.Part(c.Part).Kind.Unit(), 3) }
 		if t.design.Control(c.Part) != nil {
