@@ -3,6 +3,7 @@ package driver
 import (
 	"fmt"
 	"math"
+	"slices"
 )
 
 // A MinimumResponse is a measured level in dB SPL for ReferenceVoltage across the terminals, with the minimum
@@ -27,7 +28,7 @@ func NewMinimumResponse(t *Table) (*MinimumResponse, error) {
 	r := &MinimumResponse{
 		name: t.Name, lo: freqs[0], hi: freqs[len(freqs)-1],
 		phase: minimumPhaseOf(freqs, lnMag),
-		notes: append([]string(nil), t.Notes...),
+		notes: slices.Concat(t.Notes, t.oddLevels()),
 	}
 	r.notes = append(r.notes, fmt.Sprintf("%s: its minimum phase takes the level to be one that %s below %s Hz and %s above %s Hz",
 		t.Name, r.phase.low.say(), hertz(r.lo), r.phase.top.say(), hertz(r.hi)))

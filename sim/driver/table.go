@@ -5,6 +5,7 @@ import (
 	"fmt"
 	"io"
 	"math"
+	"regexp"
 	"strconv"
 	"strings"
 	"unicode"
@@ -36,6 +37,8 @@ type Table struct {
 	Rows     []Row    // three or more
 	HasPhase bool     // every row has a third column
 	Notes    []string // what was passed over, in sentences that name the file and line
+
+	names []columnName // as a header above the rows gives them; nil if there is none
 }
 
 // A TableError says why a table cannot be read.
@@ -83,14 +86,20 @@ type tableParser struct {
 	line         int
 	decimalComma bool
 	rows         []Row
-	phases       int // rows that have a third column
-	columns      int // of the first row
-	bare         int // line of the first row that has no third one
-	dcRow        int // line of the first row at 0 Hz
+	phases       int  // rows that have a third column
+	columns      int  // of the first row
+	numbers      int  // of the first row, before anything else in it
+	spaced       bool // the columns of this row are parted by spaces
+	bare         int  // line of the first row that has no third one
+	dcRow        int  // line of the first row at 0 Hz
 
 	title     error // of the first line before the rows that is a title or a bad row: what is bad about it
 	titleLine int
 	titleText string
+
+	words     string // the last line of words before the rows, which may be their header
+	wordsLine int
+	names     []columnName
 }
 
 func (p *tableParser) errorf(mend, format string, args ...any) error {
@@ -117,12 +126,21 @@ func (p *tableParser) file(src []byte) error {
 		if len(p.rows) >= maxRows {
 			return p.errorf("thin it out", "the table has more than %d rows", maxRows)
 		}
-		if line == "" || strings.ContainsRune("*#;\"'!%/[", rune(line[0])) || !strings.ContainsFunc(line, isLetterOrDigit) {
+		if !strings.ContainsFunc(line, isLetterOrDigit) {
 			continue
 		}
 		fields := p.split(line)
-		if p.isWords(line, fields) {
+		if strings.ContainsRune("*#;\"'!%/[", rune(line[0])) || p.isWords(line, fields) {
+			if err := p.comment(line); err != nil {
+				return err
+			}
 			continue
+		}
+		if len(p.rows) == 0 && p.names == nil {
+			p.names = columnNames(p.words, p.wordsLine, len(fields))
+			if err := p.checkHeader(); err != nil {
+				return err
+			}
 		}
 		err := p.row(fields)
 		if err != nil && len(p.rows) == 0 && p.dcRow == 0 && !isAllNumbers(line) && !p.areNumbers(fields) {
@@ -139,17 +157,32 @@ func (p *tableParser) file(src []byte) error {
 	return nil
 }
 
+// comment takes a comment in. If it is the header, and stands below rows, those are none of the table's.
+func (p *tableParser) comment(line string) error {
+	if !strings.ContainsFunc(line, unicode.IsLetter) {
+		return nil
+	}
+	p.words, p.wordsLine = line, p.line
+	if len(p.rows) > 0 && p.names == nil && columnNames(line, p.line, p.columns) != nil {
+		p.line = p.rows[0].Line
+		return p.errorf("put a * before it if it is a remark", "the row stands above the header in line %d", p.wordsLine)
+	}
+	return nil
+}
+
 func isLetterOrDigit(r rune) bool { return unicode.IsLetter(r) || unicode.IsDigit(r) }
 
 // split parts a line into fields.
 func (p *tableParser) split(line string) []string {
 	var parter string
+	p.spaced = false
 	switch {
 	case strings.Contains(line, ";"):
 		parter = ";"
 	case strings.Contains(line, ",") && !p.decimalComma:
 		parter = ","
 	default:
+		p.spaced = true
 		return strings.Fields(line)
 	}
 	fields := strings.Split(line, parter)
@@ -215,8 +248,13 @@ func (p *tableParser) row(fields []string) error {
 	case math.Abs(v[2]) > 1e7:
 		return p.errorf("give a phase in degrees", "the phase is %g degrees", v[2])
 	}
+	numbers := p.leadingNumbers(fields)
 	if p.columns == 0 {
-		p.columns = len(fields)
+		p.columns, p.numbers = len(fields), numbers
+	}
+	// Only spaces are taken for a part of a number: 1 020.5 after 980.5, or 1 020 in the first row.
+	if p.spaced && (numbers > 2 && p.numbers > 2 && numbers != p.numbers || isGroupBehind(fields)) {
+		return p.errorf("if a space stands inside a number, leave it out, 1020.5", "the row has %d columns, and column 2 is %s; the first row has %d", numbers, quote(fields[1]), p.numbers)
 	}
 	if n == 3 {
 		p.phases++
@@ -226,6 +264,26 @@ func (p *tableParser) row(fields []string) error {
 	p.rows = append(p.rows, Row{Frequency: v[0], Value: v[1], PhaseDeg: v[2], Line: p.line})
 	return nil
 }
+
+// leadingNumbers returns how many fields there are before the first that is no number.
+func (p *tableParser) leadingNumbers(fields []string) int {
+	for i, f := range fields {
+		if _, err := p.number(f); err != nil {
+			return i
+		}
+	}
+	return len(fields)
+}
+
+// isGroupBehind reports whether the second field is surely the rest of the first, as in 1 020.5: nobody writes 20.5 as 020.5.
+func isGroupBehind(fields []string) bool {
+	return len(fields) > 2 && leadingGroup.MatchString(fields[0]) && groupOfZero.MatchString(fields[1])
+}
+
+var (
+	leadingGroup = regexp.MustCompile(`^[1-9]\d{0,2}$`)
+	groupOfZero  = regexp.MustCompile(`^0\d\d([.,]\d*)?$`)
+)
 
 var errNotANumber = errors.New("not a number")
 
@@ -265,7 +323,7 @@ func (p *tableParser) table() (*Table, error) {
 		p.line = p.bare
 		return nil, p.errorf("give a phase in every row or in none", "the row has no phase, and others have one")
 	}
-	t := &Table{Name: p.name, HasPhase: p.bare == 0}
+	t := &Table{Name: p.name, HasPhase: p.bare == 0, names: p.names}
 	if p.title != nil {
 		t.Notes = append(t.Notes, fmt.Sprintf("%s:%d: %s is no row of numbers and was taken for a title", p.name, p.titleLine, quote(p.titleText)))
 	}
@@ -273,13 +331,19 @@ func (p *tableParser) table() (*Table, error) {
 		t.Notes = append(t.Notes, fmt.Sprintf("%s:%d: the row at 0 Hz was passed over", p.name, p.dcRow))
 	}
 	last := p.rows[len(p.rows)-1].Line
+	back, goes := goesBack(p.rows)
+	noted := len(t.Notes)
 	if err := p.merge(t); err != nil {
 		return nil, err
+	}
+	if goes && len(t.Notes) == noted { // rows that repeat are told of already
+		t.Notes = append(t.Notes, fmt.Sprintf("%s:%d: the frequency goes back to %s Hz, over rows that are there already; all were put in order, as of one measurement; if they are of two, keep one", p.name, back.Line, hertz(back.Frequency)))
 	}
 	if len(t.Rows) < leastRows {
 		p.line = last
 		return nil, p.errorf("give three or more; ten an octave make a good one", "the table ends after %d row(s) of different frequency", len(t.Rows))
 	}
+	t.Notes = append(t.Notes, t.gap()...)
 	return t, nil
 }
 

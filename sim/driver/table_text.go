@@ -63,7 +63,7 @@ func decodeUTF16(src []byte, order binary.ByteOrder) string {
 	return b.String()
 }
 
-// lines yields the lines of a text, numbered from 1 and without the space around them. They end in LF, CR LF or CR.
+// lines yields the lines of a text, numbered from 1, without the space around them and the quotes around numbers. They end in LF, CR LF or CR.
 func lines(text string) iter.Seq2[int, string] {
 	return func(yield func(int, string) bool) {
 		for no := 1; len(text) > 0; no++ {
@@ -77,7 +77,7 @@ func lines(text string) iter.Seq2[int, string] {
 				}
 				text = text[i+1:]
 			}
-			if !yield(no, strings.TrimSpace(line)) {
+			if !yield(no, unquoted(strings.TrimSpace(line))) {
 				return
 			}
 		}

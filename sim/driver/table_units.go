@@ -42,6 +42,15 @@ func (t *Table) spans() (least, greatest, phase float64) {
 	return least, greatest, phase
 }
 
+// What no driver is, by a wide margin: rated impedances run from 1 to 64 Ω, and one with a level of 40 dB at 1 m for 2.83 V is
+// 40 dB below the dullest woofer. Common practice, no source.
+const (
+	leastOhm    = 0.3 // Ω, the highest value
+	mostOhm     = 500 // Ω, the lowest value
+	leastLevel  = 40  // dB, the highest value
+	mostLevelDB = 150 // dB, the highest value
+)
+
 // oddImpedance returns notes if columns hardly are in Hz and degrees. An impedance that goes up and down by half has a phase of many
 // degrees (Bode's relation: 90° for each factor of e in e), so one that stays within π/2 is in radians.
 func (t *Table) oddImpedance() []string {
@@ -49,12 +58,24 @@ func (t *Table) oddImpedance() []string {
 	if least, greatest, phase := t.spans(); len(t.Rows) >= fewestForUnits && greatest > 1.5*least && phase <= 1.02*math.Pi/2 {
 		notes = append(notes, smallPhase(t.Name, phase))
 	}
+	if least, greatest, _ := t.spans(); greatest < leastOhm || least > mostOhm {
+		notes = append(notes, fmt.Sprintf("%s: the impedance is from %.3g to %.3g: is it in ohm? It is taken as ohm; give ohm", t.Name, least, greatest))
+	}
+	return notes
+}
+
+// oddLevels returns notes if columns hardly are in Hz and dB.
+func (t *Table) oddLevels() []string {
+	notes := t.oddFrequencies()
+	if _, greatest, _ := t.spans(); greatest < leastLevel || greatest > mostLevelDB {
+		notes = append(notes, fmt.Sprintf("%s: the highest level is %.3g: is it in dB SPL, at 2.83 V? It is taken as that; give dB SPL", t.Name, greatest))
+	}
 	return notes
 }
 
 // oddResponse is oddImpedance for levels in dB, whose phases go round.
 func (t *Table) oddResponse() []string {
-	notes := t.oddFrequencies()
+	notes := t.oddLevels()
 	if least, greatest, phase := t.spans(); len(t.Rows) >= fewestForUnits && greatest > least+10 && phase <= 1.02*math.Pi {
 		notes = append(notes, smallPhase(t.Name, phase))
 	}

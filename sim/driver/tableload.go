@@ -26,6 +26,9 @@ func NewImpedanceTable(t *Table) (*ImpedanceTable, error) {
 	if !t.HasPhase {
 		return nil, &TableError{File: t.Name, What: "the impedance has no phase column", Mend: "give three columns: Hz, ohm, degrees"}
 	}
+	if err := t.checkUnit("dB", "give the impedance in ohm"); err != nil {
+		return nil, err
+	}
 	freqs, ohms, deg := t.columns()
 	lnMag := make([]float64, len(ohms))
 	for i, z := range ohms {
