@@ -66,6 +66,16 @@ func TestOddUnits(t *testing.T) {
 	for i := range 400 {
 		rows += fmt.Sprintf("%d %g %g\n", i, 6+float64(i%7), float64(i%13))
 	}
+	var index, resistive strings.Builder // index, Hz, ohm, degrees; and 6 Ω with a motion of 0.3 Ω
+	for i, f := range grid(10, 20e3, 2500) {
+		z := sheet(f)
+		fmt.Fprintf(&index, "%d %.6g %.5g %.5g\n", i, f, cmplx.Abs(z), cmplx.Phase(z)*180/math.Pi)
+		fmt.Fprintf(&resistive, "%.6g %.5g %.5g\n", f, 6+cmplx.Abs(z)/100, cmplx.Phase(z))
+	}
+	hertz := "" // a spectrum in steps of 1 Hz, as a recording of one second gives
+	for f := 1.; f <= 2500; f++ {
+		hertz += fmt.Sprintf("%g %.5g %.5g\n", f, cmplx.Abs(sheet(f)), cmplx.Phase(sheet(f))*180/math.Pi)
+	}
 	const degree = 180 / math.Pi
 	for _, tt := range []struct{ name, file, want string }{
 		{"as it should be", file(10, 20e3, 1, degree), ""},
@@ -75,6 +85,10 @@ func TestOddUnits(t *testing.T) {
 		{"radians", file(10, 20e3, 1, 1), "in radians?"},
 		{"no phase", file(10, 20e3, 1, 0), "0 in every row"},
 		{"rows counted", rows, "the number of the row?"},
+		{"rows counted, many", index.String(), "the number of the row?"},
+		{"steps of 1 Hz", hertz, ""},
+		{"hardly more than a resistance", resistive.String(), ""},
+		{"radians a second", file(10, 20e3, 2*math.Pi, degree), "in radians a second?"},
 	} {
 		z, err := NewImpedanceTable(mustTable(t, tt.file))
 		if err != nil {

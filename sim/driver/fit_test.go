@@ -373,3 +373,18 @@ func BenchmarkFit(b *testing.B) {
 		})
 	}
 }
+
+// A value whose standard deviation is more than half of it is a guess, and so is one without any.
+func TestTold(t *testing.T) {
+	for _, tt := range []struct {
+		e    Estimate
+		want bool
+	}{
+		{Estimate{100, 2}, true}, {Estimate{1, 0.5}, true}, {Estimate{1, 0.51}, false}, {Estimate{1000, 11627}, false},
+		{Estimate{}, false}, {Estimate{5, math.Inf(1)}, false}, {Estimate{5, math.NaN()}, false},
+	} {
+		if got := tt.e.Told(); got != tt.want {
+			t.Errorf("%v: %t", tt.e, got)
+		}
+	}
+}

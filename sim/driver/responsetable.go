@@ -58,7 +58,7 @@ func newResponseTable(t *Table, delay float64) (*ResponseTable, error) {
 // lnPressures returns ln of the pressures in Pa per volt that the levels stand for, which must lie between -500 and
 // 500 dB SPL. The error is a *TableError.
 func (t *Table) lnPressures() ([]float64, error) {
-	if err := t.checkUnit("ohm", "give the sound pressure level in dB"); err != nil {
+	if err := t.checkUnit("ohm", "give the sound pressure level in dB, or correct the header"); err != nil {
 		return nil, err
 	}
 	ln := make([]float64, len(t.Rows))

@@ -5,7 +5,6 @@ import (
 	"fmt"
 	"io"
 	"math"
-	"regexp"
 	"strconv"
 	"strings"
 	"unicode"
@@ -61,8 +60,10 @@ func (e *TableError) Error() string {
 // The text may be UTF-8, UTF-16 or Latin-1, with a byte-order mark or without, and its lines end in LF, CR LF or CR.
 // Columns are parted by semicolons, else by commas, else by spaces and tabs; what follows the third is not looked at.
 // Numbers have a decimal point, or a decimal comma in all rows if commas do not part columns; where a comma could be
-// either, or part thousands, the table is refused. Lines that begin with a letter or with one of * # ; " ' ! % / [, or
-// hold neither letters nor digits, are comments, as is any line that is no row of numbers before the first row.
+// either, or part thousands, the table is refused, and so it is for spaces and points that surely do. Numbers may stand
+// in quotes. Lines that begin with a letter or with one of * # ; " ' ! % / [, or hold neither letters nor digits, are
+// comments, as is any line that is no row of numbers before the first row. The last of them may be a header: one that
+// names the columns in another order, or with other units, is refused.
 //
 // Rows are put in rising order. Those that repeat a frequency are averaged, and a row at 0 Hz is passed over, with a
 // note. At least three rows must be left.
@@ -86,12 +87,13 @@ type tableParser struct {
 	line         int
 	decimalComma bool
 	rows         []Row
-	phases       int  // rows that have a third column
-	columns      int  // of the first row
-	numbers      int  // of the first row, before anything else in it
-	spaced       bool // the columns of this row are parted by spaces
-	bare         int  // line of the first row that has no third one
-	dcRow        int  // line of the first row at 0 Hz
+	phases       int    // rows that have a third column
+	columns      int    // of the first row
+	spaced       bool   // the columns of this row are parted by spaces
+	lastFirst    string // the first field of the last row
+	numbers      int    // columns of the first row that are numbers
+	bare         int    // line of the first row that has no third one
+	dcRow        int    // line of the first row at 0 Hz
 
 	title     error // of the first line before the rows that is a title or a bad row: what is bad about it
 	titleLine int
@@ -248,13 +250,11 @@ func (p *tableParser) row(fields []string) error {
 	case math.Abs(v[2]) > 1e7:
 		return p.errorf("give a phase in degrees", "the phase is %g degrees", v[2])
 	}
-	numbers := p.leadingNumbers(fields)
-	if p.columns == 0 {
-		p.columns, p.numbers = len(fields), numbers
+	if err := p.checkThousands(fields, v[0]); err != nil {
+		return err
 	}
-	// Only spaces are taken for a part of a number: 1 020.5 after 980.5, or 1 020 in the first row.
-	if p.spaced && (numbers > 2 && p.numbers > 2 && numbers != p.numbers || isGroupBehind(fields)) {
-		return p.errorf("if a space stands inside a number, leave it out, 1020.5", "the row has %d columns, and column 2 is %s; the first row has %d", numbers, quote(fields[1]), p.numbers)
+	if p.columns == 0 {
+		p.columns = len(fields)
 	}
 	if n == 3 {
 		p.phases++
@@ -264,26 +264,6 @@ func (p *tableParser) row(fields []string) error {
 	p.rows = append(p.rows, Row{Frequency: v[0], Value: v[1], PhaseDeg: v[2], Line: p.line})
 	return nil
 }
-
-// leadingNumbers returns how many fields there are before the first that is no number.
-func (p *tableParser) leadingNumbers(fields []string) int {
-	for i, f := range fields {
-		if _, err := p.number(f); err != nil {
-			return i
-		}
-	}
-	return len(fields)
-}
-
-// isGroupBehind reports whether the second field is surely the rest of the first, as in 1 020.5: nobody writes 20.5 as 020.5.
-func isGroupBehind(fields []string) bool {
-	return len(fields) > 2 && leadingGroup.MatchString(fields[0]) && groupOfZero.MatchString(fields[1])
-}
-
-var (
-	leadingGroup = regexp.MustCompile(`^[1-9]\d{0,2}$`)
-	groupOfZero  = regexp.MustCompile(`^0\d\d([.,]\d*)?$`)
-)
 
 var errNotANumber = errors.New("not a number")
 
@@ -331,13 +311,17 @@ func (p *tableParser) table() (*Table, error) {
 		t.Notes = append(t.Notes, fmt.Sprintf("%s:%d: the row at 0 Hz was passed over", p.name, p.dcRow))
 	}
 	last := p.rows[len(p.rows)-1].Line
-	back, goes := goesBack(p.rows)
+	back, over, turns := goesBack(p.rows)
 	noted := len(t.Notes)
 	if err := p.merge(t); err != nil {
 		return nil, err
 	}
-	if goes && len(t.Notes) == noted { // rows that repeat are told of already
-		t.Notes = append(t.Notes, fmt.Sprintf("%s:%d: the frequency goes back to %s Hz, over rows that are there already; all were put in order, as of one measurement; if they are of two, keep one", p.name, back.Line, hertz(back.Frequency)))
+	if turns && len(t.Notes) == noted { // rows that repeat are told of already
+		what := "the rows were put in order"
+		if over {
+			what = "it runs over rows that are there already; all were put in order, as of one measurement; if they are of two, keep one"
+		}
+		t.Notes = append(t.Notes, fmt.Sprintf("%s:%d: the frequency turns back to %s Hz; %s", p.name, back.Line, hertz(back.Frequency), what))
 	}
 	if len(t.Rows) < leastRows {
 		p.line = last
@@ -398,7 +382,7 @@ func (t *Table) columns() (freqs, values, deg []float64) {
 	return freqs, values, deg
 }
 
-// hertz writes a frequency in Hz for a message, to about four figures and without an exponent.
+// hertz writes a frequency in Hz, or another number, for a message, to about four figures and without an exponent.
 func hertz(f float64) string {
 	if f >= 1000 {
 		return strconv.FormatFloat(f, 'f', 0, 64)

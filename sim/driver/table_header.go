@@ -32,10 +32,11 @@ var columnWords = []struct {
 	kind  columnKind
 	words string
 }{
-	{otherColumn, "re real im imag imaginary coh* noise thd* snr distortion delay gd index no nr row sample time"},
-	{phaseColumn, "phas* fase* winkel* ang* deg degree* degrees grad arg rad radian*"},
-	{frequencyColumn, "freq* frek* fréq* hz khz mhz f"},
+	{otherColumn, "real imag imaginary coh* noise thd* snr distortion delay gd index no nr row sample time"},
+	{phaseColumn, "phas* fase* winkel* ang* deg degree* degré* grad arg rad radian*"},
+	{frequencyColumn, "freq* frek* frec* fréq* hertz hz khz mhz f"},
 	{valueColumn, "ohm* kohm* mohm* kω ω z imp* spl db* level* mag* amp* pegel betrag modulus"},
+	{otherColumn, "min max"}, // of several sweeps; "min. phase" is a phase
 }
 
 // columnUnits are the units that a name may give, and what they are units of.
@@ -59,6 +60,9 @@ func hasWord(words, word string) bool {
 func nameOf(text string, line int) columnName {
 	c := columnName{text: strings.TrimSpace(text), line: line}
 	words := strings.FieldsFunc(strings.ToLower(text), func(r rune) bool { return !unicode.IsLetter(r) })
+	if len(words) > 0 && hasWord("re im", words[0]) { // Re(Z), but not dB re 20 µPa
+		c.kind = otherColumn
+	}
 	for _, k := range columnWords {
 		for _, w := range words {
 			if c.kind == unknownColumn && hasWord(k.words, w) {

@@ -6,35 +6,30 @@ import (
 	"slices"
 )
 
-// goesBack returns the first row, in the order of the file, at which the frequency goes back over what rows before it cover
-// already, as it does where two measurements stand one below the other; ok is false if there is none. Files that fall,
-// and bands that stand in any order, are fine.
-func goesBack(rows []Row) (at Row, ok bool) {
-	if len(rows) == 0 {
-		return at, false
-	}
-	lo, hi := rows[0].Frequency, rows[0].Frequency   // of the runs before
-	from, to := rows[0].Frequency, rows[0].Frequency // of this run
-	direction, begin := 0., 0
-	over := func() bool { return begin > 0 && from < hi*(1-closest) && to > lo*(1+closest) }
-	for i := 1; i < len(rows); i++ {
-		f, last := rows[i].Frequency, rows[i-1].Frequency
-		step := math.Copysign(1, f-last)
-		switch {
-		case f == last:
-			continue
-		case direction == 0 || step == direction:
-			direction = step
-			from, to = math.Min(from, f), math.Max(to, f)
-		default: // a run begins
-			if over() {
-				return rows[begin], true
+// goesBack returns the first row, in the order of the file, at which the frequencies turn back, having risen or fallen so far,
+// and whether from there they run over what rows before cover already, as they do where two measurements stand one below
+// the other; ok is false if they never turn back.
+func goesBack(rows []Row) (at Row, over, ok bool) {
+	turn, direction := 0, 0.
+	lo, hi := math.Inf(1), 0. // of the rows before the turn
+	for i, r := range rows {
+		f := r.Frequency
+		if i > 0 && f != rows[i-1].Frequency {
+			step := math.Copysign(1, f-rows[i-1].Frequency)
+			if direction == 0 {
+				direction = step
 			}
-			lo, hi = math.Min(lo, from), math.Max(hi, to)
-			from, to, direction, begin = f, f, 0, i
+			if turn == 0 && step != direction {
+				turn = i
+			}
+		}
+		if turn == 0 {
+			lo, hi = math.Min(lo, f), math.Max(hi, f)
+		} else if lo < f && f < hi {
+			return rows[turn], true, true
 		}
 	}
-	return rows[begin], over()
+	return rows[turn], false, turn > 0
 }
 
 // gap returns a note about the widest gap between two rows, if it is far wider than the others are. In a spectrum of

@@ -10,6 +10,7 @@ const (
 	fewestForUnits = 16    // rows
 	kilohertzTop   = 200.0 // Hz, below which hardly a table of a driver ends that was meant in Hz
 	surelyTop      = 50.0  // Hz, below which none does, however few its rows
+	radiansTop     = 100e3 // Hz, above which none ends: sampling at 192 kHz reaches 96 kHz
 	countedTop     = 2000  // rows; a spectrum in steps of 1 Hz goes farther
 )
 
@@ -17,13 +18,18 @@ const (
 func (t *Table) oddFrequencies() []string {
 	n := len(t.Rows)
 	last := t.Rows[n-1].Frequency
+	if last > radiansTop {
+		return []string{fmt.Sprintf("%s: the table ends at %s Hz: is its first column in radians a second? It is taken as Hz; give Hz", t.Name, hertz(last))}
+	}
 	if n < fewestForUnits && last >= surelyTop {
 		return nil
 	}
-	counted := n < countedTop
+	counted, rising := true, t.Rows[n-1].Value > 20*t.Rows[0].Value // as the frequency does, in the second column
 	for i := 1; i < n; i++ {
 		counted = counted && math.Abs(t.Rows[i].Frequency-t.Rows[i-1].Frequency-1) < 1e-9
+		rising = rising && t.Rows[i].Value > t.Rows[i-1].Value
 	}
+	counted = counted && (rising || n < countedTop)
 	switch {
 	case counted && t.Rows[0].Frequency <= 1:
 		return []string{fmt.Sprintf("%s: its first column counts from %g in steps of 1: is it the number of the row? It is taken as Hz; let the first column be the frequency in Hz", t.Name, t.Rows[0].Frequency)}
@@ -42,12 +48,12 @@ func (t *Table) spans() (least, greatest, phase float64) {
 	return least, greatest, phase
 }
 
-// What no driver is, by a wide margin: rated impedances run from 1 to 64 Ω, and one with a level of 40 dB at 1 m for 2.83 V is
-// 40 dB below the dullest woofer. Common practice, no source.
+// What no driver is, by a wide margin: rated impedances run from 1 to 64 Ω, and one with a level of 60 dB at 1 m for 2.83 V is
+// 20 dB below the dullest woofer. Common practice, no source.
 const (
 	leastOhm    = 0.3 // Ω, the highest value
 	mostOhm     = 500 // Ω, the lowest value
-	leastLevel  = 40  // dB, the highest value
+	leastLevel  = 60  // dB, the highest value
 	mostLevelDB = 150 // dB, the highest value
 )
 
@@ -59,7 +65,7 @@ func (t *Table) oddImpedance() []string {
 		notes = append(notes, smallPhase(t.Name, phase))
 	}
 	if least, greatest, _ := t.spans(); greatest < leastOhm || least > mostOhm {
-		notes = append(notes, fmt.Sprintf("%s: the impedance is from %.3g to %.3g: is it in ohm? It is taken as ohm; give ohm", t.Name, least, greatest))
+		notes = append(notes, fmt.Sprintf("%s: the impedance is from %s to %s: is it in ohm? It is taken as ohm; give ohm", t.Name, hertz(least), hertz(greatest)))
 	}
 	return notes
 }

@@ -1,6 +1,7 @@
 package driver
 
 import (
+	"fmt"
 	"os"
 	"path/filepath"
 	"slices"
@@ -53,6 +54,15 @@ func TestTableFiles(t *testing.T) {
 		}
 		return rows
 	}
+	// times returns rows in other units.
+	times := func(rows []Row, frequency, value float64) []Row {
+		rows = slices.Clone(rows)
+		for i := range rows {
+			rows[i].Frequency *= frequency
+			rows[i].Value *= value
+		}
+		return rows
+	}
 	averaged := slices.Clone(impedance)
 	averaged[3] = Row{40, 30, -4, 0} // of 29.8 Ω, -3.5° and 30.2 Ω, -4.5°
 
@@ -62,7 +72,7 @@ func TestTableFiles(t *testing.T) {
 	}
 	files := map[string]good{
 		"row-at-0-hz.zma":                 {nil, []string{":1: the row at 0 Hz was passed over"}},
-		"out-of-order.zma":                {nil, []string{":3: the frequency goes back to 100 Hz, over rows that are there already; all were put in order, as of one measurement; if they are of two, keep one"}},
+		"out-of-order.zma":                {nil, []string{":3: the frequency turns back to 100 Hz; it runs over rows that are there already; all were put in order, as of one measurement; if they are of two, keep one"}},
 		"title-with-a-digit.zma":          {nil, []string{`:1: "2 way box, woofer" is no row of numbers and was taken for a title`}},
 		"rows-that-repeat.zma":            {nil, []string{":5: 1 row(s) repeat another and were passed over"}},
 		"rows-that-repeat-and-differ.zma": {averaged, []string{":5: 1 row(s) repeat a frequency and were averaged; they differ by up to 0.4, at 40 Hz"}},
@@ -73,6 +83,20 @@ func TestTableFiles(t *testing.T) {
 		"phase-from-0-to-360.frd":    {phases(response, 95.25, 48.5, 12, 339.5, 298.25, 242, 176.5, 120.25), nil},
 		"phase-in-steps-too-coarse.frd": {phases(response, 90, -20, -160, 30, -110, 100, -60, 150),
 			[]string{":3: the phase turns by more than 135 degrees from one row to the next near 400 Hz, and in 5 more places, so which way it went is a guess; take the flight time out, or measure in finer steps"}},
+		"two-measurements.zma": {slices.Concat(impedance[:1], []Row{{21, 9, 1, 0}}, impedance[1:2], []Row{{26, 9.5, 2, 0}}, impedance[2:3], []Row{{33, 13, 3, 0}}, impedance[3:]),
+			[]string{":9: the frequency turns back to 21 Hz; it runs over rows that are there already; all were put in order, as of one measurement; if they are of two, keep one"}},
+		"low-band-last.zma": {nil, []string{":5: the frequency turns back to 20 Hz; the rows were put in order"}},
+		// lg(6300/80)/lg 2 = 6.30, lg(126000/80)/lg 2 = 10.62
+		"gap.zma": {slices.Concat(impedance[:7], []Row{{6300, 21.5, 62.25, 0}}),
+			[]string{":8: there are no rows from 80 to 6300 Hz, over 6.3 octaves; what is there is a curve drawn through the rows beside it"}},
+		"radians-a-second.zma": {slices.Concat(impedance[:7], []Row{{126e3, 28.5, 71, 0}}),
+			[]string{":8: there are no rows from 80 to 126000 Hz, over 10.6 octaves; what is there is a curve drawn through the rows beside it",
+				": the table ends at 126000 Hz: is its first column in radians a second? It is taken as Hz; give Hz"}},
+		"kilohertz.zma": {times(impedance, 1e-3, 1), []string{": the table ends at 0.1 Hz: is its first column in kHz? It is taken as Hz; give Hz"}},
+		"milliohm.zma":  {times(impedance, 1, 1e3), []string{": the impedance is from 6400 to 29800: is it in ohm? It is taken as ohm; give ohm"}},
+		"pascal.frd": {[]Row{{100, 0.2377, 95.25, 0}, {200, 0.435, 48.5, 0}, {400, 0.517, 12, 0}, {800, 0.5024, -20.5, 0}, {1600, 0.4743, -61.75, 0}, {3150, 0.3262, -118, 0}, {6300, 0.0843, 176.5, 0}, {12500, 0.0116, 120.25, 0}},
+			[]string{": the highest level is 0.517: is it in dB SPL, at 2.83 V? It is taken as that; give dB SPL"}},
+		"minus-nothing.zma": {phases(impedance, 28.5, 35.25, 37, 0, -36.75, -31.5, -18.25, -8.5), nil},
 		// By hand: 12.6·cos 120° = -6.3.
 		"negative-resistance.zma": {phases(impedance, 28.5, 95, 120, -3.5, -36.75, -31.5, -18.25, -8.5),
 			[]string{":4: the real part of the impedance is negative in 2 rows from 25 to 31.5 Hz, at worst -6.3 ohm at 31.5 Hz, and no passive driver gives power; check how it was measured"}},
@@ -84,7 +108,8 @@ func TestTableFiles(t *testing.T) {
 		"latin-1.zma", "latin-1-no-break-spaces.zma", "minus-signs-of-a-word-processor.zma", "cr-lf.zma", "cr.zma",
 		"no-newline-at-the-end.zma", "control-z-at-the-end.zma", "blank-lines.zma", "exponents.zma", "falling.zma",
 		"decimal-commas-and-semicolons.zma", "decimal-commas-and-tabs.zma", "decimal-commas-and-spaces.zma", "decimal-commas-three-places.zma",
-		"five-columns.frd", "phase-wrapped.frd",
+		"five-columns.frd", "phase-wrapped.frd", "quoted.zma", "quoted-decimal-commas.zma", "quoted-title.zma",
+		"header-above-every-page.zma", "header-of-names.frd", "footer.zma", "exponents-with-commas.zma",
 	} {
 		files[name] = good{}
 	}
@@ -94,6 +119,8 @@ func TestTableFiles(t *testing.T) {
 		few    = "row(s) of different frequency; give three or more; ten an octave make a good one"
 		binary = ": the file is not plain text; save it as plain text (UTF-8 or ASCII)"
 		none   = ": there are no rows of numbers in the file; give rows of a frequency in Hz, a value and a phase in degrees"
+		order  = "; put the columns in the order frequency in Hz, value, phase in degrees, and no other before them"
+		space  = "; the first row has %d; if a space stands inside a number, leave it out, 1020.5"
 	)
 	refused := map[string]string{
 		"bad-word-for-a-number.zma":          `:3: column 2 is "twelve", ` + number,
@@ -120,6 +147,25 @@ func TestTableFiles(t *testing.T) {
 		"bad-comma-here-and-point-there.zma": ":6: " + comma,
 		"bad-not-text.zma":                   binary,
 		"bad-utf-32.zma":                     binary,
+		"bad-quoted-word.zma":                `:3: column 2 is "twelve", ` + number,
+		"bad-quote-left-open.zma":            `:3: column 1 is "31.5\"", ` + number,
+		"bad-thousands-spaces.zma":           `:6: the row has 4 columns, and column 2 is "120"` + fmt.Sprintf(space, 3),
+		"bad-thousands-spaces-alone.zma":     `:1: the row has 4 columns, and column 2 is "020"` + fmt.Sprintf(space, 4),
+		"bad-thousands-points.zma":           `:6: a point seems to part thousands in "1.120", after "980"; write it without, 1020.5`,
+		"bad-thousands-apostrophes.zma":      `:6: column 1 is "1'120", ` + number,
+		"bad-header-phase-before-ohm.zma":    `:1: the header has "Phase(deg)" for column 2` + order,
+		"bad-header-real-and-imaginary.zma":  `:1: the header has "Re(Z)" for column 2` + order,
+		"bad-header-kilohertz.zma":           `:1: the header has "kHz" for column 1; give Hz`,
+		"bad-header-radians.zma":             `:1: the header has "Phase[rad]" for column 3; give degrees`,
+		"bad-header-row-numbers.zma":         `:1: the header has "No." for column 1` + order,
+		"bad-header-decibel.zma":             `:1: the header has "Z[dB]" for column 2; give the impedance in ohm, or correct the header`,
+		"bad-header-ohm.frd":                 `:1: the header has "ohm" for column 2; give the sound pressure level in dB, or correct the header`,
+		"bad-header-coherence.frd":           `:1: the header has "Coherence" for column 3` + order,
+		"bad-header-below-rows.zma":          ":1: the row stands above the header in line 2; put a * before it if it is a remark",
+		"bad-footer-with-a-count.zma":        `:9: column 2 is "rows", ` + number,
+		"bad-en-dashes.zma":                  ":4: column 3 is \"–3.5\", " + number,
+		"bad-degree-signs.zma":               `:1: column 3 is "28.5°", ` + number,
+		"bad-nul.zma":                        binary,
 		"bad-level.frd":                      ":4: the level is 8800 dB; give the sound pressure level in dB",
 	}
 
@@ -174,8 +220,8 @@ func TestTableFiles(t *testing.T) {
 			}
 		}
 	}
-	if tables < 30 {
-		t.Errorf("%d tables; 30 are wanted", tables)
+	if tables < 100 {
+		t.Errorf("%d tables; 100 are wanted", tables)
 	}
 }
 

@@ -26,7 +26,7 @@ func NewImpedanceTable(t *Table) (*ImpedanceTable, error) {
 	if !t.HasPhase {
 		return nil, &TableError{File: t.Name, What: "the impedance has no phase column", Mend: "give three columns: Hz, ohm, degrees"}
 	}
-	if err := t.checkUnit("dB", "give the impedance in ohm"); err != nil {
+	if err := t.checkUnit("dB", "give the impedance in ohm, or correct the header"); err != nil {
 		return nil, err
 	}
 	freqs, ohms, deg := t.columns()

@@ -38,10 +38,13 @@ func fitsText(fits []sim.DriverFit) string {
 func percent(v float64) string { return figures(math.Max(v, 0.01), 2) }
 
 // estimate writes a value and its standard deviation to one figure of the latter, but to no more than four of the
-// value: "5.62 ± 0.01 Ω". What the four figures hide is left out, and so is a value that is no more than a guess.
+// value: "5.62 ± 0.01 Ω". What the four figures hide is left out, and so is a value that is a guess.
 func estimate(e driver.Estimate, unit string) string {
-	if !e.Told() || math.IsInf(e.Value, 0) {
+	if !(e.Value > 0) || math.IsInf(e.Value, 0) {
 		return none
+	}
+	if !e.Told() {
+		return "uncertain"
 	}
 	finest := 3 - int(math.Floor(math.Log10(e.Value))) // decimals of four figures
 	decimals := finest
