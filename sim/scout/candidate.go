@@ -7,6 +7,7 @@ import (
 	"slices"
 
 	"sixdown/sim"
+	"sixdown/sim/tune"
 	"sixdown/xover"
 	"sixdown/xover/align"
 	"sixdown/xover/ladder"
@@ -56,22 +57,57 @@ func targetShapes() []targetShape {
 	}
 }
 
-// pointsBetween is how many crossover points are tried for a two-way; of a three-way, each point has fewer.
+// So many points are tried at each crossing, besides the design's own.
 const (
 	pointsTwoWay   = 5
-	pointsThreeWay = 2
+	pointsThreeWay = 4
 )
 
 // A leeway is where two ways may cross.
 type leeway struct {
 	low, high float64  // Hz
 	reasons   []string // what bounds it, a sentence each
+	unknown   []string // what should bound it and does not
+}
+
+// resonances returns the drivers' resonances in Hz by name: the data sheet's, or that which the impedance table tells to a twentieth.
+func resonances(sys *sim.System, d *xover.Design) func(driver string) float64 {
+	const sure = 0.05
+	found := map[string]float64{}
+	for _, f := range sys.Fits() {
+		if f.Fit.Resonates() && f.Fit.Fs.Sigma < sure*f.Fit.Fs.Value {
+			found[f.Driver] = f.Fit.Fs.Value
+		}
+	}
+	for i := range d.Drivers {
+		if x := &d.Drivers[i]; x.Fs > 0 {
+			found[x.Name] = x.Fs
+		}
+	}
+	return func(driver string) float64 { return found[driver] }
+}
+
+// ownPoint returns where the design itself has the crossing of ways i and i+1, by the targets of either; 0 if it has none.
+func ownPoint(d *xover.Design, i int) float64 {
+	for _, t := range d.Ways[i].Targets {
+		if !t.HighPass {
+			return t.Frequency
+		}
+	}
+	for _, t := range d.Ways[i+1].Targets {
+		if t.HighPass {
+			return t.Frequency
+		}
+	}
+	return 0
 }
 
 // span returns the crossover points that the drivers of ways i and i+1 leave open for a target of that order. All three rules
 // are common practice, no source: a driver's high-pass lies above twice its resonance, more for low orders; its low-pass lies
 // below where its diaphragm is a wavelength across; and the two are no farther apart than a wavelength.
-func span(d *xover.Design, ways []xover.Way, i, order int) leeway {
+//
+// resonance returns that of a driver in Hz, 0 if it is not known.
+func span(d *xover.Design, ways []xover.Way, i, order int, resonance func(driver string) float64) leeway {
 	r := leeway{low: 80, high: 8000}
 	atLeast := func(f float64, why string) {
 		if f > r.low {
@@ -94,8 +130,10 @@ func span(d *xover.Design, ways []xover.Way, i, order int) leeway {
 		sound = 343
 	}
 	for _, name := range ways[i+1].DriverNames() {
-		if x := d.Driver(name); x.Fs > 0 {
-			atLeast(times*x.Fs, fmt.Sprintf("%g times the resonance of %s, for order %d", times, name, order))
+		if fs := resonance(name); fs > 0 {
+			atLeast(times*fs, fmt.Sprintf("%g times the resonance of %s, for order %d", times, name, order))
+		} else {
+			r.unknown = append(r.unknown, fmt.Sprintf("the resonance of %s is not known, so that nothing keeps the crossing above it", name))
 		}
 	}
 	for _, name := range ways[i].DriverNames() {
@@ -114,24 +152,27 @@ func span(d *xover.Design, ways []xover.Way, i, order int) leeway {
 }
 
 // plans returns all arrangements that the drivers' limits leave, and what those are, a sentence each.
-func plans(d *xover.Design, loud []float64) (all []plan, limits []string) {
+func plans(d *xover.Design, loud []float64, resonance func(driver string) float64) (all []plan, limits []string) {
 	n := len(d.Ways)
 	count := pointsTwoWay
 	if n > 2 {
 		count = pointsThreeWay
 	}
-	seen := map[string]bool{}
+	say := func(limit string) {
+		if !slices.Contains(limits, limit) {
+			limits = append(limits, limit)
+		}
+	}
 	for _, t := range targetShapes() {
 		for _, o := range t.orders {
 			spans := make([][]float64, n-1)
 			for i := range spans {
-				r := span(d, d.Ways, i, t.order)
+				r := span(d, d.Ways, i, t.order, resonance)
 				for _, why := range r.reasons {
-					text := fmt.Sprintf("%s to %s crosses %s", d.Ways[i].Name, d.Ways[i+1].Name, why)
-					if !seen[text] {
-						seen[text] = true
-						limits = append(limits, text)
-					}
+					say(fmt.Sprintf("%s to %s crosses %s", d.Ways[i].Name, d.Ways[i+1].Name, why))
+				}
+				for _, what := range r.unknown {
+					say(what)
 				}
 				if r.low > r.high {
 					continue
@@ -140,6 +181,10 @@ func plans(d *xover.Design, loud []float64) (all []plan, limits []string) {
 					// A cabinet's drivers rarely want a point at the very end of what they stand.
 					spans[i] = append(spans[i], rounded(r.low*math.Pow(r.high/r.low, (float64(k)+0.5)/float64(count))))
 				}
+				if own := ownPoint(d, i); own >= r.low && own <= r.high {
+					spans[i] = append(spans[i], own)
+				}
+				slices.Sort(spans[i])
 				spans[i] = slices.Compact(spans[i])
 			}
 			for _, points := range products(spans) {
@@ -299,10 +344,6 @@ func coil(far, re float64) (le, ohm float64) {
 	return math.Sqrt(far*far-re*re) / (2 * math.Pi * 10e3), re
 }
 
-// windingOhm returns what the winding of a coil of that many H has in Ω: 0.35 for 1 mH (common practice, no source), and others
-// as of the same wire, for which package tune derives the power.
-func windingOhm(henry float64) float64 { return 0.35 * math.Pow(henry/1e-3, 0.6) }
-
 // place gives the parts of e names and puts them into the design.
 func place(d *xover.Design, namer *ladder.Namer, e ladder.Expr) *xover.Expr {
 	if e.Op != ladder.Leaf {
@@ -319,7 +360,7 @@ func place(d *xover.Design, namer *ladder.Namer, e ladder.Expr) *xover.Expr {
 	switch e.Part.Kind {
 	case ladder.Inductor:
 		part.Kind = xover.Inductor
-		part.DCR = windingOhm(part.Value)
+		part.DCR = tune.WindingOhm(part.Value)
 	case ladder.Capacitor:
 		part.Kind = xover.Capacitor
 	}

@@ -8,10 +8,7 @@ import (
 	"io"
 	"math"
 	"math/cmplx"
-	"runtime"
 	"slices"
-	"sync"
-	"sync/atomic"
 
 	"sixdown/sim"
 	"sixdown/sim/tune"
@@ -32,10 +29,11 @@ type Find struct {
 	Name         string        // what it is, in words
 	Design       *xover.Design // its values tuned
 	Points       []float64     // Hz
-	ErrorDB      float64       // rms of all that the tuner's objective is the sum of
+	ErrorDB      float64       // square root of the tuner's objective
 	Score        tune.Score
 	Parts        int
 	Cost         float64 // of the nearest parts that Prices has; negative: not known
+	Unpriced     string  // a part of which Prices has none near enough, or not enough, for which Cost is not known
 	Reversed     []bool
 	Frontier     bool    // no other is at least as good in error, parts, cost and least impedance, and better in one of them
 	ExcursionMM  float64 // greatest peak excursion of a high-passed driver at the rated power; 0: not known
@@ -44,8 +42,10 @@ type Find struct {
 
 // A Report is what Scout found.
 type Report struct {
-	Finds   []Find   // all that were tuned and stay within the drivers' limits, by error
-	Limits  []string // what bounds the crossover points, a sentence each
+	Finds   []Find      // all that were tuned and stay within the drivers' limits, by error
+	Limits  []string    // what bounds the crossover points, a sentence each
+	Points  [][]float64 // Hz, the crossover points of all that were tried, rising
+	Tried   int         // looked at with a short search, if there were too many to tune
 	Tuned   int
 	Dropped int // tuned, and beyond a driver's excursion or the limit on the impedance
 	Partial bool
@@ -71,30 +71,33 @@ func Scout(ctx context.Context, d *xover.Design, open func(name string) (io.Read
 	if !sys.Sums() {
 		return nil, errors.New("scout: not every driver has an acoustic output; give each a response or a sensitivity")
 	}
-	loud := loudness(sys, &base)
-	all, limits := plans(&base, loud)
-	if len(all) == 0 {
-		return &Report{Limits: limits}, nil
+	sc := &scouting{base: &base, sys: sys, loud: loudness(sys, &base), open: open, set: &s, progress: func(float64) {}}
+	if s.Progress != nil {
+		sc.progress = s.Progress
 	}
+	all, limits := plans(&base, sc.loud, resonances(sys, &base))
 	r := &Report{Limits: limits}
+	if len(all) == 0 {
+		return r, nil
+	}
+	for i := range all {
+		if !slices.ContainsFunc(r.Points, func(p []float64) bool { return slices.Equal(p, all[i].points) }) {
+			r.Points = append(r.Points, all[i].points)
+		}
+	}
+	slices.SortFunc(r.Points, slices.Compare)
+	share := 0.0 // of the work that choosing is
+	if len(all) > mostTuned {
+		share, r.Tried = choosing, len(all)
+		if all, err = sc.promising(ctx, all); err != nil {
+			return nil, err
+		}
+	}
 	finds := make([]*Find, len(all))
 	errs := make([]error, len(all))
-	var next, done atomic.Int64
-	var telling sync.Mutex
-	var wg sync.WaitGroup
-	for range min(cmp.Or(s.Workers, runtime.GOMAXPROCS(0)), len(all)) {
-		wg.Go(func() {
-			for i := int(next.Add(1)) - 1; i < len(all) && ctx.Err() == nil; i = int(next.Add(1)) - 1 {
-				finds[i], errs[i] = all[i].tuned(ctx, &base, sys, loud, open, &s)
-				if n := done.Add(1); s.Progress != nil {
-					telling.Lock()
-					s.Progress(float64(n) / float64(len(all)))
-					telling.Unlock()
-				}
-			}
-		})
-	}
-	wg.Wait()
+	sc.each(ctx, len(all), func(i int) {
+		finds[i], errs[i] = all[i].tuned(ctx, &base, sys, sc.loud, open, &s)
+	}, func(done float64) { sc.progress(share + (1-share)*done) })
 	r.Partial = ctx.Err() != nil
 	for i, f := range finds {
 		switch {
@@ -131,7 +134,7 @@ func (p *plan) tuned(ctx context.Context, base *xover.Design, sys *sim.System, l
 	// The coils are other ones now: with the resistances of these, once more from here.
 	for i := range d.Parts {
 		if part := &d.Parts[i]; part.Kind == xover.Inductor {
-			part.DCR = fourFigures(windingOhm(part.Value))
+			part.DCR = fourFigures(tune.WindingOhm(part.Value))
 		}
 	}
 	search.Starts = 1
@@ -141,9 +144,9 @@ func (p *plan) tuned(ctx context.Context, base *xover.Design, sys *sim.System, l
 	}
 	f := &Find{
 		Name: p.String(), Design: d, Points: p.points, Score: score, Parts: len(d.Parts),
-		ErrorDB: math.Sqrt(score.Objective / float64(1+len(d.Ways))),
+		ErrorDB: math.Sqrt(score.Objective),
 	}
-	f.Cost = cost(d, s.Prices)
+	f.Cost, f.Unpriced = cost(d, s.Prices)
 	for _, w := range d.Ways {
 		f.Reversed = append(f.Reversed, w.Reversed)
 	}
@@ -153,28 +156,6 @@ func (p *plan) tuned(ctx context.Context, base *xover.Design, sys *sim.System, l
 		return nil, err
 	}
 	return f, nil
-}
-
-// cost returns what the nearest parts of a list cost; negative if it is none, or has none of a kind with a price.
-func cost(d *xover.Design, prices tune.Source) float64 {
-	if prices == nil {
-		return -1
-	}
-	sum := 0.0
-	for i := range d.Parts {
-		part := &d.Parts[i]
-		off, price := math.Inf(1), -1.0
-		for _, it := range prices.Within(tune.KindOf(part.Kind), part.Value/2, part.Value*2) {
-			if o := math.Abs(math.Log(it.Value / part.Value)); it.Price >= 0 && o < off {
-				off, price = o, it.Price
-			}
-		}
-		if price < 0 {
-			return -1
-		}
-		sum += price
-	}
-	return sum
 }
 
 // settle tunes d in place, to four figures, and returns its score then.
@@ -260,8 +241,16 @@ func (f *Find) excursion(sys *sim.System) error {
 	return nil
 }
 
-// load is the least impedance to a twentieth of an ohm: those that lie at the limit differ by less, and not for anybody's good.
-func (f *Find) load() float64 { return math.Round(20*f.Score.MinImpedance) / 20 }
+// load is the least impedance, rounded down to a quarter of an ohm: less makes no difference to an amplifier.
+func (f *Find) load() float64 { return math.Floor(4*f.Score.MinImpedance+1e-9) / 4 }
+
+// price is the cost, infinite if it is not known: what cannot be bought is no bargain.
+func (f *Find) price() float64 {
+	if f.Cost < 0 {
+		return math.Inf(1)
+	}
+	return f.Cost
+}
 
 // mark marks the frontier.
 func mark(finds []Find) {
@@ -270,10 +259,10 @@ func mark(finds []Find) {
 		a.Frontier = true
 		for j := range finds {
 			b := &finds[j]
-			if i == j || b.ErrorDB > a.ErrorDB || b.Parts > a.Parts || b.Cost > a.Cost || b.load() < a.load() {
+			if i == j || b.ErrorDB > a.ErrorDB || b.Parts > a.Parts || b.price() > a.price() || b.load() < a.load() {
 				continue
 			}
-			if b.ErrorDB < a.ErrorDB || b.Parts < a.Parts || b.Cost < a.Cost || b.load() > a.load() || j < i {
+			if b.ErrorDB < a.ErrorDB || b.Parts < a.Parts || b.price() < a.price() || b.load() > a.load() || j < i {
 				a.Frontier = false
 				break
 			}

@@ -2,14 +2,19 @@ package scout
 
 import (
 	"context"
+	"fmt"
+	"io"
 	"math"
+	"math/cmplx"
 	"reflect"
+	"slices"
 	"strings"
 	"testing"
 
 	"sixdown/sim"
 	"sixdown/sim/tune"
 	"sixdown/xover"
+	"sixdown/xover/preferred"
 )
 
 // pier is an invented two-way whose drivers leave little room: its tweeter resonates at 1.1 kHz, and the two are 150 mm apart.
@@ -55,6 +60,11 @@ func design(t *testing.T, text string) *xover.Design {
 	return d
 }
 
+// sheet is the resonances of the data sheets.
+func sheet(d *xover.Design) func(driver string) float64 {
+	return func(driver string) float64 { return d.Driver(driver).Fs }
+}
+
 // The rules by hand: 2, 2.5 and 3 times 1.1 kHz; 343 m/s over 130 mm and over 150 mm.
 func TestSpan(t *testing.T) {
 	d := design(t, pier)
@@ -62,12 +72,12 @@ func TestSpan(t *testing.T) {
 		order     int
 		low, high float64
 	}{{1, 4400, 343 / 0.15}, {2, 3300, 343 / 0.15}, {3, 2750, 343 / 0.15}, {4, 2200, 343 / 0.15}} {
-		r := span(d, d.Ways, 0, c.order)
+		r := span(d, d.Ways, 0, c.order, sheet(d))
 		if math.Abs(r.low-c.low) > 1e-9 || math.Abs(r.high-c.high) > 1e-9 {
 			t.Errorf("order %d: %g to %g Hz, want %g to %g", c.order, r.low, r.high, c.low, c.high)
 		}
 	}
-	r := span(d, d.Ways, 0, 4)
+	r := span(d, d.Ways, 0, 4, sheet(d))
 	if all := strings.Join(r.reasons, "\n"); !strings.Contains(all, "above 2.20 kHz: 2 times the resonance of tweeter") || !strings.Contains(all, "woofer and tweeter are a wavelength apart") {
 		t.Errorf("reasons: %s", all)
 	}
@@ -201,5 +211,156 @@ func TestScoutRefuses(t *testing.T) {
 	cancel()
 	if _, err := Scout(ctx, design(t, pier), nil, Settings{}); err == nil {
 		t.Error("a scout that never began reports")
+	}
+}
+
+// A resonance that only an impedance table tells is one all the same; without either it is said that none is known.
+func TestResonanceFromATable(t *testing.T) {
+	text := strings.ReplaceAll(pier, "re = \"5.4 ohm\"\nfs = \"1.1 kHz\"\nqms = 3\nqes = 1.2\n", "impedance = \"t.zma\"\n")
+	d := design(t, text)
+	var table strings.Builder // the driver that the data sheet had: Res = Re·Qms/Qes, about its resonance
+	for i := range 200 {
+		f := 20 * math.Pow(1000, float64(i)/199)
+		s := complex(0, f/1100)
+		z := 5.4 + 5.4*3/1.2*s/3/(s*s+s/3+1) + complex(0, 2*math.Pi*f*0.03e-3)
+		fmt.Fprintf(&table, "%.8g %.8g %.8g\n", f, cmplx.Abs(z), cmplx.Phase(z)*180/math.Pi)
+	}
+	open := func(string) (io.ReadCloser, error) { return io.NopCloser(strings.NewReader(table.String())), nil }
+	sys, err := sim.New(d, open)
+	if err != nil {
+		t.Fatal(err)
+	}
+	known := resonances(sys, d)
+	if fs := known("tweeter"); math.Abs(fs/1100-1) > 1e-3 { // the fit of rows with eight figures
+		t.Errorf("the tweeter resonates at %g Hz, want 1100", fs)
+	}
+	r := span(d, d.Ways, 0, 4, known)
+	if math.Abs(r.low/2200-1) > 1e-3 || len(r.unknown) > 0 {
+		t.Errorf("from %g Hz, unknown %q", r.low, r.unknown)
+	}
+	if r := span(d, d.Ways, 0, 4, func(string) float64 { return 0 }); r.low != 80 || len(r.unknown) != 1 || !strings.Contains(r.unknown[0], "resonance of tweeter is not known") {
+		t.Errorf("from %g Hz, unknown %q", r.low, r.unknown)
+	}
+}
+
+// The design's own crossing is tried where the drivers stand it.
+func TestOwnPointIsTried(t *testing.T) {
+	for own, want := range map[string]bool{"2.25 kHz": true, "1.5 kHz": false} {
+		d := design(t, strings.Replace(pier, "network = []", `target = ["low-pass linkwitz-riley 4 at `+own+`"]`+"\nnetwork = []", 1))
+		all, _ := plans(d, []float64{87, 90}, sheet(d))
+		f := d.Ways[0].Targets[0].Frequency
+		if got := slices.ContainsFunc(all, func(p plan) bool { return p.points[0] == f }); got != want {
+			t.Errorf("%s tried: %t", own, got)
+		}
+	}
+}
+
+// Prices are of parts within half a step of E12, each taken no more often than there are; what cannot be had is named and is no bargain.
+func TestCost(t *testing.T) {
+	d := &xover.Design{Parts: []xover.Part{
+		{Name: "C1", Kind: xover.Capacitor, Value: 10.5e-6}, {Name: "C2", Kind: xover.Capacitor, Value: 9.5e-6}, {Name: "R1", Kind: xover.Resistor, Value: 8},
+	}}
+	item := func(kind preferred.Kind, value, price float64, count int) preferred.Item {
+		return preferred.Item{Kind: kind, Value: value, Price: price, Count: count, Tol: -1, DCR: -1}
+	}
+	for _, tt := range []struct {
+		items   []preferred.Item
+		sum     float64
+		missing string
+	}{
+		{[]preferred.Item{item(preferred.Capacitor, 10e-6, 3, 2), item(preferred.Resistor, 8.2, 1, -1)}, 7, ""},
+		{[]preferred.Item{item(preferred.Capacitor, 10e-6, 3, 1), item(preferred.Resistor, 8.2, 1, -1)}, -1, "C2"},
+		{[]preferred.Item{item(preferred.Capacitor, 10e-6, 3, 2), item(preferred.Resistor, 10, 1, -1)}, -1, "R1"},
+	} {
+		if sum, missing := cost(d, preferred.NewStock(tt.items)); sum != tt.sum || missing != tt.missing {
+			t.Errorf("%v: %g, %q; want %g, %q", tt.items, sum, missing, tt.sum, tt.missing)
+		}
+	}
+	find := func(err, cost float64) Find {
+		return Find{Design: d, ErrorDB: err, Cost: cost, Score: tune.Score{MinImpedance: 4}}
+	}
+	finds := []Find{find(1, 10), find(1.1, -1)}
+	if mark(finds); !finds[0].Frontier || finds[1].Frontier {
+		t.Errorf("frontier %t, %t: what has no price is taken for a bargain", finds[0].Frontier, finds[1].Frontier)
+	}
+	// 4.05 and 4.2 Ω are alike to an amplifier.
+	if a, b := (&Find{Design: d, Score: tune.Score{MinImpedance: 4.05}}), (&Find{Design: d, Score: tune.Score{MinImpedance: 4.2}}); a.load() != b.load() || a.load() != 4 {
+		t.Errorf("loads %g and %g", a.load(), b.load())
+	}
+}
+
+// Of a three-way's many arrangements the promising ones are tuned; the same on any number of cores.
+func TestThreeWay(t *testing.T) {
+	if testing.Short() {
+		t.Skip("short")
+	}
+	d := design(t, `
+[listen]
+distance = "2 m"
+[parts]
+C99 = "10 uF"
+[driver.w]
+re = "5.6 ohm"
+le = "0.9 mH"
+fs = "30 Hz"
+qms = 5
+qes = 0.4
+sensitivity = "88 dB"
+at = ["0 mm", "-300 mm", "0 mm"]
+[driver.m]
+re = "5.8 ohm"
+le = "0.2 mH"
+fs = "80 Hz"
+qms = 3.5
+qes = 0.5
+sensitivity = "90 dB"
+diameter = "100 mm"
+at = ["0 mm", "-90 mm", "0 mm"]
+[driver.t]
+re = "5.3 ohm"
+fs = "800 Hz"
+qms = 3
+qes = 1.2
+sensitivity = "91 dB"
+diameter = "26 mm"
+[[way]]
+name = "low"
+driver = "w"
+network = []
+[[way]]
+name = "mid"
+driver = "m"
+network = []
+[[way]]
+name = "high"
+driver = "t"
+network = ["series C99"]
+`)
+	run := func(workers int) *Report {
+		r, err := Scout(context.Background(), d, nil, Settings{Starts: 1, Workers: workers})
+		if err != nil {
+			t.Fatal(err)
+		}
+		return r
+	}
+	r := run(2)
+	if r.Tuned != 2*kept || r.Tried <= mostTuned || len(r.Points) < 8 || len(r.Finds) == 0 {
+		t.Errorf("%d tuned, %d tried, %d points, %d finds", r.Tuned, r.Tried, len(r.Points), len(r.Finds))
+	}
+	for _, p := range r.Points {
+		// 2 × 80 Hz, and twice 800 Hz to where the two are a wavelength apart, 343/0.09, or the mid is one across.
+		if p[0] < 160 || p[1] < 1600 || p[1] > 343/0.1*1.05 || p[1] < 4*p[0] {
+			t.Errorf("points %v", p)
+		}
+	}
+	orders := map[int]bool{}
+	for _, f := range r.Finds {
+		orders[f.Parts] = true
+	}
+	if len(orders) < 3 {
+		t.Errorf("finds have %v parts", orders)
+	}
+	if one := run(1); !reflect.DeepEqual(one, r) {
+		t.Error("one goroutine finds something else than two")
 	}
 }

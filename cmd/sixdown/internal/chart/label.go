@@ -57,6 +57,9 @@ func (l *labels) name(own [][]point, c series, near float64) bool {
 // remark writes a callout's text near its point; over a curve if there is no other place, and not at all if there
 // is none. With led a thin line leads from the point to a text that is no longer plainly of it.
 func (l *labels) remark(at point, c callout, led bool) {
+	if c.text == "" {
+		return
+	}
 	t := text{text: c.text, size: labelSize, anchor: start, ink: c.ink}
 	w, h := l.scene.fonts.width(t.text, t.size, false), labelSize*capHeight
 	best, found, far := math.Inf(1), rect{}, 0.0

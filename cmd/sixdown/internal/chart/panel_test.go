@@ -255,3 +255,24 @@ func TestNamesOfBothDesigns(t *testing.T) {
 		t.Errorf("%d pale lines and %d names of B, want 3 or more and 3", pales, names)
 	}
 }
+
+// Points without a name, such as those that others beat, get no line to a text that is not there.
+func TestNamelessMarksHaveNoLeader(t *testing.T) {
+	marks := make([]Mark, 60)
+	for i := range marks {
+		marks[i] = Mark{Across: 3.2, Up: 1 + float64(i)/30}
+	}
+	strokes := func(marks []Mark) (n int) {
+		s := emptyScene(t)
+		Frontier("Frontier", "", " Ω", " dB", marks, false).draw(s, rect{40, 40, 500, 200})
+		for _, m := range s.marks {
+			if _, ok := m.(line); ok {
+				n++
+			}
+		}
+		return n
+	}
+	if few, many := strokes([]Mark{marks[0], marks[59]}), strokes(marks); many != few {
+		t.Errorf("%d lines for two points, %d for sixty", few, many)
+	}
+}

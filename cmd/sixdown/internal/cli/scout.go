@@ -43,7 +43,9 @@ more for low orders, where a diaphragm beams, where drivers are a wavelength apa
 common practice), tunes each arrangement, drops those that overdrive a driver's xmax at
 the rated power or load the amplifier with less than [tune] min_impedance (3.2 ohm if it
 states none), and shows those that no other beats in error, number of parts, lowest
-impedance and, with the prices of a list, cost at once.
+impedance (in steps of 0.25 ohm) and, with the prices of a list,
+cost at once. Coils are taken to have 0.35 ohm for 1 mH. The arrangements of a three-way
+are too many: a short search chooses those that are tuned.
 
 With --out it writes a design file for each of these, and copies the drivers' tables.`,
 		Example:           "  sixdown scout harbour.toml --out scouted",
@@ -86,6 +88,11 @@ func runScout(ctx context.Context, s *streams, o *scoutOptions) error {
 	d, err := o.design.parse(s, name, src)
 	if err != nil {
 		return err
+	}
+	if o.out != "" {
+		if err := checkTables(d); err != nil {
+			return err
+		}
 	}
 	bar := newProgress(s, "scouting")
 	o.set.Progress = bar.at
@@ -131,6 +138,16 @@ func shown(r *scout.Report) (some []int) {
 	return some
 }
 
+// checkTables reports a table that cannot be copied beside the designs that are to be written.
+func checkTables(d *xover.Design) error {
+	for _, name := range d.Files() {
+		if from := filepath.FromSlash(name); !filepath.IsAbs(from) && !filepath.IsLocal(from) {
+			return usageFault("--out", fmt.Sprintf("the table %s is outside the design's folder", name), "move it beside the design, or give its whole path")
+		}
+	}
+	return nil
+}
+
 // writeFinds writes the designs and copies the tables that they name. It returns the files by index.
 func writeFinds(o *scoutOptions, d *xover.Design, src []byte, r *scout.Report) (map[int]string, error) {
 	if err := os.MkdirAll(o.out, 0o755); err != nil {
@@ -152,9 +169,6 @@ func writeFinds(o *scoutOptions, d *xover.Design, src []byte, r *scout.Report) (
 		from := filepath.FromSlash(name)
 		if filepath.IsAbs(from) {
 			continue
-		}
-		if !filepath.IsLocal(from) {
-			return nil, usageFault("--out", fmt.Sprintf("the table %s is outside the design's folder", name), "move it beside the design, or give its whole path")
 		}
 		to := filepath.Join(o.out, from)
 		if err := os.MkdirAll(filepath.Dir(to), 0o755); err != nil {
@@ -215,11 +229,12 @@ type (
 		Name         string   `json:"name"`
 		File         string   `json:"file,omitempty"`
 		CrossoverHz  []number `json:"crossover_hz"`
-		ErrorDB      number   `json:"error_db"` // rms
+		ErrorDB      number   `json:"error_db"` // square root of the tuner's objective
 		SumRMSDB     number   `json:"sum_rms_db"`
 		PhaseRMSDeg  number   `json:"phase_rms_deg"`
 		Parts        int      `json:"parts"`
-		Cost         number   `json:"cost"` // null: not known
+		Cost         number   `json:"cost"`               // null: not known
+		Unpriced     string   `json:"unpriced,omitempty"` // the part of which the list has none near enough
 		MinImpedance number   `json:"min_impedance_ohm"`
 		Reversed     []string `json:"reversed"`
 		ExcursionMM  number   `json:"excursion_mm"` // null: not known
@@ -228,6 +243,8 @@ type (
 	scoutDocument struct {
 		Finds   []findDocument `json:"finds"`
 		Limits  []string       `json:"limits"`
+		Points  [][]number     `json:"points_hz"` // the crossover points that were tried
+		Tried   int            `json:"tried"`     // looked at with a short search; 0: all were tuned
 		Tuned   int            `json:"tuned"`
 		Dropped int            `json:"dropped"`
 	}
@@ -247,6 +264,7 @@ func foundDocument(f *scout.Find, file string) findDocument {
 	if f.Cost >= 0 {
 		doc.Cost = number(f.Cost)
 	}
+	doc.Unpriced = f.Unpriced
 	if f.ExcursionFor != "" {
 		doc.ExcursionMM = number(f.ExcursionMM)
 	}
@@ -254,7 +272,10 @@ func foundDocument(f *scout.Find, file string) findDocument {
 }
 
 func scoutAnswer(r *scout.Report, files map[int]string) scoutDocument {
-	doc := scoutDocument{Finds: []findDocument{}, Limits: append([]string{}, r.Limits...), Tuned: r.Tuned, Dropped: r.Dropped}
+	doc := scoutDocument{Finds: []findDocument{}, Limits: append([]string{}, r.Limits...), Points: [][]number{}, Tried: r.Tried, Tuned: r.Tuned, Dropped: r.Dropped}
+	for _, p := range r.Points {
+		doc.Points = append(doc.Points, numbers(p))
+	}
 	for i := range r.Finds {
 		doc.Finds = append(doc.Finds, foundDocument(&r.Finds[i], files[i]))
 	}
@@ -270,12 +291,25 @@ func scoutRecords(r *scout.Report, files map[int]string) [][]string {
 	return rows
 }
 
-// costText writes a cost that is known.
-func costText(cost float64) string {
-	if math.IsNaN(cost) {
-		return ""
+// costText writes a cost, or for which part it is not known.
+func costText(f *scout.Find) string {
+	if f.Cost < 0 {
+		return "no " + f.Unpriced
 	}
-	return fixed(cost, 2)
+	return fixed(f.Cost, 2)
+}
+
+// pointsText lists crossover points.
+func pointsText(points [][]float64) string {
+	said := make([]string, len(points))
+	for i, p := range points {
+		pair := make([]string, len(p))
+		for k, f := range p {
+			pair[k] = roughly(f)
+		}
+		said[i] = strings.Join(pair, " and ")
+	}
+	return strings.Join(said, "; ")
 }
 
 // scoutText is the answer for people.
@@ -288,13 +322,25 @@ func scoutText(r *scout.Report, files map[int]string) string {
 		b.WriteString("          these leave no crossover point: choose drivers that overlap more\n")
 		return b.String()
 	}
+	b.WriteString(folded("points    ", pointsText(r.Points)))
+	if r.Tried > 0 {
+		fmt.Fprintf(&b, "          %d arrangements looked at with a short search, the better ones tuned\n", r.Tried)
+	}
 	some := shown(r)
 	fmt.Fprintf(&b, "%d arrangements tuned, %d of them dropped for the load or a driver's excursion; %d that no other beats:\n\n", r.Tuned, r.Dropped, len(some))
-	t := table.New(table.Column{Name: "arrangement", Left: true}, table.Column{Name: "error", Unit: "dB"}, table.Column{Name: "sum", Unit: "dB"},
-		table.Column{Name: "phase", Unit: "°"}, table.Column{Name: "parts"}, table.Column{Name: "cost"}, table.Column{Name: "|Z|", Unit: "Ω"}, table.Column{Name: "reversed", Left: true})
+	priced := slices.ContainsFunc(r.Finds, func(f scout.Find) bool { return f.Cost >= 0 || f.Unpriced != "" })
+	columns := []table.Column{{Name: "arrangement", Left: true}, {Name: "error", Unit: "dB"}, {Name: "sum", Unit: "dB"}, {Name: "phase", Unit: "°"}, {Name: "parts"}}
+	if priced {
+		columns = append(columns, table.Column{Name: "cost", Left: true})
+	}
+	t := table.New(append(columns, table.Column{Name: "|Z|", Unit: "Ω"}, table.Column{Name: "reversed", Left: true})...)
 	for _, i := range some {
 		f := foundDocument(&r.Finds[i], "")
-		t.Row(f.Name, fixed(float64(f.ErrorDB), 2), fixed(float64(f.SumRMSDB), 2), fixed(float64(f.PhaseRMSDeg), 0), fmt.Sprint(f.Parts), costText(float64(f.Cost)), fixed(float64(f.MinImpedance), 2), strings.Join(f.Reversed, " "))
+		row := []string{f.Name, fixed(float64(f.ErrorDB), 2), fixed(float64(f.SumRMSDB), 2), fixed(float64(f.PhaseRMSDeg), 0), fmt.Sprint(f.Parts)}
+		if priced {
+			row = append(row, costText(&r.Finds[i]))
+		}
+		t.Row(append(row, fixed(float64(f.MinImpedance), 2), strings.Join(f.Reversed, " "))...)
 	}
 	b.WriteString(t.Text(2 * pageWidth))
 	if len(files) > 0 {
