@@ -31,7 +31,7 @@ func rooms() map[string][]string {
 		"sixdown/sim/field":        {"sixdown/sim/driver"},
 		"sixdown/sim":              {"sixdown/xover", "sixdown/xover/quantity", "sixdown/xover/align", "sixdown/sim/circuit", "sixdown/sim/driver", "sixdown/sim/field", gonum},
 		"sixdown/sim/tune":         {"sixdown/xover", "sixdown/xover/quantity", "sixdown/xover/preferred", "sixdown/sim", "sixdown/sim/circuit", "sixdown/sim/driver", "sixdown/sim/field", "sixdown/sim/spread"},
-		"sixdown/sim/scout":        {"sixdown/xover", "sixdown/xover/align", "sixdown/xover/ladder", "sixdown/xover/quantity", "sixdown/sim", "sixdown/sim/tune"},
+		"sixdown/sim/scout":        {"sixdown/xover", "sixdown/xover/align", "sixdown/xover/ladder", "sixdown/xover/quantity", "sixdown/xover/preferred", "sixdown/sim", "sixdown/sim/tune"},
 		"sixdown/sim/spread":       {"sixdown/xover", "sixdown/sim", "sixdown/sim/circuit"},
 		"sixdown/audioio/wavfile":  {goAudio},
 		"sixdown/audioio/signal":   {},
