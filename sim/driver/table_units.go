@@ -64,6 +64,9 @@ func (t *Table) oddImpedance() []string {
 	if least, greatest, phase := t.spans(); len(t.Rows) >= fewestForUnits && greatest > 1.5*least && phase <= 1.02*math.Pi/2 {
 		notes = append(notes, smallPhase(t.Name, phase))
 	}
+	if len(notes) == 0 {
+		notes = t.strangers()
+	}
 	if least, greatest, _ := t.spans(); greatest < leastOhm || least > mostOhm {
 		notes = append(notes, fmt.Sprintf("%s: the impedance is from %s to %s: is it in ohm? It is taken as ohm; give ohm", t.Name, hertz(least), hertz(greatest)))
 	}
