@@ -26,6 +26,7 @@ type startOptions struct {
 	compensate bool
 	noPad      bool
 	out        string // "": standard output
+	tone       string
 	force      bool
 }
 
@@ -45,11 +46,18 @@ Drivers are given from the lowest way to the highest, each as
                                  in, closed:VOLUME or vented:VOLUME/TUNING
   NAME=FILE.zma,FILE.frd         tables of its impedance and response
 or a mixture. Without --load a way is sized for its driver's resistance or re; for a
-table, for the magnitude of the impedance at the crossover.`,
+table, for the magnitude of the impedance at the crossover.
+
+With --tone it writes a tone network instead, with values to begin with:
+` + toneKindsText(),
 		Example: `  sixdown start --at 2.2kHz --shape linkwitz-riley --order 4 --driver woofer=8ohm --driver "tweeter=re:5.4ohm,sensitivity:91dB"
-  sixdown start --at 400Hz,3kHz --arrangement all-pass --order 4 --driver b=8ohm --driver m=8ohm --driver t=8ohm --out three.toml`,
+  sixdown start --at 400Hz,3kHz --arrangement all-pass --order 4 --driver b=8ohm --driver m=8ohm --driver t=8ohm --out three.toml
+  sixdown start --tone bass-treble --out tone.toml`,
 		Args: noArguments,
 		RunE: func(cmd *cobra.Command, _ []string) error {
+			if o.tone != "" {
+				return runStartTone(cmd, s, &o)
+			}
 			if err := requireFlags(cmd, o.crossover.needed("driver")...); err != nil {
 				return err
 			}
@@ -66,6 +74,8 @@ table, for the magnitude of the impedance at the crossover.`,
 	f.StringVar(&o.title, "title", "", "the design's `title`")
 	f.BoolVar(&o.compensate, "compensate", false, "add across each driver the network that makes it the resistance re, where that does good")
 	f.BoolVar(&o.noPad, "no-pad", false, "leave the levels of the drivers as they are")
+	f.StringVar(&o.tone, "tone", "", "write a tone network of this `kind`")
+	complete(cmd, "tone", toneKinds())
 	f.StringVarP(&o.out, "out", "o", "", "`file` to write; standard output without it")
 	f.BoolVar(&o.force, "force", false, "replace the file if it is there")
 	return cmd
@@ -79,10 +89,8 @@ func runStart(s *streams, o *startOptions) error {
 	if len(o.drivers) != n {
 		return usageFault("--driver", fmt.Sprintf("%s given for %d ways", counted(len(o.drivers), "driver"), n), "give one for each way, from the lowest to the highest")
 	}
-	if o.out != "" && !o.force {
-		if _, err := os.Lstat(o.out); !errors.Is(err, fs.ErrNotExist) {
-			return usageFault(o.out, "it is there already", "give another name, or --force to replace it")
-		}
+	if err := o.checkOut(); err != nil {
+		return err
 	}
 	plan, err := o.plan()
 	if err != nil {
@@ -95,6 +103,21 @@ func runStart(s *streams, o *startOptions) error {
 	if err := o.prove(s, text); err != nil {
 		return err
 	}
+	return o.deliver(s, text)
+}
+
+// checkOut reports a file that would be replaced.
+func (o *startOptions) checkOut() error {
+	if o.out != "" && !o.force {
+		if _, err := os.Lstat(o.out); !errors.Is(err, fs.ErrNotExist) {
+			return usageFault(o.out, "it is there already", "give another name, or --force to replace it")
+		}
+	}
+	return nil
+}
+
+// deliver writes the design to its file or to standard output.
+func (o *startOptions) deliver(s *streams, text string) error {
 	if o.out == "" {
 		return s.answer(text)
 	}
