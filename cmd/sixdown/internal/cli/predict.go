@@ -97,6 +97,7 @@ type prediction struct {
 	system    *sim.System
 	summary   *sim.Summary
 	alignment []sim.Alignment // of the summary's crossings; nil without a sum
+	noise     *sim.Noise      // of a tone network; nil of a loudspeaker
 	level     float64         // V rms, what SPL is for
 	distance  float64         // m
 	warnings  []string
@@ -157,6 +158,9 @@ func runPredict(s *streams, o *predictOptions) error {
 	return s.answer(text)
 }
 
+// roomKelvin is 20 °C.
+const roomKelvin = 293.15
+
 // predictAt predicts at freqs, sums up, and prints the warnings that come with it.
 func predictAt(s *streams, d *xover.Design, sys *sim.System, freqs []float64) (*prediction, error) {
 	p := &prediction{design: d, system: sys, level: sys.Level(), distance: d.Listen.Distance, warnings: sys.Warnings()}
@@ -169,6 +173,11 @@ func predictAt(s *streams, d *xover.Design, sys *sim.System, freqs []float64) (*
 	}
 	if p.alignment, err = sys.Alignment(p.summary.Band); err != nil {
 		return nil, err
+	}
+	if d.Tone != nil {
+		if p.noise, err = sys.Noise(roomKelvin); err != nil {
+			return nil, err
+		}
 	}
 	for _, w := range slices.Concat(lowHighPasses(d), p.Response.Warnings, p.summary.Warnings) {
 		p.warnOnce(s, w)

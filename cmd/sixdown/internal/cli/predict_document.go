@@ -48,6 +48,14 @@ type (
 		Alignment    []alignmentDocument  `json:"alignment"` // of the crossings; null without a sum
 		Sum          *sumSummaryDocument  `json:"sum"`
 		Tone         *toneSummaryDocument `json:"tone"`
+		Noise        *noiseDocument       `json:"noise,omitempty"` // thermal, of a tone network
+	}
+	noiseDocument struct {
+		Kelvin        number   `json:"kelvin"`
+		FlatV         number   `json:"flat_v"`       // rms at the output, 20 Hz to 20 kHz
+		AWeightedV    number   `json:"a_weighted_v"` // rms
+		FrequencyHz   []number `json:"frequency_hz"`
+		DensityV2PerH []number `json:"density_v2_per_hz"`
 	}
 	lowestDocument struct {
 		Ohm number `json:"ohm"`
@@ -91,6 +99,9 @@ func (p *prediction) document() predictDocument {
 		Flights: flightDocuments(p.system), OneTimeBase: p.system.OneTimeBase(),
 		Summary:  summarize(p.summary, p.alignment),
 		Warnings: append([]string{}, p.warnings...), // [] and not null where there are none
+	}
+	if n := p.noise; n != nil {
+		doc.Summary.Noise = &noiseDocument{number(n.Kelvin), number(n.Flat), number(n.AWeighted), numbers(n.Freqs), numbers(n.Density)}
 	}
 	if p.Angle != (field.Angle{}) {
 		doc.Angle = &angleDocument{number(p.Angle.HorizontalDeg), number(p.Angle.VerticalDeg)}

@@ -3,12 +3,14 @@ package cli
 import (
 	"fmt"
 	"math"
+	"slices"
 	"strings"
 
 	"sixdown/cmd/sixdown/internal/caution"
 	"sixdown/cmd/sixdown/internal/table"
 	"sixdown/sim"
 	"sixdown/sim/field"
+	"sixdown/xover"
 )
 
 // pageWidth is how wide in characters tables may grow before they are folded.
@@ -136,6 +138,7 @@ func (p *prediction) summaryText() string {
 		}
 		fmt.Fprintf(&b, "output    in third-octaves from %s at %s to %s at %s\n", decibels(t.GainDB[low]), hertz(t.Freqs[low]), decibels(t.GainDB[high]), hertz(t.Freqs[high]))
 	}
+	b.WriteString(p.noiseText())
 	b.WriteString(flightsText(p.system))
 	b.WriteString(fitsText(p.system.Fits()))
 	fmt.Fprintf(&b, "load      lowest |Z| %s Ω at %s", ohms(s.MinImpedance), hertz(s.MinImpedanceAt))
@@ -151,6 +154,20 @@ func (p *prediction) summaryText() string {
 		fmt.Fprintf(&b, "flat      no fs is given for %s: the level is taken as flat down to 0 Hz\n", strings.Join(flat, ", "))
 	}
 	return b.String()
+}
+
+// noiseText says how much thermal noise there is at the output of a tone network.
+func (p *prediction) noiseText() string {
+	n := p.noise
+	if n == nil || n.Flat == 0 {
+		return ""
+	}
+	micro := func(v float64) string { return figures(1e6*v, 3) + " µV" }
+	text := fmt.Sprintf("thermal, 20 Hz to 20 kHz at 20 °C: %s, A-weighted %s, %s below 1 V", micro(n.Flat), micro(n.AWeighted), decibels(-sim.DB(complex(n.AWeighted, 0))))
+	if d := p.design.Tone; slices.ContainsFunc(d.Network, func(s xover.Step) bool { return s.Op == xover.OpAmp }) {
+		text += "; the amplifier's own is not in it"
+	}
+	return folded("noise     ", text)
 }
 
 // flatDrivers names the drivers of which no more is known than a sensitivity.
