@@ -18,6 +18,7 @@ type predictOptions struct {
 	form    answerForm
 	chart   chartOptions
 	around  aroundOptions
+	family  familyOptions
 }
 
 func newPredictCmd(s *streams) *cobra.Command {
@@ -62,7 +63,8 @@ maps; with --around, the means over many angles.`,
   sixdown predict harbour.toml --at "1 kHz,2.2 kHz" --set C3=5.6uF
   sixdown predict harbour.toml --from 100Hz --to 10kHz --per-octave 48 --csv
   sixdown predict harbour.toml --chart harbour.svg
-  sixdown predict harbour.toml harbour.toml --set C3=5.6uF --chart change.png`,
+  sixdown predict harbour.toml harbour.toml --set C3=5.6uF --chart change.png
+  sixdown predict tone.toml --family treble --chart treble.svg`,
 		Args:              oneOrTwoDesigns,
 		ValidArgsFunction: twoDesignFiles,
 		RunE: func(cmd *cobra.Command, args []string) error {
@@ -79,6 +81,9 @@ maps; with --around, the means over many angles.`,
 			if err := o.around.check(o.against, o.chart.path, o.chart.panels); err != nil {
 				return err
 			}
+			if err := o.family.check(cmd, o.against, &o.around); err != nil {
+				return err
+			}
 			return runPredict(s, &o)
 		},
 	}
@@ -87,6 +92,7 @@ maps; with --around, the means over many angles.`,
 	o.form.addTo(cmd)
 	o.chart.addTo(cmd)
 	o.around.addTo(cmd)
+	o.family.addTo(cmd)
 	return cmd
 }
 
@@ -126,6 +132,9 @@ func runPredict(s *streams, o *predictOptions) error {
 		return err
 	}
 	freqs := o.grid.frequencies(d, !o.form.json && !o.form.csv)
+	if o.family.control != "" {
+		return runFamily(s, o, d, freqs)
+	}
 	switch o.around.table() {
 	case "--polar":
 		return runPolar(s, o, sys, freqs)
