@@ -11,6 +11,9 @@ import (
 	"sixdown/xover"
 )
 
+// mostCurveDB is how far a curve may be from the level: beyond what any loudspeaker or tone control does.
+const mostCurveDB = 60
+
 // Aim returns what the sum should do over freqs, in Hz, by a design's [tune]: dB about its level. It is the tilt, which is 0 at
 // 1 kHz, and the curve, straight between its rows in log frequency and flat beyond them. open opens the curve's file; it
 // may be nil if there is none.
@@ -36,6 +39,9 @@ func Aim(t *xover.Tune, freqs []float64, open func(name string) (io.ReadCloser, 
 	}
 	x, y := make([]float64, len(table.Rows)), make([]float64, len(table.Rows))
 	for i, row := range table.Rows {
+		if !(math.Abs(row.Value) <= mostCurveDB) {
+			return nil, fmt.Errorf("%s:%d: the curve is at %g dB; give dB about the level, within ±%d", t.CurveFile, row.Line, row.Value, mostCurveDB)
+		}
 		x[i], y[i] = math.Log(row.Frequency), row.Value
 	}
 	var line interp.PiecewiseLinear

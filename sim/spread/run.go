@@ -104,12 +104,18 @@ func (s *Settings) complete(p *Problem) error {
 	return nil
 }
 
+// mostLevels is how many levels a run may keep: about a gigabyte with what is made of them.
+const mostLevels = 60e6
+
 // Run builds the design many times. ctx stops it early: the result is then of the builds made so far, Interrupted.
 func (p *Problem) Run(ctx context.Context, s Settings) (*Result, error) {
 	if err := s.complete(p); err != nil {
 		return nil, err
 	}
 	freqs, fans, judged := p.grid(&s)
+	if n := float64(s.Samples) * float64(len(freqs)) * float64(p.curves()); n > mostLevels {
+		return nil, fmt.Errorf("spread: %d builds of %d curves at %d frequencies are %.0f million levels, and %.0f million are the most; give fewer builds or fewer points an octave", s.Samples, p.curves(), len(freqs), n/1e6, mostLevels/1e6)
+	}
 	lot, err := p.makeLot(ctx, &s, freqs)
 	if err != nil {
 		return nil, err

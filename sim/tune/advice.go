@@ -89,7 +89,7 @@ func (p *Problem) Worths(values []float64) ([]Worth, error) {
 		}
 		d.frozen[v] = false
 		w.Costs = w.Without - with
-		w.Useless = w.Costs < max(uselessShare*with, uselessDB2)
+		w.Useless = w.Costs < max(uselessShare*with, uselessDB2*p.scale)
 		all = append(all, w)
 	}
 	slices.SortStableFunc(all, func(a, b Worth) int { return cmp.Compare(a.Costs, b.Costs) })

@@ -118,7 +118,11 @@ func (p *Problem) Buy(ctx context.Context, from []float64, source Source, set Bu
 		return nil, err
 	}
 	coils := p.windings(source)
-	b := &buyer{p: p, ctx: ctx, market: p.market(source, coils, set.Pairs), bestF: math.Inf(1), x: make([]float64, len(x)), most: set.Nodes, tell: set.Progress, limit: math.Inf(-1), highest: math.Inf(-1)}
+	market, err := p.market(source, coils, set.Pairs)
+	if err != nil {
+		return nil, err
+	}
+	b := &buyer{p: p, ctx: ctx, market: market, bestF: math.Inf(1), x: make([]float64, len(x)), most: set.Nodes, tell: set.Progress, limit: math.Inf(-1), highest: math.Inf(-1)}
 	if b.most <= 0 {
 		b.most = 800
 	}

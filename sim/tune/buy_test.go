@@ -117,7 +117,11 @@ func TestBuyIsAsGoodAsEnumeration(t *testing.T) {
 		if err != nil {
 			t.Fatal(err)
 		}
-		all := &buyer{p: p, ctx: context.Background(), market: p.market(stock, coils, false), bestF: math.Inf(1), e: e, x: make([]float64, len(p.vars)), limit: math.Inf(-1)}
+		market, err := p.market(stock, coils, false)
+		if err != nil {
+			t.Fatal(err)
+		}
+		all := &buyer{p: p, ctx: context.Background(), market: market, bestF: math.Inf(1), e: e, x: make([]float64, len(p.vars)), limit: math.Inf(-1)}
 		if p.limit > 0 {
 			all.limit = math.Log(p.limit)
 		}
@@ -287,7 +291,10 @@ func TestInterruptedPurchase(t *testing.T) {
 func TestResistanceOfPairs(t *testing.T) {
 	p := problem(t, twoWay(""))
 	coils := p.windings(readStock(t, "kind,value\nL,0.33 mH\n"))
-	m := p.market(readStock(t, "kind,value\nL,0.33 mH\nC,1 uF\nR,1 ohm\n"), coils, true)
+	m, err := p.market(readStock(t, "kind,value\nL,0.33 mH\nC,1 uF\nR,1 ohm\n"), coils, true)
+	if err != nil {
+		t.Fatal(err)
+	}
 	one := 0.4 * math.Pow(0.33/0.9, 0.6) // of L1, 0.9 mH with 0.4 Ω: derived in winding.go
 	found := 0
 	for _, c := range m.candidates[0] {
@@ -339,4 +346,13 @@ func readStock(t testing.TB, text string) *preferred.Stock {
 		t.Fatal(err)
 	}
 	return stock
+}
+
+// Pairs of a whole catalogue would take all memory: refused, with what to do.
+func TestTooManyForPairs(t *testing.T) {
+	p := problem(t, twoWay(""))
+	b, err := p.Buy(context.Background(), p.Start(), preferred.Shop{Series: preferred.E192}, BuySettings{Pairs: true})
+	if err == nil || b != nil || !strings.Contains(err.Error(), "take a coarser series, or narrow its range") {
+		t.Errorf("got %+v, %v", b, err)
+	}
 }

@@ -43,6 +43,9 @@ func (b *buyer) climb(choice []int) error {
 	for moved := true; moved && b.ctx.Err() == nil; {
 		moved = false
 		for v := range at {
+			if b.ctx.Err() != nil {
+				return nil
+			}
 			copy(next, at)
 			for _, c := range b.around(v, at[v], wholeShelf, nearOnes) {
 				next[v] = c
@@ -58,6 +61,9 @@ func (b *buyer) climb(choice []int) error {
 		}
 		for v := range at {
 			for w := v + 1; w < len(at); w++ {
+				if b.ctx.Err() != nil {
+					return nil
+				}
 				for _, c := range b.around(v, at[v], wholePairs, 1) {
 					for _, d := range b.around(w, at[w], wholePairs, 1) {
 						copy(next, at)

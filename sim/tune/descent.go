@@ -124,7 +124,7 @@ func (d *descent) miss() (float64, error) {
 // run takes steps until none leads further down or there have been so many.
 func (d *descent) run(steps int) error {
 	for range steps {
-		if d.over || d.f < exact && d.missed == 0 {
+		if d.over || d.f < exact*d.e.p.scale && d.missed == 0 {
 			d.over = true
 			return nil
 		}

@@ -53,6 +53,7 @@ type Problem struct {
 	phase float64     // weight of each pair's phase
 	meets []phasePair // where the targets say that it counts; nil: they do not say
 	limit float64     // Ω, least |Zin|; 0: none
+	scale float64     // the largest weight: what is a small objective is so times this
 
 	rough *Problem // the same on a coarser grid; nil in itself
 }
@@ -210,6 +211,12 @@ func (p *Problem) setTerms(aim []float64) error {
 	w := p.design.Tune.Weights
 	if w == (xover.Weights{}) {
 		w = xover.Weights{Sum: 1, Ways: 1, Angles: 1}
+	}
+	if p.scale = max(w.Sum, w.Ways, w.Phase); len(p.design.Tune.Angles) > 0 {
+		p.scale = max(p.scale, w.Angles)
+	}
+	if p.scale == 0 || p.design.Tone != nil {
+		p.scale = 1
 	}
 	all := make([]int, len(p.freqs))
 	for i := range all {

@@ -112,6 +112,9 @@ func (p *Problem) Run(ctx context.Context, s Search) (*Result, error) {
 		return nil, err
 	}
 	res.Evaluations = int(r.calls.Load()) + e.calls
+	if math.IsNaN(res.After.Objective) || math.IsInf(res.After.Objective, 0) {
+		return nil, errors.New("tune: the objective has no number; look for levels or a curve beyond all bounds")
+	}
 	res.Unmet = res.After.MinImpedance < p.limit*(1-1e-9)
 	res.Binding = p.binding(res)
 	return res, nil
@@ -215,12 +218,14 @@ func (r *runner) all(starts [][]float64) ([]place, error) {
 	r.best = math.Inf(1)
 	random := rand.New(rand.NewPCG(r.search.Seed, 0x41c5)) // any second word
 	rough := true
-	for _, round := range rounds {
-		places = distinct(places)
+	for i, round := range rounds {
+		if i > 0 {
+			places = distinct(places)
+		}
 		places = places[:min(len(places), round.kept(len(starts)))]
 		if rough && !round.rough {
-			for i := range places {
-				places[i].over = false
+			for k := range places {
+				places[k].over = false
 			}
 		}
 		rough = round.rough
@@ -233,7 +238,7 @@ func (r *runner) all(starts [][]float64) ([]place, error) {
 			r.status = Interrupted
 			break
 		}
-		if places[0].f < exact && places[0].missed == 0 {
+		if places[0].f < exact*r.p.scale && places[0].missed == 0 {
 			break // nothing can be better
 		}
 	}
@@ -249,18 +254,33 @@ func (r *runner) all(starts [][]float64) ([]place, error) {
 	return places, nil
 }
 
-// distinct drops places that another one has come to as well; they are sorted, the best first.
+// alike is how near in ln all values of two places are that count as one.
+const alike = 1e-3
+
+// distinct drops places that another one has come to as well; they are sorted, the best first. Only places in neighbouring slices of
+// the first value are compared, since there may be tens of thousands.
 func distinct(places []place) []place {
 	var kept []place
+	slices := map[int][]int{} // of the first value, to indices of kept
 	for _, a := range places {
-		near := slices.ContainsFunc(kept, func(b place) bool {
-			far := 0.0
-			for v := range a.x {
-				far = max(far, math.Abs(a.x[v]-b.x[v]))
+		slice := 0
+		if len(a.x) > 0 {
+			slice = int(math.Floor(a.x[0] / alike))
+		}
+		near := false
+		for s := slice - 1; s <= slice+1 && !near; s++ {
+			for _, k := range slices[s] {
+				far := 0.0
+				for v := range a.x {
+					far = max(far, math.Abs(a.x[v]-kept[k].x[v]))
+				}
+				if near = far < alike; near {
+					break
+				}
 			}
-			return far < 1e-3
-		})
+		}
 		if !near {
+			slices[slice] = append(slices[slice], len(kept))
 			kept = append(kept, a)
 		}
 	}
@@ -297,6 +317,8 @@ func (r *runner) round(places []place, round *round, total int) error {
 	return errors.Join(errs...)
 }
 
+const manyParts = 40
+
 // descend goes down from x by at most so many steps, unless the context is cancelled on the way: then as far as it has come.
 // Where the place decides which phases count, they are chosen anew at the end, for places to be compared by the same measure, and the descent
 // goes on if it is over and what it gained is not lost by the new choice.
@@ -314,8 +336,13 @@ func (r *runner) descend(d *descent, x []float64, steps int) place {
 		if !over || n == choices {
 			break
 		}
-		for done := 0; done < steps && !d.over && r.ctx.Err() == nil; done += 5 {
-			if d.run(min(5, steps-done)) != nil {
+		// The context is asked at every step of a large network, whose steps take long.
+		chunk := 5
+		if len(x) > manyParts {
+			chunk = 1
+		}
+		for done := 0; done < steps && !d.over && r.ctx.Err() == nil; done += chunk {
+			if d.run(min(chunk, steps-done)) != nil {
 				break
 			}
 		}

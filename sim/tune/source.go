@@ -1,12 +1,14 @@
 package tune
 
 import (
+	"fmt"
 	"math"
 	"slices"
 	"strconv"
 
 	"sixdown/xover"
 	"sixdown/xover/preferred"
+	"sixdown/xover/quantity"
 )
 
 // A Source is where parts are bought: a preferred.Shop or a preferred.Stock.
@@ -43,8 +45,14 @@ type market struct {
 	parts      []int         // by variable: how many parts it stands for
 }
 
+// Pairs are of items within this ratio of a part's range, since a partner farther off hardly counts, and of no more than so many.
+const (
+	pairReach    = 10
+	mostForPairs = 700
+)
+
 // market sets out what source has. With pairs, two items may make one part.
-func (p *Problem) market(source Source, coils windings, pairs bool) *market {
+func (p *Problem) market(source Source, coils windings, pairs bool) (*market, error) {
 	m := &market{candidates: make([][]candidate, len(p.vars))}
 	known := map[preferred.Item]int{}
 	index := func(it preferred.Item) int {
@@ -79,7 +87,11 @@ func (p *Problem) market(source Source, coils windings, pairs bool) *market {
 			}
 		}
 		if pairs {
-			all := source.Within(KindOf(q.Kind), q.Low/1000, q.High*1000)
+			all := source.Within(KindOf(q.Kind), q.Low/pairReach, q.High*pairReach)
+			if len(all) > mostForPairs {
+				return nil, fmt.Errorf("tune: %s may be made of pairs of %d items, which are too many; at most %d between %s and %s: take a coarser series, or narrow its range",
+					q.Part, len(all), mostForPairs, quantity.Round(q.Low/pairReach, q.Kind.Unit(), 3), quantity.Round(q.High*pairReach, q.Kind.Unit(), 3))
+			}
 			wound := slices.Clone(all)
 			for i := range wound {
 				if it := &wound[i]; it.Kind == preferred.Inductor && !(it.DCR > 0) {
@@ -107,7 +119,7 @@ func (p *Problem) market(source Source, coils windings, pairs bool) *market {
 		})
 		m.candidates[v] = thinned(m.candidates[v])
 	}
-	return m
+	return m, nil
 }
 
 // threeFigures rounds a resistance to what is known of one that was never measured.

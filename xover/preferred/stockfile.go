@@ -10,6 +10,7 @@ import (
 	"slices"
 	"strconv"
 	"strings"
+	"unicode"
 
 	"github.com/pelletier/go-toml/v2"
 
@@ -252,6 +253,10 @@ func (f *stockFile) item(line int, fields map[string]string) {
 		return
 	}
 	it.Value = v
+	if strings.ContainsFunc(it.Name, unicode.IsControl) {
+		f.fail(line, fmt.Sprintf("the name %q has a control character", it.Name), "write it in plain letters")
+		return
+	}
 	ok := f.number(line, "tol", fields["tol"], quantity.Percent, &it.Tol) &&
 		f.number(line, "dcr", fields["dcr"], quantity.Ohm, &it.DCR) &&
 		f.number(line, "price", fields["price"], quantity.None, &it.Price)
@@ -286,9 +291,16 @@ func (f *stockFile) number(line int, key, text string, unit quantity.Unit, dst *
 		f.fail(line, fmt.Sprintf("%s is %.40q", key, text), "write a number from 0 up, or leave it empty")
 		return false
 	}
+	if most := map[quantity.Unit]float64{quantity.Percent: 1, quantity.Ohm: mostDCR}[unit]; most > 0 && v > most {
+		f.fail(line, fmt.Sprintf("%s is %.40q", key, text), "give "+quantity.Format(most, unit)+" at most")
+		return false
+	}
 	*dst = v
 	return true
 }
+
+// mostDCR is in Ω more than any winding has that is used.
+const mostDCR = 10e3
 
 // firstSentence is what an error says without how to mend it.
 func firstSentence(err error) string {

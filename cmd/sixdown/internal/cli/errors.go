@@ -43,6 +43,17 @@ func machineFault(where string, err error, mend string) error {
 // more is said.
 var errCheckFailed = errors.New("a check did not pass")
 
+// errInterrupted is returned by a command that was interrupted and whose answer, already printed, is of what was done so far.
+var errInterrupted = errors.New("interrupted")
+
+// unlessInterrupted is the end of a command that may have been interrupted.
+func unlessInterrupted(interrupted bool, err error) error {
+	if err == nil && interrupted {
+		return errInterrupted
+	}
+	return err
+}
+
 // report says what err is about, one line a fault, and returns the exit code.
 func report(stderr io.Writer, err error) int {
 	switch {
@@ -51,6 +62,8 @@ func report(stderr io.Writer, err error) int {
 		return exitDone
 	case errors.Is(err, errCheckFailed):
 		return exitCheckFailed
+	case errors.Is(err, errInterrupted):
+		return exitMachine
 	case errors.Is(err, context.Canceled):
 		fmt.Fprintln(stderr, "sixdown: error: interrupted: the work is not done and nothing is left half written; run it again")
 		return exitMachine

@@ -15,7 +15,7 @@ import (
 
 // Bounds on the grids that may be asked for.
 const (
-	maxPoints    = 1_000_000
+	maxPoints    = 200_000
 	minFrequency = 1e-3 // Hz
 	maxFrequency = 1e7  // Hz
 )

@@ -1,6 +1,7 @@
 package cli
 
 import (
+	"bytes"
 	"cmp"
 	"context"
 	"fmt"
@@ -90,7 +91,7 @@ func runScout(ctx context.Context, s *streams, o *scoutOptions) error {
 		return err
 	}
 	if o.out != "" {
-		if err := checkTables(d); err != nil {
+		if err := o.checkFolder(d); err != nil {
 			return err
 		}
 	}
@@ -106,10 +107,9 @@ func runScout(ctx context.Context, s *streams, o *scoutOptions) error {
 		s.warn(fmt.Sprintf("interrupted: this is of %d arrangements", r.Tuned))
 	}
 	files := map[int]string{}
+	var writing error // told behind the answer, which is not lost with it
 	if o.out != "" {
-		if files, err = writeFinds(o, d, src, r); err != nil {
-			return err
-		}
+		files, writing = writeFinds(o, d, src, r)
 	}
 	if o.picture.path != "" && r.Tuned > r.Dropped {
 		if err := o.picture.write(scoutPage(d.Title, r), o.design.path); err != nil {
@@ -118,11 +118,16 @@ func runScout(ctx context.Context, s *streams, o *scoutOptions) error {
 	}
 	switch {
 	case o.form.json:
-		return s.answerJSON(scoutAnswer(r, files))
+		err = s.answerJSON(scoutAnswer(r, files))
 	case o.form.csv:
-		return s.answerCSV(scoutRecords(r, files))
+		err = s.answerCSV(scoutRecords(r, files))
+	default:
+		err = s.answer(scoutText(r, files))
 	}
-	return s.answer(scoutText(r, files))
+	if err == nil {
+		err = writing
+	}
+	return unlessInterrupted(r.Partial, err)
 }
 
 // mostFinds is how many of the frontier are shown and written, the least error first.
@@ -138,11 +143,29 @@ func shown(r *scout.Report) (some []int) {
 	return some
 }
 
-// checkTables reports a table that cannot be copied beside the designs that are to be written.
-func checkTables(d *xover.Design) error {
+// checkFolder reports, before any work is done, what would be lost in the folder for the designs, or cannot be put there.
+func (o *scoutOptions) checkFolder(d *xover.Design) error {
+	if at, err := os.Stat(o.out); err == nil && !at.IsDir() {
+		return usageFault("--out", o.out+" is a file", "give a folder")
+	}
+	if old, err := filepath.Glob(filepath.Join(o.out, "find-*.toml")); err == nil && len(old) > 0 {
+		return usageFault("--out", fmt.Sprintf("%s is there already, of another scout", old[0]), "give another folder, or take the old designs away")
+	}
 	for _, name := range d.Files() {
-		if from := filepath.FromSlash(name); !filepath.IsAbs(from) && !filepath.IsLocal(from) {
+		from := filepath.FromSlash(name)
+		if filepath.IsAbs(from) {
+			continue
+		}
+		if !filepath.IsLocal(from) {
 			return usageFault("--out", fmt.Sprintf("the table %s is outside the design's folder", name), "move it beside the design, or give its whole path")
+		}
+		source, to := filepath.Join(o.design.folder(), from), filepath.Join(o.out, from)
+		have, err := os.ReadFile(to)
+		if err != nil {
+			continue // it is not there
+		}
+		if want, err := os.ReadFile(source); err != nil || !bytes.Equal(have, want) {
+			return usageFault("--out", fmt.Sprintf("%s is there already, and another table", to), "give another folder")
 		}
 	}
 	return nil
@@ -157,11 +180,11 @@ func writeFinds(o *scoutOptions, d *xover.Design, src []byte, r *scout.Report) (
 	for n, i := range shown(r) {
 		text, err := xover.Rewrite(src, r.Finds[i].Design)
 		if err != nil {
-			return nil, err
+			return files, err
 		}
 		path := filepath.Join(o.out, fmt.Sprintf("find-%d.toml", n+1))
 		if err := writeOutput(path, text, o.design.path); err != nil {
-			return nil, err
+			return files, err
 		}
 		files[i] = path
 	}
@@ -172,15 +195,18 @@ func writeFinds(o *scoutOptions, d *xover.Design, src []byte, r *scout.Report) (
 		}
 		to := filepath.Join(o.out, from)
 		if err := os.MkdirAll(filepath.Dir(to), 0o755); err != nil {
-			return nil, machineFault(to, err, "give a folder that can be made")
+			return files, machineFault(to, err, "give a folder that can be made")
 		}
 		source := filepath.Join(o.design.folder(), from)
 		text, err := os.ReadFile(source)
 		if err != nil {
-			return nil, inputFault(source, err)
+			return files, inputFault(source, err)
+		}
+		if have, err := os.ReadFile(to); err == nil && bytes.Equal(have, text) {
+			continue
 		}
 		if err := writeOutput(to, text, source); err != nil {
-			return nil, err
+			return files, err
 		}
 	}
 	return files, nil
@@ -241,12 +267,13 @@ type (
 		Frontier     bool     `json:"frontier"`
 	}
 	scoutDocument struct {
-		Finds   []findDocument `json:"finds"`
-		Limits  []string       `json:"limits"`
-		Points  [][]number     `json:"points_hz"` // the crossover points that were tried
-		Tried   int            `json:"tried"`     // looked at with a short search; 0: all were tuned
-		Tuned   int            `json:"tuned"`
-		Dropped int            `json:"dropped"`
+		Finds       []findDocument `json:"finds"`
+		Limits      []string       `json:"limits"`
+		Points      [][]number     `json:"points_hz"` // the crossover points that were tried
+		Tried       int            `json:"tried"`     // looked at with a short search; 0: all were tuned
+		Tuned       int            `json:"tuned"`
+		Dropped     int            `json:"dropped"`
+		Interrupted bool           `json:"interrupted"`
 	}
 )
 
@@ -272,7 +299,7 @@ func foundDocument(f *scout.Find, file string) findDocument {
 }
 
 func scoutAnswer(r *scout.Report, files map[int]string) scoutDocument {
-	doc := scoutDocument{Finds: []findDocument{}, Limits: append([]string{}, r.Limits...), Points: [][]number{}, Tried: r.Tried, Tuned: r.Tuned, Dropped: r.Dropped}
+	doc := scoutDocument{Finds: []findDocument{}, Limits: append([]string{}, r.Limits...), Points: [][]number{}, Tried: r.Tried, Tuned: r.Tuned, Dropped: r.Dropped, Interrupted: r.Partial}
 	for _, p := range r.Points {
 		doc.Points = append(doc.Points, numbers(p))
 	}

@@ -116,11 +116,13 @@ func runSpread(ctx context.Context, s *streams, o *spreadOptions) error {
 	}
 	switch {
 	case o.form.json:
-		return s.answerJSON(a.document())
+		err = s.answerJSON(a.document())
 	case o.form.csv:
-		return s.answerCSV(a.records())
+		err = s.answerCSV(a.records())
+	default:
+		err = s.answer(a.text())
 	}
-	return s.answer(a.text())
+	return unlessInterrupted(a.result.Interrupted, err)
 }
 
 // The JSON of spread.

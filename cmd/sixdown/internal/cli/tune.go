@@ -1,6 +1,7 @@
 package cli
 
 import (
+	"bytes"
 	"context"
 	"errors"
 	"fmt"
@@ -12,6 +13,7 @@ import (
 
 	"github.com/spf13/cobra"
 
+	"sixdown/cmd/sixdown/internal/atomicfile"
 	"sixdown/sim"
 	"sixdown/sim/tune"
 	"sixdown/xover"
@@ -61,7 +63,8 @@ were wound of the same wire, or 0.35 ohm for 1 mH if the design gives none eithe
 The output of a tone network is tuned to the curve and the tilt of [tune] over its band,
 by the parts and with --settings by the controls. Potentiometers stay as they are.
 
-Without --out and --in-place nothing is written. Interrupted, it keeps the best so far.`,
+Without --out and --in-place nothing is written. Interrupted, it keeps the best so far, and
+the exit code is 3.`,
 		Example: `  sixdown tune harbour.toml --stock E12 --out tuned.toml
   sixdown tune harbour.toml --stock shelf.csv --explain
   sixdown predict harbour.toml tuned.toml`,
@@ -139,6 +142,9 @@ func runTune(ctx context.Context, s *streams, o *tuneOptions) error {
 	if err != nil {
 		return err
 	}
+	if err := o.checkTarget(d); err != nil {
+		return err
+	}
 	t := &tuning{design: d, stock: o.stock}
 	if o.turns {
 		tune.OffTheEnds(d)
@@ -169,20 +175,81 @@ func runTune(ctx context.Context, s *streams, o *tuneOptions) error {
 	if err := t.judgeLoad(ctx, s); err != nil {
 		return err
 	}
+	var writing error // told behind the answer, which is not lost with it
 	if !t.unmet() {
-		if err := t.write(o, src); err != nil {
-			return err
-		}
+		writing = t.write(o, src)
+	}
+	if t.interrupted() {
+		s.warn("interrupted: this is the best so far")
 	}
 	if o.form.json {
 		err = s.answerJSON(t.document())
 	} else {
 		err = s.answer(t.text())
 	}
-	if err == nil && t.unmet() {
-		err = errCheckFailed
+	switch {
+	case err != nil:
+		return err
+	case writing != nil:
+		return writing
+	case t.interrupted():
+		return errInterrupted
+	case t.unmet():
+		return errCheckFailed
 	}
-	return err
+	return nil
+}
+
+// interrupted reports whether some search was.
+func (t *tuning) interrupted() bool {
+	return t.result.Status == tune.Interrupted || t.bought != nil && t.bought.Status == tune.Interrupted || t.centred != nil && t.centred.Status == tune.Interrupted
+}
+
+// target is the file that is to be written; "": none.
+func (o *tuneOptions) target() string {
+	if o.inPlace {
+		return o.design.path
+	}
+	return o.out
+}
+
+// inputs are the files that are read and must stay.
+func (o *tuneOptions) inputs(d *xover.Design) []string {
+	var all []string
+	if !o.inPlace && o.design.path != "-" {
+		all = append(all, o.design.path)
+	}
+	if _, err := preferred.ParseSeries(o.stock); o.stock != "" && err != nil {
+		all = append(all, o.stock)
+	}
+	for _, name := range d.Files() {
+		if path := filepath.FromSlash(name); filepath.IsAbs(path) {
+			all = append(all, path)
+		} else {
+			all = append(all, filepath.Join(o.design.folder(), path))
+		}
+	}
+	return all
+}
+
+// checkTarget reports, before any work is done, a file that cannot be written or is read too.
+func (o *tuneOptions) checkTarget(d *xover.Design) error {
+	path := o.target()
+	if path == "" {
+		return nil
+	}
+	for _, in := range o.inputs(d) {
+		if atomicfile.Same(path, in) {
+			return usageFault(path, "it is also what is read", "give another name or folder")
+		}
+	}
+	if at, err := os.Stat(path); err == nil && at.IsDir() {
+		return usageFault(path, "it is a folder", "give the name of a file")
+	}
+	if at, err := os.Stat(filepath.Dir(path)); err != nil || !at.IsDir() {
+		return usageFault(path, "its folder is not there", "make the folder, or give another")
+	}
+	return nil
 }
 
 // work does all the searching. An interrupt ends each search with the best so far.
@@ -248,18 +315,23 @@ func (t *tuning) unmet() bool {
 func (t *tuning) judgeLoad(ctx context.Context, s *streams) error {
 	after := t.chosenScore()
 	limit := t.design.Tune.MinImpedance
-	usual := min(lowLoad*t.design.Drive.RatedLoad, t.result.Before.MinImpedance)
+	usual := math.Floor(10*min(lowLoad*t.design.Drive.RatedLoad, t.result.Before.MinImpedance)) / 10
 	switch {
+	case t.unmet() && t.interrupted():
+		s.warn(fmt.Sprintf("min_impedance %s is not held by what was found before the interrupt: the load is %s ohm at least; nothing is written; let it go on for longer", quantity.Format(limit, quantity.Ohm), ohms(after.MinImpedance)))
 	case t.unmet():
 		s.warn(fmt.Sprintf("min_impedance %s is not held by any values that were tried: the load is %s ohm at least; nothing is written; lower the limit, widen a range, or give other parts", quantity.Format(limit, quantity.Ohm), ohms(after.MinImpedance)))
 	case limit == 0 && t.design.Tone == nil && after.MinImpedance < usual:
-		usual = math.Floor(10*usual) / 10
 		warning := fmt.Sprintf("the load falls to %s ohm at %s, which amplifiers may not stand; give [tune] min_impedance a value that yours does", ohms(after.MinImpedance), hertz(after.MinImpedanceAt))
+		if ctx.Err() != nil || usual <= 0 {
+			s.warn(warning)
+			return nil
+		}
 		safe, err := t.problem.WithLimit(usual).Run(ctx, tune.Search{Seed: 1})
-		if err != nil {
+		if err != nil && ctx.Err() == nil {
 			return err
 		}
-		if !safe.Unmet && safe.Status != tune.Interrupted {
+		if err == nil && !safe.Unmet && safe.Status != tune.Interrupted {
 			warning += fmt.Sprintf(": with %s the error would be %s instead of %s", quantity.Format(usual, quantity.Ohm), decibels(rms(safe.After.Objective)), decibels(rms(t.result.After.Objective)))
 		}
 		s.warn(warning)
@@ -272,12 +344,14 @@ const lowLoad = 0.8
 
 // write writes the design with the values chosen, if that was asked for.
 func (t *tuning) write(o *tuneOptions, src []byte) error {
-	path := o.out
-	if o.inPlace {
-		path = o.design.path
-	}
+	path := o.target()
 	if path == "" {
 		return nil
+	}
+	if o.inPlace {
+		if now, err := os.ReadFile(path); err != nil || !bytes.Equal(now, src) {
+			return usageFault(path, "it was changed while the values were searched for", "run it again, or write the values in by hand")
+		}
 	}
 	values, ohmsOf, tols, turns := map[string]float64{}, map[string]float64{}, map[string]float64{}, map[string]float64{}
 	for v, value := range t.chosen() {
@@ -316,11 +390,7 @@ func (t *tuning) write(o *tuneOptions, src []byte) error {
 	if edited, err = xover.EditTol(edited, tols); err != nil {
 		return err
 	}
-	inputs := []string{}
-	if !o.inPlace && o.design.path != "-" {
-		inputs = append(inputs, o.design.path)
-	}
-	if err := writeOutput(path, edited, inputs...); err != nil {
+	if err := writeOutput(path, edited, o.inputs(t.design)...); err != nil {
 		return err
 	}
 	t.written = path

@@ -83,6 +83,7 @@ type (
 		Changes     []changeDocument  `json:"changes"`
 		Yield       *yieldDocument    `json:"yield"`
 		Status      string            `json:"status"`
+		Interrupted bool              `json:"interrupted"`
 		Met         bool              `json:"min_impedance_met"`
 		Evaluations int               `json:"evaluations"`
 		Seconds     number            `json:"seconds"`
@@ -121,7 +122,7 @@ func (t *tuning) document() tuneDocument {
 	r := t.result
 	doc := tuneDocument{
 		Before: scored(r.Before), After: scored(r.After), Parts: t.byPart(r.Values), Advice: []adviceDocument{}, Worth: []worthDocument{}, Binding: []bindingDocument{},
-		Status: statusText(r.Status), Met: !r.Unmet, Evaluations: r.Evaluations, Seconds: number(t.seconds),
+		Status: statusText(r.Status), Interrupted: t.interrupted(), Met: !r.Unmet, Evaluations: r.Evaluations, Seconds: number(t.seconds),
 	}
 	for v, q := range t.vars {
 		if q.Control != "" {
