@@ -150,7 +150,9 @@ func (p *parser) partTable(part *Part, r *tableReader) {
 			r.wrongType("same", same.value, `write the name of a part in quotes, such as same = "L1"`)
 			break
 		}
-		part.Same = same.value.text
+		if part.Same = same.value.text; part.Same == "" {
+			p.fail(p.pos(same.value.at), part.Name+" follows a part without a name", `name one of [parts], such as same = "L1"`)
+		}
 	default:
 		r.missing("value", fmt.Sprintf("give it, such as value = %q", part.Kind.Unit().Example()))
 	}

@@ -6,6 +6,7 @@ import (
 	"errors"
 	"fmt"
 	"io"
+	"math"
 	"runtime"
 	"slices"
 	"sync"
@@ -131,7 +132,7 @@ func (p *plan) same(q plan) bool {
 func (s *scouting) objective(ctx context.Context, p *plan, starts int) (float64, error) {
 	d, err := p.build(s.base, s.sys, s.loud)
 	if err != nil {
-		return 0, fmt.Errorf("scout: %s: %w", p, err)
+		return math.Inf(1), nil // it cannot be sized
 	}
 	if starts > 0 {
 		score, err := settle(ctx, d, s.open, tune.Search{Starts: starts, Seed: s.set.Seed, Workers: 1})

@@ -47,7 +47,7 @@ type Report struct {
 	Points  [][]float64 // Hz, the crossover points of all that were tried, rising
 	Tried   int         // looked at with a short search, if there were too many to tune
 	Tuned   int
-	Dropped int // tuned, and beyond a driver's excursion or the limit on the impedance
+	Dropped int // not to be sized, or tuned and beyond a driver's excursion or the limit on the impedance
 	Partial bool
 }
 
@@ -101,6 +101,9 @@ func Scout(ctx context.Context, d *xover.Design, open func(name string) (io.Read
 	r.Partial = ctx.Err() != nil
 	for i, f := range finds {
 		switch {
+		case errors.Is(errs[i], errUnbuildable):
+			r.Dropped++
+			continue
 		case errs[i] != nil && !errors.Is(errs[i], context.Canceled):
 			return nil, errs[i]
 		case f == nil:
@@ -121,11 +124,13 @@ func Scout(ctx context.Context, d *xover.Design, open func(name string) (io.Read
 	return r, nil
 }
 
+var errUnbuildable = errors.New("scout: the arrangement cannot be sized")
+
 // tuned tunes the plan.
 func (p *plan) tuned(ctx context.Context, base *xover.Design, sys *sim.System, loud []float64, open func(string) (io.ReadCloser, error), s *Settings) (*Find, error) {
 	d, err := p.build(base, sys, loud)
 	if err != nil {
-		return nil, fmt.Errorf("scout: %s: %w", p, err)
+		return nil, errUnbuildable // such as by a pad of 300 dB: others may do
 	}
 	search := tune.Search{Starts: cmp.Or(s.Starts, 24), Seed: s.Seed, Workers: 1}
 	if _, err := settle(ctx, d, open, search); err != nil {
