@@ -301,3 +301,10 @@ network = ["series C1"]
 		t.Errorf("[spread] is %+v, want %+v", d.Spread, spread)
 	}
 }
+
+func TestFollowsNothing(t *testing.T) {
+	src := "[parts]\nL1 = { same = \"\" }\n[driver.d]\nimpedance = \"8 ohm\"\n[[way]]\nname = \"a\"\ndriver = \"d\"\nnetwork = [\"series L1\"]\n"
+	if _, _, err := Parse("t.toml", []byte(src)); err == nil || !strings.Contains(err.Error(), "t.toml:2:") || !strings.Contains(err.Error(), "follows a part without a name") {
+		t.Errorf("got %v", err)
+	}
+}
