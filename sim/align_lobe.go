@@ -43,7 +43,16 @@ type fan struct {
 func (s *System) newFan() (*fan, error) {
 	n := 2*int(lobeReach/fanStep) + 1
 	f := &fan{s: s, airs: make([][]air, n)}
-	f.notes = s.angleWarnings(field.Angle{VerticalDeg: fanStep})
+	for i := range n {
+		if i == n/2 {
+			continue
+		}
+		for _, w := range s.angleWarnings(s.also(field.Angle{VerticalDeg: fanStep * float64(i-n/2)})) {
+			if !slices.Contains(f.notes, w) {
+				f.notes = append(f.notes, w)
+			}
+		}
+	}
 	return f, share(n, func(i int) (err error) {
 		f.airs[i], err = s.airs(field.Angle{VerticalDeg: fanStep * float64(i-n/2)})
 		return err

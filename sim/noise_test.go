@@ -9,6 +9,7 @@ import (
 	"testing"
 
 	"sixdown/sim/circuit"
+	"sixdown/xover"
 	"sixdown/xover/tone"
 )
 
@@ -64,11 +65,11 @@ json.dump(answers, sys.stdout)
 	var got [][]float64
 	for _, k := range []tone.Kind{tone.BassMiddleTreble, tone.BassTreble, tone.Blend} {
 		for _, at := range []float64{0.2, 0.5, 0.9} {
-			s, d := template(t, k, nil)
-			for i := range d.Controls {
-				d.Controls[i].At = at
-			}
-			s = mustNew(t, d)
+			s, _ := template(t, k, func(d *xover.Design) {
+				for i := range d.Controls {
+					d.Controls[i].At = at
+				}
+			})
 			n, err := s.Noise(293.15)
 			if err != nil {
 				t.Fatal(err)

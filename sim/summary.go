@@ -115,35 +115,46 @@ func logGrid(band [2]float64) []float64 {
 	return freqs
 }
 
-// lowest returns the lowest value of what size makes of the input impedance, and where it is.
+// nearLowest is how far in ratio above the lowest point of a grid another dip is looked into: what lies between two points of it may
+// be that much lower.
+const nearLowest = 1.5
+
+// lowest returns the lowest value of what size makes of the input impedance, and where it is: every dip of the grid that may hold it
+// is looked into.
 func (s *System) lowest(r *Response, size func(complex128) float64) (value, at float64, err error) {
-	best := 0
+	value = math.Inf(1)
 	for i, z := range r.Zin {
-		if size(z) < size(r.Zin[best]) || cmplx.IsInf(r.Zin[best]) {
-			best = i
+		if v := size(z); v < value {
+			value, at = v, r.Freqs[i]
 		}
 	}
-	if cmplx.IsInf(r.Zin[best]) {
-		return math.Inf(1), 0, nil
+	if math.IsInf(value, 1) {
+		return value, 0, nil
 	}
-	lo, hi := r.Freqs[max(best-1, 0)], r.Freqs[min(best+1, len(r.Freqs)-1)]
-	at, err = minimum(lo, hi, func(f float64) (float64, error) {
+	most := nearLowest * value
+	for i, z := range r.Zin {
+		v := size(z)
+		if !(v <= most) || i > 0 && size(r.Zin[i-1]) < v || i < len(r.Zin)-1 && size(r.Zin[i+1]) < v {
+			continue
+		}
+		f, err := minimum(r.Freqs[max(i-1, 0)], r.Freqs[min(i+1, len(r.Freqs)-1)], func(f float64) (float64, error) {
+			in, err := s.at(f)
+			if err != nil {
+				return 0, err
+			}
+			return size(in.zin), nil
+		})
+		if err != nil {
+			return 0, 0, err
+		}
 		in, err := s.at(f)
 		if err != nil {
-			return 0, err
+			return 0, 0, err
 		}
-		return size(in.zin), nil
-	})
-	if err != nil {
-		return 0, 0, err
-	}
-	in, err := s.at(at)
-	if err != nil {
-		return 0, 0, err
-	}
-	// A minimum at the edge of the band is where the grid put it.
-	if value = size(in.zin); size(r.Zin[best]) <= value {
-		return size(r.Zin[best]), r.Freqs[best], nil
+		// A minimum at the edge of the band is where the grid put it.
+		if v := size(in.zin); v < value {
+			value, at = v, f
+		}
 	}
 	return value, at, nil
 }

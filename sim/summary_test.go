@@ -271,3 +271,48 @@ func ExampleSystem_Predict() {
 	// 2200 Hz: low  -6.02 dB, high  -6.02 dB, sum 90.0 dB SPL
 	// 4400 Hz: low -24.61 dB, high  -0.53 dB, sum 90.0 dB SPL
 }
+
+// The lowest impedance may lie in a dip between the grid's points that is not next to its lowest point: of two series traps, each
+// as low as its resistance, the one of 3 Ω between two points and that of 3.2 Ω on one.
+func TestLowestOfTwoDips(t *testing.T) {
+	trap := func(n string, ohm, hz float64) []xover.Part {
+		const q = 30
+		w := 2 * math.Pi * hz
+		return []xover.Part{resistor("R"+n, ohm), coil("L"+n, q*ohm/w, 0), capacitor("C"+n, 1/(q*ohm*w), 0)}
+	}
+	grid := logGrid([2]float64{20, 20e3})
+	at := 0
+	for grid[at] < 1000 {
+		at++
+	}
+	between, on := math.Sqrt(grid[at]*grid[at+1]), grid[at+48*2]
+	d := &xover.Design{
+		Parts:   append(trap("1", 3, between), trap("2", 3.2, on)...),
+		Drivers: []xover.Driver{plainDriver("d", 1e6, 88)},
+		Ways:    []xover.Way{{Name: "a", Driver: "d", Network: []xover.Step{shunt(inSeries("R1", "L1", "C1")), shunt(inSeries("R2", "L2", "C2"))}}},
+	}
+	sum, err := mustNew(t, d).Summary([2]float64{})
+	if err != nil {
+		t.Fatal(err)
+	}
+	if math.Abs(sum.MinImpedance-3) > 0.02 || math.Abs(sum.MinImpedanceAt/between-1) > 1e-3 { // the other trap lies across it
+		t.Errorf("%g Ω at %g Hz, want 3 at %g", sum.MinImpedance, sum.MinImpedanceAt, between)
+	}
+}
+
+// Two drivers of 6 Ω are 3 Ω side by side and 12 Ω one after the other.
+func TestLoadImpedanceOfSeveral(t *testing.T) {
+	for _, tt := range []struct {
+		drivers *xover.Expr
+		want    float64
+	}{{inParallel("a", "b"), 3}, {inSeries("a", "b"), 12}} {
+		d := &xover.Design{
+			Parts:   []xover.Part{resistor("R1", 1)},
+			Drivers: []xover.Driver{plainDriver("a", 6, 88), plainDriver("b", 6, 88)},
+			Ways:    []xover.Way{{Name: "w", Driver: "a, b", Drivers: tt.drivers, Network: []xover.Step{series(leaf("R1"))}}},
+		}
+		if z := mustNew(t, d).LoadImpedance(0, tt.drivers, complex(0, 1000)); real(z) != tt.want || imag(z) != 0 {
+			t.Errorf("%v: %v Ω, want %g", tt.drivers, z, tt.want)
+		}
+	}
+}

@@ -261,4 +261,31 @@ func (s *System) DriverBranches(way int) []int {
 	return branches
 }
 
+// LoadImpedance returns the impedance in Ω that the drivers of a way have together at the complex frequency at, in rad/s: drivers is
+// their arrangement, nil for one.
+func (s *System) LoadImpedance(way int, drivers *xover.Expr, at complex128) complex128 {
+	units := s.unitsOf(way)
+	next := 0
+	var of func(e *xover.Expr) complex128
+	of = func(e *xover.Expr) complex128 {
+		if e == nil || e.Op == xover.Leaf {
+			next++
+			return units[next-1].speaker.load.Impedance(at)
+		}
+		sum := complex128(0)
+		for _, arg := range e.Args {
+			if z := of(arg); e.Op == xover.InSeries {
+				sum += z
+			} else {
+				sum += 1 / z
+			}
+		}
+		if e.Op == xover.InSeries {
+			return sum
+		}
+		return 1 / sum
+	}
+	return of(drivers)
+}
+
 func (s *System) unitsOf(way int) []unit { return s.units[s.ways[way].first:s.ways[way].past] }

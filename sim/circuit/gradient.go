@@ -211,6 +211,18 @@ func (s *Sweep) GainGradient(dst []complex128, out, branch int) {
 	s.copyTo(dst, s.gradOf(out, branch)[:len(s.freqs)])
 }
 
+// GainGradientAt is what GainGradient copies at frequency i alone.
+func (s *Sweep) GainGradientAt(out, branch, i int) complex128 {
+	if s.active != nil {
+		s.GainGradient(s.active.some, out, branch)
+		return s.active.some[i]
+	}
+	if s.grad == nil {
+		panic("circuit: GainGradientAt before Gradient")
+	}
+	return s.gradOf(out, branch)[i]
+}
+
 // AddGainGradient adds what GainGradient copies, times a factor, to dst.
 func (s *Sweep) AddGainGradient(dst []complex128, out, branch int, factor float64) {
 	if s.active != nil {

@@ -294,14 +294,14 @@ func (s *search) result(b fitted) *Fit {
 		f.Qms = estimate(k+2, 1)
 		// Qes = Qms·Re/Res and Qts = Qms·Re/(Re + Res): relative errors add with their signs.
 		relative := func(re, res float64) float64 {
-			g := map[int]float64{0: re, k + 1: res, k + 2: 1}
 			if cov == nil {
 				return math.Inf(1)
 			}
+			at, g := [3]int{0, k + 1, k + 2}, [3]float64{re, res, 1}
 			sum := 0.0
-			for i, gi := range g {
-				for j, gj := range g {
-					sum += gi * gj * cov.At(i, j)
+			for i := range g {
+				for j := range g {
+					sum += g[i] * g[j] * cov.At(at[i], at[j])
 				}
 			}
 			return math.Sqrt(math.Max(0, sum))

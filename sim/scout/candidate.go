@@ -266,13 +266,8 @@ func loudness(sys *sim.System, d *xover.Design) []float64 {
 
 // build makes a design of a plan: d with other parts and networks. loud are the levels of the ways in dB.
 func (p *plan) build(d *xover.Design, sys *sim.System, loud []float64) (*xover.Design, error) {
-	net := sys.Netlist()
 	load := func(way int, f float64) float64 {
-		z := complex128(0)
-		for _, b := range sys.DriverBranches(way) {
-			z = net.Branches[b].Port.Impedance(complex(0, 2*math.Pi*f))
-		}
-		return cmplx.Abs(z)
+		return cmplx.Abs(sys.LoadImpedance(way, d.Ways[way].Drivers, complex(0, 2*math.Pi*f)))
 	}
 	c := *d
 	c.Parts, c.Ways, c.Controls = nil, nil, nil

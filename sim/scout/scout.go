@@ -155,7 +155,10 @@ func (p *plan) tuned(ctx context.Context, base *xover.Design, sys *sim.System, l
 	for _, w := range d.Ways {
 		f.Reversed = append(f.Reversed, w.Reversed)
 	}
-	if final, err := sim.New(d, open); err != nil {
+	// What a driver moves does not depend on the cabinet's edges, which its sound has in it.
+	wall := *d
+	wall.Baffle = nil
+	if final, err := sim.New(&wall, open); err != nil {
 		return nil, err
 	} else if err := f.excursion(final); err != nil {
 		return nil, err
@@ -226,20 +229,21 @@ func (f *Find) excursion(sys *sim.System) error {
 	density := cmp.Or(d.Air.Density, 1.2)
 	worst := 0.0
 	for i, w := range d.Ways[1:] {
-		x := d.Driver(w.Driver)
-		if x == nil || x.Xmax == 0 {
-			continue
-		}
-		area := cmp.Or(x.Sd, math.Pi*x.Diameter*x.Diameter/4)
-		if area == 0 {
-			continue
-		}
-		for k, freq := range freqs {
-			omega := 2 * math.Pi * freq
-			moves := cmplx.Abs(r.Ways[i+1].P[k]) * drive * 2 * math.Sqrt2 * math.Pi * distance / (density * area * omega * omega)
-			if moves/x.Xmax > worst {
-				worst = moves / x.Xmax
-				f.ExcursionMM, f.ExcursionFor = 1000*moves, x.Name
+		names := w.DriverNames()
+		for _, name := range names {
+			x := d.Driver(name)
+			area := cmp.Or(x.Sd, math.Pi*x.Diameter*x.Diameter/4)
+			if x.Xmax == 0 || area == 0 {
+				continue
+			}
+			for k, freq := range freqs {
+				omega := 2 * math.Pi * freq
+				// Of several drivers each gives its part.
+				moves := cmplx.Abs(r.Ways[i+1].P[k]) / float64(len(names)) * drive * 2 * math.Sqrt2 * math.Pi * distance / (density * area * omega * omega)
+				if moves/x.Xmax > worst {
+					worst = moves / x.Xmax
+					f.ExcursionMM, f.ExcursionFor = 1000*moves, x.Name
+				}
 			}
 		}
 	}

@@ -20,9 +20,12 @@ type Judge struct {
 	press [][]complex128 // Pa for a gain of 1, by way
 	gain  []complex128
 	sum   []complex128
-	slope []complex128
 	want  []float64 // dB
 	aim   []float64 // dB about the level; nil: builds are judged by their nominal sum
+
+	names  []string    // of SettleGradient
+	where  [][]int     // by name: its branches
+	wanted [][]float64 // by name, by frequency: the derivative of want by the logarithm of the nominal value, in dB
 }
 
 // NewJudge prepares for builds judged at perOctave frequencies an octave of the band and at its ends. The design must have a
@@ -49,7 +52,7 @@ func (p *Problem) NewJudge(perOctave int) (*Judge, error) {
 	}
 	n := len(j.Freqs)
 	j.sweep, j.press = b.sweep, b.press
-	j.gain, j.sum, j.slope, j.want = make([]complex128, n), make([]complex128, n), make([]complex128, n), make([]float64, n)
+	j.gain, j.sum, j.want = make([]complex128, n), make([]complex128, n), make([]float64, n)
 	if own.design.Spread.AboutLevel {
 		if j.aim, err = sim.Aim(&own.design.Tune, j.Freqs, own.open); err != nil {
 			return nil, fmt.Errorf("spread: %w", err)
@@ -110,6 +113,52 @@ func (j *Judge) Settle() error {
 	return nil
 }
 
+// SettleGradient is Settle for OffGradient to follow, by the parts of these names.
+func (j *Judge) SettleGradient(names []string) error {
+	if err := j.Settle(); err != nil {
+		return err
+	}
+	if err := j.sweep.Gradient(); err != nil {
+		return err
+	}
+	if !slices.Equal(j.names, names) {
+		j.names, j.where, j.wanted = slices.Clone(names), nil, nil
+		for _, name := range names {
+			j.where = append(j.where, j.p.sys.PartBranches(name))
+			j.wanted = append(j.wanted, make([]float64, len(j.Freqs)))
+		}
+	}
+	fixed := j.aim != nil && j.p.design.Tune.HasLevel
+	for i, wanted := range j.wanted {
+		clear(wanted)
+		if fixed {
+			continue
+		}
+		mean := 0.0
+		for k := range wanted {
+			wanted[k] = j.slopeAt(i, k)
+			mean += wanted[k] / float64(len(wanted))
+		}
+		for k := range wanted {
+			if j.aim != nil {
+				wanted[k] = mean
+			}
+		}
+	}
+	return nil
+}
+
+// slopeAt returns the derivative of the present build's level at frequency k by the logarithm of the value of part i, in dB.
+func (j *Judge) slopeAt(i, k int) float64 {
+	d := complex128(0)
+	for w, press := range j.press {
+		for _, branch := range j.where[i] {
+			d += press[k] * j.sweep.GainGradientAt(w, branch, k) * complex(j.sweep.Value(branch), 0)
+		}
+	}
+	return 20 / math.Ln10 * real(d/j.sum[k])
+}
+
 // set gives the parts their nominal values times factors; nil: 1.
 func (j *Judge) set(factors []float64) error {
 	for i := range j.p.parts {
@@ -165,9 +214,9 @@ func (j *Judge) worst() (db float64, at int) {
 	return db, at
 }
 
-// OffGradient is Off, and stores in dst, by names of parts, the derivative of that level by the logarithm of the nominal value, in dB.
-// What the builds are judged by is taken to stay. It allocates nothing once it has been called.
-func (j *Judge) OffGradient(dst []float64, names []string, factors []float64) (db float64, at int, err error) {
+// OffGradient is Off, and stores in dst, by the names that SettleGradient was given, the derivative of that level by the logarithm of
+// the nominal value, in dB: of the build's own and of what it is judged by. It allocates nothing once it has been called.
+func (j *Judge) OffGradient(dst, factors []float64) (db float64, at int, err error) {
 	if err := j.set(factors); err != nil {
 		return 0, 0, err
 	}
@@ -175,17 +224,8 @@ func (j *Judge) OffGradient(dst []float64, names []string, factors []float64) (d
 		return 0, 0, err
 	}
 	db, at = j.worst()
-	for i, name := range names {
-		clear(j.slope)
-		d := complex128(0)
-		for w, press := range j.press {
-			for _, branch := range j.p.sys.PartBranches(name) {
-				j.sweep.AddGainGradient(j.slope, w, branch, j.sweep.Value(branch))
-			}
-			d += press[at] * j.slope[at]
-			clear(j.slope)
-		}
-		dst[i] = 20 / math.Ln10 * real(d/j.sum[at])
+	for i := range j.names {
+		dst[i] = j.slopeAt(i, at) - j.wanted[i][at]
 	}
 	return db, at, nil
 }

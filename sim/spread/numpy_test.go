@@ -200,44 +200,59 @@ func TestJudgeAgreesWithRun(t *testing.T) {
 	}
 }
 
-// A Judge's gradient is that of Off: central differences by each part's nominal value.
+// A Judge's gradient is that of Off: central differences by each part's nominal value, what builds are judged by moving with it, in all
+// three ways of judging.
 func TestOffGradient(t *testing.T) {
-	p := file(t, "../../audioio/testdata/breakwater.toml")
-	j, err := p.NewJudge(12)
-	if err != nil {
-		t.Fatal(err)
-	}
-	if err := j.Settle(); err != nil {
-		t.Fatal(err)
-	}
-	net := p.sys.Netlist()
-	sampler, factors := NewSampler(j.Dimensions(), 3), make([]float64, j.Dimensions())
-	j.Factors(factors, sampler, 5)
-	var names []string
-	for _, part := range p.parts {
-		names = append(names, part.Name)
-	}
-	slope := make([]float64, len(names))
-	if _, _, err := j.OffGradient(slope, names, factors); err != nil {
-		t.Fatal(err)
-	}
-	const h = 1e-5
-	for i, name := range names {
-		value := net.Branches[p.sys.PartBranches(name)[0]].Value
-		at := func(by float64) float64 {
-			if err := j.Nominal(name, value*math.Exp(by)); err != nil {
-				t.Fatal(err)
-			}
-			off, _, err := j.Off(factors)
-			if err != nil {
-				t.Fatal(err)
-			}
-			return off
+	for _, way := range []string{"about the nominal sum", "about a free level", "about a given level"} {
+		p := file(t, "../../audioio/testdata/breakwater.toml")
+		p.design.Spread.AboutLevel = way != "about the nominal sum"
+		p.design.Tune.HasLevel, p.design.Tune.Level = way == "about a given level", 87
+		j, err := p.NewJudge(12)
+		if err != nil {
+			t.Fatal(err)
 		}
-		want := (at(h) - at(-h)) / (2 * h)
-		at(0)
-		if math.Abs(slope[i]-want) > 1e-6*(1+math.Abs(want)) { // h² of a third derivative, and rounding over h
-			t.Errorf("%s: %g dB, want %g", name, slope[i], want)
+		var names []string
+		for _, part := range p.parts {
+			names = append(names, part.Name)
+		}
+		if err := j.SettleGradient(names); err != nil {
+			t.Fatal(err)
+		}
+		net := p.sys.Netlist()
+		sampler, factors := NewSampler(j.Dimensions(), 3), make([]float64, j.Dimensions())
+		j.Factors(factors, sampler, 5)
+		slope := make([]float64, len(names))
+		if _, _, err := j.OffGradient(slope, factors); err != nil {
+			t.Fatal(err)
+		}
+		if n := testing.AllocsPerRun(3, func() {
+			if _, _, err := j.OffGradient(slope, factors); err != nil {
+				t.Fatal(err)
+			}
+		}); n > 0 {
+			t.Errorf("%g allocations a gradient", n)
+		}
+		const h = 1e-5
+		for i, name := range names {
+			value := net.Branches[p.sys.PartBranches(name)[0]].Value
+			at := func(by float64) float64 {
+				if err := j.Nominal(name, value*math.Exp(by)); err != nil {
+					t.Fatal(err)
+				}
+				if err := j.Settle(); err != nil {
+					t.Fatal(err)
+				}
+				off, _, err := j.Off(factors)
+				if err != nil {
+					t.Fatal(err)
+				}
+				return off
+			}
+			want := (at(h) - at(-h)) / (2 * h)
+			at(0)
+			if math.Abs(slope[i]-want) > 1e-6*(1+math.Abs(want)) { // h² of a third derivative, and rounding over h
+				t.Errorf("%s: %s: %g dB, want %g", way, name, slope[i], want)
+			}
 		}
 	}
 }

@@ -61,8 +61,8 @@ type Match struct {
 	P95DB   float64 // what 95 % of pairs stay within
 }
 
-// grid returns the frequencies that are looked at: those of the fans first, and behind them the ends of the band that are not
-// among them. judged are the indices of those in the band.
+// grid returns the frequencies that are looked at: those of the fans first, and behind them those of the band that are beyond, and
+// its ends. judged are the indices of those in the band.
 func (p *Problem) grid(s *Settings) (freqs []float64, fans int, judged []int) {
 	steps := max(1, int(math.Round(float64(s.PerOctave)*math.Log2(s.To/s.From))))
 	for i := range steps + 1 {
@@ -70,6 +70,13 @@ func (p *Problem) grid(s *Settings) (freqs []float64, fans int, judged []int) {
 	}
 	fans = len(freqs)
 	band := p.Band()
+	// The band is judged at as many points where the fans do not go.
+	more := max(1, int(math.Round(float64(s.PerOctave)*math.Log2(band[1]/band[0]))))
+	for i := range more + 1 {
+		if f := band[0] * math.Pow(band[1]/band[0], float64(i)/float64(more)); f < s.From*(1-1e-9) || f > s.To*(1+1e-9) {
+			freqs = append(freqs, f)
+		}
+	}
 	for _, f := range []float64{s.From, s.To, band[0], band[1]} {
 		if k := slices.IndexFunc(freqs, func(g float64) bool { return math.Abs(g/f-1) < 1e-9 }); k < 0 {
 			freqs = append(freqs, f)

@@ -6,6 +6,7 @@ import (
 	"math"
 	"os"
 	"reflect"
+	"strings"
 	"testing"
 
 	"sixdown/sim"
@@ -275,5 +276,32 @@ func BenchmarkSpread(b *testing.B) {
 				}
 			}
 		})
+	}
+}
+
+// The yield is over the band, wherever the fans end: a coil's builds are the farther apart the higher the frequency, up to 40 kHz.
+func TestYieldBeyondTheFans(t *testing.T) {
+	text := strings.Replace(fmt.Sprintf(oneCoil, "uniform"), `band = ["500 Hz", "2 kHz"]`, `band = ["500 Hz", "40 kHz"]`, 1)
+	text = strings.Replace(text, `impedance = "8 ohm"`, "impedance = \"8 ohm\"\nsensitivity = \"88 dB\"", 1)
+	p := problem(t, "t.toml", []byte(text))
+	r, err := p.Run(context.Background(), Settings{Samples: 20000})
+	if err != nil {
+		t.Fatal(err)
+	}
+	// A build passes if its level at 40 kHz is within 0.4 dB: between the two values of the coil, by bisection of coilDB.
+	edge := func(off float64) float64 {
+		lo, hi := 0.5, 2.0
+		for range 60 {
+			if mid := (lo + hi) / 2; coilDB(mid, 40e3)-coilDB(1, 40e3) > off {
+				lo = mid
+			} else {
+				hi = mid
+			}
+		}
+		return lo
+	}
+	want := (min(edge(-0.4), 1.1) - max(edge(0.4), 0.9)) / 0.2
+	if math.Abs(r.Yield-want) > 0.002 || r.Freqs[len(r.Freqs)-1] != 20e3 { // quasi-random, 20,000 builds
+		t.Errorf("yield %g, want %g; the fans end at %g Hz", r.Yield, want, r.Freqs[len(r.Freqs)-1])
 	}
 }

@@ -42,20 +42,28 @@ func (b *buyer) branch(choice []int, x []float64) error {
 		if err != nil {
 			return err
 		}
+		step := func(end int) { // one candidate further out, or to the end
+			switch {
+			case low && end > 0:
+				lo = -1
+			case low:
+				lo--
+			case end > 0:
+				hi = len(all)
+			default:
+				hi++
+			}
+		}
 		switch {
-		case !(bound < b.bestF*(1-1e-9)) && low:
-			lo = -1
+		case math.IsInf(bound, 1):
+			step(0) // sold out, or out of reach of the limit: the next may not be
 		case !(bound < b.bestF*(1-1e-9)):
-			hi = len(all)
+			step(1)
 		default:
 			if err := b.branch(choice, y); err != nil {
 				return err
 			}
-			if low {
-				lo--
-			} else {
-				hi++
-			}
+			step(0)
 		}
 		choice[v] = -1
 	}

@@ -137,6 +137,9 @@ func (p *Problem) Buy(ctx context.Context, from []float64, source Source, set Bu
 	if b.e, err = p.newEvaluatorWith(coils); err != nil {
 		return nil, err
 	}
+	if err := b.e.measureAt(x); err != nil {
+		return nil, err
+	}
 	b.d = p.newDescent(b.e)
 	rounded := make([]int, len(x))
 	for v := range x {

@@ -356,3 +356,55 @@ func TestTooManyForPairs(t *testing.T) {
 		t.Errorf("got %+v, %v", b, err)
 	}
 }
+
+// Where phases count, sets are compared with them: the set bought is the best by Score of all there are.
+func TestBuyCountsPhases(t *testing.T) {
+	random := rand.New(rand.NewPCG(9, 9))
+	p := problem(t, twoWay("weights = { sum = 1, ways = 1, phase = 1 }"))
+	r, err := p.Run(context.Background(), Search{Starts: 40})
+	if err != nil {
+		t.Fatal(err)
+	}
+	for shelf := range 6 {
+		var items []preferred.Item
+		for v, q := range p.vars {
+			for range 3 {
+				items = append(items, preferred.Item{Kind: KindOf(q.Kind), Value: r.Values[v] * math.Exp(1.2*(random.Float64()-0.5)), Tol: -1, DCR: -1, Price: -1, Count: -1})
+			}
+		}
+		stock := preferred.NewStock(items)
+		b, err := p.Buy(context.Background(), r.Values, stock, BuySettings{})
+		if err != nil {
+			t.Fatal(err)
+		}
+		coils := p.windings(stock)
+		m, err := p.market(stock, coils, false)
+		if err != nil {
+			t.Fatal(err)
+		}
+		all := &buyer{p: p, ctx: context.Background(), market: m}
+		best := math.Inf(1)
+		choice := make([]int, len(m.candidates))
+		for done := false; !done; {
+			s, err := all.score(choice)
+			if err != nil {
+				t.Fatal(err)
+			}
+			best = min(best, s.Objective)
+			v := 0
+			for ; v < len(choice); v++ {
+				if choice[v]++; choice[v] < len(m.candidates[v]) {
+					break
+				}
+				choice[v] = 0
+			}
+			done = v == len(choice)
+			if testing.Short() && v > 3 {
+				done = true
+			}
+		}
+		if b.Score.Objective > best*(1+1e-9) {
+			t.Errorf("shelf %d: bought %g dB², and there is a set of %g", shelf, b.Score.Objective, best)
+		}
+	}
+}

@@ -71,6 +71,9 @@ func (p *Problem) Centre(ctx context.Context, from []float64, s CentreSettings) 
 	if c.e, err = p.newEvaluator(); err != nil {
 		return nil, err
 	}
+	if err := c.e.measureAt(x); err != nil {
+		return nil, err
+	}
 	f, err := c.e.objective(x)
 	if err != nil {
 		return nil, err
@@ -113,8 +116,8 @@ type centring struct {
 	e       *evaluator
 }
 
-// settle moves the judges to x.
-func (c *centring) settle(x []float64) error {
+// settle moves the judges to x, for gradients by the parts of these names if there are any.
+func (c *centring) settle(x []float64, names []string) error {
 	for _, j := range c.judges {
 		for v, lnValue := range x {
 			for _, name := range append([]string{c.p.vars[v].Part}, c.p.vars[v].Followers...) {
@@ -123,7 +126,11 @@ func (c *centring) settle(x []float64) error {
 				}
 			}
 		}
-		if err := j.Settle(); err != nil {
+		settle := j.Settle
+		if names != nil {
+			settle = func() error { return j.SettleGradient(names) }
+		}
+		if err := settle(); err != nil {
 			return err
 		}
 	}
@@ -147,7 +154,7 @@ func (c *centring) each(builds int, do func(worker, build int, j *spread.Judge) 
 
 // yield returns the share of builds about x that pass.
 func (c *centring) yield(x []float64, sampler *spread.Sampler) (float64, error) {
-	if err := c.settle(x); err != nil {
+	if err := c.settle(x, nil); err != nil {
 		return 0, fmt.Errorf("tune: %w", err)
 	}
 	pass := make([]bool, judgingBuilds)
@@ -169,9 +176,6 @@ func (c *centring) yield(x []float64, sampler *spread.Sampler) (float64, error) 
 
 // smooth returns the mean of 1/(1 + e^(-(limit - off)/width)) over the builds about x, and its gradient by x.
 func (c *centring) smooth(x []float64, width float64) (float64, []float64, error) {
-	if err := c.settle(x); err != nil {
-		return 0, nil, err
-	}
 	var names []string
 	var of []int
 	for v := range c.p.vars {
@@ -179,12 +183,15 @@ func (c *centring) smooth(x []float64, width float64) (float64, []float64, error
 			names, of = append(names, name), append(of, v)
 		}
 	}
+	if err := c.settle(x, names); err != nil {
+		return 0, nil, err
+	}
 	values := make([]float64, c.s.Builds)
 	slopes := make([][]float64, c.s.Builds)
 	err := c.each(c.s.Builds, func(_, i int, j *spread.Judge) error {
 		factors, d := make([]float64, j.Dimensions()), make([]float64, len(names))
 		j.Factors(factors, c.sampler, i)
-		off, _, err := j.OffGradient(d, names, factors)
+		off, _, err := j.OffGradient(d, factors)
 		if err != nil {
 			return err
 		}

@@ -58,7 +58,9 @@ func (p *Problem) newDescent(e *evaluator) *descent {
 func (d *descent) begin(x []float64) error {
 	copy(d.x, x)
 	d.damping, d.growth, d.penalty, d.over = 1e-3, 2, 0, false
-	d.e.pairs = d.e.pairs[:0]
+	if !d.e.pinned {
+		d.e.pairs = d.e.pairs[:0]
+	}
 	if _, err := d.e.objective(d.x); err != nil {
 		return err
 	}

@@ -27,6 +27,7 @@ type evaluator struct {
 	mean        []float64      // by level
 	total       []float64      // weight by level
 	pairs       []phasePair    // what counts of the phase, set by setPairs
+	pinned      bool           // they stay
 	zin         []complex128   // over loads
 	calls       int            // how often the objective has been computed
 }
@@ -75,6 +76,10 @@ func (p *Problem) newEvaluatorWith(coils windings) (*evaluator, error) {
 			e.root[row] = math.Sqrt(t.weight)
 			row++
 		}
+	}
+	if p.meets != nil {
+		e.setPairs() // the same everywhere
+		e.pinned = true
 	}
 	if p.limit > 0 {
 		err = e.setLoads(logGrid(loadFrom, loadTo, p.grid))

@@ -88,6 +88,9 @@ func (p *Problem) Explain(before, after, ohms []float64) (*Explanation, error) {
 	if err != nil {
 		return nil, err
 	}
+	if err := e.measureAt(b); err != nil {
+		return nil, err
+	}
 	f, err := e.objective(b)
 	if err != nil {
 		return nil, err

@@ -141,6 +141,16 @@ func TestQuadraticAgainstEnumeration(t *testing.T) {
 	}
 }
 
+// Half g·d² under d ≥ 0.5 is least at 0.5, however small the curvature is beside 1.
+func TestQuadraticAtAnyScale(t *testing.T) {
+	for _, g := range []float64{1e6, 1, 1e-10, 1e-14, 1e-20} {
+		q := newQuadratic(1)
+		if !q.solve([]float64{g}, []float64{0}, []condition{{[]float64{1}, 0.5}}) || math.Abs(q.d[0]-0.5) > 1e-12 {
+			t.Errorf("curvature %g: %v", g, q.d)
+		}
+	}
+}
+
 // bySets returns the least of ½dᵀGd + gᵀd over all sets of conditions taken as equations whose solution meets the others.
 func bySets(n int, G, g []float64, conds []condition) (best []float64, ok bool) {
 	least := math.Inf(1)

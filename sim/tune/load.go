@@ -105,7 +105,7 @@ func (p *Problem) leastImpedance(x []float64, coils windings) (ohm, at float64, 
 	}
 	for k := range grid {
 		lower := k > 0 && z[k-1] < z[k] || k+1 < len(grid) && z[k+1] < z[k]
-		if lower || z[k] > 1.1*ohm { // what lies between two points is not a tenth lower
+		if lower || z[k] > 1.5*ohm { // what lies between two points is not a third lower
 			continue
 		}
 		lo, hi := grid[max(k-1, 0)], grid[min(k+1, len(grid)-1)]

@@ -11,19 +11,16 @@ import (
 // impedance at one of its way's target frequencies, or the resistance that is as large. What a search knows of crossovers
 // in general is here.
 func (p *Problem) natural() [][]float64 {
-	n := p.sys.Netlist()
 	all := make([][]float64, len(p.vars))
 	for w := range p.design.Ways {
 		at := p.frequencies(w)
-		var z complex128
 		load := func(f float64) float64 {
-			z = 0
-			for _, b := range p.sys.DriverBranches(w) {
-				z = n.Branches[b].Port.Impedance(complex(0, 2*math.Pi*f)) // of several, one stands for all
-			}
-			return cmplx.Abs(z)
+			return cmplx.Abs(p.sys.LoadImpedance(w, p.design.Ways[w].Drivers, complex(0, 2*math.Pi*f)))
 		}
 		for _, v := range p.variablesOf(w) {
+			if p.vars[v].Control != "" {
+				continue
+			}
 			for _, f := range at {
 				value := load(f)
 				switch p.vars[v].Kind {

@@ -69,6 +69,9 @@ func neighbours(centre []float64) []phasePair {
 // setPairs chooses where the phase between ways counts: where the targets meet, or, if they do not say, where both ways are within
 // 12 dB of the sum at the present place. It stays so until the next call, so that a descent has one smooth objective.
 func (e *evaluator) setPairs() {
+	if e.pinned {
+		return
+	}
 	e.pairs = e.pairs[:0]
 	if e.p.phase == 0 {
 		return
@@ -90,6 +93,17 @@ func (e *evaluator) setPairs() {
 	for v := range e.jac {
 		clear(e.jac[v][row:])
 	}
+}
+
+// measureAt chooses where phases count at x, for all that follows: values are then compared by one measure.
+func (e *evaluator) measureAt(x []float64) error {
+	e.pinned = false
+	if _, err := e.objective(x); err != nil {
+		return err
+	}
+	e.setPairs()
+	e.pinned = true
+	return nil
 }
 
 // meetingsHere returns the neighbours at the present place and the grid points at which both are within 12 dB of the sum.

@@ -67,7 +67,7 @@ func (q *quadratic) take(p int) bool {
 		q.direction(c.a)
 		// How far until the condition holds, and until an active one stops pushing.
 		full, part, drop := math.Inf(1), math.Inf(1), -1
-		if bend := dot(q.z, c.a); bend > 1e-14*dot(c.a, c.a)*normSquared(q.z) && bend > 0 && norm(q.z) > 1e-12*q.reach(c.a) {
+		if bend := dot(q.z, c.a); bend > 1e-14*norm(c.a)*norm(q.z) && norm(q.z) > 1e-12*q.reach(c.a) {
 			full = (c.b - dot(c.a, q.d)) / bend
 		}
 		for j, r := range q.r {
@@ -198,8 +198,6 @@ func dot(a, b []float64) float64 {
 	}
 	return s
 }
-
-func normSquared(a []float64) float64 { return dot(a, a) }
 
 func norm(a []float64) float64 { return math.Sqrt(dot(a, a)) }
 

@@ -46,7 +46,9 @@ func (p *Problem) logs(values []float64) ([]float64, error) {
 
 // score returns the score at x.
 func (e *evaluator) score(x []float64) (Score, error) {
-	e.pairs = e.pairs[:0]
+	if !e.pinned {
+		e.pairs = e.pairs[:0]
+	}
 	if _, err := e.objective(x); err != nil {
 		return Score{}, err
 	}

@@ -82,7 +82,7 @@ func (p *Problem) Run(ctx context.Context, s Search) (*Result, error) {
 	if len(p.vars) == 0 {
 		return nil, errNothingMoves
 	}
-	before, err := p.Score(p.designValues())
+	before, err := p.Score(p.DesignValues())
 	if err != nil {
 		return nil, err
 	}
@@ -120,8 +120,8 @@ func (p *Problem) Run(ctx context.Context, s Search) (*Result, error) {
 	return res, nil
 }
 
-// designValues returns what the design has, by variable, bounds or not.
-func (p *Problem) designValues() []float64 {
+// DesignValues returns what the design has, by variable, within its bounds or not.
+func (p *Problem) DesignValues() []float64 {
 	values := make([]float64, len(p.vars))
 	for v := range values {
 		if values[v] = p.vars[v].Value; p.vars[v].Control == "" {
@@ -374,6 +374,9 @@ const mostHeld = 6
 // own values if they do, else the place that comes nearest.
 func (r *runner) holding(e *evaluator, found []place) ([]float64, error) {
 	p := r.p
+	if err := e.measureAt(found[0].x); err != nil {
+		return nil, err
+	}
 	var best []float64
 	f := math.Inf(1)
 	nearest, most := found[0].x, 0.0

@@ -287,7 +287,7 @@ func (t *tuning) work(ctx context.Context, s *streams, o *tuneOptions, source tu
 		if t.bought != nil {
 			ohms = t.bought.Ohms
 		}
-		t.explain, err = t.problem.Explain(t.problem.Start(), t.chosen(), ohms)
+		t.explain, err = t.problem.Explain(t.problem.DesignValues(), t.chosen(), ohms)
 	}
 	return err
 }
