@@ -23,6 +23,7 @@ type Input struct {
 	Volts  float64       // V, open circuit, that a sample of 1 stands for
 	Peak   float64       // the most that a sample can be; 0: 1
 	BandHz [2]float64    // where it carries enough to be measured
+	Turn   []*sim.System // networks at settings of a control in a row, passed through evenly as the signal goes on; nil: none is turned
 }
 
 // RenderBroadband writes a sweep, noise or music through the network's matched-pole model, the model's
@@ -37,8 +38,14 @@ func RenderBroadband(ctx context.Context, sys *sim.System, in Input, w io.WriteS
 	if err != nil {
 		return nil, err
 	}
+	var through filter = model
+	if in.Turn != nil {
+		if through, err = newTurning(in.Turn, float64(in.Rate), in.Source.Len()); err != nil {
+			return nil, err
+		}
+	}
 	top := 1.0
-	for _, g := range model.PeakGain() {
+	for _, g := range through.PeakGain() {
 		top = max(top, g)
 	}
 	peak := in.Peak
@@ -54,6 +61,7 @@ func RenderBroadband(ctx context.Context, sys *sim.System, in Input, w io.WriteS
 		},
 	}
 	rec.FitDB, rec.FitDeg = model.Error()
+	rec.Turned = in.Turn != nil
 	format := audio.Format{NumChannels: 1 + len(rec.Ways), SampleRate: in.Rate}
 	out, err := wavfile.NewWriter(w, format, set.Wav)
 	if err != nil {
@@ -62,7 +70,7 @@ func RenderBroadband(ctx context.Context, sys *sim.System, in Input, w io.WriteS
 	if err := out.Admit(int64(rec.LengthSamples)); err != nil {
 		return nil, err
 	}
-	p := pipe{model: model, src: in.Source, scale: in.Volts / rec.VoltsPerFullScale, total: rec.LengthSamples, set: &set}
+	p := pipe{model: through, src: in.Source, scale: in.Volts / rec.VoltsPerFullScale, total: rec.LengthSamples, set: &set}
 	if err := p.run(ctx, out, format.NumChannels); err != nil {
 		return nil, err
 	}
@@ -72,7 +80,7 @@ func RenderBroadband(ctx context.Context, sys *sim.System, in Input, w io.WriteS
 // A pipe reads the source, renders and writes, each on its own goroutine: on two cores the three come to the
 // time of the slower half.
 type pipe struct {
-	model *discrete.Matched
+	model filter
 	src   signal.Source
 	scale float64 // of the source's samples in the file
 	total int     // frames to write

@@ -35,6 +35,8 @@ type Recording struct {
 	// gain is above -50 dB; zero for tones, whose model is exact.
 	FitDB  float64 `json:"fit_error_db"`
 	FitDeg float64 `json:"fit_error_deg"`
+	// Turned says that a control was turned as the signal went on.
+	Turned bool `json:"turned,omitempty"`
 }
 
 // Settings of a rendering. The zero value is good.

@@ -77,6 +77,9 @@ func Verify(ctx context.Context, sys *sim.System, rec *Recording, r io.ReadSeeke
 	if err := rec.check(sys, in); err != nil {
 		return nil, err
 	}
+	if rec.Turned {
+		return nil, errors.New("verify: a control was turned while the file was made, so that no one setting predicts it; render it without --turning")
+	}
 	var m *measurement
 	if rec.Signal == Tones {
 		m, err = measureTones(ctx, rec, in)

@@ -33,6 +33,9 @@ const noiseCrest = 4
 func (o *signalOptions) player(d *xover.Design, sys *sim.System) (*player, error) {
 	in := audioio.Input{Rate: o.rate, Volts: audioio.PeakVolts(sys), BandHz: audible}
 	var err error
+	if in.Turn, err = o.turn(d); err != nil {
+		return nil, err
+	}
 	switch o.signal {
 	case "tones":
 		return o.tonePlayer(d, sys), nil

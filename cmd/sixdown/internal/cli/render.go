@@ -36,6 +36,7 @@ type signalOptions struct {
 	seed    uint64
 	channel int
 	at      []float64 // Hz
+	turning string    // "treble=0..1"; "": no control is turned
 }
 
 func (o *signalOptions) addTo(cmd *cobra.Command) {
@@ -47,6 +48,7 @@ func (o *signalOptions) addTo(cmd *cobra.Command) {
 	f.StringVar(&o.colour, "colour", "pink", "of noise: pink or white")
 	f.Uint64Var(&o.seed, "seed", 1, "of noise, and of dither in 16 bits: the same seed gives the same file")
 	f.IntVar(&o.channel, "channel", 0, "of a WAV file: 1, 2, …; 0 mixes all of them")
+	f.StringVar(&o.turning, "turning", "", "turn a control of a tone network slowly as the signal goes on, as in `treble=0..1`")
 	f.Var(&quantityList{unit: quantity.Hertz, values: &o.at}, "at", "tones at these frequencies, as in `\"1 kHz,2 kHz\"`, instead of third-octaves and targets")
 }
 
@@ -95,9 +97,13 @@ design. DIR/` + scheduleFile + ` says what is where and how many volts full scal
 
 Tones pass through the network's own differential equations and are exact;
 sweeps, noise and music pass through a model with the network's own poles, whose
-error is told. Full scale is chosen so that no channel clips.`,
+error is told. Full scale is chosen so that no channel clips.
+
+With --turning a control of a tone network goes evenly from one setting to another
+while a sweep, noise or music plays, without a click.`,
 		Example: `  sixdown render harbour.toml --out sound
-  sixdown render harbour.toml --out music --signal record.wav`,
+  sixdown render harbour.toml --out music --signal record.wav
+  sixdown render tone.toml --out turned --signal record.wav --turning treble=0..1`,
 		Args:              oneDesign,
 		ValidArgsFunction: designFiles,
 		RunE: func(cmd *cobra.Command, args []string) error {
